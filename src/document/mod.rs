@@ -1,0 +1,1 @@
+//! The ordered JSON tree and the reader that collects every fault with its pointer.

@@ -1,0 +1,16 @@
+//! sigmadot checks processes against the second law of thermodynamics.
+//!
+//! Data flows one way through the modules, in this order:
+//!
+//! ```text
+//! bytes → document → process → model → balance → rules → evidence → assessment → report
+//!              ↑           ↑
+//!          quantity      fluid
+//! ```
+
+#[cfg(feature = "server")]
+pub mod api;
+pub mod diagnostic;
+pub mod document;
+pub mod fluid;
+pub mod quantity;

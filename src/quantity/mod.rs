@@ -1,0 +1,1 @@
+//! Units, uncertainties and printed-digit resolution.
