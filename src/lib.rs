@@ -10,7 +10,11 @@
 
 #[cfg(feature = "server")]
 pub mod api;
+pub mod balance;
 pub mod diagnostic;
 pub mod document;
+pub mod evidence;
 pub mod fluid;
 pub mod quantity;
+pub mod model;
+pub mod process;

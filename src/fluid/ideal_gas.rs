@@ -1,1 +1,4 @@
 //! Property engine.
+/// Placeholder until the engine lands.
+#[derive(Debug)]
+pub struct IdealGas;

@@ -105,6 +105,19 @@ impl fmt::Display for Pair {
     }
 }
 
+/// How the composition coordinate of a variable mixture is given.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum CompositionForm {
+    /// The engine's own coordinate (humidity ratio, air ratio, salinity).
+    Direct,
+    /// Relative humidity at the state's T and p, 0 to 1.
+    RelativeHumidity,
+    /// Thermodynamic wet-bulb temperature at the state's T and p, K.
+    WetBulb,
+    /// Dew-point (or frost-point) temperature at the state's p, K.
+    DewPoint,
+}
+
 /// One state of a fluid. Immutable; SI units.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct State {
