@@ -15,6 +15,7 @@ pub mod diagnostic;
 pub mod document;
 pub mod evidence;
 pub mod fluid;
-pub mod quantity;
 pub mod model;
 pub mod process;
+pub mod quantity;
+pub mod rules;

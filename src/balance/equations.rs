@@ -4,7 +4,9 @@ use super::region::{self, Region};
 use crate::fluid::{Element, Pair, Property};
 use crate::model::{Blocked, Dual, Model, Rows, View, Workspace, fluids_of};
 use crate::process::kinds::Kind;
-use crate::process::{AmountForm, Carried, ComponentId, FlowId, PressureLoss, StateForm, StateId, Var, VarId};
+use crate::process::{
+    AmountForm, Carried, ComponentId, FlowId, PressureLoss, StateForm, StateId, Var, VarId,
+};
 
 /// One equation.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]

@@ -141,7 +141,9 @@ pub fn mass(view: View<'_>, region: &Region) -> Result<Balance, Blocked> {
 /// `Blocked`.
 pub fn flow_energy(view: View<'_>, f: FlowId) -> Result<Dual, Blocked> {
     match &view.model.process.flows[f].carried {
-        Carried::Material(m) => Ok(view.mass(f)?.times(&specific_energy(view, m.state, m.velocity, m.elevation)?)),
+        Carried::Material(m) => {
+            Ok(view.mass(f)?.times(&specific_energy(view, m.state, m.velocity, m.elevation)?))
+        }
         Carried::Heat(q, _) | Carried::Work(q, _) | Carried::Radiation(q, _) => view.var(*q),
     }
 }
@@ -216,9 +218,8 @@ pub fn boundary_work(view: View<'_>, k: ComponentId) -> Result<Option<Dual>, Blo
     let mut change = Dual::default();
     for (contents, sign) in [(&holdup.initial, -1.0), (&holdup.r#final, 1.0)] {
         for c in contents {
-            let volume = view
-                .mass_of(c.state, c.amount, c.form)?
-                .times(&view.property(c.state, Property::Volume)?);
+            let volume =
+                view.mass_of(c.state, c.amount, c.form)?.times(&view.property(c.state, Property::Volume)?);
             change.add_scaled(sign, &volume);
         }
     }
@@ -269,9 +270,7 @@ fn heat_entropy(
             match (inward, bracket) {
                 (true, Bracket::Lenient) => return Ok(q.map(0.0, 0.0)),
                 (true, Bracket::Strict) => Dual::constant(coldest.unwrap_or(ambient)),
-                (false, Bracket::Lenient) => {
-                    Dual::constant(hottest.map_or(ambient, |t| t.min(ambient)))
-                }
+                (false, Bracket::Lenient) => Dual::constant(hottest.map_or(ambient, |t| t.min(ambient))),
                 (false, Bracket::Strict) => Dual::constant(hottest.unwrap_or(ambient).max(ambient)),
             }
         }

@@ -308,8 +308,7 @@ fn scan(
                 let c = spec.c.map_or(0.0, |(_, v)| workspace.value(v));
                 for i in 0..80 {
                     let t = 60.0 * 1.05f64.powi(i);
-                    if let Ok(state) =
-                        engine.state(Pair::PressureTemperature, workspace.value(spec.a), t, c)
+                    if let Ok(state) = engine.state(Pair::PressureTemperature, workspace.value(spec.a), t, c)
                     {
                         out.push(state.get(Property::Enthalpy));
                     }

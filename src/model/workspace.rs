@@ -208,8 +208,7 @@ fn offset_at_temperature(
         .map(|j| j[Property::Pressure as usize][0])
         .ok_or(PropertyError::NoSaturation)?;
     if offset == 0.0 {
-        let mut jacobian =
-            saturated.jacobian(Pair::TemperatureQuality).ok_or(PropertyError::NoSaturation)?;
+        let mut jacobian = saturated.jacobian(Pair::TemperatureQuality).ok_or(PropertyError::NoSaturation)?;
         for row in &mut jacobian {
             row[1] = 0.0;
         }

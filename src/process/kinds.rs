@@ -327,9 +327,6 @@ impl Kind {
 
     /// Whether the kind is an exchanger whose interior has a temperature profile.
     pub const fn is_exchanger(self) -> bool {
-        matches!(
-            self,
-            Kind::HeatExchanger | Kind::Condenser | Kind::Evaporator | Kind::Hrsg
-        )
+        matches!(self, Kind::HeatExchanger | Kind::Condenser | Kind::Evaporator | Kind::Hrsg)
     }
 }
