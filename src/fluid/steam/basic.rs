@@ -344,15 +344,29 @@ pub(super) enum Side {
 
 /// Bounds that hold every density of region 3, kg/m³: 113 (T = 623.15 K on the boundary to
 /// region 2) to 763 (T = 623.15 K, 100 MPa), with some room.
-const LEAST_DENSITY: f64 = 60.0;
+const LEAST_DENSITY: f64 = 100.0;
 const GREATEST_DENSITY: f64 = 800.0;
+
+/// Saturated densities of region 3: ρ/322 − 1 = Σ c_k u^k, k = 1 … 5, u = √(1 − T/647.096), for
+/// liquid and for vapour. Fitted here to the densities of equal pressure and Gibbs function of eq.
+/// (28), to 0.5 kg/m³. They only bound and start the iteration.
+const SATURATED_LIQUID: [f64; 5] = [7.6581, -57.2224, 427.522, -1694.49, 2682.07];
+const SATURATED_VAPOUR: [f64; 5] = [-7.9695, 69.2976, -492.596, 1897.92, -2927.53];
+/// The part of the way from the critical to the saturated density where the bracket ends: outside
+/// the stability limit, which lies at 1/√3 near the critical point and nearer to it elsewhere.
+const INNER_END: f64 = 0.65;
+
+fn saturated_difference(coefficients: &[f64; 5], t: f64) -> f64 {
+    let u = (1.0 - t / CRITICAL_TEMPERATURE).max(0.0).sqrt();
+    CRITICAL_DENSITY * u * coefficients.iter().rev().fold(0.0, |sum, c| sum * u + c)
+}
 
 /// The density of region 3 at `p` (Pa) and `t` (K) on one side, kg/m³.
 ///
-/// Newton's method from outside on p(ρ), which is a polynomial in ρ at fixed T, kept in a bracket
-/// whose inner end lies on or beyond the stability limit (∂p/∂ρ)T = 0. Where the isotherm does
-/// not reach `p` on that side (only within rounding of the saturation line next to the critical
-/// point), the stability limit itself is the answer.
+/// Newton's method on p(ρ), which is a polynomial in ρ at fixed T, kept in a bracket on the stable
+/// side of the isotherm. Where the isotherm does not reach `p` there, the bracket's inner end is the
+/// answer: that happens within 1e-4 K of the critical point alone, where the saturation equation and
+/// eq. (28) differ by more (0.01 Pa) than the isotherm's loop is high.
 pub(super) fn density(p: f64, t: f64, side: Side) -> f64 {
     let y = powers(CRITICAL_TEMPERATURE / t, 0, 26);
     let mut polynomial = [0.0; 16];
@@ -371,27 +385,30 @@ pub(super) fn density(p: f64, t: f64, side: Side) -> f64 {
         let z = REGION_3_LOG + value;
         (rho * rt * z, rt * (z + slope * delta))
     };
-    let (mut lo, mut hi, from_above) = match side {
-        Side::Dense => (0.9 * CRITICAL_DENSITY, GREATEST_DENSITY, true),
-        Side::Light => (LEAST_DENSITY, 1.1 * CRITICAL_DENSITY, false),
-        Side::Only if pressure(CRITICAL_DENSITY).0 > p => (LEAST_DENSITY, CRITICAL_DENSITY, false),
-        Side::Only => (CRITICAL_DENSITY, GREATEST_DENSITY, true),
+    let (mut lo, mut hi, mut rho) = match side {
+        Side::Dense => {
+            let inner = CRITICAL_DENSITY + INNER_END * saturated_difference(&SATURATED_LIQUID, t);
+            // From above, where p(ρ) is convex, each step stays above the root.
+            (inner, GREATEST_DENSITY, GREATEST_DENSITY)
+        }
+        Side::Light => {
+            let difference = saturated_difference(&SATURATED_VAPOUR, t);
+            (LEAST_DENSITY, CRITICAL_DENSITY + INNER_END * difference, CRITICAL_DENSITY + difference)
+        }
+        Side::Only if pressure(CRITICAL_DENSITY).0 > p => (LEAST_DENSITY, CRITICAL_DENSITY, p / rt),
+        Side::Only => (CRITICAL_DENSITY, GREATEST_DENSITY, GREATEST_DENSITY),
     };
-    // The ideal-gas density is below that of the vapour; above that of liquid lies the bound.
-    let mut rho = if from_above { hi } else { (p / rt).clamp(lo, hi) };
+    rho = rho.clamp(lo, hi);
     for _ in 0..100 {
         let (value, slope) = pressure(rho);
         let excess = value - p;
-        let stable = slope > 0.0;
-        if from_above {
-            if excess < 0.0 || !stable { lo = rho } else { hi = rho }
-        } else if excess > 0.0 || !stable {
+        if excess > 0.0 {
             hi = rho
         } else {
             lo = rho
         }
         let next = rho - excess / slope;
-        let next = if stable && next > lo && next < hi { next } else { 0.5 * (lo + hi) };
+        let next = if slope > 0.0 && next > lo && next < hi { next } else { 0.5 * (lo + hi) };
         let step = next - rho;
         rho = next;
         if step.abs() <= 1e-14 * rho || hi - lo <= 1e-14 * rho {

@@ -36,6 +36,8 @@ const FOLLOWED_TEMPERATURE: f64 = 255.0;
 const PAST_BOUNDARY: f64 = 1.0;
 /// The same in density, relative, for region 3.
 const PAST_DENSITY: f64 = 0.005;
+/// The same at saturation, where the bracket's end is a root already.
+const PAST_SATURATION: f64 = 1e-9;
 
 /// The second coordinate beside pressure.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -249,7 +251,7 @@ pub(super) fn by_pressure(p: f64, key: Key, y: f64) -> Option<Spot> {
         if y < key.of(&saturated_liquid) {
             return if dense {
                 let cold = region_3_at(p, REGION_1_TEMPERATURE, Side::Dense);
-                within_region_3(p, key, y, (&saturated_liquid, 0.0), (&cold, PAST_DENSITY))
+                within_region_3(p, key, y, (&saturated_liquid, PAST_SATURATION), (&cold, PAST_DENSITY))
             } else {
                 liquid(p, key, y, boundary + PAST_BOUNDARY, guess)
             };
@@ -272,7 +274,7 @@ pub(super) fn by_pressure(p: f64, key: Key, y: f64) -> Option<Spot> {
         if y > key.of(&vapour) {
             return if dense {
                 let hot = region_3_at(p, boundary, stable_side(p, boundary));
-                within_region_3(p, key, y, (&hot, PAST_DENSITY), (&vapour, 0.0))
+                within_region_3(p, key, y, (&hot, PAST_DENSITY), (&vapour, PAST_SATURATION))
             } else {
                 gas(p, key, y, boundary - PAST_BOUNDARY, guess)
             };
@@ -283,9 +285,14 @@ pub(super) fn by_pressure(p: f64, key: Key, y: f64) -> Option<Spot> {
 }
 
 fn above_critical(p: f64, key: Key, y: f64) -> Option<Spot> {
-    let guess = key.estimate_1(p, y);
+    let cold_guess = key.estimate_1(p, y);
+    if cold_guess < REGION_1_TEMPERATURE - PAST_BOUNDARY
+        && let Some(spot) = liquid(p, key, y, REGION_1_TEMPERATURE, cold_guess)
+    {
+        return Some(spot);
+    }
     if y <= key.of(&Region::One.at(p, REGION_1_TEMPERATURE)) {
-        return liquid(p, key, y, REGION_1_TEMPERATURE + PAST_BOUNDARY, guess);
+        return liquid(p, key, y, REGION_1_TEMPERATURE + PAST_BOUNDARY, cold_guess);
     }
     let boundary = saturation::boundary_temperature(p);
     if y >= key.of(&Region::Two.at(p, boundary)) {

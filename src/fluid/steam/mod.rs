@@ -30,8 +30,9 @@ use flash::{
 };
 use std::sync::OnceLock;
 
-/// Molar mass of water, kg/mol (IAPWS R7-97(2012), eq. (1) ff.: 18.015257 g/mol).
-const MOLAR_MASS: f64 = 18.015257e-3;
+/// Molar mass of water, kg/mol (IAPWS R6-95(2018)). R7-97 states 18.015257 g/mol for the older molar
+/// gas constant; its specific gas constant is what its equations use.
+const MOLAR_MASS: f64 = 18.015268e-3;
 
 /// Relative room at the ends of the ranges for the rounding of unit conversions.
 const ROUNDING: f64 = 1e-9;
