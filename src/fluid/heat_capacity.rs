@@ -140,7 +140,13 @@ impl Curve {
 
     /// A curve from cp = Σ c·Tⁿ between `t_min` and `t_max` (K), with h and s given at 298.15 K.
     /// `None` where a figure is not finite or the heat capacity is not positive over the range.
-    pub fn from_terms(terms: &[Term], t_min: f64, t_max: f64, h_standard: f64, s_standard: f64) -> Option<Curve> {
+    pub fn from_terms(
+        terms: &[Term],
+        t_min: f64,
+        t_max: f64,
+        h_standard: f64,
+        s_standard: f64,
+    ) -> Option<Curve> {
         let mut segment = Segment { t_max, a: [0.0; 7], b: [0.0; 2], extra: Vec::new() };
         for term in terms {
             let slot = segment.a.iter_mut().zip(-2i8..).find(|(_, n)| f64::from(*n) == term.exponent);
@@ -389,7 +395,10 @@ impl CaloricGas {
         use super::Pair;
         matches!(
             pair,
-            Pair::PressureTemperature | Pair::PressureEnthalpy | Pair::PressureEntropy | Pair::EnthalpyEntropy
+            Pair::PressureTemperature
+                | Pair::PressureEnthalpy
+                | Pair::PressureEntropy
+                | Pair::EnthalpyEntropy
         )
     }
 }

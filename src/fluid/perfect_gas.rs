@@ -39,7 +39,7 @@ impl PerfectGas {
         let curve = Curve::from_terms(heat_capacity, t_min, t_max, 0.0, 0.0)
             .ok_or(PropertyError::Unstated("a specific heat that is positive over the temperature range"))?;
         // cv = cp − R must be positive too: mechanical and thermal stability.
-        if !(curve.lowest_heat_capacity() > gas_constant) {
+        if curve.lowest_heat_capacity() <= gas_constant {
             return Err(PropertyError::OutOfRange {
                 quantity: "specific heat",
                 unit: "J/(kg K)",
@@ -56,11 +56,7 @@ impl PerfectGas {
     /// # Errors
     /// As [`PerfectGas::new`].
     pub fn with_constant(molar_mass: f64, heat_capacity: f64) -> Result<PerfectGas, PropertyError> {
-        PerfectGas::new(
-            molar_mass,
-            &[Term { coefficient: heat_capacity, exponent: 0.0 }],
-            (50.0, 6000.0),
-        )
+        PerfectGas::new(molar_mass, &[Term { coefficient: heat_capacity, exponent: 0.0 }], (50.0, 6000.0))
     }
 
     /// Lowest and highest temperature, K.

@@ -98,9 +98,8 @@ impl IdealGas {
         let molar_mass: f64 = components.iter().map(|(s, x)| x * s.molar_mass()).sum();
         let parts: Vec<(&Curve, f64)> = components.iter().map(|(s, x)| (s.curve(), x / molar_mass)).collect();
         let mixing: f64 = components.iter().map(|(_, x)| -GAS_CONSTANT * x * x.ln()).sum();
-        let curve = Curve::weighted(&parts)
-            .ok_or(CompositionError::NoCommonRange)?
-            .shifted(0.0, mixing / molar_mass);
+        let curve =
+            Curve::weighted(&parts).ok_or(CompositionError::NoCommonRange)?.shifted(0.0, mixing / molar_mass);
         let elements = components.iter().try_fold([0.0; Element::COUNT], |mut sum, (s, x)| {
             for (to, n) in sum.iter_mut().zip(s.elements()?) {
                 *to += x * n / molar_mass;
@@ -120,7 +119,8 @@ impl IdealGas {
     /// # Errors
     /// See [`CompositionError`].
     pub fn from_mass(mass_fractions: &[(&Species, f64)]) -> Result<IdealGas, CompositionError> {
-        let moles: Vec<(&Species, f64)> = mass_fractions.iter().map(|&(s, w)| (s, w / s.molar_mass())).collect();
+        let moles: Vec<(&Species, f64)> =
+            mass_fractions.iter().map(|&(s, w)| (s, w / s.molar_mass())).collect();
         IdealGas::new(&moles)
     }
 
@@ -154,7 +154,8 @@ impl IdealGas {
         if !(total > 0.0 && total.is_finite()) {
             return Err(CompositionError::Empty);
         }
-        let mut wet: Vec<(&Species, f64)> = dry.iter().map(|&(s, x)| (s, x / total * (1.0 - water))).collect();
+        let mut wet: Vec<(&Species, f64)> =
+            dry.iter().map(|&(s, x)| (s, x / total * (1.0 - water))).collect();
         wet.push((vapour, water));
         IdealGas::new(&wet)
     }

@@ -302,7 +302,13 @@ mod tests {
             let step = (b - a) / f64::from(n);
             (0..=n)
                 .map(|i| {
-                    let w = if i == 0 || i == n { 1.0 } else if i % 2 == 1 { 4.0 } else { 2.0 };
+                    let w = if i == 0 || i == n {
+                        1.0
+                    } else if i % 2 == 1 {
+                        4.0
+                    } else {
+                        2.0
+                    };
                     w * f(a + f64::from(i) * step)
                 })
                 .sum::<f64>()

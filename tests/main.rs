@@ -1,0 +1,3 @@
+//! Checks of the library as a user sees it.
+
+mod reference;

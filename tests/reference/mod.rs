@@ -1,0 +1,3 @@
+//! Checks against published values.
+
+mod gas;
