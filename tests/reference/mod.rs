@@ -1,3 +1,4 @@
 //! Checks against published values.
 
+mod chemistry;
 mod gas;

@@ -89,6 +89,17 @@ impl Species {
         })
     }
 
+    /// The same species with a standard chemical exergy (J/mol) that overrides the computed one.
+    ///
+    /// # Errors
+    /// `InvalidSpecies` for a figure that is not finite.
+    pub fn with_chemical_exergy(&self, exergy: f64) -> Result<Species, CompositionError> {
+        if !exergy.is_finite() {
+            return Err(CompositionError::InvalidSpecies(self.name.clone()));
+        }
+        Ok(Species { chemical_exergy: Some(exergy), ..self.clone() })
+    }
+
     /// Name, usually the chemical formula.
     pub fn name(&self) -> &str {
         &self.name
