@@ -1,7 +1,7 @@
 //! Heat capacity at constant pressure as a function of temperature, with its integrals: the one
 //! curve behind ideal and perfect gases, incompressible media and fuels.
 
-use super::{Phase, PropertyError, State};
+use super::{Pair, Phase, PropertyError, State};
 
 /// Standard pressure p° of entropies, Pa.
 pub const STANDARD_PRESSURE: f64 = 1e5;
@@ -86,16 +86,104 @@ pub struct Curve {
     t_min: f64,
     t_max: f64,
     segments: Vec<Segment>,
-    low: Caloric,
-    high: Caloric,
     lowest_cp: f64,
 }
 
-/// Which integral an inversion runs on.
-#[derive(Clone, Copy, PartialEq)]
-enum Integral {
-    Enthalpy,
-    Entropy,
+/// A heat capacity with its integrals over a range of temperature; h and s rise with T.
+pub trait Calorics {
+    /// Lowest and highest temperature, K.
+    fn range(&self) -> (f64, f64);
+
+    /// cp, h and s at `t` without a check of the range (the nearest interval is used).
+    fn at(&self, t: f64) -> Caloric;
+
+    /// Temperature (K) at which the enthalpy is `h`.
+    ///
+    /// # Errors
+    /// `h` outside what the range of temperature reaches.
+    fn temperature_of_enthalpy(&self, h: f64) -> Result<f64, PropertyError> {
+        let (t_min, t_max) = self.range();
+        let (low, high) = (self.at(t_min).h, self.at(t_max).h);
+        check_reached("enthalpy", "J/kg", h, low, high)?;
+        let share = ((h - low) / (high - low)).clamp(0.0, 1.0);
+        solve_rising((t_min, t_max), t_min + share * (t_max - t_min), |t| {
+            let value = self.at(t);
+            (value.h - h, value.cp)
+        })
+    }
+
+    /// Temperature (K) at which the entropy at the standard pressure is `s`.
+    ///
+    /// # Errors
+    /// `s` outside what the range of temperature reaches.
+    fn temperature_of_entropy(&self, s: f64) -> Result<f64, PropertyError> {
+        let (t_min, t_max) = self.range();
+        let (low, high) = (self.at(t_min).s, self.at(t_max).s);
+        check_reached("entropy at 1 bar", "J/(kg K)", s, low, high)?;
+        let share = ((s - low) / (high - low)).clamp(0.0, 1.0);
+        solve_rising((t_min, t_max), t_min * (t_max / t_min).powf(share), |t| {
+            let value = self.at(t);
+            (value.s - s, value.cp / t)
+        })
+    }
+}
+
+/// Refuses a target outside the values at the two ends, which themselves must come back in spite
+/// of rounding.
+fn check_reached(
+    quantity: &'static str,
+    unit: &'static str,
+    target: f64,
+    low: f64,
+    high: f64,
+) -> Result<(), PropertyError> {
+    let slack = 1e-12 * (low.abs() + high.abs());
+    in_range(quantity, unit, target, low - slack, high + slack)
+}
+
+/// The root of a rising function of temperature by Newton's method inside a shrinking bracket;
+/// `gap` gives value and slope. Where the root lies at an end or just beyond, that end.
+fn solve_rising(
+    (mut below, mut above): (f64, f64),
+    start: f64,
+    gap: impl Fn(f64) -> (f64, f64),
+) -> Result<f64, PropertyError> {
+    if gap(below).0 >= 0.0 {
+        return Ok(below);
+    }
+    if gap(above).0 <= 0.0 {
+        return Ok(above);
+    }
+    let mut t = start;
+    for _ in 0..120 {
+        let (value, slope) = gap(t);
+        if value > 0.0 {
+            above = t;
+        } else {
+            below = t;
+        }
+        let newton = t - value / slope;
+        let inside = newton >= below && newton <= above;
+        if inside && (newton - t).abs() <= 1e-9 * t {
+            // Quadratic convergence: the step after this one is below rounding.
+            return Ok(newton);
+        }
+        t = if inside { newton } else { 0.5 * (below + above) };
+        if above - below <= 4.0 * f64::EPSILON * above {
+            return Ok(t);
+        }
+    }
+    Err(PropertyError::NoConvergence)
+}
+
+impl Calorics for Curve {
+    fn range(&self) -> (f64, f64) {
+        (self.t_min, self.t_max)
+    }
+
+    fn at(&self, t: f64) -> Caloric {
+        self.segment(t).map_or(Caloric { cp: 0.0, h: 0.0, s: 0.0 }, |s| s.at(t))
+    }
 }
 
 impl Curve {
@@ -107,14 +195,7 @@ impl Curve {
         if !(t_min >= 1.0 && t_max <= 1e5 && rising && first_above) {
             return None;
         }
-        let mut curve = Curve {
-            t_min,
-            t_max,
-            low: Caloric { cp: 0.0, h: 0.0, s: 0.0 },
-            high: Caloric { cp: 0.0, h: 0.0, s: 0.0 },
-            lowest_cp: f64::INFINITY,
-            segments,
-        };
+        let mut curve = Curve { t_min, t_max, lowest_cp: f64::INFINITY, segments };
         // A heat capacity must be positive over its whole range, or h(T) has no inverse.
         let samples = 400;
         for i in 0..=samples {
@@ -125,8 +206,6 @@ impl Curve {
             }
             curve.lowest_cp = curve.lowest_cp.min(value.cp);
         }
-        curve.low = curve.at(t_min);
-        curve.high = curve.at(t_max);
         Some(curve)
     }
 
@@ -210,10 +289,6 @@ impl Curve {
             segment.b[0] += h;
             segment.b[1] += s;
         }
-        for end in [&mut out.low, &mut out.high] {
-            end.h += h;
-            end.s += s;
-        }
         out
     }
 
@@ -221,19 +296,9 @@ impl Curve {
         self.segments.iter().find(|s| t <= s.t_max).or(self.segments.last())
     }
 
-    /// Lowest and highest temperature, K.
-    pub fn range(&self) -> (f64, f64) {
-        (self.t_min, self.t_max)
-    }
-
     /// The lowest heat capacity over the range.
     pub fn lowest_heat_capacity(&self) -> f64 {
         self.lowest_cp
-    }
-
-    /// cp, h and s at `t` without a check of the range (the nearest interval is used).
-    pub fn at(&self, t: f64) -> Caloric {
-        self.segment(t).map_or(Caloric { cp: 0.0, h: 0.0, s: 0.0 }, |s| s.at(t))
     }
 
     /// cp, h and s at `t` (K).
@@ -243,68 +308,6 @@ impl Curve {
     pub fn try_at(&self, t: f64) -> Result<Caloric, PropertyError> {
         in_range("temperature", "K", t, self.t_min, self.t_max)?;
         Ok(self.at(t))
-    }
-
-    /// Temperature (K) at which the curve's enthalpy is `h`.
-    ///
-    /// # Errors
-    /// `h` outside the range of the curve.
-    pub fn temperature_of_enthalpy(&self, h: f64) -> Result<f64, PropertyError> {
-        self.invert(Integral::Enthalpy, h)
-    }
-
-    /// Temperature (K) at which the curve's standard entropy is `s`.
-    ///
-    /// # Errors
-    /// `s` outside the range of the curve.
-    pub fn temperature_of_entropy(&self, s: f64) -> Result<f64, PropertyError> {
-        self.invert(Integral::Entropy, s)
-    }
-
-    fn invert(&self, integral: Integral, target: f64) -> Result<f64, PropertyError> {
-        let (low, high, quantity, unit) = match integral {
-            Integral::Enthalpy => (self.low.h, self.high.h, "enthalpy", "J/kg"),
-            Integral::Entropy => (self.low.s, self.high.s, "entropy at 1 bar", "J/(kg K)"),
-        };
-        // The ends themselves must come back in spite of rounding.
-        let slack = 1e-12 * (low.abs() + high.abs());
-        in_range(quantity, unit, target, low - slack, high + slack)?;
-        if target <= low {
-            return Ok(self.t_min);
-        }
-        if target >= high {
-            return Ok(self.t_max);
-        }
-        let (mut below, mut above) = (self.t_min, self.t_max);
-        let share = (target - low) / (high - low);
-        let mut t = match integral {
-            Integral::Enthalpy => below + share * (above - below),
-            Integral::Entropy => below * (above / below).powf(share),
-        };
-        // Newton held inside a shrinking bracket: both integrals rise with T.
-        for _ in 0..120 {
-            let value = self.at(t);
-            let (gap, slope) = match integral {
-                Integral::Enthalpy => (value.h - target, value.cp),
-                Integral::Entropy => (value.s - target, value.cp / t),
-            };
-            if gap > 0.0 {
-                above = t;
-            } else {
-                below = t;
-            }
-            let newton = t - gap / slope;
-            let inside = newton >= below && newton <= above;
-            if inside && (newton - t).abs() <= 1e-9 * t {
-                // Quadratic convergence: the step after this one is below rounding.
-                return Ok(newton);
-            }
-            t = if inside { newton } else { 0.5 * (below + above) };
-            if above - below <= 4.0 * f64::EPSILON * above {
-                return Ok(t);
-            }
-        }
-        Err(PropertyError::NoConvergence)
     }
 }
 
@@ -330,75 +333,65 @@ pub(crate) fn check_pressure(p: f64) -> Result<(), PropertyError> {
     in_range("pressure", "Pa", p, PRESSURES.0, PRESSURES.1)
 }
 
-/// A gas that follows p v = R T with a heat-capacity curve per kilogram, entropies at 1 bar.
-#[derive(Clone, Debug, PartialEq)]
-pub struct CaloricGas {
-    /// Heat capacity, enthalpy and entropy at 1 bar per kilogram.
-    pub curve: Curve,
-    /// Specific gas constant R/M, J/(kg K).
-    pub gas_constant: f64,
+/// The pairs of coordinates that fix a gas or an incompressible medium.
+pub(crate) fn supports(pair: Pair) -> bool {
+    matches!(
+        pair,
+        Pair::PressureTemperature | Pair::PressureEnthalpy | Pair::PressureEntropy | Pair::EnthalpyEntropy
+    )
 }
 
-impl CaloricGas {
-    /// The state at (T, p), both in range.
-    fn at(&self, t: f64, p: f64) -> State {
-        let value = self.curve.at(t);
-        let r = self.gas_constant;
-        let v_t = r / p;
-        let v = v_t * t;
-        let s = value.s - r * (p / STANDARD_PRESSURE).ln();
-        State::one_phase(t, p, value.h, s, v, Phase::Vapour, value.cp, v_t, -v / p)
-    }
+/// The state of a gas with p v = `r` T at (T, p), both in range.
+fn gas_at(calorics: &impl Calorics, r: f64, t: f64, p: f64) -> State {
+    let value = calorics.at(t);
+    let v_t = r / p;
+    let v = v_t * t;
+    let s = value.s - r * (p / STANDARD_PRESSURE).ln();
+    State::one_phase(t, p, value.h, s, v, Phase::Vapour, value.cp, v_t, -v / p)
+}
 
-    /// The state at a pair of coordinates: (p, T), (p, h), (p, s) or (h, s).
-    ///
-    /// # Errors
-    /// As [`super::Engine::state`].
-    pub fn state(&self, pair: super::Pair, a: f64, b: f64) -> Result<State, PropertyError> {
-        use super::Pair;
-        if !(a.is_finite() && b.is_finite()) {
-            return Err(PropertyError::NotFinite);
-        }
-        let r = self.gas_constant;
-        let (t, p) = match pair {
-            Pair::PressureTemperature => {
-                in_range("temperature", "K", b, self.curve.t_min, self.curve.t_max)?;
-                (b, a)
-            }
-            Pair::PressureEnthalpy => (self.curve.temperature_of_enthalpy(b)?, a),
-            Pair::PressureEntropy => {
-                check_pressure(a)?;
-                (self.curve.temperature_of_entropy(b + r * (a / STANDARD_PRESSURE).ln())?, a)
-            }
-            Pair::EnthalpyEntropy => {
-                let t = self.curve.temperature_of_enthalpy(a)?;
-                (t, STANDARD_PRESSURE * ((self.curve.at(t).s - b) / r).exp())
-            }
-            other => return Err(PropertyError::UnsupportedPair(other)),
-        };
-        if p.is_infinite() {
-            // The entropy asks for a pressure beyond any number.
-            return Err(PropertyError::OutOfRange {
-                quantity: "entropy",
-                unit: "J/(kg K)",
-                value: b,
-                min: self.at(t, PRESSURES.1).entropy,
-                max: self.at(t, PRESSURES.0).entropy,
-            });
-        }
-        check_pressure(p)?;
-        Ok(self.at(t, p))
+/// The state of a gas that follows p v = `r` T (J/(kg K)) with calorics per kilogram, entropies at
+/// 1 bar, at a pair (p, T), (p, h), (p, s) or (h, s).
+///
+/// # Errors
+/// As [`super::Engine::state`].
+pub(crate) fn gas_state(
+    calorics: &impl Calorics,
+    r: f64,
+    pair: Pair,
+    a: f64,
+    b: f64,
+) -> Result<State, PropertyError> {
+    if !(a.is_finite() && b.is_finite()) {
+        return Err(PropertyError::NotFinite);
     }
-
-    /// Whether [`CaloricGas::state`] takes this pair.
-    pub fn supports(pair: super::Pair) -> bool {
-        use super::Pair;
-        matches!(
-            pair,
-            Pair::PressureTemperature
-                | Pair::PressureEnthalpy
-                | Pair::PressureEntropy
-                | Pair::EnthalpyEntropy
-        )
+    let (t, p) = match pair {
+        Pair::PressureTemperature => {
+            let (low, high) = calorics.range();
+            in_range("temperature", "K", b, low, high)?;
+            (b, a)
+        }
+        Pair::PressureEnthalpy => (calorics.temperature_of_enthalpy(b)?, a),
+        Pair::PressureEntropy => {
+            check_pressure(a)?;
+            (calorics.temperature_of_entropy(b + r * (a / STANDARD_PRESSURE).ln())?, a)
+        }
+        Pair::EnthalpyEntropy => {
+            let t = calorics.temperature_of_enthalpy(a)?;
+            (t, STANDARD_PRESSURE * ((calorics.at(t).s - b) / r).exp())
+        }
+        other => return Err(PropertyError::UnsupportedPair(other)),
+    };
+    if p.is_infinite() {
+        // The entropy asks for a pressure beyond any number.
+        return Err(PropertyError::OutOfRange {
+            quantity: "entropy",
+            unit: "J/(kg K)",
+            value: b,
+            min: gas_at(calorics, r, t, PRESSURES.1).entropy,
+            max: gas_at(calorics, r, t, PRESSURES.0).entropy,
+        });
     }
+    check_pressure(p)?;
+    Ok(gas_at(calorics, r, t, p))
 }

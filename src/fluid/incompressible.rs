@@ -1,15 +1,19 @@
 //! Liquids and solids of constant density: ds = c dT/T, h = ∫c dT + v (p − p°).
 
-use super::heat_capacity::{Curve, STANDARD_PRESSURE, Term, check_pressure, in_range};
-use super::{Datum, Elements, Engine, Pair, Phase, PropertyError, Provenance, State};
+use super::heat_capacity::{Calorics, Curve, STANDARD_PRESSURE, Term, check_pressure, in_range, supports};
+use super::ideal_gas::{SpeciesPhase, find_species};
+use super::{Datum, Element, Elements, Engine, Pair, Phase, PropertyError, Provenance, State};
 
 /// Relative standard uncertainty of enthalpy and entropy differences (k = 1) of a listed medium
 /// whose heat capacity is one rounded figure or a straight line; common practice.
 const LISTED_UNCERTAINTY: f64 = 0.02;
 
+/// Relative standard uncertainty (k = 1) of a species of the table; common practice.
+const SPECIES_UNCERTAINTY: f64 = 5e-4;
+
 /// An incompressible medium.
 ///
-/// Datum: h = 0 and s = 0 at 298.15 K and 1 bar.
+/// Datum: h = 0 and s = 0 at 298.15 K and 1 bar; a species of the table is on the absolute datum.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Incompressible {
     name: String,
@@ -18,6 +22,14 @@ pub struct Incompressible {
     volume: f64,
     curve: Curve,
     uncertainty: f64,
+    makeup: Option<Makeup>,
+}
+
+/// What is known of a medium that is a species with formation data.
+#[derive(Clone, Debug, PartialEq)]
+struct Makeup {
+    molar_mass: f64,
+    elements: Elements,
 }
 
 /// A medium of the list: its heat capacity is c0 + c1·T.
@@ -117,6 +129,7 @@ impl Incompressible {
             volume: 1.0 / density,
             curve,
             uncertainty: 0.0,
+            makeup: None,
         })
     }
 
@@ -128,6 +141,29 @@ impl Incompressible {
         let medium =
             Incompressible::new(row.name, row.phase, row.density, &terms, row.temperature_range).ok()?;
         Some(Incompressible { source: row.source.to_owned(), uncertainty: LISTED_UNCERTAINTY, ..medium })
+    }
+
+    /// A pure condensed species of the ideal-gas table (`C(gr)`, `S(a)`, `H2O(L)`) on the absolute
+    /// datum, for instance unburnt carbon; `None` where it is not one of these.
+    pub fn species(name: &str) -> Option<Incompressible> {
+        let species = find_species(name)?;
+        // Densities at 298.15 K, kg/m³, common practice.
+        let (phase, density) = match (species.name(), species.phase()) {
+            ("C(gr)", _) => (Phase::Solid, 2250.0),
+            ("S(a)", _) => (Phase::Solid, 2070.0),
+            (_, SpeciesPhase::Liquid) => (Phase::Liquid, 997.05),
+            _ => return None,
+        };
+        let molar_mass = species.molar_mass();
+        Some(Incompressible {
+            name: species.name().to_owned(),
+            source: species.source().to_owned(),
+            phase,
+            volume: 1.0 / density,
+            curve: Curve::weighted(&[(species.curve(), 1.0 / molar_mass)])?,
+            uncertainty: SPECIES_UNCERTAINTY,
+            makeup: Some(Makeup { molar_mass, elements: species.elements()?.map(|n| n / molar_mass) }),
+        })
     }
 
     /// Name.
@@ -158,7 +194,7 @@ impl Engine for Incompressible {
     }
 
     fn supports(&self, pair: Pair) -> bool {
-        super::heat_capacity::CaloricGas::supports(pair)
+        supports(pair)
     }
 
     fn state(&self, pair: Pair, a: f64, b: f64, _c: f64) -> Result<State, PropertyError> {
@@ -187,15 +223,15 @@ impl Engine for Incompressible {
     }
 
     fn molar_mass(&self, _c: f64) -> Option<f64> {
-        None
+        self.makeup.as_ref().map(|m| m.molar_mass)
     }
 
     fn elements(&self, _c: f64) -> Option<(Elements, Elements)> {
-        None
+        self.makeup.as_ref().map(|m| (m.elements, [0.0; Element::COUNT]))
     }
 
     fn datum(&self) -> Option<Datum> {
-        None
+        self.makeup.as_ref().map(|_| Datum { enthalpy: 0.0, entropy: 0.0 })
     }
 
     fn relative_uncertainty(&self, _state: &State) -> f64 {

@@ -1,6 +1,6 @@
 //! One gas of the caller's own: a molar mass and a heat capacity.
 
-use super::heat_capacity::{CaloricGas, Curve, GAS_CONSTANT, Term};
+use super::heat_capacity::{Calorics, Curve, GAS_CONSTANT, Term, gas_state, supports};
 use super::{Datum, Elements, Engine, Pair, PropertyError, Provenance, State};
 
 /// A perfect gas: p v = R T / M with cp constant or Σ c·Tⁿ.
@@ -10,7 +10,8 @@ use super::{Datum, Elements, Engine, Pair, PropertyError, Provenance, State};
 #[derive(Clone, Debug, PartialEq)]
 pub struct PerfectGas {
     molar_mass: f64,
-    gas: CaloricGas,
+    gas_constant: f64,
+    curve: Curve,
 }
 
 impl PerfectGas {
@@ -48,7 +49,7 @@ impl PerfectGas {
                 max: f64::MAX,
             });
         }
-        Ok(PerfectGas { molar_mass, gas: CaloricGas { curve, gas_constant } })
+        Ok(PerfectGas { molar_mass, gas_constant, curve })
     }
 
     /// A gas with constant `heat_capacity` (J/(kg K)), taken between 50 and 6000 K.
@@ -61,7 +62,7 @@ impl PerfectGas {
 
     /// Lowest and highest temperature, K.
     pub fn temperature_range(&self) -> (f64, f64) {
-        self.gas.curve.range()
+        self.curve.range()
     }
 }
 
@@ -76,11 +77,11 @@ impl Engine for PerfectGas {
     }
 
     fn supports(&self, pair: Pair) -> bool {
-        CaloricGas::supports(pair)
+        supports(pair)
     }
 
     fn state(&self, pair: Pair, a: f64, b: f64, _c: f64) -> Result<State, PropertyError> {
-        self.gas.state(pair, a, b)
+        gas_state(&self.curve, self.gas_constant, pair, a, b)
     }
 
     fn molar_mass(&self, _c: f64) -> Option<f64> {

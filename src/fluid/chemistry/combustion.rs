@@ -1,6 +1,6 @@
 //! Heating values and products of complete combustion from formation data.
 
-use crate::fluid::heat_capacity::STANDARD_TEMPERATURE;
+use crate::fluid::heat_capacity::{Calorics, STANDARD_TEMPERATURE};
 use crate::fluid::ideal_gas::{IdealGas, Species, find_species};
 use crate::fluid::{Element, Elements, Engine};
 

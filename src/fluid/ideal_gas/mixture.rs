@@ -1,7 +1,7 @@
 //! A mixture of ideal gases with fixed composition.
 
 use super::species::{Species, SpeciesPhase, find_species};
-use crate::fluid::heat_capacity::{CaloricGas, Curve, GAS_CONSTANT};
+use crate::fluid::heat_capacity::{Calorics, Curve, GAS_CONSTANT, gas_state, supports};
 use crate::fluid::{Datum, Element, Elements, Engine, Pair, PropertyError, Provenance, State};
 use std::fmt;
 
@@ -64,7 +64,7 @@ pub struct IdealGas {
     components: Vec<(Species, f64)>,
     molar_mass: f64,
     elements: Option<Elements>,
-    gas: CaloricGas,
+    curve: Curve,
 }
 
 impl IdealGas {
@@ -106,12 +106,7 @@ impl IdealGas {
             }
             Some(sum)
         });
-        Ok(IdealGas {
-            components,
-            molar_mass,
-            elements,
-            gas: CaloricGas { curve, gas_constant: GAS_CONSTANT / molar_mass },
-        })
+        Ok(IdealGas { components, molar_mass, elements, curve })
     }
 
     /// A mixture from mass fractions, which are normalised.
@@ -193,7 +188,7 @@ impl IdealGas {
 
     /// Lowest and highest temperature, K.
     pub fn temperature_range(&self) -> (f64, f64) {
-        self.gas.curve.range()
+        self.curve.range()
     }
 }
 
@@ -214,11 +209,11 @@ impl Engine for IdealGas {
     }
 
     fn supports(&self, pair: Pair) -> bool {
-        CaloricGas::supports(pair)
+        supports(pair)
     }
 
     fn state(&self, pair: Pair, a: f64, b: f64, _c: f64) -> Result<State, PropertyError> {
-        self.gas.state(pair, a, b)
+        gas_state(&self.curve, GAS_CONSTANT / self.molar_mass, pair, a, b)
     }
 
     fn molar_mass(&self, _c: f64) -> Option<f64> {

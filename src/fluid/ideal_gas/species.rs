@@ -1,7 +1,7 @@
 //! Species: their make-up, standard enthalpy, entropy and heat capacity.
 
 use super::CompositionError;
-use crate::fluid::heat_capacity::{Caloric, Curve, GAS_CONSTANT, NineCoefficients, Term};
+use crate::fluid::heat_capacity::{Caloric, Calorics, Curve, GAS_CONSTANT, NineCoefficients, Term};
 use crate::fluid::{Element, Elements, PropertyError};
 use serde::Deserialize;
 use std::collections::BTreeMap;
