@@ -4,10 +4,12 @@
 //! and returns a finite [`State`] with its first partial derivatives, or a [`PropertyError`] with
 //! the limit that was broken. It never panics and has no mutable state.
 
+pub mod chemistry;
 pub mod combustion_gas;
 pub mod element;
 mod error;
 pub mod fuel;
+pub mod heat_capacity;
 pub mod humid_air;
 pub mod ideal_gas;
 pub mod incompressible;

@@ -1,0 +1,4 @@
+//! Checks of the library as a user sees it.
+
+#[cfg(test)]
+mod reference;

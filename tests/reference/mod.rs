@@ -1,0 +1,5 @@
+//! Checks against published values.
+
+mod chemistry;
+mod gas;
+mod steam;
