@@ -4,6 +4,7 @@
 //! and returns a finite [`State`] with its first partial derivatives, or a [`PropertyError`] with
 //! the limit that was broken. It never panics and has no mutable state.
 
+pub mod catalogue;
 pub mod chemistry;
 pub mod combustion_gas;
 pub mod element;
@@ -20,6 +21,7 @@ pub mod state;
 pub mod stated;
 pub mod steam;
 
+pub use catalogue::{Substance, by_name};
 pub use element::{Element, Elements};
 pub use error::PropertyError;
 pub use state::{CompositionForm, Pair, Phase, Property, State};
