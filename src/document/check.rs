@@ -3,8 +3,8 @@
 use super::faults::Faults;
 use super::node::Node;
 use super::quantity::{
-    NAME_HINT, bad_name, check_any_quantity, check_any_unit, check_quantities, check_quantity,
-    check_uncertainty, shortened, unknown_field, wrong_type,
+    NAME_HINT, QUANTITY_FIELDS, UNCERTAINTY_FIELDS, bad_name, check_any_quantity, check_any_unit,
+    check_quantities, check_quantity, check_uncertainty, shortened, unknown_field, wrong_type,
 };
 use super::shape::{Field, Key, ObjectShape, Shape, Union, is_name};
 use super::tree::Tree;
@@ -27,10 +27,14 @@ pub fn check_shape(node: Node<'_>, shape: &Shape, faults: &mut Faults) {
         Shape::Quantities(dimension) => check_quantities(node, *dimension, faults),
         Shape::AnyQuantity => check_any_quantity(node, faults),
         Shape::Uncertainty => check_uncertainty(node, faults),
-        Shape::OneOf(shapes) => match shapes.iter().find(|s| s.takes(json)) {
-            Some(taken) => check_shape(node, taken, faults),
-            None => wrong_type(node, shape, faults).unwrap_or_default(),
-        },
+        Shape::OneOf(shapes) => {
+            // Of equals the first: `max_by_key` would take the last.
+            let taken = shapes.iter().rev().filter(|s| s.takes(json)).max_by_key(|s| known_members(node, s));
+            match taken {
+                Some(taken) => check_shape(node, taken, faults),
+                None => wrong_type(node, shape, faults).unwrap_or_default(),
+            }
+        }
         _ if !shape.takes(json) => wrong_type(node, shape, faults).unwrap_or_default(),
         Shape::Unit => check_any_unit(node, node.text().unwrap_or_default(), faults),
         Shape::Number => {
@@ -45,7 +49,7 @@ pub fn check_shape(node: Node<'_>, shape: &Shape, faults: &mut Faults) {
                 faults.push(node.fault(Code::WrongType, message));
             }
         }
-        Shape::Boolean | Shape::Text => {}
+        Shape::Any | Shape::Boolean | Shape::Text => {}
         Shape::Name => {
             if !node.text().is_some_and(is_name) {
                 faults.push(bad_name(node));
@@ -72,6 +76,21 @@ pub fn check_shape(node: Node<'_>, shape: &Shape, faults: &mut Faults) {
             }
         }
         Shape::Tagged(union) => check_tagged(node, union, faults),
+    }
+}
+
+/// How many members of an object an alternative knows.
+fn known_members(node: Node<'_>, shape: &Shape) -> usize {
+    let count = |known: &dyn Fn(&str) -> bool| node.members().filter(|(name, _)| known(name)).count();
+    let quantity = |name: &str| QUANTITY_FIELDS.iter().any(|(known, _)| *known == name);
+    match shape {
+        Shape::Quantity(_) => count(&quantity),
+        Shape::Quantities(_) => count(&|name| name == "tag" || quantity(name)),
+        Shape::Uncertainty => count(&|name| UNCERTAINTY_FIELDS.iter().any(|(known, _)| *known == name)),
+        Shape::Object(object) => count(&|name| object.field(name).is_some()),
+        Shape::Tagged(union) => count(&|name| name == union.member),
+        Shape::OneOf(shapes) => shapes.iter().map(|s| known_members(node, s)).max().unwrap_or(0),
+        _ => 0,
     }
 }
 

@@ -200,6 +200,7 @@ impl Drawer {
                 let stated = self.refer(Component::Uncertainty);
                 json!({ "oneOf": [{ "type": "number", "minimum": 0 }, stated] })
             }
+            Shape::Any => json!({}),
             Shape::Number => json!({ "type": "number" }),
             Shape::Integer => json!({ "type": "integer" }),
             Shape::Boolean => json!({ "type": "boolean" }),

@@ -74,6 +74,8 @@ pub enum Shape {
     Integer,
     /// `true` or `false`.
     Boolean,
+    /// Any JSON at all, to be judged later.
+    Any,
     /// Any text.
     Text,
     /// A name: `^[A-Za-z0-9][A-Za-z0-9_.-]{0,63}$`.
@@ -98,7 +100,8 @@ pub enum Shape {
     },
     /// Objects told apart by the word of one member.
     Tagged(&'static Union),
-    /// Alternatives told apart by their JSON type; for one type the first that takes it.
+    /// Alternatives told apart by their JSON type; among those that are objects, the one that knows
+    /// most of the members, and of equals the first.
     OneOf(&'static [Shape]),
 }
 
@@ -161,6 +164,7 @@ impl Shape {
                 _ => false,
             },
             Shape::Quantities(d) => json == J::List || Shape::Quantity(*d).takes(json),
+            Shape::Any => true,
             Shape::AnyQuantity => matches!(json, J::Text | J::Number),
             Shape::Uncertainty => matches!(json, J::Text | J::Number | J::Object),
             Shape::Number | Shape::Integer => json == J::Number,
@@ -181,6 +185,7 @@ impl Shape {
             Shape::AnyQuantity => "a number with its unit".to_owned(),
             Shape::Unit => "a unit".to_owned(),
             Shape::Uncertainty => "an uncertainty such as \"0.5 K\"".to_owned(),
+            Shape::Any => "a value".to_owned(),
             Shape::Number => "a number".to_owned(),
             Shape::Integer => "a whole number".to_owned(),
             Shape::Boolean => "true or false".to_owned(),

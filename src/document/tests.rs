@@ -29,6 +29,11 @@ static MAKER: ObjectShape = ObjectShape {
         &[
             Field::required("power", Shape::Quantity(Dimension::Power), "Shaft power."),
             Field::optional("cop", Shape::Quantity(Dimension::Fraction), "Cold over power."),
+            Field::optional(
+                "surface",
+                Shape::OneOf(&[Shape::Quantities(Dimension::Temperature), Shape::Object(&GLIDE)]),
+                "Of the cold side.",
+            ),
             Field::optional("feeds", Shape::OneOf(&[Shape::Name, Shape::Object(&FEED)]), "What it feeds."),
         ],
         COMMON,
@@ -38,6 +43,14 @@ static FEED: ObjectShape = ObjectShape {
     name: "Feed",
     doc: "A feed.",
     fields: &[&[Field::required("to", Shape::Name, "Where it goes.")]],
+};
+static GLIDE: ObjectShape = ObjectShape {
+    name: "Glide",
+    doc: "A stream of constant heat capacity.",
+    fields: &[&[
+        Field::required("inlet", Shape::Quantity(Dimension::Temperature), "At the inlet."),
+        Field::required("outlet", Shape::Quantity(Dimension::Temperature), "At the outlet."),
+    ]],
 };
 const COMMON: &[Field] = &[Field::optional(
     "mode",
@@ -67,6 +80,7 @@ static SHOP: ObjectShape = ObjectShape {
         Field::optional("hours", Shape::List { item: &Shape::Integer, max: 3 }, "Open at."),
         Field::optional("open", Shape::Boolean, "Whether it is open."),
         Field::optional("factor", Shape::Number, "A factor."),
+        Field::optional("readings", Shape::Map { key: Key::Text("a tag"), value: &Shape::Any }, "Raw."),
         Field::optional("note", Shape::Text, "A remark."),
     ]],
 };
@@ -89,7 +103,8 @@ const GOOD: &str = r#"{
                               {"value": -9.60, "unit": "Cel", "uncertainty": "±0.5 K", "resolution": 0.1, "calibration": "loop-3"}]},
     "m-1": {"kind": "ice_maker", "power": {"value": 12.50, "unit": "kW", "u": 0.3}, "cop": 3.10, "feeds": {"to": "brine"}}
   },
-  "tags": {"TT 1/2": {"unit": "degC", "uncertainty": {"instrument": "iec-60751-b"}, "range": ["-10 degC", 600]}}
+  "tags": {"TT 1/2": {"unit": "degC", "uncertainty": {"instrument": "iec-60751-b"}, "range": ["-10 degC", 600]}},
+  "readings": {"TT 1/2": null, "b": "Bad", "c": {"value": 1}}
 }"#;
 
 fn faults_of(body: &str) -> Vec<Diagnostic> {
@@ -124,7 +139,7 @@ fn a_good_document_is_read() {
     let hours: Vec<i64> = root.get("hours").unwrap().items().filter_map(Node::integer).collect();
     assert_eq!(hours, [8, 12, 17]);
     let names: Vec<&str> = root.members().map(|(name, _)| name).collect();
-    assert_eq!(names, ["note", "open", "hours", "factor", "machines", "tags"]);
+    assert_eq!(names, ["note", "open", "hours", "factor", "machines", "tags", "readings"]);
 
     let machines = root.get("machines").unwrap();
     let brine = machines.get("brine").unwrap();
@@ -380,6 +395,22 @@ fn quantity_objects_are_checked_in_every_member() {
             (Code::WrongType, "/machines/a/temperature/2"),
         ],
     );
+}
+
+#[test]
+fn alternatives_that_are_objects_are_told_apart_by_their_members() {
+    let surface =
+        |json: &str| with_machine(&format!(r#"{{"kind":"ice_maker","power":"1 kW","surface":{json}}}"#));
+    let at = "/machines/a/surface";
+    found(&surface("\"-5 degC\""), &[]);
+    found(&surface(r#"{"value":268,"unit":"K"}"#), &[]);
+    found(&surface(r#"{"tag":"T"}"#), &[]);
+    found(&surface(r#"["-5 degC",{"tag":"T"}]"#), &[]);
+    found(&surface(r#"{"inlet":"-2 degC","outlet":"-6 degC"}"#), &[]);
+    found(&surface(r#"{"inlet":"-2 degC"}"#), &[(Code::MissingField, at)]);
+    found(&surface(r#"{"inlet":"-2 degC","outlet":"-6"}"#), &[(Code::BareNumber, &format!("{at}/outlet"))]);
+    found(&surface(r#"{"value":268}"#), &[(Code::BareNumber, &format!("{at}/value"))]);
+    found(&surface("true"), &[(Code::WrongType, at)]);
 }
 
 #[test]

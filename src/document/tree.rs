@@ -256,16 +256,14 @@ impl<'a> Builder<'a, '_> {
         let start = self.at;
         self.at += 1;
         let mut escaped = false;
-        loop {
-            match self.peek() {
-                b'"' => break,
-                b'\\' => {
-                    escaped = true;
-                    self.at += 2;
-                }
-                _ if self.at >= self.text.len() => break,
-                _ => self.at += 1,
+        while let Some(rest) = self.text.as_bytes().get(self.at..) {
+            let Some(plain) = rest.iter().position(|b| matches!(b, b'"' | b'\\')) else { break };
+            self.at += plain;
+            if self.peek() == b'"' {
+                break;
             }
+            escaped = true;
+            self.at += 2;
         }
         self.at += 1;
         if escaped {
@@ -352,17 +350,15 @@ impl<'a> Builder<'a, '_> {
     }
 
     fn key_fault(&self, key: &str, free: bool) -> Option<String> {
-        let start: String = key.chars().take(24).collect();
-        if free {
-            let limit = self.limits.free_key_chars;
-            let count = key.chars().count();
-            (count > limit)
-                .then(|| format!("the name \"{start}…\" has {count} characters; at most {limit} are taken"))
+        let (size, limit, what) = if free {
+            (key.chars().count(), self.limits.free_key_chars, "characters")
         } else {
-            let limit = self.limits.key_bytes;
-            (key.len() > limit)
-                .then(|| format!("the name \"{start}…\" has {} bytes; at most {limit} are taken", key.len()))
-        }
+            (key.len(), self.limits.key_bytes, "bytes")
+        };
+        (size > limit).then(|| {
+            let start: String = key.chars().take(24).collect();
+            format!("the name \"{start}…\" has {size} {what}; at most {limit} are taken")
+        })
     }
 
     /// From behind a member's name to its value.
