@@ -1,0 +1,3 @@
+//! Integration tests: the library against published values.
+
+mod reference;

@@ -1,0 +1,3 @@
+//! Checks against published values, one file a topic.
+
+mod steam;
