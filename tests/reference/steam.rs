@@ -109,11 +109,10 @@ fn basic_equations_and_saturation_to_every_printed_digit() {
     assert_eq!(figures, 60);
 }
 
-/// Tolerances, from memory of the releases: R7-97 25 mK in T(p,h), T(p,s) of region 1 and in T(p,s) of
-/// subregion 2c, 10 mK elsewhere in region 2; SR2-01 p(h,s) 0.6 % or 15 kPa in region 1, 0.0035 %
-/// in 2a and 2b, 0.0088 % in 2c; SR3-03 25 mK and 0.01 % in v; SR4-04 0.01 % in p(h,s) of region 3;
-/// SR5-05 0.001 % in v, but 0.1 % in the auxiliary subregions u to x and 1.8 % in y and z, which
-/// touch the critical point.
+/// Tolerances, from memory of the releases: R7-97 25 mK in T(p,h) and T(p,s); SR2-01 p(h,s) 0.6 %
+/// or 15 kPa in region 1, 0.0035 % in 2a and 2b, 0.0088 % in 2c; SR3-03 25 mK and 0.01 % in v;
+/// SR4-04 0.01 % in p(h,s) of region 3; SR5-05 0.001 % in v, but 0.1 % in the auxiliary subregions u
+/// to x and 1.8 % in y and z, which touch the critical point.
 #[test]
 fn backward_equations_within_the_tolerance_of_the_releases() {
     let tables: Value = serde_json::from_str(TABLES).unwrap();
