@@ -1,4 +1,4 @@
-//! Checks of the library as a user sees it.
+//! Integration tests: the library against published values.
+#![allow(clippy::unwrap_used, clippy::expect_used, clippy::panic, reason = "a test fails by panicking")]
 
-#[cfg(test)]
 mod reference;

@@ -168,7 +168,7 @@ fn scales(process: &Process) -> Vec<FluidScale> {
         .zip(absolute)
         .map(|(fluid, absolute)| {
             let variable = fluid.engine.elements_vary();
-            let reference = if matches!(fluid.substance, crate::process::Substance::Stated) {
+            let reference = if matches!(fluid.substance, crate::fluid::Substance::Stated) {
                 (0.0, 0.0)
             } else {
                 fluid

@@ -43,6 +43,7 @@ pub(super) fn enthalpy_2(p: f64, h: f64) -> f64 {
 }
 
 /// Region 2: T (K) from `p` (Pa) and `s` (J/(kg K)), eqs. (25) to (27).
+#[allow(clippy::approx_constant, reason = "0.7853 kJ/(kg K) is a reducing entropy and not a part of pi")]
 pub(super) fn entropy_2(p: f64, s: f64) -> f64 {
     const TERMS_A: [Term; 46] = terms(&T_PS_2A, 6, 27);
     const TERMS_B: [Term; 44] = terms(&T_PS_2B, 6, 0);
@@ -55,5 +56,68 @@ pub(super) fn entropy_2(p: f64, s: f64) -> f64 {
         sum(&TERMS_B, &powers(pi, 6, 5), &powers(10.0 - s / 0.7853, 0, 12))
     } else {
         sum(&TERMS_C, &powers(pi, 2, 7), &powers(2.0 - s / 2.9251, 0, 5))
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn check(estimate: fn(f64, f64) -> f64, printed: &[(f64, f64, f64)]) {
+        for &(p, y, t) in printed {
+            let found = estimate(p * 1e6, y * 1e3);
+            let ninth = 10f64.powf(t.log10().floor() - 8.0);
+            assert!((found - t).abs() <= 0.5001 * ninth, "{p} {y}: {found} {t}");
+        }
+    }
+
+    /// R7-97(2012), Table 7: p (MPa), h (kJ/kg), T (K).
+    #[test]
+    fn region_1_from_enthalpy() {
+        check(enthalpy_1, &[(3.0, 500.0, 391.798509), (80.0, 500.0, 378.108626), (80.0, 1500.0, 611.041229)]);
+    }
+
+    /// R7-97(2012), Table 9: p (MPa), s (kJ/(kg K)), T (K).
+    #[test]
+    fn region_1_from_entropy() {
+        check(entropy_1, &[(3.0, 0.5, 307.842258), (80.0, 0.5, 309.979785), (80.0, 3.0, 565.899909)]);
+    }
+
+    /// R7-97(2012), Table 24: p (MPa), h (kJ/kg), T (K).
+    #[test]
+    fn region_2_from_enthalpy() {
+        check(
+            enthalpy_2,
+            &[
+                (0.001, 3000.0, 534.433241),
+                (3.0, 3000.0, 575.37337),
+                (3.0, 4000.0, 1010.77577),
+                (5.0, 3500.0, 801.299102),
+                (5.0, 4000.0, 1015.31583),
+                (25.0, 3500.0, 875.279054),
+                (40.0, 2700.0, 743.056411),
+                (60.0, 2700.0, 791.137067),
+                (60.0, 3200.0, 882.75686),
+            ],
+        );
+    }
+
+    /// R7-97(2012), Table 29: p (MPa), s (kJ/(kg K)), T (K).
+    #[test]
+    fn region_2_from_entropy() {
+        check(
+            entropy_2,
+            &[
+                (0.1, 7.5, 399.517097),
+                (0.1, 8.0, 514.127081),
+                (2.5, 8.0, 1039.84917),
+                (8.0, 6.0, 600.48404),
+                (8.0, 7.5, 1064.95556),
+                (90.0, 6.0, 1038.01126),
+                (20.0, 5.75, 697.992849),
+                (80.0, 5.25, 854.011484),
+                (80.0, 5.75, 949.017998),
+            ],
+        );
     }
 }

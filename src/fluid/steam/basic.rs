@@ -417,3 +417,63 @@ pub(super) fn density(p: f64, t: f64, side: Side) -> f64 {
     }
     rho
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// R7-97(2012), Table 33: (ρ, T) and p (MPa), h, u (kJ/kg), s, cp (kJ/(kg K)), w (m/s).
+    #[test]
+    fn region_3_to_every_printed_digit() {
+        for (rho, t, printed) in [
+            (500.0, 650.0, [25.5837018, 1863.43019, 1812.26279, 4.05427273, 13.8935717, 502.005554]),
+            (200.0, 650.0, [22.2930643, 2375.12401, 2263.65868, 4.85438792, 44.6579342, 383.444594]),
+            (500.0, 750.0, [78.3095639, 2258.68845, 2102.06932, 4.46971906, 6.34165359, 760.696041]),
+        ] {
+            let state = region_3(rho, t);
+            let point = state.point(state.p);
+            let w2 = state.p_rho + t * state.p_t * state.p_t / (rho * rho * state.cv);
+            let found = [
+                state.p / 1e6,
+                state.h / 1e3,
+                (state.h - state.p / rho) / 1e3,
+                state.s / 1e3,
+                point.cp / 1e3,
+                w2.sqrt(),
+            ];
+            for (found, printed) in found.into_iter().zip(printed) {
+                let ninth: f64 = 10f64.powf(f64::log10(printed).floor() - 8.0);
+                assert!((found - printed).abs() <= 0.5001 * ninth, "{rho} {t}: {found} {printed}");
+            }
+            let side = if t >= CRITICAL_TEMPERATURE { Side::Only } else { Side::Dense };
+            assert!((density(state.p, t, side) / rho - 1.0).abs() < 1e-12);
+        }
+    }
+
+    #[test]
+    fn powers_are_those_of_the_library() {
+        let table = powers(1.7, 41, 17);
+        for k in -41..=17i32 {
+            let found = table[(41 + k) as usize];
+            assert!((found / 1.7f64.powi(k) - 1.0).abs() < 1e-14, "{k}");
+        }
+    }
+
+    /// Every root is on its own side of the critical density, on a stable branch, at the pressure
+    /// asked for.
+    #[test]
+    fn densities_lie_on_the_side_asked_for() {
+        for t in [623.2, 630.0, 640.0, 646.0, 647.0, 647.09] {
+            let (p, _) = super::super::saturation::pressure(t);
+            for (side, part) in
+                [(Side::Dense, 1.0), (Side::Dense, 1.2), (Side::Light, 1.0), (Side::Light, 0.999)]
+            {
+                let rho = density(part * p, t, side);
+                let state = region_3(rho, t);
+                assert_eq!(rho > CRITICAL_DENSITY, side == Side::Dense, "{t} {side:?}");
+                assert!(state.p_rho > 0.0, "{t} {side:?}");
+                assert!((state.p / (part * p) - 1.0).abs() < 1e-11, "{t} {side:?}");
+            }
+        }
+    }
+}

@@ -27,6 +27,10 @@ pub(super) const REGION_5_PRESSURE: f64 = 50e6;
 pub(super) const LEAST_PRESSURE: f64 = 1e-3;
 /// Temperature between regions 1 and 3, K.
 const REGION_1_TEMPERATURE: f64 = 623.15;
+/// Saturation temperature above which the saturated states are those of region 3, K. A hair above
+/// the boundary, so that 623.15 K and its saturation pressure, whose temperature comes back with a
+/// rounding error, are on the same side of it.
+const SATURATION_3_TEMPERATURE: f64 = REGION_1_TEMPERATURE + 1e-9;
 /// Temperature above which region 2 reaches up to the highest pressure, K.
 const REGION_3_TEMPERATURE: f64 = 863.15;
 /// How far below the lowest temperature the root is followed, K, so that an isentrope of cold water,
@@ -167,7 +171,7 @@ fn saturated(p: f64, t: f64, t_p: f64) -> Saturated {
 }
 
 fn saturated_side(p: f64, t: f64, side: Side) -> Point {
-    if t > REGION_1_TEMPERATURE {
+    if t > SATURATION_3_TEMPERATURE {
         region_3_at(p, t, side)
     } else if side == Side::Dense {
         Region::One.at(p, t)
@@ -234,10 +238,10 @@ pub(super) fn by_pressure(p: f64, key: Key, y: f64) -> Option<Spot> {
         return above_critical(p, key, y);
     }
     let (t, t_p) = saturation::temperature(p);
-    let dense = t > REGION_1_TEMPERATURE;
+    let dense = t > SATURATION_3_TEMPERATURE;
     if y < key.critical() {
         let guess = key.estimate_1(p, y);
-        let boundary = t.min(REGION_1_TEMPERATURE);
+        let boundary = if dense { REGION_1_TEMPERATURE } else { t };
         if guess < boundary - PAST_BOUNDARY
             && let Some(spot) = liquid(p, key, y, boundary, guess)
             && spot.temperature() <= boundary

@@ -13,8 +13,13 @@
 //! - At a pressure and temperature on the saturation line, `T <= Tsat(p)` is liquid and anything
 //!   above it vapour, without a tolerance band.
 //! - At a pressure and enthalpy or entropy, saturated states (x = 0 and x = 1) count as two-phase.
-//! - A little below the triple-point pressure there is no liquid; below the saturation pressure at
-//!   273.15 K (611.2 Pa) the engine answers with the gas, ice being outside the formulation.
+//! - Below the saturation pressure at 273.15 K (611.2 Pa) there is only gas, down to 0.001 Pa; ice and
+//!   sublimation are outside the formulation.
+//! - On the boundaries between regions the basic equations differ a little (by up to 0.14 kJ/kg in
+//!   h and 0.02 % in v). An enthalpy or entropy that falls between them is answered by one region's
+//!   equation slightly past the boundary; one that both regions hold, by the colder region.
+//! - At the critical point cp and the compressibility have no finite value; there the derivatives
+//!   are large but finite.
 
 mod backward;
 mod basic;

@@ -51,3 +51,18 @@ pub(super) fn boundary_temperature(p: f64) -> f64 {
     let [_, _, n3, n4, n5] = BOUNDARY_23;
     n4 + ((p * 1e-6 - n5) / n3).sqrt()
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// R7-97(2012), section 4: p = 16.5291643 MPa at 623.15 K, and back.
+    #[test]
+    fn boundary_between_regions_2_and_3() {
+        assert!((boundary_pressure(623.15) / 16.529_164_3e6 - 1.0).abs() < 5e-9);
+        assert!((boundary_temperature(16.529_164_252_6e6) - 623.15).abs() < 1e-8);
+        for t in [623.15, 700.0, 863.15] {
+            assert!((boundary_temperature(boundary_pressure(t)) - t).abs() < 1e-8);
+        }
+    }
+}
