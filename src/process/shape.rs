@@ -24,7 +24,11 @@ pub static DESCRIPTION: ObjectShape = ObjectShape {
         optional("name", Shape::Text, "What the description is about."),
         optional("basis", Shape::Choice(BASES), "Whether amounts are rates or totals; `rate` if absent."),
         optional("duration", Shape::Quantity(D::Duration), "Duration of a batch; turns rates into amounts."),
-        optional("environment", Shape::Object(&ENVIRONMENT), "The surroundings; assumed and listed if absent."),
+        optional(
+            "environment",
+            Shape::Object(&ENVIRONMENT),
+            "The surroundings; assumed and listed if absent.",
+        ),
         optional("policy", Shape::Object(&POLICY), "How figures are read and verdicts are made."),
         optional("fluids", FLUIDS, "Own fluids by name."),
         optional("groups", GROUPS, "Unions of components that get balances of their own."),
@@ -35,8 +39,7 @@ pub static DESCRIPTION: ObjectShape = ObjectShape {
     ]],
 };
 
-const BASES: &[(&str, &str)] =
-    &[("rate", "Steady flow: kg/s and kW."), ("amount", "A batch: kg and kJ.")];
+const BASES: &[(&str, &str)] = &[("rate", "Steady flow: kg/s and kW."), ("amount", "A batch: kg and kJ.")];
 
 static ENVIRONMENT: ObjectShape = ObjectShape {
     name: "Environment",
@@ -44,9 +47,21 @@ static ENVIRONMENT: ObjectShape = ObjectShape {
     fields: &[&[
         optional("temperature", Shape::Quantity(D::Temperature), "T0; 25 degC if absent."),
         optional("pressure", Shape::Quantity(D::Pressure), "p0, absolute; 1.01325 bar if absent."),
-        optional("relative_humidity", Shape::Quantity(D::Fraction), "Relative humidity; 0.6 if the environment is absent."),
-        optional("barometric_pressure", Shape::Quantity(D::Pressure), "What gauge pressures are referred to; 1.01325 bar with a standard uncertainty of 3 kPa if absent."),
-        optional("chemistry", Shape::Choice(CHEMISTRIES), "The chemical reference set; `szargut-1986` if absent."),
+        optional(
+            "relative_humidity",
+            Shape::Quantity(D::Fraction),
+            "Relative humidity; 0.6 if the environment is absent.",
+        ),
+        optional(
+            "barometric_pressure",
+            Shape::Quantity(D::Pressure),
+            "What gauge pressures are referred to; 1.01325 bar with a standard uncertainty of 3 kPa if absent.",
+        ),
+        optional(
+            "chemistry",
+            Shape::Choice(CHEMISTRIES),
+            "The chemical reference set; `szargut-1986` if absent.",
+        ),
     ]],
 };
 
@@ -61,12 +76,32 @@ static POLICY: ObjectShape = ObjectShape {
     doc: "How figures are read and verdicts are made.",
     fields: &[&[
         optional("edition", Shape::Choice(EDITIONS), "Pins rules and defaults."),
-        optional("false_alarm", Shape::Number, "Accepted probability of any false alarm in a family of tests; 0.01 if absent."),
-        optional("literals", Shape::Choice(LITERALS), "How figures without uncertainty are read; `design` if absent."),
-        optional("closure_tolerance", Shape::Quantity(D::Fraction), "Share of the throughput that a balance of design data may be open; 0.1 % if absent."),
-        optional("minimum_approach", Shape::Quantity(D::TemperatureDifference), "Smallest temperature approach that practice asks for."),
+        optional(
+            "false_alarm",
+            Shape::Number,
+            "Accepted probability of any false alarm in a family of tests; 0.01 if absent.",
+        ),
+        optional(
+            "literals",
+            Shape::Choice(LITERALS),
+            "How figures without uncertainty are read; `design` if absent.",
+        ),
+        optional(
+            "closure_tolerance",
+            Shape::Quantity(D::Fraction),
+            "Share of the throughput that a balance of design data may be open; 0.1 % if absent.",
+        ),
+        optional(
+            "minimum_approach",
+            Shape::Quantity(D::TemperatureDifference),
+            "Smallest temperature approach that practice asks for.",
+        ),
         optional("disable", Shape::List { item: &Shape::Text, max: MANY }, "Rules that are switched off."),
-        optional("enable", Shape::List { item: &Shape::Text, max: MANY }, "Rules that are switched on again."),
+        optional(
+            "enable",
+            Shape::List { item: &Shape::Text, max: MANY },
+            "Rules that are switched on again.",
+        ),
         optional("method", Shape::Choice(METHODS), "How uncertainty is propagated; `linear` if absent."),
     ]],
 };
@@ -78,10 +113,8 @@ const LITERALS: &[(&str, &str)] = &[
     ("measured", "A figure without uncertainty gets the published default of its kind."),
 ];
 
-const CALIBRATIONS: Shape = Shape::Map {
-    key: Key::Name("calibration group"),
-    value: &Shape::Object(&CALIBRATION),
-};
+const CALIBRATIONS: Shape =
+    Shape::Map { key: Key::Name("calibration group"), value: &Shape::Object(&CALIBRATION) };
 
 static CALIBRATION: ObjectShape = ObjectShape {
     name: "Calibration",
@@ -89,10 +122,8 @@ static CALIBRATION: ObjectShape = ObjectShape {
     fields: &[&[required("uncertainty", Shape::Uncertainty, "Standard uncertainty of the common error.")]],
 };
 
-const GROUPS: Shape = Shape::Map {
-    key: Key::Name("group"),
-    value: &Shape::List { item: &Shape::Name, max: MANY },
-};
+const GROUPS: Shape =
+    Shape::Map { key: Key::Name("group"), value: &Shape::List { item: &Shape::Name, max: MANY } };
 
 static ECONOMICS: ObjectShape = ObjectShape {
     name: "Economics",
@@ -139,8 +170,7 @@ static FLUID_STATED: ObjectShape = ObjectShape {
     fields: &[&[]],
 };
 
-const SPECIES_MAP: Shape =
-    Shape::Map { key: Key::Text("species"), value: &Shape::Quantity(D::Fraction) };
+const SPECIES_MAP: Shape = Shape::Map { key: Key::Text("species"), value: &Shape::Quantity(D::Fraction) };
 
 static FLUID_IDEAL_GAS: ObjectShape = ObjectShape {
     name: "FluidIdealGas",
@@ -148,9 +178,21 @@ static FLUID_IDEAL_GAS: ObjectShape = ObjectShape {
     fields: &[&[
         optional("mole_fractions", SPECIES_MAP, "Mole fractions by species."),
         optional("mass_fractions", SPECIES_MAP, "Mass fractions by species."),
-        optional("composition_basis", Shape::Choice(COMPOSITION_BASES), "Whether the fractions include the water."),
-        optional("water_mole_fraction", Shape::Quantity(D::Fraction), "Mole fraction of water in the wet gas, with a dry composition."),
-        optional("saturated", Shape::Object(&SATURATED), "The dry gas is saturated with water at this state."),
+        optional(
+            "composition_basis",
+            Shape::Choice(COMPOSITION_BASES),
+            "Whether the fractions include the water.",
+        ),
+        optional(
+            "water_mole_fraction",
+            Shape::Quantity(D::Fraction),
+            "Mole fraction of water in the wet gas, with a dry composition.",
+        ),
+        optional(
+            "saturated",
+            Shape::Object(&SATURATED),
+            "The dry gas is saturated with water at this state.",
+        ),
         optional("species", OWN_SPECIES, "Own species by name."),
     ]],
 };
@@ -167,29 +209,37 @@ static SATURATED: ObjectShape = ObjectShape {
     ]],
 };
 
-const OWN_SPECIES: Shape =
-    Shape::Map { key: Key::Text("species"), value: &Shape::Object(&SPECIES) };
+const OWN_SPECIES: Shape = Shape::Map { key: Key::Text("species"), value: &Shape::Object(&SPECIES) };
 
 static SPECIES: ObjectShape = ObjectShape {
     name: "Species",
     doc: "A species by its own figures, to reproduce a published table.",
     fields: &[&[
         required("molar_mass", Shape::Quantity(D::MolarMass), "Molar mass."),
-        optional("elements", Shape::Map { key: Key::Text("element"), value: &Shape::Number }, "Atoms of each element."),
-        required("heat_capacity", Shape::List { item: &Shape::Object(&POWER_TERM), max: 16 }, "Terms c·T^n of the molar heat capacity, J/(mol K) with T in K."),
+        optional(
+            "elements",
+            Shape::Map { key: Key::Text("element"), value: &Shape::Number },
+            "Atoms of each element.",
+        ),
+        required(
+            "heat_capacity",
+            Shape::List { item: &Shape::Object(&POWER_TERM), max: 16 },
+            "Terms c·T^n of the molar heat capacity, J/(mol K) with T in K.",
+        ),
         required("formation_enthalpy", Shape::Quantity(D::MolarEnergy), "At 298.15 K."),
         required("standard_entropy", Shape::Quantity(D::MolarEntropy), "At 298.15 K and 1 bar."),
-        optional("chemical_exergy", Shape::Quantity(D::MolarEnergy), "Standard chemical exergy, where it is not to be computed."),
+        optional(
+            "chemical_exergy",
+            Shape::Quantity(D::MolarEnergy),
+            "Standard chemical exergy, where it is not to be computed.",
+        ),
     ]],
 };
 
 static POWER_TERM: ObjectShape = ObjectShape {
     name: "PowerTerm",
     doc: "One term c·T^n with T in K.",
-    fields: &[&[
-        required("coefficient", Shape::Number, "c."),
-        required("exponent", Shape::Number, "n."),
-    ]],
+    fields: &[&[required("coefficient", Shape::Number, "c."), required("exponent", Shape::Number, "n.")]],
 };
 
 static FLUID_COMBUSTION_GAS: ObjectShape = ObjectShape {
@@ -223,17 +273,19 @@ static FLUID_INCOMPRESSIBLE: ObjectShape = ObjectShape {
     ]],
 };
 
-const SPECIFIC_HEAT: Shape = Shape::OneOf(&[
-    Shape::Quantity(D::SpecificEntropy),
-    Shape::List { item: &Shape::Number, max: 8 },
-]);
+const SPECIFIC_HEAT: Shape =
+    Shape::OneOf(&[Shape::Quantity(D::SpecificEntropy), Shape::List { item: &Shape::Number, max: 8 }]);
 
 static FLUID_PERFECT_GAS: ObjectShape = ObjectShape {
     name: "FluidPerfectGas",
     doc: "A gas of own molar mass and specific heat.",
     fields: &[&[
         required("molar_mass", Shape::Quantity(D::MolarMass), "Molar mass."),
-        required("specific_heat", SPECIFIC_HEAT, "Specific heat at constant pressure: a figure, or coefficients a0, a1, … of Σ a·T^i in J/(kg K)."),
+        required(
+            "specific_heat",
+            SPECIFIC_HEAT,
+            "Specific heat at constant pressure: a figure, or coefficients a0, a1, … of Σ a·T^i in J/(kg K).",
+        ),
     ]],
 };
 
@@ -242,7 +294,11 @@ static FLUID_SOLUTION: ObjectShape = ObjectShape {
     doc: "A listed aqueous solution.",
     fields: &[&[
         required("name", Shape::Text, "seawater, sodium chloride, ethylene glycol or propylene glycol."),
-        optional("mass_fraction", Shape::Quantity(D::Fraction), "Mass fraction of the solute, for a fixed composition."),
+        optional(
+            "mass_fraction",
+            Shape::Quantity(D::Fraction),
+            "Mass fraction of the solute, for a fixed composition.",
+        ),
     ]],
 };
 
@@ -251,8 +307,16 @@ static FLUID_FUEL: ObjectShape = ObjectShape {
     doc: "A fuel by ultimate analysis.",
     fields: &[&[
         required("ultimate", Shape::Object(&ULTIMATE), "Mass fractions as received."),
-        optional("lower_heating_value", Shape::Quantity(D::SpecificEnergy), "Lower heating value as received."),
-        optional("higher_heating_value", Shape::Quantity(D::SpecificEnergy), "Higher heating value as received."),
+        optional(
+            "lower_heating_value",
+            Shape::Quantity(D::SpecificEnergy),
+            "Lower heating value as received.",
+        ),
+        optional(
+            "higher_heating_value",
+            Shape::Quantity(D::SpecificEnergy),
+            "Higher heating value as received.",
+        ),
         optional("state", Shape::Choice(FUEL_STATES), "Which correlation of chemical exergy applies."),
         optional("specific_heat", Shape::Quantity(D::SpecificEntropy), "Specific heat of the fuel."),
     ]],
@@ -288,11 +352,26 @@ static COMPONENT: ObjectShape = ObjectShape {
     fields: &[&[
         required("kind", Shape::Choice(kinds::WORDS), "What it is."),
         optional("sides", Shape::List { item: &Shape::Object(&SIDE), max: 64 }, "Material flows by side."),
-        optional("arrangement", Shape::Choice(ARRANGEMENTS), "Flow arrangement of an exchanger; `unknown` if absent."),
-        optional("ports", Shape::Map { key: Key::Name("role"), value: &Shape::OneOf(&[Shape::Name, Shape::List { item: &Shape::Name, max: 64 }]) }, "Which flow plays which role, where it cannot be inferred."),
+        optional(
+            "arrangement",
+            Shape::Choice(ARRANGEMENTS),
+            "Flow arrangement of an exchanger; `unknown` if absent.",
+        ),
+        optional(
+            "ports",
+            Shape::Map {
+                key: Key::Name("role"),
+                value: &Shape::OneOf(&[Shape::Name, Shape::List { item: &Shape::Name, max: 64 }]),
+            },
+            "Which flow plays which role, where it cannot be inferred.",
+        ),
         optional("given", Shape::Object(&GIVEN), "Equations used to solve for what is unknown."),
         optional("stated_performance", Shape::Object(&STATED), "Claims: tested, never used to solve."),
-        optional("heat_loss", Shape::Quantities(D::Power), "Heat lost through the casing; none if absent, and listed as assumed."),
+        optional(
+            "heat_loss",
+            Shape::Quantities(D::Power),
+            "Heat lost through the casing; none if absent, and listed as assumed.",
+        ),
         optional("holdup", Shape::Object(&HOLDUP), "What it holds before and after a batch."),
         optional("purpose", Shape::Object(&PURPOSE), "Own definition of fuel and product."),
     ]],
@@ -322,13 +401,29 @@ static GIVEN: ObjectShape = ObjectShape {
     name: "Given",
     doc: "Equations used to solve for what is unknown.",
     fields: &[&[
-        optional("isentropic_efficiency", Shape::Quantities(D::Fraction), "Of each section between successive outlets."),
-        optional("efficiency", Shape::Quantities(D::Fraction), "Output over input; of a heat engine, work over heat taken in."),
+        optional(
+            "isentropic_efficiency",
+            Shape::Quantities(D::Fraction),
+            "Of each section between successive outlets.",
+        ),
+        optional(
+            "efficiency",
+            Shape::Quantities(D::Fraction),
+            "Output over input; of a heat engine, work over heat taken in.",
+        ),
         optional("cop", Shape::Quantities(D::Fraction), "Coefficient of performance."),
-        optional("mechanical_loss", Shape::Quantities(D::Power), "Power lost in bearings, given off as heat."),
+        optional(
+            "mechanical_loss",
+            Shape::Quantities(D::Power),
+            "Power lost in bearings, given off as heat.",
+        ),
         optional("heat_loss", Shape::Quantities(D::Power), "Heat lost through the casing."),
         optional("pressure_loss", PRESSURE_LOSS, "Pressure loss of the first side."),
-        optional("pressure_loss_fraction", Shape::Quantities(D::Fraction), "Pressure loss of the first side as share of its inlet pressure."),
+        optional(
+            "pressure_loss_fraction",
+            Shape::Quantities(D::Fraction),
+            "Pressure loss of the first side as share of its inlet pressure.",
+        ),
     ]],
 };
 
@@ -351,26 +446,34 @@ static HOLDUP: ObjectShape = ObjectShape {
     fields: &[&[
         optional("initial", Shape::List { item: &Shape::Object(&CONTENT), max: 64 }, "Contents before."),
         optional("final", Shape::List { item: &Shape::Object(&CONTENT), max: 64 }, "Contents after."),
-        optional("boundary_pressure", Shape::Quantity(D::Pressure), "Pressure against which the boundary moves."),
+        optional(
+            "boundary_pressure",
+            Shape::Quantity(D::Pressure),
+            "Pressure against which the boundary moves.",
+        ),
     ]],
 };
 
 static CONTENT: ObjectShape = ObjectShape {
     name: "Content",
     doc: "One content of a vessel.",
-    fields: &[
-        &[required("fluid", FLUID, "The fluid.")],
-        STATE_FIELDS,
-        AMOUNT_FIELDS,
-    ],
+    fields: &[&[required("fluid", FLUID, "The fluid.")], STATE_FIELDS, AMOUNT_FIELDS],
 };
 
 static PURPOSE: ObjectShape = ObjectShape {
     name: "Purpose",
     doc: "What a component consumes and what it is for, as flows; a leading `-` subtracts.",
     fields: &[&[
-        optional("fuel", Shape::List { item: &Shape::Text, max: MANY }, "Exergy spent: flows that enter, or `-name` for flows that leave."),
-        optional("product", Shape::List { item: &Shape::Text, max: MANY }, "Exergy wanted: flows that leave, or `-name` for flows that enter."),
+        optional(
+            "fuel",
+            Shape::List { item: &Shape::Text, max: MANY },
+            "Exergy spent: flows that enter, or `-name` for flows that leave.",
+        ),
+        optional(
+            "product",
+            Shape::List { item: &Shape::Text, max: MANY },
+            "Exergy wanted: flows that leave, or `-name` for flows that enter.",
+        ),
     ]],
 };
 
@@ -411,8 +514,16 @@ static MATERIAL: ObjectShape = ObjectShape {
         &[
             optional("fluid", FLUID, "The fluid: a name, an object, or a key of `fluids`."),
             optional("state", Shape::Choice(STATES), "`environment` for an intake from the surroundings."),
-            optional("same_state_as", Shape::Name, "Another flow whose state this one shares; `pressure` may differ."),
-            optional("ends", Shape::Object(&ENDS), "Two measured ends: the connection is then a pipe with balances of its own."),
+            optional(
+                "same_state_as",
+                Shape::Name,
+                "Another flow whose state this one shares; `pressure` may differ.",
+            ),
+            optional(
+                "ends",
+                Shape::Object(&ENDS),
+                "Two measured ends: the connection is then a pipe with balances of its own.",
+            ),
             optional("velocity", Shape::Quantities(D::Velocity), "Mean velocity."),
             optional("elevation", Shape::Quantities(D::Length), "Height above the datum."),
         ],
@@ -435,8 +546,16 @@ const STATE_FIELDS: &[Field] = &[
     optional("phase", Shape::Choice(PHASES), "Declared phase."),
     optional("exergy", Shape::Quantity(D::SpecificEnergy), "Specific exergy of a `stated` fluid."),
     optional("relative_humidity", Shape::Quantities(D::Fraction), "Of humid air."),
-    optional("humidity_ratio", Shape::Quantities(D::HumidityRatio), "Of humid air: water over dry air by mass."),
-    optional("wet_bulb", Shape::Quantities(D::Temperature), "Of humid air: thermodynamic wet-bulb temperature."),
+    optional(
+        "humidity_ratio",
+        Shape::Quantities(D::HumidityRatio),
+        "Of humid air: water over dry air by mass.",
+    ),
+    optional(
+        "wet_bulb",
+        Shape::Quantities(D::Temperature),
+        "Of humid air: thermodynamic wet-bulb temperature.",
+    ),
     optional("dew_point", Shape::Quantities(D::Temperature), "Of humid air: dew-point temperature."),
     optional("salinity", Shape::Quantities(D::Fraction), "Of a solution: mass fraction of the salt."),
 ];
@@ -489,7 +608,11 @@ static HEAT: ObjectShape = ObjectShape {
         &[
             optional("rate", Shape::Quantities(D::Power), "Heat rate."),
             optional("energy", Shape::Quantities(D::Energy), "Heat, with `basis: amount`."),
-            optional("temperature", Shape::OneOf(&[Shape::Object(&SLIDING), Shape::Quantities(D::Temperature)]), "Of the surface it crosses; absent: bracketed."),
+            optional(
+                "temperature",
+                Shape::OneOf(&[Shape::Object(&SLIDING), Shape::Quantities(D::Temperature)]),
+                "Of the surface it crosses; absent: bracketed.",
+            ),
         ],
     ],
 };

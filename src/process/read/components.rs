@@ -33,9 +33,7 @@ impl<'t> Reader<'t> {
         let component = &self.process.components[k];
         let kind = component.kind;
         let mut found = Vec::new();
-        for (flows, direction) in
-            [(&component.inlets, Direction::In), (&component.outlets, Direction::Out)]
-        {
+        for (flows, direction) in [(&component.inlets, Direction::In), (&component.outlets, Direction::Out)] {
             for stuff in [Stuff::Material, Stuff::Heat, Stuff::Work] {
                 let names: Vec<String> = flows
                     .iter()
@@ -104,7 +102,8 @@ impl<'t> Reader<'t> {
                     format!("this kind has the ports {}", kind.info().roles.join(", "))
                 };
                 self.fault(
-                    n.fault(Code::UnknownChoice, format!("{} has no port \"{role}\"", kind.name())).hint(hint),
+                    n.fault(Code::UnknownChoice, format!("{} has no port \"{role}\"", kind.name()))
+                        .hint(hint),
                 );
                 continue;
             };
@@ -130,8 +129,7 @@ impl<'t> Reader<'t> {
             }
             None => {
                 let near = nearest(name, self.flow_ids.keys().copied());
-                let mut fault =
-                    node.fault(Code::DanglingReference, format!("there is no flow \"{name}\""));
+                let mut fault = node.fault(Code::DanglingReference, format!("there is no flow \"{name}\""));
                 if !near.is_empty() {
                     fault = fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")));
                 }
@@ -144,11 +142,7 @@ impl<'t> Reader<'t> {
     /// Heat loss and mechanical loss as flows of their own.
     fn losses(&mut self, k: ComponentId, node: Node<'t>) {
         let given = node.get("given");
-        let sources = [
-            (Some(node), "heat_loss"),
-            (given, "heat_loss"),
-            (given, "mechanical_loss"),
-        ];
+        let sources = [(Some(node), "heat_loss"), (given, "heat_loss"), (given, "mechanical_loss")];
         let mut described = false;
         for (holder, member) in sources {
             let Some(holder) = holder else { continue };
@@ -175,11 +169,10 @@ impl<'t> Reader<'t> {
             self.process.components[k].outlets.push(flow);
         }
         let component = &self.process.components[k];
-        let has_heat = component
-            .inlets
-            .iter()
-            .chain(&component.outlets)
-            .any(|&f| matches!(self.process.flows[f].carried, Carried::Heat(..) | Carried::Radiation(..)));
+        let has_heat =
+            component.inlets.iter().chain(&component.outlets).any(|&f| {
+                matches!(self.process.flows[f].carried, Carried::Heat(..) | Carried::Radiation(..))
+            });
         self.process.components[k].given.heat_loss = described;
         if !described && !has_heat {
             let pointer = node.pointer_to("heat_loss");
@@ -292,8 +285,7 @@ impl<'t> Reader<'t> {
             let side = Side { inlets: of(&inlets), outlets: of(&outlets), pool: false };
             let name = self.process.components[k].name.clone();
             let quoted = |flows: &[FlowId]| -> String {
-                let names: Vec<&str> =
-                    flows.iter().map(|&f| self.process.flows[f].name.as_str()).collect();
+                let names: Vec<&str> = flows.iter().map(|&f| self.process.flows[f].name.as_str()).collect();
                 format!("\"{}\"", names.join("\", \""))
             };
             if side.inlets.is_empty() || side.outlets.is_empty() {
@@ -362,17 +354,20 @@ impl<'t> Reader<'t> {
             if !kind.info().given.contains(&base) {
                 let takes = kind.info().given.join(", ");
                 self.fault(
-                    n.fault(Code::Conflict, format!("{} does not take \"{member}\"", kind.name()))
-                        .hint(if takes.is_empty() {
+                    n.fault(Code::Conflict, format!("{} does not take \"{member}\"", kind.name())).hint(
+                        if takes.is_empty() {
                             "this kind takes nothing under \"given\"".to_owned()
                         } else {
                             format!("it takes {takes}")
-                        }),
+                        },
+                    ),
                 );
             }
         }
         for (member, upper) in [("isentropic_efficiency", 1e3), ("efficiency", 1e3), ("cop", 1e4)] {
-            let Some(v) = self.var(given, member, Dimension::Fraction, Class::Parameter, 1.0) else { continue };
+            let Some(v) = self.var(given, member, Dimension::Fraction, Class::Parameter, 1.0) else {
+                continue;
+            };
             let value = match &self.process.vars[v] {
                 Var::Given(a) => a.value(&self.inputs),
                 Var::Unknown { .. } => continue,
@@ -404,8 +399,7 @@ impl<'t> Reader<'t> {
         {
             self.process.components[k].given.pressure_loss.push((0, PressureLoss::Difference(v)));
         }
-        if let Some(v) =
-            self.var(given, "pressure_loss_fraction", Dimension::Fraction, Class::Parameter, 1.0)
+        if let Some(v) = self.var(given, "pressure_loss_fraction", Dimension::Fraction, Class::Parameter, 1.0)
         {
             self.process.components[k].given.pressure_loss.push((0, PressureLoss::Fraction(v)));
         }
@@ -438,8 +432,7 @@ impl<'t> Reader<'t> {
             );
             return;
         }
-        let boundary_pressure =
-            self.var(holdup, "boundary_pressure", Dimension::Pressure, Class::State, 1.0);
+        let boundary_pressure = self.var(holdup, "boundary_pressure", Dimension::Pressure, Class::State, 1.0);
         let name = self.process.components[k].name.clone();
         // Contents that end in equilibrium share one unknown temperature.
         let mut shared = None;

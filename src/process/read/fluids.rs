@@ -92,11 +92,7 @@ impl<'t> Reader<'t> {
         Some(id)
     }
 
-    fn named_fluid(
-        &mut self,
-        node: Node<'t>,
-        text: &str,
-    ) -> Option<(String, Substance, Arc<dyn Engine>)> {
+    fn named_fluid(&mut self, node: Node<'t>, text: &str) -> Option<(String, Substance, Arc<dyn Engine>)> {
         match crate::fluid::by_name(text) {
             Ok((substance, engine)) => Some((text.to_owned(), substance, engine)),
             Err(mut near) => {
@@ -104,8 +100,7 @@ impl<'t> Reader<'t> {
                     let own = nearest(text, fluids.members().map(|(name, _)| name));
                     near.splice(0..0, own.into_iter().map(str::to_owned));
                 }
-                let mut fault =
-                    node.fault(Code::UnknownFluid, format!("there is no fluid \"{text}\""));
+                let mut fault = node.fault(Code::UnknownFluid, format!("there is no fluid \"{text}\""));
                 fault = if near.is_empty() {
                     fault.hint("GET /v1/fluids lists the fluids; own ones go into \"fluids\"")
                 } else {
@@ -140,10 +135,9 @@ impl<'t> Reader<'t> {
             "incompressible" => self.incompressible(node),
             "stated" => Some((Substance::Stated, Arc::new(Stated::default()))),
             _ => {
-                self.fault(node.fault(
-                    Code::UnknownFluid,
-                    format!("a fluid of kind \"{kind}\" cannot be used here"),
-                ));
+                self.fault(
+                    node.fault(Code::UnknownFluid, format!("a fluid of kind \"{kind}\" cannot be used here")),
+                );
                 None
             }
         }
@@ -185,8 +179,7 @@ impl<'t> Reader<'t> {
             let Some(medium) = Incompressible::listed(name) else {
                 let known = crate::fluid::incompressible::LISTED.iter().map(|m| m.name);
                 let near = nearest(name, known);
-                let mut fault =
-                    n.fault(Code::UnknownFluid, format!("there is no listed medium \"{name}\""));
+                let mut fault = n.fault(Code::UnknownFluid, format!("there is no listed medium \"{name}\""));
                 if !near.is_empty() {
                     fault = fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")));
                 }
@@ -209,8 +202,11 @@ impl<'t> Reader<'t> {
                 1000.0
             }
         };
-        let phase =
-            if node.get("solid").and_then(Node::boolean) == Some(true) { Phase::Solid } else { Phase::Liquid };
+        let phase = if node.get("solid").and_then(Node::boolean) == Some(true) {
+            Phase::Solid
+        } else {
+            Phase::Liquid
+        };
         let name = node.get("name").and_then(Node::text).unwrap_or("incompressible");
         let medium = Incompressible::new(name, phase, density, &terms, (50.0, 3000.0));
         Some((Substance::Inert, Arc::new(self.engine(node, medium)?)))
@@ -301,11 +297,10 @@ impl<'t> Reader<'t> {
         let saturated = node.get("saturated");
         if !dry {
             if let Some(n) = water.or(saturated) {
-                self.fault(n.fault(
-                    Code::Conflict,
-                    "water is added to a dry composition only",
-                )
-                .hint("set \"composition_basis\": \"dry\""));
+                self.fault(
+                    n.fault(Code::Conflict, "water is added to a dry composition only")
+                        .hint("set \"composition_basis\": \"dry\""),
+                );
                 return None;
             }
             return Some(gas);
@@ -349,10 +344,9 @@ impl<'t> Reader<'t> {
                 for (symbol, count) in map.members() {
                     match (Element::from_symbol(symbol), count.number()) {
                         (Some(e), Some(x)) if x >= 0.0 => counts[e as usize] = x,
-                        (None, _) => self.fault(count.fault(
-                            Code::UnknownSpecies,
-                            format!("there is no element \"{symbol}\""),
-                        )),
+                        (None, _) => self.fault(
+                            count.fault(Code::UnknownSpecies, format!("there is no element \"{symbol}\"")),
+                        ),
                         _ => self.fault(count.fault(Code::OutOfBounds, "a number of atoms is not negative")),
                     }
                 }

@@ -30,13 +30,7 @@ pub struct ReadLimits {
 
 impl Default for ReadLimits {
     fn default() -> Self {
-        ReadLimits {
-            tree: document::Limits::default(),
-            components: 200,
-            flows: 500,
-            species: 40,
-            groups: 64,
-        }
+        ReadLimits { tree: document::Limits::default(), components: 200, flows: 500, species: 40, groups: 64 }
     }
 }
 
@@ -58,10 +52,9 @@ pub fn read(body: &[u8], limits: &ReadLimits) -> Result<(Process, Inputs), Vec<D
             && node.members().len() > most
         {
             let count = node.members().len();
-            faults.push(node.fault(
-                Code::LimitExceeded,
-                format!("{count} {member} exceed the limit of {most}"),
-            ));
+            faults.push(
+                node.fault(Code::LimitExceeded, format!("{count} {member} exceed the limit of {most}")),
+            );
         }
     }
     if !faults.is_empty() {
@@ -69,11 +62,7 @@ pub fn read(body: &[u8], limits: &ReadLimits) -> Result<(Process, Inputs), Vec<D
     }
     let mut reader = Reader::new(root, limits, faults);
     reader.run();
-    if reader.faults.is_empty() {
-        Ok((reader.process, reader.inputs))
-    } else {
-        Err(reader.faults.into_vec())
-    }
+    if reader.faults.is_empty() { Ok((reader.process, reader.inputs)) } else { Err(reader.faults.into_vec()) }
 }
 
 /// The process under construction.
@@ -162,8 +151,7 @@ impl<'t> Reader<'t> {
         self.policy();
         self.environment();
         if let Some(node) = self.root.get("duration") {
-            self.process.duration =
-                node.quantity(Dimension::Duration, &mut self.faults).map(|q| q.value);
+            self.process.duration = node.quantity(Dimension::Duration, &mut self.faults).map(|q| q.value);
             if self.process.basis == Basis::Rate {
                 self.faults.push(
                     node.fault(Code::Conflict, "a duration needs \"basis\": \"amount\"")
@@ -360,10 +348,8 @@ impl<'t> Reader<'t> {
                 let found = self.component_ids.get(target).copied();
                 if found.is_none() {
                     let known: Vec<&str> = self.component_ids.keys().copied().collect();
-                    let mut fault = n.fault(
-                        Code::DanglingReference,
-                        format!("there is no component \"{target}\""),
-                    );
+                    let mut fault =
+                        n.fault(Code::DanglingReference, format!("there is no component \"{target}\""));
                     let near = nearest(target, known);
                     if !near.is_empty() {
                         fault = fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")));
@@ -396,10 +382,7 @@ impl<'t> Reader<'t> {
                 && from.is_some()
                 && to.is_some()
             {
-                self.fault(n.fault(
-                    Code::Conflict,
-                    "only a flow that crosses the plant boundary has a role",
-                ));
+                self.fault(n.fault(Code::Conflict, "only a flow that crosses the plant boundary has a role"));
             }
             // What it carries is read next; work is only a place-holder of the right size here.
             self.process.flows.push(Flow {
@@ -423,10 +406,9 @@ impl<'t> Reader<'t> {
                 match self.component_ids.get(target) {
                     Some(&k) if !members.contains(&k) => members.push(k),
                     Some(_) => {}
-                    None => self.fault(item.fault(
-                        Code::DanglingReference,
-                        format!("there is no component \"{target}\""),
-                    )),
+                    None => self.fault(
+                        item.fault(Code::DanglingReference, format!("there is no component \"{target}\"")),
+                    ),
                 }
             }
             self.process.groups.push(Group { name: name.to_owned(), pointer: list.pointer(), members });

@@ -69,10 +69,9 @@ impl<'t> Reader<'t> {
         match (inlet, outlet) {
             (Some(a), Some(b)) => Boundary::Sliding(a, b),
             _ => {
-                self.fault(t.fault(
-                    Code::MissingField,
-                    "a sliding temperature needs both \"inlet\" and \"outlet\"",
-                ));
+                self.fault(
+                    t.fault(Code::MissingField, "a sliding temperature needs both \"inlet\" and \"outlet\""),
+                );
                 Boundary::Unknown
             }
         }
@@ -105,8 +104,7 @@ impl<'t> Reader<'t> {
             let target = n.text().unwrap_or_default();
             let Some(&other) = self.flow_ids.get(target) else {
                 let near = nearest(target, self.flow_ids.keys().copied());
-                let mut fault =
-                    n.fault(Code::DanglingReference, format!("there is no flow \"{target}\""));
+                let mut fault = n.fault(Code::DanglingReference, format!("there is no flow \"{target}\""));
                 if !near.is_empty() {
                     fault = fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")));
                 }
@@ -257,11 +255,8 @@ impl<'t> Reader<'t> {
         {
             let fluid_name = self.process.fluids[fluid].name.clone();
             self.fault(
-                node.fault(
-                    Code::UnsupportedPair,
-                    format!("\"{fluid_name}\" cannot be fixed by {pair}"),
-                )
-                .hint("give pressure and temperature, or pressure and enthalpy"),
+                node.fault(Code::UnsupportedPair, format!("\"{fluid_name}\" cannot be fixed by {pair}"))
+                    .hint("give pressure and temperature, or pressure and enthalpy"),
             );
             return None;
         }
@@ -322,13 +317,8 @@ impl<'t> Reader<'t> {
     /// Liquids hardly depend on pressure: where only a temperature is given and the fluid is
     /// liquid there at ambient pressure, ambient pressure is taken.
     fn assume_liquid_pressure(&mut self, node: Node<'t>, fluid: FluidId, figures: &mut Figures) {
-        let others = [
-            figures.enthalpy,
-            figures.entropy,
-            figures.quality,
-            figures.superheat,
-            figures.subcooling,
-        ];
+        let others =
+            [figures.enthalpy, figures.entropy, figures.quality, figures.superheat, figures.subcooling];
         if others.iter().any(Option::is_some) {
             return;
         }
@@ -503,11 +493,7 @@ impl<'t> Reader<'t> {
             }
             let pointer = spec.pointer.clone();
             let temperature = spec.b;
-            let h = self.unknown(
-                format!("wetness at {pointer}"),
-                Nature::Enthalpy,
-                pointer.clone(),
-            );
+            let h = self.unknown(format!("wetness at {pointer}"), Nature::Enthalpy, pointer.clone());
             let spec = &mut self.process.states[s];
             spec.form = StateForm::Pair(Pair::PressureEnthalpy);
             spec.b = h;

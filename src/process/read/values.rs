@@ -224,12 +224,7 @@ impl<'t> Reader<'t> {
     }
 
     /// An amount of material: the variable and how it counts.
-    pub(super) fn amount(
-        &mut self,
-        node: Node<'t>,
-        name: &str,
-        what: &str,
-    ) -> (VarId, AmountForm) {
+    pub(super) fn amount(&mut self, node: Node<'t>, name: &str, what: &str) -> (VarId, AmountForm) {
         let batch = self.process.basis == Basis::Amount;
         let duration = self.process.duration;
         let mut found: Option<(VarId, AmountForm)> = None;
@@ -262,8 +257,11 @@ impl<'t> Reader<'t> {
                 }
                 (false, false, _) => {
                     self.fault(
-                        n.fault(Code::Conflict, format!("\"{member}\" is a total, but amounts are rates here"))
-                            .hint("set \"basis\": \"amount\", or give a flow such as \"mass_flow\""),
+                        n.fault(
+                            Code::Conflict,
+                            format!("\"{member}\" is a total, but amounts are rates here"),
+                        )
+                        .hint("set \"basis\": \"amount\", or give a flow such as \"mass_flow\""),
                     );
                     continue;
                 }
