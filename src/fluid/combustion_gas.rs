@@ -7,7 +7,7 @@ use super::chemistry::complete_combustion;
 use super::heat_capacity::{
     Caloric, Calorics, Curve, GAS_CONSTANT, STANDARD_PRESSURE, gas_state, in_range, supports,
 };
-use super::ideal_gas::{IdealGas, Species, find_species};
+use super::ideal_gas::{IdealGas, PseudoCritical, Species, find_species};
 use super::{Datum, Element, Elements, Engine, Pair, Property, PropertyError, Provenance, State};
 use std::fmt;
 
@@ -126,6 +126,8 @@ pub struct CombustionGas {
     lambda: f64,
     sensitivity: f64,
     oxidant_per_ratio: f64,
+    /// At the air ratio of the reading.
+    critical: Option<PseudoCritical>,
 }
 
 /// H, S and cp of the blend per kg of gas at one air ratio, S with its mixing term.
@@ -266,6 +268,7 @@ impl CombustionGas {
         };
         let base = weighted(&|m| m.at(lambda_min))?;
         let slope = weighted(&|m| m.b)?;
+        let critical = PseudoCritical::new(table.iter().zip(&moles).map(|(s, m)| (*s, m.at(lambda))));
         let mut molar_masses = [0.0; N];
         let mut atoms = [[0.0; Element::COUNT]; N];
         for ((mass, atom), species) in molar_masses.iter_mut().zip(&mut atoms).zip(&table) {
@@ -283,6 +286,7 @@ impl CombustionGas {
             lambda,
             sensitivity,
             oxidant_per_ratio,
+            critical,
         })
     }
 
@@ -457,7 +461,9 @@ impl Engine for CombustionGas {
         Some(Datum { enthalpy: 0.0, entropy: 0.0 })
     }
 
-    fn relative_uncertainty(&self, _state: &State) -> f64 {
-        UNCERTAINTY
+    /// That of the polynomials, and |Z − 1| for the pressure effect that the model neglects.
+    fn relative_uncertainty(&self, state: &State) -> f64 {
+        let neglected = self.critical.map_or(0.0, |c| c.departure(state.temperature, state.pressure));
+        UNCERTAINTY.hypot(neglected)
     }
 }
