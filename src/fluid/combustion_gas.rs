@@ -7,7 +7,7 @@ use super::chemistry::complete_combustion;
 use super::heat_capacity::{
     Caloric, Calorics, Curve, GAS_CONSTANT, STANDARD_PRESSURE, gas_state, in_range, supports,
 };
-use super::ideal_gas::{IdealGas, PseudoCritical, Species, find_species};
+use super::ideal_gas::{CompositionError, IdealGas, PseudoCritical, Species, find_species};
 use super::{Datum, Element, Elements, Engine, Pair, Property, PropertyError, Provenance, State};
 use std::fmt;
 
@@ -23,7 +23,7 @@ const CO: usize = 4;
 const AIR_RATIO_MAX: f64 = 1000.0;
 /// Relative standard uncertainty (k = 1) of enthalpy and entropy differences, common practice.
 const UNCERTAINTY: f64 = 5e-4;
-/// Smallest mole fraction in a logarithm's derivative, which is unbounded at zero.
+/// Smallest mole fraction in a logarithm, whose derivative is unbounded at zero.
 const TRACE: f64 = 1e-12;
 
 /// The figure that fixes the air ratio.
@@ -332,6 +332,18 @@ impl CombustionGas {
         self.fractions(lambda, true)
     }
 
+    /// The gas at an air ratio as a mixture of fixed composition.
+    ///
+    /// # Errors
+    /// An air ratio outside [`CombustionGas::air_ratio_range`] (`InvalidFraction`).
+    pub fn mixture(&self, lambda: f64) -> Result<IdealGas, CompositionError> {
+        let (x, _) = self
+            .composition(lambda)
+            .map_err(|_| CompositionError::InvalidFraction("combustion gas".to_owned()))?;
+        let parts: Vec<(&str, f64)> = SPECIES.into_iter().zip(x).collect();
+        IdealGas::from_names(&parts)
+    }
+
     fn fractions(&self, lambda: f64, dry: bool) -> Result<([f64; N], [f64; N]), PropertyError> {
         self.check(lambda)?;
         let mut lines = self.moles;
@@ -413,11 +425,14 @@ impl Engine for CombustionGas {
     fn state(&self, pair: Pair, a: f64, b: f64, c: f64) -> Result<State, PropertyError> {
         self.check(c)?;
         let (mass, mass_growth, moles, moles_growth) = self.amounts(c);
-        let (x, _) = self.composition(c)?;
         // −R Σ N ln x, and its growth: Σ N d(ln x) vanishes.
-        let log = |x: f64| x.max(TRACE).ln();
-        let mixing: f64 = x.iter().filter(|x| **x > 0.0).map(|x| -GAS_CONSTANT * moles * x * x.ln()).sum();
-        let mixing_growth: f64 = x.iter().zip(&self.moles).map(|(x, m)| -GAS_CONSTANT * m.b * log(*x)).sum();
+        let (mut mixing, mut mixing_growth) = (0.0, 0.0);
+        for line in &self.moles {
+            let n = line.at(c).max(0.0);
+            let ln = (n / moles).max(TRACE).ln();
+            mixing -= GAS_CONSTANT * n * ln;
+            mixing_growth -= GAS_CONSTANT * line.b * ln;
+        }
         let blend = Blend { gas: self, excess: c - self.lambda_min, mass, mixing };
         let mut state = gas_state(&blend, GAS_CONSTANT * moles / mass, pair, a, b)?;
         let slope = self.slope.at(state.temperature);

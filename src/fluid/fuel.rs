@@ -295,7 +295,7 @@ impl Fuel {
         Ok(Fuel {
             analysis: a,
             elements,
-            medium: Incompressible::new("fuel", phase, density, &terms, TEMPERATURES)?,
+            medium: Incompressible::new("fuel", phase, density, &terms, Some(TEMPERATURES))?,
             lower,
             higher,
             ratio,

@@ -6,7 +6,7 @@ use sigmadot::fluid::chemistry::{
     Environment, Reaction, ReactionError, ReferenceSet, ReferenceState, complete_combustion, heating_value,
     mixture_heating_value,
 };
-use sigmadot::fluid::combustion_gas::{CombustionError, CombustionGas, Reading, SPECIES};
+use sigmadot::fluid::combustion_gas::{CombustionError, CombustionGas, Reading};
 use sigmadot::fluid::fuel::{Fuel, FuelKind, GivenHeatingValue, UltimateAnalysis};
 use sigmadot::fluid::ideal_gas::{IdealGas, Species, all_species, find_species};
 use sigmadot::fluid::{Element, Engine, Pair, PropertyError};
@@ -503,8 +503,7 @@ fn combustion_gas_obeys_the_identities() {
             }
             // Same state as the fixed mixture of the same composition.
             let l = gas.air_ratio();
-            let x = gas.composition(l).unwrap().0;
-            let fixed = IdealGas::from_names(&SPECIES.iter().copied().zip(x).collect::<Vec<_>>()).unwrap();
+            let fixed = gas.mixture(l).unwrap();
             let a = gas.state(Pair::PressureTemperature, 2e5, 700.0, l).unwrap();
             let b = fixed.state(Pair::PressureTemperature, 2e5, 700.0, 0.0).unwrap();
             assert!((a.enthalpy - b.enthalpy).abs() < 1e-6 && (a.entropy - b.entropy).abs() < 1e-9);
@@ -605,7 +604,7 @@ fn any_figures_give_a_finite_answer_or_an_error() {
     let special = [0.0, -1.0, 1.0, f64::NAN, f64::INFINITY, f64::NEG_INFINITY, f64::MAX, 5e-324, 1e-9];
     let mut answers = [0; 3];
     let air = IdealGas::dry_air().unwrap();
-    for _ in 0..20_000 {
+    for _ in 0..6000 {
         let mut figure = |low: f64, high: f64| match draw.unit() {
             x if x < 0.03 => special[(draw.unit() * special.len() as f64) as usize],
             _ => draw.between(low, high),

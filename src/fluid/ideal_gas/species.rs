@@ -1,7 +1,9 @@
 //! Species: their make-up, standard enthalpy, entropy and heat capacity.
 
 use super::CompositionError;
-use crate::fluid::heat_capacity::{Caloric, Calorics, Curve, GAS_CONSTANT, NineCoefficients, Term};
+use crate::fluid::heat_capacity::{
+    ASSUMED_RANGE, Caloric, Calorics, Curve, GAS_CONSTANT, NineCoefficients, Term,
+};
 use crate::fluid::{Element, Elements, PropertyError};
 use serde::Deserialize;
 use std::collections::BTreeMap;
@@ -64,8 +66,8 @@ pub struct SpeciesDefinition {
     pub elements: Option<Elements>,
     /// cp = Σ c·Tⁿ, J/(mol K).
     pub heat_capacity: Vec<Term>,
-    /// Lowest and highest temperature, K.
-    pub temperature_range: (f64, f64),
+    /// Lowest and highest temperature, K; [`ASSUMED_RANGE`] where not given.
+    pub temperature_range: Option<(f64, f64)>,
     /// Enthalpy of formation at 298.15 K, J/mol.
     pub formation_enthalpy: f64,
     /// Entropy at 298.15 K and 1 bar, J/(mol K).
@@ -89,7 +91,7 @@ impl Species {
         {
             return Err(invalid());
         }
-        let (t_min, t_max) = d.temperature_range;
+        let (t_min, t_max) = d.temperature_range.unwrap_or(ASSUMED_RANGE);
         let curve =
             Curve::from_terms(&d.heat_capacity, t_min, t_max, d.formation_enthalpy, d.standard_entropy)
                 .ok_or_else(invalid)?;
@@ -287,7 +289,7 @@ mod tests {
             molar_mass: 0.028,
             elements: None,
             heat_capacity: vec![Term { coefficient: 29.1, exponent: 0.0 }],
-            temperature_range: (200.0, 3000.0),
+            temperature_range: Some((200.0, 3000.0)),
             formation_enthalpy: 0.0,
             standard_entropy: 191.6,
             chemical_exergy: None,
@@ -304,8 +306,8 @@ mod tests {
                 ],
                 ..good.clone()
             },
-            SpeciesDefinition { temperature_range: (300.0, 300.0), ..good.clone() },
-            SpeciesDefinition { temperature_range: (f64::NAN, 300.0), ..good.clone() },
+            SpeciesDefinition { temperature_range: Some((300.0, 300.0)), ..good.clone() },
+            SpeciesDefinition { temperature_range: Some((f64::NAN, 300.0)), ..good.clone() },
             SpeciesDefinition { formation_enthalpy: f64::INFINITY, ..good.clone() },
             SpeciesDefinition { chemical_exergy: Some(f64::NAN), ..good.clone() },
         ] {
@@ -325,7 +327,7 @@ mod tests {
                 Term { coefficient: 0.7, exponent: 0.5 },
                 Term { coefficient: 3e6, exponent: -3.0 },
             ],
-            temperature_range: (200.0, 3000.0),
+            temperature_range: Some((200.0, 3000.0)),
             formation_enthalpy: -1000.0,
             standard_entropy: 200.0,
             chemical_exergy: None,
