@@ -15,6 +15,9 @@ pub const GAS_CONSTANT: f64 = 8.314510;
 /// Lowest and highest pressure taken by gases and incompressible media, Pa.
 const PRESSURES: (f64, f64) = (1e-3, 1e10);
 
+/// Range of temperature (K) assumed for a heat capacity that is given without one.
+pub const ASSUMED_RANGE: (f64, f64) = (200.0, 2500.0);
+
 /// One term c·Tⁿ of a heat capacity.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Term {
@@ -35,6 +38,10 @@ pub struct Caloric {
     pub s: f64,
 }
 
+impl Caloric {
+    const ZERO: Caloric = Caloric { cp: 0.0, h: 0.0, s: 0.0 };
+}
+
 /// One temperature interval: cp = Σ aᵢ T^(i−2), i = 0..6, plus terms of other powers.
 #[derive(Clone, Debug, PartialEq)]
 struct Segment {
@@ -46,16 +53,17 @@ struct Segment {
 
 impl Segment {
     fn at(&self, t: f64) -> Caloric {
+        const THIRD: f64 = 1.0 / 3.0;
         let [a0, a1, a2, a3, a4, a5, a6] = self.a;
         let inv = 1.0 / t;
         let ln = t.ln();
         let mut out = Caloric {
             cp: inv * (a1 + inv * a0) + a2 + t * (a3 + t * (a4 + t * (a5 + t * a6))),
             h: a1 * ln - a0 * inv
-                + t * (a2 + t * (a3 / 2.0 + t * (a4 / 3.0 + t * (a5 / 4.0 + t * (a6 / 5.0)))))
+                + t * (a2 + t * (a3 * 0.5 + t * (a4 * THIRD + t * (a5 * 0.25 + t * (a6 * 0.2)))))
                 + self.b[0],
-            s: a2 * ln - inv * (a1 + inv * (a0 / 2.0))
-                + t * (a3 + t * (a4 / 2.0 + t * (a5 / 3.0 + t * (a6 / 4.0))))
+            s: a2 * ln - inv * (a1 + inv * (a0 * 0.5))
+                + t * (a3 + t * (a4 * 0.5 + t * (a5 * THIRD + t * (a6 * 0.25))))
                 + self.b[1],
         };
         for term in &self.extra {
@@ -87,6 +95,7 @@ pub struct Curve {
     t_max: f64,
     segments: Vec<Segment>,
     lowest_cp: f64,
+    ends: (Caloric, Caloric),
 }
 
 /// A heat capacity with its integrals over a range of temperature; h and s rise with T.
@@ -97,15 +106,25 @@ pub trait Calorics {
     /// cp, h and s at `t` without a check of the range (the nearest interval is used).
     fn at(&self, t: f64) -> Caloric;
 
+    /// The figures at the lowest and at the highest temperature.
+    fn ends(&self) -> (Caloric, Caloric) {
+        let (low, high) = self.range();
+        (self.at(low), self.at(high))
+    }
+
     /// Temperature (K) at which the enthalpy is `h`.
     ///
     /// # Errors
     /// `h` outside what the range of temperature reaches.
     fn temperature_of_enthalpy(&self, h: f64) -> Result<f64, PropertyError> {
         let (t_min, t_max) = self.range();
-        let (low, high) = (self.at(t_min).h, self.at(t_max).h);
+        let (low, high) = self.ends();
+        let (low, high) = (low.h, high.h);
         check_reached("enthalpy", "J/kg", h, low, high)?;
-        let share = ((h - low) / (high - low)).clamp(0.0, 1.0);
+        if h <= low || h >= high {
+            return Ok(if h <= low { t_min } else { t_max });
+        }
+        let share = (h - low) / (high - low);
         solve_rising((t_min, t_max), t_min + share * (t_max - t_min), |t| {
             let value = self.at(t);
             (value.h - h, value.cp)
@@ -118,9 +137,13 @@ pub trait Calorics {
     /// `s` outside what the range of temperature reaches.
     fn temperature_of_entropy(&self, s: f64) -> Result<f64, PropertyError> {
         let (t_min, t_max) = self.range();
-        let (low, high) = (self.at(t_min).s, self.at(t_max).s);
+        let (low, high) = self.ends();
+        let (low, high) = (low.s, high.s);
         check_reached("entropy at 1 bar", "J/(kg K)", s, low, high)?;
-        let share = ((s - low) / (high - low)).clamp(0.0, 1.0);
+        if s <= low || s >= high {
+            return Ok(if s <= low { t_min } else { t_max });
+        }
+        let share = (s - low) / (high - low);
         solve_rising((t_min, t_max), t_min * (t_max / t_min).powf(share), |t| {
             let value = self.at(t);
             (value.s - s, value.cp / t)
@@ -142,18 +165,12 @@ fn check_reached(
 }
 
 /// The root of a rising function of temperature by Newton's method inside a shrinking bracket;
-/// `gap` gives value and slope. Where the root lies at an end or just beyond, that end.
+/// `gap` gives value and slope, and is negative at the lower end and positive at the upper.
 fn solve_rising(
     (mut below, mut above): (f64, f64),
     start: f64,
     gap: impl Fn(f64) -> (f64, f64),
 ) -> Result<f64, PropertyError> {
-    if gap(below).0 >= 0.0 {
-        return Ok(below);
-    }
-    if gap(above).0 <= 0.0 {
-        return Ok(above);
-    }
     let mut t = start;
     for _ in 0..120 {
         let (value, slope) = gap(t);
@@ -182,7 +199,11 @@ impl Calorics for Curve {
     }
 
     fn at(&self, t: f64) -> Caloric {
-        self.segment(t).map_or(Caloric { cp: 0.0, h: 0.0, s: 0.0 }, |s| s.at(t))
+        self.segment(t).map_or(Caloric::ZERO, |s| s.at(t))
+    }
+
+    fn ends(&self) -> (Caloric, Caloric) {
+        self.ends
     }
 }
 
@@ -195,7 +216,8 @@ impl Curve {
         if !(t_min >= 1.0 && t_max <= 1e5 && rising && first_above) {
             return None;
         }
-        let mut curve = Curve { t_min, t_max, lowest_cp: f64::INFINITY, segments };
+        let mut curve =
+            Curve { t_min, t_max, lowest_cp: f64::INFINITY, ends: (Caloric::ZERO, Caloric::ZERO), segments };
         // A heat capacity must be positive over its whole range, or h(T) has no inverse.
         let samples = 400;
         for i in 0..=samples {
@@ -206,6 +228,7 @@ impl Curve {
             }
             curve.lowest_cp = curve.lowest_cp.min(value.cp);
         }
+        curve.ends = (curve.at(t_min), curve.at(t_max));
         Some(curve)
     }
 
@@ -288,6 +311,10 @@ impl Curve {
         for segment in &mut out.segments {
             segment.b[0] += h;
             segment.b[1] += s;
+        }
+        for end in [&mut out.ends.0, &mut out.ends.1] {
+            end.h += h;
+            end.s += s;
         }
         out
     }

@@ -1,6 +1,8 @@
 //! Liquids and solids of constant density: ds = c dT/T, h = ∫c dT + v (p − p°).
 
-use super::heat_capacity::{Calorics, Curve, STANDARD_PRESSURE, Term, check_pressure, in_range, supports};
+use super::heat_capacity::{
+    ASSUMED_RANGE, Calorics, Curve, STANDARD_PRESSURE, Term, check_pressure, in_range, supports,
+};
 use super::ideal_gas::{SpeciesPhase, find_species};
 use super::{Datum, Element, Elements, Engine, Pair, Phase, PropertyError, Provenance, State};
 
@@ -103,7 +105,7 @@ pub const LISTED: &[ListedMedium] = &[
 
 impl Incompressible {
     /// A medium of the caller's own: `heat_capacity` c = Σ c·Tⁿ in J/(kg K) over
-    /// `temperature_range` (K) and `density` in kg/m³.
+    /// `temperature_range` (K), [`ASSUMED_RANGE`] where not given, and `density` in kg/m³.
     ///
     /// # Errors
     /// A density that is not finite and positive, a phase that is neither liquid nor solid, or a
@@ -113,13 +115,13 @@ impl Incompressible {
         phase: Phase,
         density: f64,
         heat_capacity: &[Term],
-        temperature_range: (f64, f64),
+        temperature_range: Option<(f64, f64)>,
     ) -> Result<Incompressible, PropertyError> {
         in_range("density", "kg/m³", density, 1e-3, 1e6)?;
         if !matches!(phase, Phase::Liquid | Phase::Solid) {
             return Err(PropertyError::Unstated("a liquid or solid phase of the incompressible medium"));
         }
-        let (t_min, t_max) = temperature_range;
+        let (t_min, t_max) = temperature_range.unwrap_or(ASSUMED_RANGE);
         let curve = Curve::from_terms(heat_capacity, t_min, t_max, 0.0, 0.0)
             .ok_or(PropertyError::Unstated("a specific heat that is positive over the temperature range"))?;
         Ok(Incompressible {
@@ -139,7 +141,8 @@ impl Incompressible {
         let [c0, c1] = row.heat_capacity;
         let terms = [Term { coefficient: c0, exponent: 0.0 }, Term { coefficient: c1, exponent: 1.0 }];
         let medium =
-            Incompressible::new(row.name, row.phase, row.density, &terms, row.temperature_range).ok()?;
+            Incompressible::new(row.name, row.phase, row.density, &terms, Some(row.temperature_range))
+                .ok()?;
         Some(Incompressible { source: row.source.to_owned(), uncertainty: LISTED_UNCERTAINTY, ..medium })
     }
 
@@ -278,9 +281,9 @@ mod tests {
     #[test]
     fn impossible_media_are_refused() {
         let c = [Term { coefficient: 1000.0, exponent: 0.0 }];
-        assert!(Incompressible::new("x", Phase::Liquid, 0.0, &c, (250.0, 400.0)).is_err());
-        assert!(Incompressible::new("x", Phase::Vapour, 900.0, &c, (250.0, 400.0)).is_err());
-        assert!(Incompressible::new("x", Phase::Liquid, 900.0, &[], (250.0, 400.0)).is_err());
-        assert!(Incompressible::new("x", Phase::Liquid, 900.0, &c, (400.0, 250.0)).is_err());
+        assert!(Incompressible::new("x", Phase::Liquid, 0.0, &c, Some((250.0, 400.0))).is_err());
+        assert!(Incompressible::new("x", Phase::Vapour, 900.0, &c, Some((250.0, 400.0))).is_err());
+        assert!(Incompressible::new("x", Phase::Liquid, 900.0, &[], Some((250.0, 400.0))).is_err());
+        assert!(Incompressible::new("x", Phase::Liquid, 900.0, &c, Some((400.0, 250.0))).is_err());
     }
 }

@@ -1,6 +1,7 @@
 //! One gas of the caller's own: a molar mass and a heat capacity.
 
-use super::heat_capacity::{Calorics, Curve, GAS_CONSTANT, Term, gas_state, supports};
+use super::heat_capacity::{ASSUMED_RANGE, Calorics, Curve, GAS_CONSTANT, Term, gas_state, supports};
+use super::ideal_gas::MOLAR_MASSES;
 use super::{Datum, Elements, Engine, Pair, PropertyError, Provenance, State};
 
 /// A perfect gas: p v = R T / M with cp constant or Σ c·Tⁿ.
@@ -16,26 +17,26 @@ pub struct PerfectGas {
 
 impl PerfectGas {
     /// A gas of `molar_mass` (kg/mol) with `heat_capacity` cp = Σ c·Tⁿ in J/(kg K) over
-    /// `temperature_range` (K).
+    /// `temperature_range` (K), [`ASSUMED_RANGE`] where not given.
     ///
     /// # Errors
-    /// A molar mass or a heat capacity that is not finite and positive over the whole range, a
+    /// A molar mass outside 0.001 to 1 kg/mol, a heat capacity not positive over the whole range, a
     /// heat capacity that does not exceed R/M, or an empty range.
     pub fn new(
         molar_mass: f64,
         heat_capacity: &[Term],
-        temperature_range: (f64, f64),
+        temperature_range: Option<(f64, f64)>,
     ) -> Result<PerfectGas, PropertyError> {
-        if !(molar_mass.is_finite() && molar_mass > 0.0) {
+        if !MOLAR_MASSES.contains(&molar_mass) {
             return Err(PropertyError::OutOfRange {
                 quantity: "molar mass",
                 unit: "kg/mol",
                 value: molar_mass,
-                min: 0.0,
-                max: f64::MAX,
+                min: *MOLAR_MASSES.start(),
+                max: *MOLAR_MASSES.end(),
             });
         }
-        let (t_min, t_max) = temperature_range;
+        let (t_min, t_max) = temperature_range.unwrap_or(ASSUMED_RANGE);
         let gas_constant = GAS_CONSTANT / molar_mass;
         let curve = Curve::from_terms(heat_capacity, t_min, t_max, 0.0, 0.0)
             .ok_or(PropertyError::Unstated("a specific heat that is positive over the temperature range"))?;
@@ -57,7 +58,11 @@ impl PerfectGas {
     /// # Errors
     /// As [`PerfectGas::new`].
     pub fn with_constant(molar_mass: f64, heat_capacity: f64) -> Result<PerfectGas, PropertyError> {
-        PerfectGas::new(molar_mass, &[Term { coefficient: heat_capacity, exponent: 0.0 }], (50.0, 6000.0))
+        PerfectGas::new(
+            molar_mass,
+            &[Term { coefficient: heat_capacity, exponent: 0.0 }],
+            Some((50.0, 6000.0)),
+        )
     }
 
     /// Lowest and highest temperature, K.

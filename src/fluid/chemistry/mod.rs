@@ -6,6 +6,7 @@ mod environment;
 mod reaction;
 mod reference_sets;
 
+pub(crate) use combustion::product_enthalpy;
 pub use combustion::{Combustion, HeatingValue, complete_combustion, heating_value, mixture_heating_value};
 pub use environment::{DeadState, Environment, ReferenceState};
 pub use reaction::{Reaction, ReactionError};

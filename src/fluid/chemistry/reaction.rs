@@ -97,11 +97,9 @@ impl Reaction {
     /// Affinity A = −ΔG in J per mole of reaction at `t` (K), `p` (Pa) and a composition of the
     /// gas (mole fractions by species name): positive drives the reaction forward.
     ///
-    /// It is infinite in sign, hence `Unstated`, where a gas taking part has no share.
-    ///
     /// # Errors
-    /// `t` outside the range of a species, `p` not positive, or a gas that takes part and is not
-    /// in `composition`.
+    /// `t` outside the range of a species, `p` not positive, or a gas that takes part without a
+    /// share in `composition`, where the affinity has no bound (`Unstated`).
     pub fn affinity(&self, t: f64, p: f64, composition: &[(&str, f64)]) -> Result<f64, PropertyError> {
         crate::fluid::heat_capacity::check_pressure(p)?;
         let mut affinity = GAS_CONSTANT * t * self.ln_equilibrium_constant(t)?;

@@ -13,6 +13,32 @@ pub const DRY_AIR: [(&str, f64); 4] = [("N2", 0.78084), ("O2", 0.20946), ("Ar", 
 /// nine-coefficient polynomials, common practice.
 const UNCERTAINTY: f64 = 5e-4;
 
+/// Pseudo-critical point of a mixture by Kay's rule, to judge what the ideal-gas model neglects.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(crate) struct PseudoCritical {
+    temperature: f64,
+    pressure: f64,
+}
+
+impl PseudoCritical {
+    /// From mole fractions; species without critical data are left out, `None` where all are.
+    pub(crate) fn new<'a>(parts: impl Iterator<Item = (&'a Species, f64)>) -> Option<PseudoCritical> {
+        let (x, t, p) =
+            parts.filter_map(|(s, x)| s.critical().map(|c| (c, x))).fold((0.0, 0.0, 0.0), |sum, (c, x)| {
+                (sum.0 + x, sum.1 + x * c.temperature, sum.2 + x * c.pressure)
+            });
+        (x > 0.0).then(|| PseudoCritical { temperature: t / x, pressure: p / x })
+    }
+
+    /// |Z − 1| from the second virial coefficient of simple fluids (Abbott's form, in Smith, Van
+    /// Ness and Abbott: Introduction to Chemical Engineering Thermodynamics), at most 1.
+    pub(crate) fn departure(&self, t: f64, p: f64) -> f64 {
+        let reduced = t / self.temperature;
+        let b = 0.083 - 0.422 / reduced.powf(1.6);
+        (b * p / self.pressure / reduced).abs().min(1.0)
+    }
+}
+
 /// Why a composition cannot be used.
 #[derive(Clone, Debug, PartialEq)]
 pub enum CompositionError {
@@ -65,6 +91,7 @@ pub struct IdealGas {
     molar_mass: f64,
     elements: Option<Elements>,
     curve: Curve,
+    critical: Option<PseudoCritical>,
 }
 
 impl IdealGas {
@@ -106,7 +133,8 @@ impl IdealGas {
             }
             Some(sum)
         });
-        Ok(IdealGas { components, molar_mass, elements, curve })
+        let critical = PseudoCritical::new(components.iter().map(|(s, x)| (s, *x)));
+        Ok(IdealGas { components, molar_mass, elements, curve, critical })
     }
 
     /// A mixture from mass fractions, which are normalised.
@@ -228,7 +256,9 @@ impl Engine for IdealGas {
         Some(Datum { enthalpy: 0.0, entropy: 0.0 })
     }
 
-    fn relative_uncertainty(&self, _state: &State) -> f64 {
-        UNCERTAINTY
+    /// That of the polynomials, and |Z − 1| for the pressure effect that the model neglects.
+    fn relative_uncertainty(&self, state: &State) -> f64 {
+        let neglected = self.critical.map_or(0.0, |c| c.departure(state.temperature, state.pressure));
+        UNCERTAINTY.hypot(neglected)
     }
 }

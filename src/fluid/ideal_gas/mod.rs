@@ -6,5 +6,7 @@
 mod mixture;
 mod species;
 
+pub(crate) use mixture::PseudoCritical;
 pub use mixture::{CompositionError, DRY_AIR, IdealGas};
-pub use species::{Species, SpeciesDefinition, SpeciesPhase, all_species, find_species};
+pub(crate) use species::MOLAR_MASSES;
+pub use species::{CriticalPoint, Species, SpeciesDefinition, SpeciesPhase, all_species, find_species};

@@ -1,14 +1,20 @@
 //! Species: their make-up, standard enthalpy, entropy and heat capacity.
 
 use super::CompositionError;
-use crate::fluid::heat_capacity::{Caloric, Calorics, Curve, GAS_CONSTANT, NineCoefficients, Term};
+use crate::fluid::heat_capacity::{
+    ASSUMED_RANGE, Caloric, Calorics, Curve, GAS_CONSTANT, NineCoefficients, Term,
+};
 use crate::fluid::{Element, Elements, PropertyError};
 use serde::Deserialize;
 use std::collections::BTreeMap;
+use std::ops::RangeInclusive;
 use std::sync::OnceLock;
 
 /// Highest temperature used, K: above it the published intervals describe ionised gas.
 const T_MAX: f64 = 6000.0;
+
+/// Molar masses taken from a caller, kg/mol: a figure in g/mol is outside.
+pub(crate) const MOLAR_MASSES: RangeInclusive<f64> = 1e-3..=1.0;
 
 /// Phase of a species' standard state.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Deserialize)]
@@ -22,6 +28,17 @@ pub enum SpeciesPhase {
     Solid,
 }
 
+/// Critical point.
+#[derive(Clone, Copy, Debug, PartialEq, Deserialize)]
+pub struct CriticalPoint {
+    /// K
+    #[serde(rename = "temperature_K")]
+    pub temperature: f64,
+    /// Pa
+    #[serde(rename = "pressure_Pa")]
+    pub pressure: f64,
+}
+
 /// A chemical species with its standard-state properties per mole, on the absolute datum
 /// (elements at 298.15 K for enthalpy, third law at 1 bar for entropy).
 #[derive(Clone, Debug, PartialEq)]
@@ -31,6 +48,7 @@ pub struct Species {
     phase: SpeciesPhase,
     molar_mass: f64,
     elements: Option<Elements>,
+    critical: Option<CriticalPoint>,
     curve: Curve,
     chemical_exergy: Option<f64>,
     source: String,
@@ -48,8 +66,8 @@ pub struct SpeciesDefinition {
     pub elements: Option<Elements>,
     /// cp = Σ c·Tⁿ, J/(mol K).
     pub heat_capacity: Vec<Term>,
-    /// Lowest and highest temperature, K.
-    pub temperature_range: (f64, f64),
+    /// Lowest and highest temperature, K; [`ASSUMED_RANGE`] where not given.
+    pub temperature_range: Option<(f64, f64)>,
     /// Enthalpy of formation at 298.15 K, J/mol.
     pub formation_enthalpy: f64,
     /// Entropy at 298.15 K and 1 bar, J/(mol K).
@@ -62,18 +80,18 @@ impl Species {
     /// A gas of the caller's own.
     ///
     /// # Errors
-    /// A figure that is not finite, a molar mass that is not positive, or a heat capacity that is
+    /// A figure that is not finite, a molar mass outside 0.001 to 1 kg/mol, or a heat capacity that is
     /// not positive over the whole range of temperature.
     pub fn define(definition: &SpeciesDefinition) -> Result<Species, CompositionError> {
         let d = definition;
         let invalid = || CompositionError::InvalidSpecies(d.name.clone());
-        if !(d.molar_mass.is_finite() && d.molar_mass > 0.0)
+        if !MOLAR_MASSES.contains(&d.molar_mass)
             || d.chemical_exergy.is_some_and(|e| !e.is_finite())
             || d.elements.is_some_and(|e| e.iter().any(|n| !(n.is_finite() && *n >= 0.0)))
         {
             return Err(invalid());
         }
-        let (t_min, t_max) = d.temperature_range;
+        let (t_min, t_max) = d.temperature_range.unwrap_or(ASSUMED_RANGE);
         let curve =
             Curve::from_terms(&d.heat_capacity, t_min, t_max, d.formation_enthalpy, d.standard_entropy)
                 .ok_or_else(invalid)?;
@@ -83,6 +101,7 @@ impl Species {
             phase: SpeciesPhase::Gas,
             molar_mass: d.molar_mass,
             elements: d.elements,
+            critical: None,
             curve,
             chemical_exergy: d.chemical_exergy,
             source: "given in the description".to_owned(),
@@ -123,6 +142,11 @@ impl Species {
     /// Atoms of each element per molecule, where known.
     pub fn elements(&self) -> Option<&Elements> {
         self.elements.as_ref()
+    }
+
+    /// Critical point, where known.
+    pub fn critical(&self) -> Option<CriticalPoint> {
+        self.critical
     }
 
     /// Chemical exergy that the definition gives, J/mol; `None` where it is to be computed.
@@ -174,6 +198,7 @@ struct Row {
     aliases: Vec<String>,
     phase: SpeciesPhase,
     molar_mass_g_mol: f64,
+    critical: Option<CriticalPoint>,
     elements: BTreeMap<String, f64>,
     intervals: Vec<Interval>,
 }
@@ -215,6 +240,7 @@ fn read_row(row: Row, source: &str) -> Option<Species> {
         phase: row.phase,
         molar_mass: row.molar_mass_g_mol * 1e-3,
         elements: Some(elements),
+        critical: row.critical,
         curve: Curve::from_intervals(t_min, &intervals)?,
         chemical_exergy: None,
         source: source.to_owned(),
@@ -263,7 +289,7 @@ mod tests {
             molar_mass: 0.028,
             elements: None,
             heat_capacity: vec![Term { coefficient: 29.1, exponent: 0.0 }],
-            temperature_range: (200.0, 3000.0),
+            temperature_range: Some((200.0, 3000.0)),
             formation_enthalpy: 0.0,
             standard_entropy: 191.6,
             chemical_exergy: None,
@@ -280,8 +306,8 @@ mod tests {
                 ],
                 ..good.clone()
             },
-            SpeciesDefinition { temperature_range: (300.0, 300.0), ..good.clone() },
-            SpeciesDefinition { temperature_range: (f64::NAN, 300.0), ..good.clone() },
+            SpeciesDefinition { temperature_range: Some((300.0, 300.0)), ..good.clone() },
+            SpeciesDefinition { temperature_range: Some((f64::NAN, 300.0)), ..good.clone() },
             SpeciesDefinition { formation_enthalpy: f64::INFINITY, ..good.clone() },
             SpeciesDefinition { chemical_exergy: Some(f64::NAN), ..good.clone() },
         ] {
@@ -301,7 +327,7 @@ mod tests {
                 Term { coefficient: 0.7, exponent: 0.5 },
                 Term { coefficient: 3e6, exponent: -3.0 },
             ],
-            temperature_range: (200.0, 3000.0),
+            temperature_range: Some((200.0, 3000.0)),
             formation_enthalpy: -1000.0,
             standard_entropy: 200.0,
             chemical_exergy: None,
