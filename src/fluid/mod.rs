@@ -82,6 +82,13 @@ pub trait Engine: Send + Sync + std::fmt::Debug {
     /// The way to the absolute datum; `None` where the formulation has no formation data.
     fn datum(&self) -> Option<Datum>;
 
+    /// The way to the absolute datum at composition `c`, and its derivatives with respect to `c`
+    /// (humid air and solutions, whose datum depends on their make-up).
+    fn datum_at(&self, c: f64) -> Option<(Datum, Datum)> {
+        let _ = c;
+        self.datum().map(|datum| (datum, Datum { enthalpy: 0.0, entropy: 0.0 }))
+    }
+
     /// Relative standard uncertainty of enthalpy and entropy *differences* by this formulation at
     /// a state (k = 1), as its source gives it.
     fn relative_uncertainty(&self, state: &State) -> f64;
