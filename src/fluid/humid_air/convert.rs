@@ -309,8 +309,7 @@ impl HumidAir {
         let at = |t: f64| -> Result<f64, PropertyError> {
             let p_sub = water::saturation_pressure(Dual::coordinate(t, 1));
             let [_, slope, _] = p_sub.d;
-            let gas =
-                self.gas(Dual::constant(p_sub.v), Dual::constant(t), Dual::constant(1.0))?;
+            let gas = self.gas(Dual::constant(p_sub.v), Dual::constant(t), Dual::constant(1.0))?;
             let v = water::ice_volume(Dual::constant(t)).v;
             let vapour = 1.0 / (gas.rho.v * self.water_mass);
             Ok(gas.h.v / self.water_mass - t * (vapour - v) * slope - p_sub.v * v)
@@ -324,13 +323,7 @@ impl HumidAir {
 
     /// Balance of adiabatic saturation per kg of dry air: zero when air at (p, t, w) and
     /// (W' - w) of condensed water make the saturated end.
-    fn saturation_balance(
-        &self,
-        p: Dual,
-        t: Dual,
-        w: Dual,
-        end: &Saturated,
-    ) -> Result<Dual, PropertyError> {
+    fn saturation_balance(&self, p: Dual, t: Dual, w: Dual, end: &Saturated) -> Result<Dual, PropertyError> {
         // A wet bulb below what dry air can reach asks for a slightly negative w: go on linearly.
         let h = if w.v >= 0.0 {
             self.mass(p, t, w)?.h * (w + 1.0)

@@ -33,8 +33,9 @@ pub const HUMIDITY_RATIO_RANGE: (f64, f64) = (0.0, 10.0);
 /// Mole fractions of N2, O2, Ar and CO2 in dry air.
 const DRY_AIR: [f64; 4] = [0.78084, 0.20946, 0.00934, 0.00036];
 
-/// Relative excess of W over saturation that counts as rounding, not as fog.
-const FOG_TOLERANCE: f64 = 1e-6;
+/// Relative excess of W over saturation that does not count as fog: what saturation itself is known
+/// to, and what a table's last digit may add.
+const FOG_TOLERANCE: f64 = 1e-4;
 
 /// kg/mol of dry air, from [`DRY_AIR`] and the atomic masses, so that elements balance exactly.
 fn dry_air_molar_mass() -> f64 {
@@ -120,13 +121,7 @@ impl HumidAir {
             enthalpy: (co2 * -393_510.0 - (own.h - engine.h_air)) / engine.air_mass,
             entropy: (entropy - (own.s - engine.s_air)) / engine.air_mass,
         };
-        // Absolute datum of water: liquid at 298.15 K and 0.1 MPa, -285.830 kJ/mol and
-        // 69.95 J/(mol K) (CODATA key values, 1989).
-        let liquid = water::liquid(P_REF, t);
-        engine.water_offset = Datum {
-            enthalpy: -285_830.0 / engine.water_mass - (liquid.g - t * liquid.t),
-            entropy: 69.95 / engine.water_mass + liquid.t,
-        };
+        engine.water_offset = water::absolute_offset();
         engine
     }
 
@@ -157,10 +152,8 @@ impl HumidAir {
         let s = x * t.chain(air.s - self.s_air, air.cp / t.v) + y * t.chain(water.s, water.cp / t.v)
             - (y_ln_y(x) + y_ln_y(y) + ln_p + (b + t * b1) * rho + (c + t * c1) * rho2 * 0.5) * R;
         let floor = if y.v > TRACE { y.ln() } else { y.chain(libm::log(TRACE), 1.0 / TRACE) };
-        let ln_fugacity = floor
-            + (rho * rt).ln()
-            + virial.b_water(t, y) * rho * 2.0
-            + virial.c_water(t, y) * rho2 * 1.5;
+        let ln_fugacity =
+            floor + (rho * rt).ln() + virial.b_water(t, y) * rho * 2.0 + virial.c_water(t, y) * rho2 * 1.5;
         Ok(Gas { rho, h, s, ln_fugacity })
     }
 
@@ -182,11 +175,7 @@ impl HumidAir {
         check_pressure(p)?;
         check_temperature(t)?;
         check_humidity_ratio(w)?;
-        let mass = self.mass(
-            Dual::coordinate(p, 0),
-            Dual::coordinate(t, 1),
-            Dual::coordinate(w, 2),
-        )?;
+        let mass = self.mass(Dual::coordinate(p, 0), Dual::coordinate(t, 1), Dual::coordinate(w, 2))?;
         let mut gradient = [[0.0; 3]; PROPERTIES];
         gradient[0] = [0.0, 1.0, 0.0];
         gradient[1] = [1.0, 0.0, 0.0];

@@ -1,6 +1,7 @@
 //! Condensed water: saturation and sublimation pressure, and liquid water of IAPWS-IF97 region 1.
 
 use super::dual::Dual;
+use crate::fluid::{Datum, Element};
 
 /// Triple-point temperature of water, K.
 pub(in crate::fluid) const T_TRIPLE: f64 = 273.16;
@@ -107,7 +108,7 @@ fn power(x: f64, n: i32) -> f64 {
 }
 
 /// Saturation pressure over liquid water in Pa and its slope: IAPWS R7-97(2012), eq. 30.
-fn saturation_liquid(t: f64) -> (f64, f64) {
+pub(in crate::fluid) fn saturation_liquid(t: f64) -> (f64, f64) {
     const N: [f64; 10] = [
         0.11670521452767e4,
         -0.72421316703206e6,
@@ -184,4 +185,16 @@ pub(super) fn henry(t: Dual, p_sat: Dual) -> Dual {
         + share(0.2095, -9.44833, 4.43822, 11.42005)
         + share(0.0093, -8.40954, 4.29587, 10.52779);
     p_sat / sum
+}
+
+/// What joins liquid water of IAPWS-IF97 to the absolute datum: -285.830 kJ/mol and
+/// 69.95 J/(mol K) at 298.15 K and 0.1 MPa (CODATA key values, 1989).
+pub(in crate::fluid) fn absolute_offset() -> Datum {
+    let molar_mass = 2.0 * Element::H.molar_mass() + Element::O.molar_mass();
+    let t = 298.15;
+    let liquid = liquid(1e5, t);
+    Datum {
+        enthalpy: -285_830.0 / molar_mass - (liquid.g - t * liquid.t),
+        entropy: 69.95 / molar_mass + liquid.t,
+    }
 }

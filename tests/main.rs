@@ -1,0 +1,3 @@
+//! Checks against published and reference values.
+
+mod reference;
