@@ -172,7 +172,7 @@ impl HumidAir {
             if !(w > -0.5 && w.is_finite()) {
                 break;
             }
-            if step.abs() <= 1e-13 * w.abs().max(1e-6) {
+            if step.abs() <= 1e-15 + 1e-13 * w.abs() {
                 // A saturated state may come out below zero by rounding only.
                 let limit = if w > -1e-9 { w.max(0.0) } else { w };
                 within("humidity ratio", "kg/kg", limit, (0.0, HUMIDITY_RATIO_RANGE.1))?;

@@ -303,7 +303,7 @@ fn density(p: Dual, rt: Dual, b: Dual, c: Dual) -> Result<Dual, PropertyError> {
     for _ in 0..60 {
         let miss = rt.v * rho * (1.0 + rho * (b.v + rho * c.v)) - p.v;
         slope = rt.v * (1.0 + rho * (2.0 * b.v + 3.0 * rho * c.v));
-        if !(slope > 0.05 * rt.v) {
+        if slope <= 0.05 * rt.v || slope.is_nan() {
             return Err(PropertyError::NoConvergence);
         }
         if converged {
@@ -313,7 +313,7 @@ fn density(p: Dual, rt: Dual, b: Dual, c: Dual) -> Result<Dual, PropertyError> {
         rho -= step;
         converged = step.abs() <= 1e-13 * rho;
     }
-    if !converged || !(rho > 0.0) {
+    if !converged || rho <= 0.0 {
         return Err(PropertyError::NoConvergence);
     }
     let fixed = Dual::constant(rho);

@@ -30,7 +30,7 @@ mod air {
         (-0.146_629_609_713, 3.6),
         (0.014_828_789_197_8, 3.5),
     ];
-    pub const THIRD: [(f64, f64); 2] = [(0.071_401_017_897_1, 0.0), (0.101_365_037_912, 1.6)];
+    pub const THIRD: [(f64, f64); 2] = [(0.071_414_017_897_1, 0.0), (0.101_365_037_912, 1.6)];
     /// Powers of the ideal part.
     pub const IDEAL: [(f64, f64); 6] = [
         (0.605_719_4e-7, -3.0),
@@ -240,4 +240,56 @@ pub(super) fn ideal_water(t: f64) -> Ideal {
     einstein(&water::EINSTEIN, tau, &mut phi);
     let [p, p1, p2] = phi;
     ideal(t, water::RHO, p, p1, p2)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// IAPWS G9-12 and G8-10 at 200 K and 300 K, as PyPI iapws 1.5.5 evaluates them.
+    #[test]
+    fn coefficients() {
+        for (t, second, third) in [
+            (
+                200.0,
+                [-3.927_225_668e-5, -7.848_742_778e-5, -1.862_827_370e-2],
+                [2.271_130_633e-9, 1.054_935_75e-9, -3.498_726_342e-6, -2.639_597_065e-4],
+            ),
+            (
+                300.0,
+                [-7.762_109_771e-6, -2.956_727_474e-5, -1.201_299_281e-3],
+                [1.811_666_379e-9, 8.019_777_407e-10, -1.155_527_837e-7, -4.204_191_964e-6],
+            ),
+        ] {
+            let virial = Virial::at(t);
+            for (curve, want) in virial.second.iter().chain(&virial.third).zip(second.iter().chain(&third)) {
+                // The water coefficients differ by the two molar masses in use (2e-7).
+                assert!((curve[0] / want - 1.0).abs() < 2e-6, "{} {want} at {t}", curve[0]);
+            }
+        }
+        let virial = Virial::at(300.0);
+        assert!((virial.second[1][1] / 2.800_973_604e-7 - 1.0).abs() < 1e-9);
+        assert!((virial.third[2][1] / 2.613_632_778e-9 - 1.0).abs() < 1e-9);
+        assert!((virial.third[2][2] / -7.513_345_818e-11 - 1.0).abs() < 1e-9);
+    }
+
+    #[test]
+    fn curves_and_ideal_parts_are_their_own_derivatives() {
+        for t in [230.0, 300.0, 550.0] {
+            let h = 1e-3 * t;
+            let (low, mid, high) = (Virial::at(t - h), Virial::at(t), Virial::at(t + h));
+            let all = |v: &Virial| v.second.into_iter().chain(v.third).collect::<Vec<_>>();
+            for ((l, m), u) in all(&low).into_iter().zip(all(&mid)).zip(all(&high)) {
+                for k in 0..2 {
+                    let slope = (u[k] - l[k]) / (2.0 * h);
+                    assert!((slope - m[k + 1]).abs() < 2e-3 * m[k + 1].abs(), "{slope} {}", m[k + 1]);
+                }
+            }
+            for f in [ideal_air, ideal_water] {
+                let (l, m, u) = (f(t - h), f(t), f(t + h));
+                assert!(((u.h - l.h) / (2.0 * h) / m.cp - 1.0).abs() < 1e-5);
+                assert!(((u.s - l.s) / (2.0 * h) * t / m.cp - 1.0).abs() < 1e-5);
+            }
+        }
+    }
 }

@@ -198,3 +198,41 @@ pub(in crate::fluid) fn absolute_offset() -> Datum {
         entropy: 69.95 / molar_mass + liquid.t,
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// IAPWS R7-97(2012), Tables 5 and 35; IAPWS R14-08(2011), section 3.
+    #[test]
+    fn published_values() {
+        let g = liquid(3e6, 300.0);
+        assert!((g.p - 0.100215168e-2).abs() < 5e-12);
+        assert!((g.g - 300.0 * g.t - 0.115331273e6).abs() < 5e-4);
+        assert!((-g.t - 0.392294792e3).abs() < 5e-7);
+        assert!((-300.0 * g.tt - 0.417301218e4).abs() < 5e-6);
+        for (t, p) in [(300.0, 0.353658941e4), (500.0, 0.263889776e7), (600.0, 0.123443146e8)] {
+            assert!((saturation_liquid(t).0 / p - 1.0).abs() < 2e-9);
+        }
+        assert!((sublimation(230.0).0 - 8.94735).abs() < 5e-6);
+    }
+
+    #[test]
+    fn slopes() {
+        let h = 1e-3;
+        for (f, t) in [
+            (saturation_liquid as fn(f64) -> (f64, f64), 280.0),
+            (saturation_liquid, 450.0),
+            (sublimation, 230.0),
+        ] {
+            let slope = (f(t + h).0 - f(t - h).0) / (2.0 * h);
+            assert!((slope / f(t).1 - 1.0).abs() < 1e-7);
+        }
+        let (p, t) = (4e6, 330.0);
+        let g = liquid(p, t);
+        let (a, b) = (liquid(p, t - h), liquid(p, t + h));
+        assert!(((b.p - a.p) / (2.0 * h) / g.tp - 1.0).abs() < 1e-6);
+        let (a, b) = (liquid(p - 1e3, t), liquid(p + 1e3, t));
+        assert!(((b.p - a.p) / 2e3 / g.pp - 1.0).abs() < 1e-4);
+    }
+}

@@ -28,7 +28,7 @@ impl Salt {
     pub const fn range(self) -> [(f64, f64); 3] {
         match self {
             Salt::Sea => [(273.15, 353.15), (1e3, 2e7), (0.0, 0.12)],
-            Salt::SodiumChloride => [(273.15, 373.15), (1e3, 2e7), (0.0, 0.2596)],
+            Salt::SodiumChloride => [(273.15, 373.15), (1e3, 2e7), (0.0, 0.26)],
         }
     }
 }
@@ -392,8 +392,9 @@ impl Engine for Solution {
         match self.salt {
             // Heat capacity 0.5 J/(kg K) of 4000 (IAPWS R13-08), doubled for the extrapolated parts.
             Salt::Sea => 3e-4,
-            // Heat capacity against published tables: within 1 %, as a rectangular distribution.
-            Salt::SodiumChloride => 6e-3,
+            // Heat capacity against published brine tables: within 0.6 % to a mass fraction of 0.1,
+            // 2 % at 0.2.
+            Salt::SodiumChloride => 1e-2,
         }
     }
 }

@@ -127,3 +127,31 @@ fn powers(x: f64) -> [f64; 8] {
 fn at(table: &[f64; 8], n: usize) -> f64 {
     table.get(n).copied().unwrap_or(0.0)
 }
+
+#[cfg(test)]
+mod tests {
+    /// IAPWS R13-08, Table 8, saline part: standard seawater at 273.15 K, and 0.1 kg/kg at 353 K,
+    /// both at 101325 Pa.
+    #[test]
+    fn published_values() {
+        let near = |got: f64, want: f64| assert!((got / want - 1.0).abs() < 1e-8, "{got} {want}");
+        let s = super::saline(101_325.0, 273.15, 0.035_165_04);
+        near(s.g, -0.101342742e3);
+        near(s.c, 0.639974067e5);
+        near(s.t, -0.147643376);
+        near(s.p, -0.274957224e-4);
+        near(s.tt, 0.852861151);
+        near(s.tp, 0.119286787e-6);
+        near(s.pp, 0.581535172e-13);
+        near(s.pc, -0.759615412e-3);
+        let s = super::saline(101_325.0, 353.0, 0.1);
+        near(s.g, 0.150871740e5);
+        near(s.c, 0.251957276e6);
+        near(s.t, 0.156230907e3);
+        near(s.p, -0.579227286e-4);
+        near(s.tt, 0.127922649e1);
+        near(s.tp, 0.803061596e-6);
+        near(s.pp, 0.213086154e-12);
+        near(s.pc, -0.305957802e-3);
+    }
+}
