@@ -188,7 +188,7 @@ impl HumidAir {
     /// balance, the liquid one is given.
     ///
     /// # Errors
-    /// Fog, a wet bulb below 213.15 K, or input outside the range.
+    /// Fog, a wet bulb below 213 K, or input outside the range.
     pub fn wet_bulb(&self, p: f64, t: f64, w: f64) -> Result<Derived, PropertyError> {
         check(&[p, t, w])?;
         check_pressure(p)?;

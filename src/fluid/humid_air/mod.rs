@@ -9,6 +9,26 @@
 //!
 //! The composition coordinate is the humidity ratio W, kg of water per kg of dry air, and every
 //! value is per kg of *mixture*.
+//!
+//! # Accuracy
+//!
+//! Largest deviations from the RP-1485 states (234 states from -20 to 80 °C and 0.7 to 5 bar, dry
+//! to saturated):
+//!
+//! | quantity | W up to 0.06 | all, W up to 1.3 |
+//! |---|---|---|
+//! | humidity ratio from relative humidity, relative | 7e-6 | 7e-6 |
+//! | specific volume, relative | 9e-6 | 1.2e-5 |
+//! | enthalpy | 2.6 J/kg | 21 J/kg |
+//! | entropy | 0.5 J/(kg K) | 3.2 J/(kg K) |
+//! | dew and frost point | 0.0002 K | 0.0002 K |
+//! | wet bulb | 0.0003 K | 0.0003 K |
+//!
+//! The entropy of the reference adds a constant of 0.0237 J/(mol K) to the water too and takes its
+//! ideal parts at other volumes than its residual part, so that its saturated air is out of
+//! equilibrium with liquid water by some 1 to 3 kJ per kg of water. Here the chemical potential of
+//! water in saturated air agrees with that of IAPWS-IF97 liquid water within 13 J/kg (most of it
+//! the dissolved air), which is what a second-law balance needs.
 
 mod convert;
 mod dual;
@@ -24,7 +44,7 @@ use dual::Dual;
 use virial::{P_REF, R, Virial};
 
 /// Range of temperature, K.
-pub const TEMPERATURE_RANGE: (f64, f64) = (213.15, water::T_MAX);
+pub const TEMPERATURE_RANGE: (f64, f64) = (213.0, water::T_MAX);
 /// Range of pressure, Pa.
 pub const PRESSURE_RANGE: (f64, f64) = (1e3, 5e6);
 /// Range of the humidity ratio, kg/kg of dry air.
