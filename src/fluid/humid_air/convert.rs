@@ -3,10 +3,11 @@
 use super::dual::Dual;
 use super::virial::R;
 use super::{
-    HUMIDITY_RATIO_RANGE, HumidAir, TEMPERATURE_RANGE, check, check_humidity_ratio, check_pressure,
-    check_temperature, water, within,
+    HUMIDITY_RATIO_RANGE, HumidAir, TEMPERATURE_RANGE, check_humidity_ratio, check_pressure,
+    check_temperature, water,
 };
 use crate::fluid::PropertyError;
+use crate::fluid::numeric::{finite, root, within};
 
 /// Lowest temperature of the saturation line, K (the cross coefficients end there).
 const SATURATION_MIN: f64 = 173.15;
@@ -37,7 +38,7 @@ impl HumidAir {
     /// `NoSaturation` where water alone would boil (its saturation pressure reaches `p`); input
     /// outside the range.
     pub fn saturation_humidity_ratio(&self, p: f64, t: f64) -> Result<Derived, PropertyError> {
-        check(&[p, t])?;
+        finite(&[p, t])?;
         check_pressure(p)?;
         within("temperature", "K", t, (SATURATION_MIN, water::T_MAX))?;
         let y = self.saturation_fraction(Dual::coordinate(p, 0), Dual::coordinate(t, 1))?;
@@ -50,7 +51,7 @@ impl HumidAir {
     /// # Errors
     /// As [`HumidAir::saturation_humidity_ratio`].
     pub fn enhancement_factor(&self, p: f64, t: f64) -> Result<Derived, PropertyError> {
-        check(&[p, t])?;
+        finite(&[p, t])?;
         check_pressure(p)?;
         within("temperature", "K", t, (SATURATION_MIN, water::T_MAX))?;
         let (p, t) = (Dual::coordinate(p, 0), Dual::coordinate(t, 1));
@@ -69,7 +70,7 @@ impl HumidAir {
         t: f64,
         rh: f64,
     ) -> Result<Derived, PropertyError> {
-        check(&[p, t, rh])?;
+        finite(&[p, t, rh])?;
         check_pressure(p)?;
         check_temperature(t)?;
         within("relative humidity", "1", rh, (0.0, 1.0))?;
@@ -87,7 +88,7 @@ impl HumidAir {
     /// # Errors
     /// Input outside the range.
     pub fn relative_humidity(&self, p: f64, t: f64, w: f64) -> Result<Derived, PropertyError> {
-        check(&[p, t, w])?;
+        finite(&[p, t, w])?;
         check_pressure(p)?;
         check_temperature(t)?;
         check_humidity_ratio(w)?;
@@ -110,7 +111,7 @@ impl HumidAir {
     /// # Errors
     /// Air drier than saturation at 173.15 K, or input outside the range.
     pub fn dew_point(&self, p: f64, w: f64) -> Result<Derived, PropertyError> {
-        check(&[p, w])?;
+        finite(&[p, w])?;
         check_pressure(p)?;
         check_humidity_ratio(w)?;
         let driest = self.saturation_humidity_ratio(p, SATURATION_MIN)?.value;
@@ -146,7 +147,7 @@ impl HumidAir {
         t: f64,
         wet_bulb: f64,
     ) -> Result<Derived, PropertyError> {
-        check(&[p, t, wet_bulb])?;
+        finite(&[p, t, wet_bulb])?;
         check_pressure(p)?;
         check_temperature(t)?;
         within("wet-bulb temperature", "K", wet_bulb, (TEMPERATURE_RANGE.0, t))?;
@@ -190,7 +191,7 @@ impl HumidAir {
     /// # Errors
     /// Fog, a wet bulb below 213 K, or input outside the range.
     pub fn wet_bulb(&self, p: f64, t: f64, w: f64) -> Result<Derived, PropertyError> {
-        check(&[p, t, w])?;
+        finite(&[p, t, w])?;
         check_pressure(p)?;
         check_temperature(t)?;
         check_humidity_ratio(w)?;
@@ -274,7 +275,7 @@ impl HumidAir {
                 return Ok(Dual { v: y, d: f.d.map(|d| -d / slope) });
             }
             // Newton with y kept between 0 and 1.
-            y = (y - step).clamp(0.5 * y, 0.5 * (1.0 + y));
+            y = (y - step).max(0.5 * y).min(0.5 * (1.0 + y));
         }
         // The last digits may alternate.
         let f = miss(pc, tc, Dual::coordinate(y, 0), cc, kc)?;
@@ -356,30 +357,4 @@ fn liquid_enthalpy(p: Dual, t: Dual) -> Dual {
     let g = water::liquid(p.v, t.v);
     let h = g.g - t.v * g.t;
     p.chain(h, g.p - t.v * g.tp) + t.chain(0.0, -t.v * g.tt)
-}
-
-/// Root of a falling function on [low, high] by Newton's method kept in its bracket; `f` gives
-/// value and slope, and may give -infinity.
-fn root(
-    mut low: f64,
-    mut high: f64,
-    start: f64,
-    f: impl Fn(f64) -> Result<(f64, f64), PropertyError>,
-) -> Result<f64, PropertyError> {
-    let mut x = start.clamp(low, high);
-    for _ in 0..120 {
-        let (value, slope) = f(x)?;
-        if value > 0.0 {
-            low = x;
-        } else {
-            high = x;
-        }
-        let step = value / slope;
-        let next = x - step;
-        if step.abs() <= 1e-13 * x || high - low <= 1e-13 * x {
-            return Ok(next.clamp(low, high));
-        }
-        x = if next > low && next < high { next } else { 0.5 * (low + high) };
-    }
-    Err(PropertyError::NoConvergence)
 }

@@ -37,6 +37,7 @@ pub(in crate::fluid) mod water;
 
 pub use convert::Derived;
 
+use super::numeric::{finite, root, within};
 use super::{
     Datum, Element, Elements, Engine, Pair, Phase, PropertyError, Provenance, State, state::PROPERTIES,
 };
@@ -191,7 +192,7 @@ impl HumidAir {
     /// # Errors
     /// Input outside the range, or no gas root of the virial equation.
     pub fn gas_state(&self, p: f64, t: f64, w: f64) -> Result<State, PropertyError> {
-        check(&[p, t, w])?;
+        finite(&[p, t, w])?;
         check_pressure(p)?;
         check_temperature(t)?;
         check_humidity_ratio(w)?;
@@ -239,50 +240,25 @@ impl HumidAir {
 
     /// Temperature at which enthalpy or entropy (`row` of the gradient) takes `target`.
     fn temperature_at(&self, p: f64, target: f64, row: usize, w: f64) -> Result<f64, PropertyError> {
-        check(&[p, target, w])?;
+        finite(&[p, target, w])?;
         check_pressure(p)?;
         check_humidity_ratio(w)?;
-        let (mut low, mut high) = TEMPERATURE_RANGE;
+        let (low, high) = TEMPERATURE_RANGE;
         let at = |t: f64| {
             self.mass(Dual::constant(p), Dual::coordinate(t, 1), Dual::constant(w))
                 .map(|m| if row == 2 { m.h } else { m.s })
         };
-        let top = at(high)?;
         let (quantity, unit) = if row == 2 { ("enthalpy", "J/kg") } else { ("entropy", "J/(kg K)") };
-        let bottom = at(low).map(|f| f.v).unwrap_or(f64::NEG_INFINITY);
-        if target > top.v || target < bottom {
-            let (min, max) = (bottom.max(-1e9), top.v);
-            return Err(PropertyError::OutOfRange { quantity, unit, value: target, min, max });
-        }
-        let mut t = 300.0_f64;
-        for _ in 0..100 {
-            // No gas root means that the state is far inside the fog region: look higher.
-            let next = match at(t) {
-                Ok(f) => {
-                    let miss = f.v - target;
-                    let [_, slope, _] = f.d;
-                    if miss > 0.0 {
-                        high = t;
-                    } else {
-                        low = t;
-                    }
-                    let step = miss / slope;
-                    if step.abs() <= 1e-13 * t {
-                        return Ok(t);
-                    }
-                    t - step
-                }
-                Err(_) => {
-                    low = t;
-                    f64::NAN
-                }
-            };
-            t = if next > low && next < high { next } else { 0.5 * (low + high) };
-            if high - low <= 1e-12 * high {
-                return Ok(t);
-            }
-        }
-        Err(PropertyError::NoConvergence)
+        // Without a gas root the lower end lies far inside the fog region and bounds nothing.
+        let bottom = at(low).map_or(-1e9, |f| f.v);
+        within(quantity, unit, target, (bottom, at(high)?.v))?;
+        root(low, high, 300.0, |t| {
+            // No gas root: look higher.
+            Ok(at(t).map_or((f64::INFINITY, f64::NAN), |f| {
+                let [_, slope, _] = f.d;
+                (target - f.v, -slope)
+            }))
+        })
     }
 
     /// What to add to the native enthalpy and entropy per kg of mixture at humidity ratio `c` to
@@ -341,23 +317,6 @@ fn density(p: Dual, rt: Dual, b: Dual, c: Dual) -> Result<Dual, PropertyError> {
     Ok(Dual { v: rho, d: miss.d.map(|d| -d / slope) })
 }
 
-fn check(values: &[f64]) -> Result<(), PropertyError> {
-    if values.iter().all(|x| x.is_finite()) { Ok(()) } else { Err(PropertyError::NotFinite) }
-}
-
-fn within(
-    quantity: &'static str,
-    unit: &'static str,
-    value: f64,
-    (min, max): (f64, f64),
-) -> Result<(), PropertyError> {
-    if value >= min && value <= max {
-        Ok(())
-    } else {
-        Err(PropertyError::OutOfRange { quantity, unit, value, min, max })
-    }
-}
-
 fn check_pressure(p: f64) -> Result<(), PropertyError> {
     within("pressure", "Pa", p, PRESSURE_RANGE)
 }
@@ -392,7 +351,7 @@ impl Engine for HumidAir {
             Pair::PressureEntropy => self.temperature_at(a, b, 3, c)?,
             _ => return Err(PropertyError::UnsupportedPair(pair)),
         };
-        check(&[a, t, c])?;
+        finite(&[a, t, c])?;
         check_pressure(a)?;
         check_temperature(t)?;
         check_humidity_ratio(c)?;

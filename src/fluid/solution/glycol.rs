@@ -1,6 +1,7 @@
 //! Water with ethylene or propylene glycol at a fixed mass fraction.
 
-use super::{Saline, liquid_state, solve_temperature, within};
+use super::{Saline, liquid_state, solve_temperature};
+use crate::fluid::numeric::{finite, within};
 use crate::fluid::{Datum, Element, Elements, Engine, Pair, PropertyError, Provenance, State};
 
 /// Which glycol.
@@ -150,9 +151,7 @@ impl Glycol {
     /// # Errors
     /// A mass fraction outside the range or not finite.
     pub fn new(kind: GlycolKind, fraction: f64) -> Result<Glycol, PropertyError> {
-        if !fraction.is_finite() {
-            return Err(PropertyError::NotFinite);
-        }
+        finite(&[fraction])?;
         within("mass fraction of glycol", "kg/kg", fraction, (0.0, 0.6))?;
         let table = match kind {
             GlycolKind::Ethylene => &ETHYLENE,
@@ -181,9 +180,7 @@ impl Glycol {
     }
 
     fn gibbs(&self, p: f64, t: f64) -> Result<Saline, PropertyError> {
-        if !(p.is_finite() && t.is_finite()) {
-            return Err(PropertyError::NotFinite);
-        }
+        finite(&[p, t])?;
         within("temperature", "K", t, (self.freezing, T_MAX))?;
         within("pressure", "Pa", p, PRESSURE)?;
         let y = t - self.base;

@@ -12,6 +12,7 @@ mod sodium_chloride;
 pub use glycol::{Glycol, GlycolKind};
 
 use super::humid_air::water;
+use super::numeric::{finite, root, within};
 use super::{Datum, Element, Elements, Engine, Pair, Phase, PropertyError, Provenance, State};
 
 /// The salt of a [`Solution`].
@@ -80,9 +81,7 @@ impl Solution {
 
     /// Gibbs energy of the solution and its derivatives; input is checked.
     fn gibbs(&self, p: f64, t: f64, c: f64) -> Result<Saline, PropertyError> {
-        if !(p.is_finite() && t.is_finite() && c.is_finite()) {
-            return Err(PropertyError::NotFinite);
-        }
+        finite(&[p, t, c])?;
         let [by_t, by_p, by_c] = self.salt.range();
         within("temperature", "K", t, by_t)?;
         within("pressure", "Pa", p, by_p)?;
@@ -162,9 +161,7 @@ impl Solution {
         product: f64,
         recovery: f64,
     ) -> Result<f64, PropertyError> {
-        if !recovery.is_finite() {
-            return Err(PropertyError::NotFinite);
-        }
+        finite(&[recovery])?;
         within("recovery", "kg/kg", recovery, (1e-6, 1.0 - 1e-6))?;
         let brine = (feed - recovery * product) / (1.0 - recovery);
         let g = |c: f64| self.gibbs(p, t, c).map(|g| g.g);
@@ -173,9 +170,7 @@ impl Solution {
 
     /// Temperature at which enthalpy (row 2) or entropy (row 3) takes `target`.
     fn temperature_at(&self, p: f64, target: f64, row: usize, c: f64) -> Result<f64, PropertyError> {
-        if !target.is_finite() {
-            return Err(PropertyError::NotFinite);
-        }
+        finite(&[target])?;
         let [(low, top), ..] = self.salt.range();
         // Below its boiling point; the water's saturation temperature caps the range.
         let mut high = top;
@@ -200,52 +195,26 @@ fn boiling_temperature(p: f64, low: f64, high: f64) -> f64 {
     a
 }
 
-/// Newton's method in a bracket on a rising function of temperature that gives value and slope.
+/// Temperature in [low, high] at which a rising function of it, that gives value and slope, takes
+/// `target`.
 fn solve_temperature(
     value: impl Fn(f64) -> Result<(f64, f64), PropertyError>,
     target: f64,
     (quantity, unit): (&'static str, &'static str),
-    mut low: f64,
-    mut high: f64,
+    low: f64,
+    high: f64,
 ) -> Result<f64, PropertyError> {
     let (min, max) = (value(low)?.0, value(high)?.0);
     // Rounding of a state at the very end of the range.
     let slack = 1e-10 * (max - min);
     within(quantity, unit, target, (min - slack, max + slack))?;
-    let mut t = low + (high - low) * ((target - min) / (max - min)).clamp(0.0, 1.0);
-    for _ in 0..100 {
-        let (f, slope) = value(t)?;
-        if f > target {
-            high = t;
-        } else {
-            low = t;
-        }
-        let step = (f - target) / slope;
-        let next = t - step;
-        if step.abs() <= 1e-13 * t || high - low <= 1e-13 * t {
-            return Ok(next.clamp(low, high));
-        }
-        t = if next > low && next < high { next } else { 0.5 * (low + high) };
-    }
-    Err(PropertyError::NoConvergence)
+    let start = low + (high - low) * ((target - min) / (max - min)).clamp(0.0, 1.0);
+    root(low, high, start, |t| value(t).map(|(f, slope)| (target - f, -slope)))
 }
 
 /// Pure water as a solution without salt.
 fn pure(w: water::Gibbs) -> Saline {
     Saline { g: w.g, t: w.t, p: w.p, tt: w.tt, tp: w.tp, pp: w.pp, ..Saline::default() }
-}
-
-fn within(
-    quantity: &'static str,
-    unit: &'static str,
-    value: f64,
-    (min, max): (f64, f64),
-) -> Result<(), PropertyError> {
-    if value >= min && value <= max {
-        Ok(())
-    } else {
-        Err(PropertyError::OutOfRange { quantity, unit, value, min, max })
-    }
 }
 
 /// The liquid state of a Gibbs energy.
@@ -406,9 +375,7 @@ impl Engine for Solution {
 /// # Errors
 /// A recovery outside 0 to 1 (exclusive), or input that is not finite.
 pub fn dilute_separation_work(feed: f64, recovery: f64) -> Result<f64, PropertyError> {
-    if !(feed.is_finite() && recovery.is_finite()) {
-        return Err(PropertyError::NotFinite);
-    }
+    finite(&[feed, recovery])?;
     within("recovery", "1", recovery, (0.0, 1.0 - 1e-9))?;
     within("osmotic pressure", "Pa", feed, (0.0, 1e9))?;
     // -ln(1 - r)/r goes to 1.
