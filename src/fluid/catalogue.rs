@@ -1,6 +1,8 @@
 //! Fluids by name.
 
+use super::humid_air::HumidAir;
 use super::ideal_gas::IdealGas;
+use super::solution::Solution;
 use super::steam::Steam;
 use super::{Engine, incompressible};
 use crate::diagnostic::nearest;
@@ -16,9 +18,9 @@ pub enum Substance {
     /// Humid air.
     HumidAir,
     /// A combustion gas of variable air ratio.
-    CombustionGas,
+    CombustionGas(Arc<super::combustion_gas::CombustionGas>),
     /// A fuel by ultimate analysis.
-    Fuel,
+    Fuel(Arc<super::fuel::Fuel>),
     /// A pure fluid by a multiparameter equation.
     Pure,
     /// A substance without chemistry.
@@ -28,7 +30,7 @@ pub enum Substance {
 }
 
 /// Names that are taken before any listed fluid.
-const BUILT_IN: [&str; 3] = ["water", "steam", "air"];
+const BUILT_IN: [&str; 6] = ["water", "steam", "air", "humid air", "seawater", "sodium chloride"];
 
 fn dry_air() -> Option<Arc<IdealGas>> {
     static AIR: OnceLock<Option<Arc<IdealGas>>> = OnceLock::new();
@@ -46,6 +48,13 @@ pub fn by_name(name: &str) -> Result<(Substance, Arc<dyn Engine>), Vec<String>> 
             if let Some(air) = dry_air() {
                 return Ok((Substance::Gas(air.clone()), air));
             }
+        }
+        "humid air" | "humid_air" | "moist air" => {
+            return Ok((Substance::HumidAir, Arc::new(HumidAir::new())));
+        }
+        "seawater" => return Ok((Substance::Inert, Arc::new(Solution::seawater()))),
+        "sodium chloride" | "brine" => {
+            return Ok((Substance::Inert, Arc::new(Solution::sodium_chloride())));
         }
         _ => {}
     }

@@ -477,6 +477,10 @@ impl Engine for CombustionGas {
     }
 
     /// That of the polynomials, and |Z − 1| for the pressure effect that the model neglects.
+    fn elements_vary(&self) -> bool {
+        true
+    }
+
     fn relative_uncertainty(&self, state: &State) -> f64 {
         let neglected = self.critical.map_or(0.0, |c| c.departure(state.temperature, state.pressure));
         UNCERTAINTY.hypot(neglected)

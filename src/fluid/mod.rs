@@ -14,6 +14,7 @@ pub mod heat_capacity;
 pub mod humid_air;
 pub mod ideal_gas;
 pub mod incompressible;
+mod numeric;
 pub mod perfect_gas;
 pub mod real_fluid;
 pub mod solution;

@@ -128,7 +128,7 @@ impl<'t> Reader<'t> {
                 let molar_mass =
                     node.get("molar_mass")?.quantity(Dimension::MolarMass, &mut self.faults)?.value;
                 let terms = self.heat_capacity(node.get("specific_heat")?)?;
-                let gas = PerfectGas::new(molar_mass, &terms, (50.0, 6000.0));
+                let gas = PerfectGas::new(molar_mass, &terms, Some((50.0, 6000.0)));
                 let gas = self.engine(node, gas)?;
                 Some((Substance::Inert, Arc::new(gas)))
             }
@@ -208,7 +208,7 @@ impl<'t> Reader<'t> {
             Phase::Liquid
         };
         let name = node.get("name").and_then(Node::text).unwrap_or("incompressible");
-        let medium = Incompressible::new(name, phase, density, &terms, (50.0, 3000.0));
+        let medium = Incompressible::new(name, phase, density, &terms, Some((50.0, 3000.0)));
         Some((Substance::Inert, Arc::new(self.engine(node, medium)?)))
     }
 
@@ -367,7 +367,7 @@ impl<'t> Reader<'t> {
                 molar_mass,
                 elements,
                 heat_capacity,
-                temperature_range: (200.0, 6000.0),
+                temperature_range: Some((200.0, 6000.0)),
                 formation_enthalpy,
                 standard_entropy,
                 chemical_exergy,
