@@ -171,6 +171,10 @@ pub struct StateSpec {
     pub pointer: String,
     /// Whether the state is the environment's.
     pub ambient: bool,
+    /// Whether pressure and temperature were given so close to saturation (within three standard
+    /// uncertainties), and no phase, that they do not tell the quality. The state is then read as
+    /// (p, h) with h unknown and the temperature as surplus.
+    pub wet_ambiguous: bool,
 }
 
 /// Work as shaft or electric power.

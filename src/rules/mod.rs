@@ -5,7 +5,13 @@
 //! [`RuleInfo`] with a breaking and a keeping case, its margins, its explanation), and add it to
 //! the list below.
 
+mod carnot;
+mod machine;
+mod measure;
 pub mod phrase;
+mod remark;
+mod reservoir;
+mod terminal;
 
 use crate::balance::Evaluation;
 use crate::model::{Decision, Family, Margin};
@@ -181,6 +187,25 @@ macro_rules! rules {
 
 rules! {
     negative_entropy_generation::NegativeEntropyGeneration,
+    negative_group_entropy_generation::NegativeGroupEntropyGeneration,
+    negative_plant_entropy_generation::NegativePlantEntropyGeneration,
+    heat_flows_uphill::HeatFlowsUphill,
+    clausius_inequality_broken::ClausiusInequalityBroken,
+    work_from_one_reservoir::WorkFromOneReservoir,
+    engine_beats_carnot::EngineBeatsCarnot,
+    refrigerator_beats_carnot::RefrigeratorBeatsCarnot,
+    heat_pump_beats_carnot::HeatPumpBeatsCarnot,
+    expander_beats_isentropic::ExpanderBeatsIsentropic,
+    compressor_beats_isentropic::CompressorBeatsIsentropic,
+    throttle_against_entropy::ThrottleAgainstEntropy,
+    terminal_temperature_cross::TerminalTemperatureCross,
+    parallel_flow_outlet_cross::ParallelFlowOutletCross,
+    mass_imbalance::MassImbalance,
+    element_imbalance::ElementImbalance,
+    energy_imbalance::EnergyImbalance,
+    composition_sum::CompositionSum,
+    surplus_property_mismatch::SurplusPropertyMismatch,
+    redundant_readings_disagree::RedundantReadingsDisagree,
 }
 
 /// The index of a rule by name.

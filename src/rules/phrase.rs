@@ -1,8 +1,8 @@
 //! Numbers and names in the sentences of rules, always in metric units.
 
 use crate::balance::Evaluation;
-use crate::model::Scope;
-use crate::process::Basis;
+use crate::model::{Decision, Scope};
+use crate::process::{Basis, StateId};
 use crate::quantity::{Dimension, UnitSystem, display};
 
 /// A figure with four significant digits and its metric unit.
@@ -79,4 +79,45 @@ pub fn subject(evaluation: &Evaluation<'_>, scope: Scope) -> String {
         Scope::Flow(f) => format!("flow \"{}\"", process.flows[f].name),
         Scope::Description => "the description".to_owned(),
     }
+}
+
+/// How sure a figure is, to be put behind it: nothing where no uncertainty enters.
+pub fn sureness(decision: &Decision) -> String {
+    if decision.u > 0.0 { format!(" (z = {})", number(decision.z)) } else { String::new() }
+}
+
+/// What a state is called in a sentence.
+pub fn state(evaluation: &Evaluation<'_>, state: StateId) -> String {
+    match super::measure::scope_of_state(&evaluation.view.model.process, state) {
+        Scope::Component(k) => format!("the content of {}", subject(evaluation, Scope::Component(k))),
+        Scope::Description => "a state of the description".to_owned(),
+        scope => subject(evaluation, scope),
+    }
+}
+
+/// What enters and leaves, what is missing, and how much that is of the throughput.
+pub fn imbalance(
+    evaluation: &Evaluation<'_>,
+    decision: &Decision,
+    scope: Scope,
+    what: &str,
+    sums: (f64, f64, f64),
+    dimension: Dimension,
+) -> String {
+    let (inflow, outflow, throughput) = sums;
+    let share = if throughput > 0.0 { 100.0 * decision.value.abs() / throughput } else { 0.0 };
+    let (verb, size) = if decision.value < 0.0 {
+        ("exceeds", "more out than in")
+    } else {
+        ("falls short of", "more in than out")
+    };
+    format!(
+        "{what} leaving {} ({}) {verb} {what} entering ({}): {} {size}, {} % of the throughput{}.",
+        subject(evaluation, scope),
+        figure(outflow, dimension),
+        figure(inflow, dimension),
+        figure(decision.value.abs(), dimension),
+        number(share),
+        sureness(decision),
+    )
 }
