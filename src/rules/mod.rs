@@ -11,6 +11,7 @@ mod measure;
 pub mod phrase;
 mod remark;
 mod reservoir;
+mod saturation;
 mod terminal;
 
 use crate::balance::Evaluation;
@@ -100,6 +101,8 @@ pub enum Aspect {
     State,
     /// A habit of the trade.
     Practice,
+    /// The tool's own arithmetic.
+    Tool,
 }
 
 /// A case that breaks or keeps a rule.
@@ -206,6 +209,14 @@ rules! {
     composition_sum::CompositionSum,
     surplus_property_mismatch::SurplusPropertyMismatch,
     redundant_readings_disagree::RedundantReadingsDisagree,
+    state_outside_formulation::StateOutsideFormulation,
+    vapour_below_saturation::VapourBelowSaturation,
+    liquid_above_saturation::LiquidAboveSaturation,
+    quality_out_of_range::QualityOutOfRange,
+    wetness_unknown::WetnessUnknown,
+    reversed_flow::ReversedFlow,
+    unusual_dead_state::UnusualDeadState,
+    gouy_stodola_mismatch::GouyStodolaMismatch,
 }
 
 /// The index of a rule by name.
