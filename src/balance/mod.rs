@@ -3,6 +3,7 @@
 
 mod equations;
 mod evaluation;
+pub mod exergy;
 pub mod region;
 
 pub use equations::{Equations, Row, by_pressure, isentropic_enthalpy, side_flows, side_mass, transfers};

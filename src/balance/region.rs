@@ -250,7 +250,7 @@ pub enum Bracket {
 
 /// The entropy that a heat flow carries, W/K or J/K, seen from inside the region it enters
 /// (`sign` +1) or leaves (−1); `members` are the components inside.
-fn heat_entropy(
+pub(super) fn heat_entropy(
     view: View<'_>,
     heat: VarId,
     boundary: Boundary,

@@ -4,13 +4,17 @@
 //! and returns a finite [`State`] with its first partial derivatives, or a [`PropertyError`] with
 //! the limit that was broken. It never panics and has no mutable state.
 
+pub mod catalogue;
+pub mod chemistry;
 pub mod combustion_gas;
 pub mod element;
 mod error;
 pub mod fuel;
+pub mod heat_capacity;
 pub mod humid_air;
 pub mod ideal_gas;
 pub mod incompressible;
+mod numeric;
 pub mod perfect_gas;
 pub mod real_fluid;
 pub mod solution;
@@ -18,6 +22,7 @@ pub mod state;
 pub mod stated;
 pub mod steam;
 
+pub use catalogue::{Substance, by_name};
 pub use element::{Element, Elements};
 pub use error::PropertyError;
 pub use state::{CompositionForm, Pair, Phase, Property, State};

@@ -207,7 +207,7 @@ impl State {
         let rb = self.gradient[second as usize];
         let det = ra[0] * rb[1] - ra[1] * rb[0];
         let scale = (ra[0] * rb[1]).abs() + (ra[1] * rb[0]).abs();
-        if !(det.abs() > 1e-13 * scale) {
+        if det.is_nan() || det.abs() <= 1e-13 * scale {
             return None;
         }
         // Rows of the inverse: d(basis)/d(a, b).

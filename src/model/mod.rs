@@ -168,7 +168,7 @@ fn scales(process: &Process) -> Vec<FluidScale> {
         .zip(absolute)
         .map(|(fluid, absolute)| {
             let variable = fluid.engine.elements_vary();
-            let reference = if matches!(fluid.substance, crate::process::Substance::Stated) {
+            let reference = if matches!(fluid.substance, crate::fluid::Substance::Stated) {
                 (0.0, 0.0)
             } else {
                 fluid
@@ -176,7 +176,7 @@ fn scales(process: &Process) -> Vec<FluidScale> {
                     .state(Pair::PressureTemperature, REFERENCE_PRESSURE, REFERENCE_TEMPERATURE, 0.0)
                     .map_or((0.0, 0.0), |s| (s.enthalpy, s.entropy))
             };
-            match fluid.engine.datum() {
+            match fluid.engine.datum().or_else(|| Some(fluid.engine.datum_at(0.01)?.0)) {
                 Some(datum) if absolute => {
                     FluidScale { scale: Scale::Absolute, offset: datum, reference, variable }
                 }

@@ -137,6 +137,7 @@ fn scale(nature: Nature) -> f64 {
         Nature::Enthalpy => 1e5,
         Nature::Pressure => 1e5,
         Nature::Temperature => 300.0,
+        Nature::Composition => 0.01,
     }
 }
 
@@ -153,6 +154,7 @@ fn guess(model: &Model, workspace: &Workspace, var: VarId) -> f64 {
         Nature::Mass => 1.0,
         Nature::Energy => 1e5,
         Nature::Temperature => 350.0,
+        Nature::Composition => 0.01,
         Nature::Pressure => 2e5,
         Nature::Enthalpy => {
             for &s in &model.dependents[var] {
@@ -316,7 +318,7 @@ fn scan(
             }
             out
         }
-        Nature::Mass | Nature::Energy => return None,
+        Nature::Mass | Nature::Energy | Nature::Composition => return None,
     };
     let eval = |workspace: &mut Workspace, x: f64| {
         workspace.set(model, unknown, x);

@@ -3,8 +3,12 @@
 //! of its readings live apart, in [`Inputs`].
 
 pub mod kinds;
+mod read;
+pub mod shape;
 
-use crate::fluid::{CompositionForm, Engine, Pair, Property};
+pub use read::{ReadLimits, read};
+
+use crate::fluid::{CompositionForm, Engine, Pair, Property, Substance};
 use kinds::Kind;
 use std::sync::Arc;
 
@@ -108,6 +112,8 @@ pub enum Nature {
     Pressure,
     /// K
     Temperature,
+    /// Composition coordinate of a variable mixture
+    Composition,
 }
 
 /// The reference in which an amount of material is counted.
@@ -171,9 +177,8 @@ pub struct StateSpec {
     pub pointer: String,
     /// Whether the state is the environment's.
     pub ambient: bool,
-    /// Whether pressure and temperature were given so close to saturation (within three standard
-    /// uncertainties), and no phase, that they do not tell the quality. The state is then read as
-    /// (p, h) with h unknown and the temperature as surplus.
+    /// Whether (p, T) was given so close to saturation that the wetness is unknown: the state then
+    /// has an unknown enthalpy, and the temperature is a surplus property.
     pub wet_ambiguous: bool,
 }
 
@@ -210,6 +215,8 @@ pub struct Material {
     pub velocity: Option<VarId>,
     /// m, where given.
     pub elevation: Option<VarId>,
+    /// Specific exergy as stated, J/kg (for a `stated` fluid).
+    pub stated_exergy: Option<f64>,
 }
 
 /// What a flow carries.
@@ -429,27 +436,6 @@ pub struct Fluid {
     pub substance: Substance,
 }
 
-/// What is known of a fluid's chemistry beyond its engine.
-#[derive(Clone, Debug)]
-pub enum Substance {
-    /// Water by the steam formulation.
-    Water,
-    /// An ideal-gas mixture (fixed composition).
-    Gas(Arc<crate::fluid::ideal_gas::IdealGas>),
-    /// Humid air.
-    HumidAir,
-    /// A combustion gas of variable air ratio.
-    CombustionGas,
-    /// A fuel by ultimate analysis.
-    Fuel,
-    /// A pure fluid by a multiparameter equation.
-    Pure,
-    /// A substance without chemistry.
-    Inert,
-    /// Figures taken at their word.
-    Stated,
-}
-
 /// The surroundings.
 #[derive(Clone, Debug)]
 pub struct Environment {
@@ -459,8 +445,8 @@ pub struct Environment {
     pub pressure: f64,
     /// Relative humidity, 0 to 1, where given.
     pub relative_humidity: Option<f64>,
-    /// Name of the chemical reference set.
-    pub chemistry: String,
+    /// Chemical reference set.
+    pub chemistry: crate::fluid::chemistry::ReferenceSet,
     /// Source of the barometric pressure.
     pub barometer: SourceId,
 }
@@ -487,8 +473,8 @@ pub struct Policy {
     pub closure_tolerance: f64,
     /// Smallest temperature approach asked for by practice, K.
     pub minimum_approach: Option<f64>,
-    /// Rules that are switched off.
-    pub disable: Vec<&'static str>,
+    /// Rules that are switched off, by name.
+    pub disable: Vec<String>,
 }
 
 /// Something that was assumed because it was not given.

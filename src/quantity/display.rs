@@ -80,8 +80,8 @@ const fn units(dimension: Dimension) -> [&'static str; 3] {
 }
 
 /// The unit in which a report of this system writes values of this dimension: `code` is its text
-/// (which can be read back as input), and [`Scale::from_si`] gives the figure. A standard
-/// uncertainty is divided by `scale` alone. For prices the code is what stands after the currency.
+/// (which can be read back as input), [`Scale::from_si`] gives the figure and
+/// [`Scale::difference_from_si`] its standard uncertainty. For prices the code is what stands after the currency.
 pub fn display(dimension: Dimension, system: UnitSystem) -> Scale {
     static SCALES: OnceLock<HashMap<(Dimension, UnitSystem), Scale>> = OnceLock::new();
     let scales = SCALES.get_or_init(|| {

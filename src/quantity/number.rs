@@ -133,14 +133,17 @@ fn not_a_number(text: &str) -> Diagnostic {
     }
 }
 
+/// What separates digits somewhere in the world, other than the decimal point.
+const SEPARATORS: &[char] = &[',', '\'', '’', '_', '.', ' ', '\u{a0}', '\u{202f}', '\u{2009}'];
+
 /// Refuses `1,5`, `1,000`, `1 000`, `1'000`, `1_000` and `1.000.000`, which are read differently
 /// in different countries.
 fn refuse_separators(written: &str, rest: &str) -> Result<(), Diagnostic> {
-    let mut following = rest.chars();
-    let separator = following.next();
-    let then_digit = rest
-        .trim_start_matches([',', '\'', '’', '_', '.', ' ', '\u{a0}', '\u{202f}', '\u{2009}'])
-        .starts_with(|c: char| c.is_ascii_digit());
+    let separator = rest.chars().next();
+    if !separator.is_some_and(|c| SEPARATORS.contains(&c)) {
+        return Ok(());
+    }
+    let then_digit = rest.trim_start_matches(SEPARATORS).starts_with(|c: char| c.is_ascii_digit());
     let (what, hint) = match separator {
         Some(',') if then_digit => {
             ("a comma", "write a decimal point: 1.5, not 1,5; and no thousands separators: 1000, not 1,000")

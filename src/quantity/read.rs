@@ -80,15 +80,17 @@ pub fn read_text(text: &str, dimension: Dimension, bounds: Bounds) -> Result<Lit
     if unit.is_empty() {
         return bare(number, dimension);
     }
-    if unit.starts_with('±') || unit.contains(['±']) || unit.contains("+/-") {
-        return Err(Diagnostic::new(
+    with_unit(number, unit, dimension, bounds).map_err(|fault| {
+        if !(unit.contains('±') || unit.contains("+/-")) {
+            return fault;
+        }
+        Diagnostic::new(
             Code::BadQuantity,
             "",
             format!("\"{}\" has an uncertainty within the text", shown(text)),
         )
-        .hint("write {\"value\": 150, \"unit\": \"degC\", \"uncertainty\": \"±0.5 K\"}"));
-    }
-    with_unit(number, unit, dimension, bounds)
+        .hint("write {\"value\": 150, \"unit\": \"degC\", \"uncertainty\": \"±0.5 K\"}")
+    })
 }
 
 /// Reads a number given apart from its unit, as an object gives it.

@@ -13,7 +13,7 @@ const INTERNATIONAL: &str =
     "exact: international yard and pound (1959), conversion as in NIST SP 811 (2008), appendix B";
 const TABLE_CALORIE: &str =
     "International Table: 1 cal = 4.1868 J, 1 Btu/lb = 2.326 kJ/kg, exact (NIST SP 811, 2008)";
-const NORMAL: &str = "volume at 0 degC and 101.325 kPa (ISO 13443:1996, annex; DIN 1343)";
+const NORMAL: &str = "volume at 0 degC and 101.325 kPa (DIN 1343)";
 const STANDARD: &str = "volume at 15 degC and 101.325 kPa (ISO 13443:1996)";
 const SCFM: &str = "volume at 60 degF and 14.696 psi (common practice in the United States)";
 
@@ -161,6 +161,7 @@ const OTHERS: &[Unit] = &[
     at(Reference::Normal, unit(&[VolumeFlow], &["Nm3/s", "m3(N)/s"], 1.0, NORMAL)),
     at(Reference::Normal, unit(&[VolumeFlow], &["Nm3/min", "m3(N)/min"], 1.0 / MIN, NORMAL)),
     at(Reference::Normal, unit(&[VolumeFlow], &["Nm3/h", "m3(N)/h", "Nm3/hr", "mn3/h"], 1.0 / H, NORMAL)),
+    at(Reference::Normal, unit(&[VolumeFlow], &["kNm3/h"], 1e3 / H, NORMAL)),
     at(Reference::Normal, unit(&[VolumeFlow], &["Nm3/d", "m3(N)/d"], 1.0 / DAY, NORMAL)),
     at(Reference::Normal, unit(&[VolumeFlow], &["NL/min", "Nl/min"], 1e-3 / MIN, NORMAL)),
     at(Reference::Standard, unit(&[VolumeFlow], &["Sm3/s", "m3(S)/s"], 1.0, STANDARD)),

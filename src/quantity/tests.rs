@@ -287,6 +287,7 @@ fn reported_units_can_be_read_back() {
         }
     }
     close(display(Dimension::Temperature, UnitSystem::Metric).from_si(423.15), 150.0);
+    close(display(Dimension::Temperature, UnitSystem::Us).difference_from_si(5.0), 9.0);
     assert_eq!(display(Dimension::EntropyRate, UnitSystem::Metric).code, "kW/K");
 }
 

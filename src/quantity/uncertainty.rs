@@ -233,7 +233,8 @@ fn finite(u: f64, text: &str) -> Result<f64, Diagnostic> {
     }
 }
 
-/// A size with its unit, or a percentage of the value.
+/// A size with its unit, or a percentage of the value. A percentage is relative for fractions too;
+/// percentage points are written `pp`.
 fn amount(text: &str, dimension: Dimension, scale: &Scale) -> Result<Amount, Diagnostic> {
     let (number, unit) =
         number::split(text).map_err(|fault| Diagnostic { code: Code::BadUncertainty, ..fault })?;

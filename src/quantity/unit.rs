@@ -144,6 +144,11 @@ impl Scale {
     pub fn from_si(&self, si: f64) -> f64 {
         (si - self.offset) / self.scale
     }
+
+    /// An uncertainty or another difference of SI values, in this unit.
+    pub fn difference_from_si(&self, si: f64) -> f64 {
+        si / self.scale
+    }
 }
 
 struct Index {

@@ -1,4 +1,0 @@
-//! Property engine.
-/// Placeholder until the engine lands.
-#[derive(Debug)]
-pub struct IdealGas;
