@@ -13,6 +13,8 @@ mod remark;
 mod reservoir;
 mod saturation;
 mod terminal;
+#[cfg(test)]
+mod tests;
 
 use crate::balance::Evaluation;
 use crate::model::{Decision, Family, Margin};

@@ -31,6 +31,14 @@ pub fn number(x: f64) -> String {
     if text.contains('.') { text.trim_end_matches('0').trim_end_matches('.').to_owned() } else { text }
 }
 
+/// A sentence with a capital at its beginning.
+pub fn sentence(text: String) -> String {
+    match text.chars().next() {
+        Some(first) if first.is_lowercase() => first.to_uppercase().chain(text.chars().skip(1)).collect(),
+        _ => text,
+    }
+}
+
 /// A probability in per cent, with its extremes in words.
 pub fn probability(p: f64) -> String {
     if p < 1e-6 {

@@ -8,7 +8,7 @@ use crate::quantity::Dimension;
 
 /// Readings of one and the same quantity differ by more than their uncertainties explain.
 ///
-/// The first reading is used; each further one is held against it.
+/// Their mean, weighted by their uncertainties, is used; each is held against it.
 pub struct RedundantReadingsDisagree;
 
 static INFO: RuleInfo = RuleInfo {
@@ -68,7 +68,7 @@ impl Rule for RedundantReadingsDisagree {
         let dimension = measure::owner(process, *var).map_or(Dimension::Fraction, |(_, d)| d);
         Explanation {
             statement: format!(
-                "A further reading for {} says {} where {} is used: {} {}{}.",
+                "A reading for {} says {} where {} is used: {} {}{}.",
                 phrase::subject(evaluation, margin.scope),
                 phrase::figure(reading.value, dimension),
                 phrase::figure(used.value, dimension),

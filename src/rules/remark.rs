@@ -46,7 +46,7 @@ pub(super) fn explain(
     let plain = remark.figure.filter(|f| f.2 == "1");
     let figure = |value: f64| Figure { value, dimension: Dimension::Fraction };
     Some(Explanation {
-        statement: remark.statement.clone(),
+        statement: format!("In {}, {}", remark.pointer, remark.statement),
         value: plain.map(|f| figure(f.0)),
         limit: plain.map(|f| figure(f.1)),
         ..Explanation::default()

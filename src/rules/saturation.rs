@@ -51,7 +51,7 @@ pub(super) fn explain(
     };
     let relation = if t.value < saturation.value { "below" } else { "above" };
     Explanation {
-        statement: format!(
+        statement: phrase::sentence(format!(
             "{} is declared {}, but at {} it is {} {relation} saturation, {}{}.",
             phrase::state(evaluation, margin.detail),
             phase.text(),
@@ -59,7 +59,7 @@ pub(super) fn explain(
             phrase::figure((t.value - saturation.value).abs(), Dimension::TemperatureDifference),
             phrase::figure(saturation.value, Dimension::Temperature),
             phrase::sureness(decision),
-        ),
+        )),
         value: Some(Figure { value: t.value, dimension: Dimension::Temperature }),
         limit: Some(Figure { value: saturation.value, dimension: Dimension::Temperature }),
         ..Explanation::default()

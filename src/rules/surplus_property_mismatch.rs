@@ -33,7 +33,7 @@ static INFO: RuleInfo = RuleInfo {
     keeping: Case::Description(
         r#"{"components": {"letdown": {"kind": "valve"}},
             "flows": {
-              "upstream": {"kind": "material", "to": "letdown", "fluid": "water", "pressure": "40.0 bar", "temperature": "400.0 degC", "mass_flow": "2 kg/s", "enthalpy": "3214 kJ/kg"},
+              "upstream": {"kind": "material", "to": "letdown", "fluid": "water", "pressure": "40.0 bar", "temperature": "400.0 degC", "mass_flow": "2 kg/s", "enthalpy": "3214.4 kJ/kg"},
               "downstream": {"kind": "material", "from": "letdown", "fluid": "water", "pressure": "10.0 bar", "mass_flow": "2 kg/s"}}}"#,
     ),
 };

@@ -89,7 +89,7 @@ impl Rule for WetnessUnknown {
         statement.push_str(
             "; a quality, an enthalpy, or the power or heat that closes the energy balance would settle it.",
         );
-        Explanation { statement, ..Explanation::default() }
+        Explanation { statement: phrase::sentence(statement), ..Explanation::default() }
     }
 }
 

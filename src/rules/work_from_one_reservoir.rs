@@ -85,12 +85,12 @@ impl Rule for WorkFromOneReservoir {
         let work = -decision.value;
         let verb = if work > 0.0 { "delivers" } else { "consumes" };
         Explanation {
-            statement: format!(
+            statement: phrase::sentence(format!(
                 "{} {place} and {verb} {} of work; from one reservoir no work can be had{}.",
                 phrase::subject(evaluation, margin.scope),
                 phrase::figure(work.abs(), dimension),
                 phrase::sureness(decision),
-            ),
+            )),
             value: Some(Figure { value: work, dimension }),
             limit: Some(Figure { value: 0.0, dimension }),
             ..Explanation::default()

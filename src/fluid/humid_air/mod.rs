@@ -38,8 +38,9 @@ pub(in crate::fluid) mod water;
 pub use convert::Derived;
 
 use super::numeric::{finite, root, within};
-use super::{CompositionForm, 
-    Datum, Element, Elements, Engine, Pair, Phase, PropertyError, Provenance, State, state::PROPERTIES,
+use super::{
+    CompositionForm, Datum, Element, Elements, Engine, Pair, Phase, PropertyError, Provenance, State,
+    state::PROPERTIES,
 };
 use dual::Dual;
 use virial::{P_REF, R, Virial};
