@@ -27,12 +27,15 @@ impl Machine {
 }
 
 /// The sections of a machine with one inlet, in the order in which the fluid passes them; none
-/// where other streams pass through beside it.
+/// where other streams pass through beside it, or a flow runs against its declared direction.
 fn sections(evaluation: &Evaluation<'_>, component: &Component) -> Vec<(FlowId, FlowId)> {
     let mut sides = component.sides.iter().filter(|s| !(s.inlets.is_empty() && s.outlets.is_empty()));
     let (Some(side), None) = (sides.next(), sides.next()) else { return Vec::new() };
     let [inlet] = side.inlets[..] else { return Vec::new() };
     let view = evaluation.view;
+    if side.inlets.iter().chain(&side.outlets).any(|&f| measure::is_reversed(view, f)) {
+        return Vec::new();
+    }
     let outlets = by_pressure(view.model, view.workspace, &side.outlets, component.kind);
     let mut before = inlet;
     outlets.into_iter().map(|after| (std::mem::replace(&mut before, after), after)).collect()

@@ -70,7 +70,7 @@ impl Rule for MassImbalance {
         let mut statement =
             phrase::imbalance(evaluation, decision, margin.scope, "mass", sums, dimension);
         let digits = measure::rounding(&view.model.process, &balance.residual(view));
-        let explained = digits > 0.0 && decision.value.abs() <= digits * (1.0 + 1e-9);
+        let explained = !decision.at_limit && decision.value.abs() <= digits * (1.0 + 1e-9);
         if explained {
             statement.push_str(" The printed digits of the amounts could explain it.");
         }

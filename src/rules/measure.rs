@@ -79,14 +79,24 @@ pub(super) fn net_work_out(view: View<'_>, component: &Component) -> Result<(Dua
     Ok((out, any))
 }
 
-/// The only inlet and the only outlet of the only side that carries material.
-pub(super) fn single_passage(component: &Component) -> Option<(FlowId, FlowId)> {
+/// The only inlet and the only outlet of the only side that carries material, in the order in
+/// which it really passes: negative amounts run against their declared direction.
+pub(super) fn single_passage(view: View<'_>, component: &Component) -> Option<(FlowId, FlowId)> {
     let mut sides = component.sides.iter().filter(|s| !(s.inlets.is_empty() && s.outlets.is_empty()));
     let (side, None) = (sides.next()?, sides.next()) else { return None };
     match (&side.inlets[..], &side.outlets[..]) {
+        ([inlet], [outlet]) if is_reversed(view, *inlet) || is_reversed(view, *outlet) => {
+            Some((*outlet, *inlet))
+        }
         ([inlet], [outlet]) => Some((*inlet, *outlet)),
         _ => None,
     }
+}
+
+/// Whether the amount of a flow is known and negative.
+pub(super) fn is_reversed(view: View<'_>, flow: FlowId) -> bool {
+    let (var, _, _) = extent(&view.model.process, flow);
+    view.var(var).is_ok_and(|x| x.value < 0.0)
 }
 
 /// Specific entropy after minus before a passage through component `k`, J/(kg K), with the

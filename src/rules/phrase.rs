@@ -114,12 +114,14 @@ pub fn imbalance(
 ) -> String {
     let (inflow, outflow, throughput) = sums;
     let share = if throughput > 0.0 { 100.0 * decision.value.abs() / throughput } else { 0.0 };
-    let (verb, size) = if decision.value < 0.0 {
+    let (verb, size) = if decision.at_limit {
+        ("equals", "no difference")
+    } else if decision.value < 0.0 {
         ("exceeds", "more out than in")
     } else {
         ("falls short of", "more in than out")
     };
-    format!(
+    sentence(format!(
         "{what} leaving {} ({}) {verb} {what} entering ({}): {} {size}, {} % of the throughput{}.",
         subject(evaluation, scope),
         figure(outflow, dimension),
@@ -127,5 +129,5 @@ pub fn imbalance(
         figure(decision.value.abs(), dimension),
         number(share),
         sureness(decision),
-    )
+    ))
 }

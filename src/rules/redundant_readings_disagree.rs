@@ -44,6 +44,13 @@ impl Rule for RedundantReadingsDisagree {
     fn margins(&self, me: usize, evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
         let process = &evaluation.view.model.process;
         for (i, (var, affine, pointer)) in process.redundant.iter().enumerate() {
+            // Of two readings, each deviates from the mean as much as the other: one test.
+            let mut of_same = process.redundant.iter().enumerate().filter(|(_, r)| r.0 == *var);
+            if let (Some(_), Some((second, _)), None) = (of_same.next(), of_same.next(), of_same.next())
+                && second == i
+            {
+                continue;
+            }
             let Ok(used) = evaluation.view.var(*var) else { continue };
             let reading = reading(evaluation, affine);
             let throughput = reading.value.abs() + used.value.abs();
@@ -68,7 +75,7 @@ impl Rule for RedundantReadingsDisagree {
         let dimension = measure::owner(process, *var).map_or(Dimension::Fraction, |(_, d)| d);
         Explanation {
             statement: format!(
-                "A reading for {} says {} where {} is used: {} {}{}.",
+                "One of the readings for {} says {} where their mean, {}, is used: {} {}{}.",
                 phrase::subject(evaluation, margin.scope),
                 phrase::figure(reading.value, dimension),
                 phrase::figure(used.value, dimension),

@@ -52,7 +52,7 @@ pub(super) fn explain(
     let relation = if t.value < saturation.value { "below" } else { "above" };
     Explanation {
         statement: phrase::sentence(format!(
-            "{} is declared {}, but at {} it is {} {relation} saturation, {}{}.",
+            "{} counts as {} (declared, or by the machine it touches); at {} it is {} {relation} saturation, {}{}.",
             phrase::state(evaluation, margin.detail),
             phase.text(),
             phrase::figure(t.value, Dimension::Temperature),

@@ -11,13 +11,18 @@ use crate::quantity::Dimension;
 type End = (FlowId, FlowId);
 
 /// The two ends of an exchanger with two sides, one of which gives off heat and one of which takes
-/// it in; `None` for any other, and where enthalpies are not known.
+/// it in; `None` for any other, where enthalpies are not known, and where a side runs against its
+/// declared direction.
 fn ends(view: View<'_>, component: &Component) -> Option<[End; 2]> {
     let passages: Vec<(FlowId, FlowId)> = component
         .sides
         .iter()
         .map(|side| match (&side.inlets[..], &side.outlets[..]) {
-            ([inlet], [outlet]) => Some((*inlet, *outlet)),
+            ([inlet], [outlet])
+                if !measure::is_reversed(view, *inlet) && !measure::is_reversed(view, *outlet) =>
+            {
+                Some((*inlet, *outlet))
+            }
             _ => None,
         })
         .collect::<Option<_>>()?;

@@ -49,7 +49,7 @@ impl Rule for ThrottleAgainstEntropy {
             if component.kind != Kind::Valve || !measure::is_adiabatic(process, component) {
                 continue;
             }
-            let Some((before, after)) = measure::single_passage(component) else { continue };
+            let Some((before, after)) = measure::single_passage(evaluation.view, component) else { continue };
             if let Some((rise, throughput)) = measure::entropy_rise(evaluation.view, k, before, after) {
                 out.push(measure::lower_bound(me, Scope::Component(k), rise, throughput));
             }
@@ -63,7 +63,7 @@ impl Rule for ThrottleAgainstEntropy {
             let state = process.flows[f].material()?.state;
             evaluation.view.property(state, Property::Pressure).ok().map(|p| p.value)
         };
-        let ends = measure::single_passage(&process.components[k])
+        let ends = measure::single_passage(evaluation.view, &process.components[k])
             .and_then(|(before, after)| Some((pressure(before)?, pressure(after)?)));
         let pressures = match ends {
             Some((p1, p2)) => format!(
