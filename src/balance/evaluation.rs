@@ -54,8 +54,7 @@ pub struct Evaluation<'a> {
     pub groups: Vec<RegionBalances>,
     /// The plant.
     pub plant: RegionBalances,
-    /// The exergy balance against T0 σ, where it was derived: scope, mismatch and exergy
-    /// throughput, W or J.
+    /// Mismatch and throughput of each exergy balance, once they are derived.
     pub exergy_mismatch: Option<Vec<(Scope, f64, f64)>>,
 }
 

@@ -175,16 +175,12 @@ pub fn energy(view: View<'_>, region: &Region) -> Result<Balance, Blocked> {
     let mut out = Balance::default();
     let (mut inward, mut outward) = (0.0, 0.0);
     let mut tally = |sign: f64, size: f64| if sign > 0.0 { inward += size } else { outward += size };
-    for (f, k, sign) in region.crossings() {
+    for (f, _, sign) in region.crossings() {
         let e = flow_energy(view, f)?;
         out.add(sign, &e);
         if let Some(m) = process.flows[f].material() {
-            let fluid = process.states[m.state].fluid;
             let relative = relative_enthalpy(view, m.state)?;
-            let mass = view.mass(f)?.value;
-            tally(sign, (mass * relative).abs());
-            let u = formulation_uncertainty(view, m.state);
-            out.add_formulation((k, fluid), sign * mass * relative * u);
+            tally(sign, (view.mass(f)?.value * relative).abs());
         } else {
             tally(sign, e.value.abs());
         }
@@ -197,6 +193,7 @@ pub fn energy(view: View<'_>, region: &Region) -> Result<Balance, Blocked> {
         let u = formulation_uncertainty(view, c.state);
         out.add_formulation((k, process.states[c.state].fluid), sign * mass.value * relative * u);
     }
+    add_formulations(view, region, &mut out, relative_enthalpy);
     for &k in &region.members {
         if let Some(work) = boundary_work(view, k)? {
             tally(-1.0, work.value.abs());
@@ -315,17 +312,14 @@ pub fn entropy(view: View<'_>, region: &Region, bracket: Bracket) -> Result<Bala
     let mut out = Balance::default();
     let (mut inward, mut outward) = (0.0, 0.0);
     let mut tally = |sign: f64, size: f64| if sign > 0.0 { inward += size } else { outward += size };
-    for (f, k, sign) in region.crossings() {
+    for (f, _, sign) in region.crossings() {
         match &process.flows[f].carried {
             Carried::Material(m) => {
                 let mass = view.mass(f)?;
                 let s = view.entropy(m.state)?;
                 out.add(sign, &mass.times(&s));
-                let fluid = process.states[m.state].fluid;
                 let relative = relative_entropy(view, m.state)?;
                 tally(sign, (mass.value * relative).abs());
-                let u = formulation_uncertainty(view, m.state);
-                out.add_formulation((k, fluid), sign * mass.value * relative * u);
             }
             Carried::Heat(q, boundary) => {
                 let s = heat_entropy(view, *q, *boundary, sign, bracket, &region.members)?;
@@ -348,8 +342,33 @@ pub fn entropy(view: View<'_>, region: &Region, bracket: Bracket) -> Result<Bala
         let u = formulation_uncertainty(view, c.state);
         out.add_formulation((k, process.states[c.state].fluid), sign * mass.value * relative * u);
     }
+    add_formulations(view, region, &mut out, relative_entropy);
     out.close(inward, outward);
     Ok(out)
+}
+
+/// Adds what the property formulations leave uncertain at the flows of every member: the terms of
+/// a union are the sums of its members' terms, so that balances stay additive in every respect.
+fn add_formulations(
+    view: View<'_>,
+    region: &Region,
+    out: &mut Balance,
+    relative: fn(View<'_>, usize) -> Result<f64, Blocked>,
+) {
+    let process = &view.model.process;
+    for &k in &region.members {
+        let component = &process.components[k];
+        for (flows, sign) in [(&component.inlets, 1.0), (&component.outlets, -1.0)] {
+            for &f in flows {
+                if let Some(m) = process.flows[f].material()
+                    && let (Ok(mass), Ok(figure)) = (view.mass(f), relative(view, m.state))
+                {
+                    let u = formulation_uncertainty(view, m.state);
+                    out.add_formulation((k, process.states[m.state].fluid), sign * mass.value * figure * u);
+                }
+            }
+        }
+    }
 }
 
 fn relative_entropy(view: View<'_>, state: usize) -> Result<f64, Blocked> {
