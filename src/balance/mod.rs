@@ -6,6 +6,6 @@ mod evaluation;
 pub mod exergy;
 pub mod region;
 
-pub use equations::{Equations, Row, by_pressure, isentropic_enthalpy, side_flows, side_mass, transfers};
+pub use equations::{Equations, Row, by_pressure, isentropic_enthalpy, transfers};
 pub use evaluation::{Evaluation, RegionBalances};
 pub use region::{Balance, Bracket, Region};

@@ -1,7 +1,7 @@
 //! element-imbalance
 
 use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, family, measure, phrase};
-use crate::balance::{Balance, Evaluation, Row, region, side_flows};
+use crate::balance::{Balance, Evaluation, Row, region};
 use crate::model::{Blocked, Decision, Margin, Scope, Test};
 use crate::process::Basis;
 use crate::quantity::Dimension;
@@ -95,5 +95,5 @@ impl Rule for ElementImbalance {
 fn balance(evaluation: &Evaluation<'_>, row: Row) -> Result<Balance, Blocked> {
     let Row::Element(k, side, element) = row else { return Err(Blocked::Missing("an element")) };
     let view = evaluation.view;
-    region::element(view, side_flows(view, k, side), element as usize)
+    region::element(view, k, side, element as usize)
 }

@@ -13,10 +13,10 @@ impl<'t> Reader<'t> {
             self.losses(k, node);
             self.check_ports(k, node);
             self.ports(k, node);
+            self.holdup(k, node);
             self.sides(k, node);
             self.given(k, node);
             self.stated(k, node);
-            self.holdup(k, node);
             self.purpose(k, node);
         }
     }
@@ -116,12 +116,20 @@ impl<'t> Reader<'t> {
         }
     }
 
+    /// The flow, or the half of it that arrives, if it touches the component.
+    fn end_at(&self, k: ComponentId, f: FlowId) -> Option<FlowId> {
+        let component = &self.process.components[k];
+        let far = self.two_ended.iter().find(|t| t.flow == f).and_then(|t| t.far);
+        let touches = |f: &FlowId| component.inlets.contains(f) || component.outlets.contains(f);
+        [Some(f), far].into_iter().flatten().find(touches)
+    }
+
     /// A flow of this component by the name that stands at a place.
     fn own_flow(&mut self, k: ComponentId, node: Node<'t>) -> Option<FlowId> {
         let name = node.text().unwrap_or_default();
         let component = &self.process.components[k];
         match self.flow_ids.get(name).copied() {
-            Some(f) if component.inlets.contains(&f) || component.outlets.contains(&f) => Some(f),
+            Some(f) if self.end_at(k, f).is_some() => self.end_at(k, f),
             Some(_) => {
                 let message = format!("flow \"{name}\" does not touch \"{}\"", component.name);
                 self.fault(node.fault(Code::DanglingReference, message));
@@ -239,25 +247,61 @@ impl<'t> Reader<'t> {
         match kind.info().sorting {
             Sorting::Single => {
                 if !inlets.is_empty() || !outlets.is_empty() {
-                    sides.push(Side { inlets, outlets, pool: false });
+                    sides.push(Side { inlets, outlets, ..Side::default() });
                 }
             }
             Sorting::Sides => self.infer_sides(k, node, &mut sides, inlets, outlets, own_sides),
             Sorting::Pool => self.infer_pool(kind, &mut sides, inlets, outlets),
         }
-        let holds = node.get("holdup").is_some();
-        if sides.is_empty() && holds {
-            sides.push(Side::default());
-        }
+        self.place_contents(k, &mut sides);
         for side in &mut sides {
-            let mut fluids: Vec<FluidId> =
-                side.inlets.iter().chain(&side.outlets).filter_map(|&f| self.fluid_of(f)).collect();
+            let flows = side.inlets.iter().chain(&side.outlets).filter_map(|&f| self.fluid_of(f));
+            let contents = side.contents.iter().map(|&s| self.process.states[s].fluid);
+            let mut fluids: Vec<FluidId> = flows.chain(contents).collect();
             fluids.sort_unstable();
             fluids.dedup();
             side.pool =
                 fluids.len() > 1 || fluids.iter().any(|&f| self.process.fluids[f].engine.elements_vary());
         }
         self.process.components[k].sides = sides;
+    }
+
+    /// Puts each content to the set that its substance belongs to: that of the flows of its fluid,
+    /// a set of its own where it is there before and after, else the pool.
+    fn place_contents(&self, k: ComponentId, sides: &mut Vec<Side>) {
+        let Some(holdup) = &self.process.components[k].holdup else { return };
+        let held = |contents: &[Content]| -> Vec<(StateId, FluidId)> {
+            contents.iter().map(|c| (c.state, self.process.states[c.state].fluid)).collect()
+        };
+        let (before, after) = (held(&holdup.initial), held(&holdup.r#final));
+        let mut done: Vec<FluidId> = Vec::new();
+        let humid = |fluid: FluidId| matches!(self.process.fluids[fluid].substance, Substance::HumidAir);
+        let flows = sides.iter().flat_map(|s| s.inlets.iter().chain(&s.outlets));
+        let air = before.iter().chain(&after).any(|c| humid(c.1))
+            || flows.filter_map(|&f| self.fluid_of(f)).any(humid);
+        for &(_, fluid) in before.iter().chain(&after) {
+            if done.contains(&fluid) {
+                continue;
+            }
+            done.push(fluid);
+            let has = |flows: &[FlowId]| flows.iter().any(|&f| self.fluid_of(f) == Some(fluid));
+            let own = sides.iter().position(|s| has(&s.inlets) || has(&s.outlets));
+            let kept = before.iter().any(|c| c.1 == fluid) && after.iter().any(|c| c.1 == fluid);
+            let meets = self.process.fluids[fluid].engine.elements_vary()
+                || air && matches!(self.process.fluids[fluid].substance, Substance::Water);
+            let at = match own {
+                Some(at) => at,
+                None => match sides.iter().position(|s| s.pool) {
+                    Some(pool) if !kept || meets => pool,
+                    _ => {
+                        sides.push(Side { pool: !kept || meets, ..Side::default() });
+                        sides.len() - 1
+                    }
+                },
+            };
+            let states = before.iter().chain(&after).filter(|c| c.1 == fluid).map(|c| c.0);
+            sides[at].contents.extend(states);
+        }
     }
 
     /// One side a fluid, where that is unambiguous.
@@ -282,7 +326,7 @@ impl<'t> Reader<'t> {
             let of = |flows: &[FlowId]| -> Vec<FlowId> {
                 flows.iter().copied().filter(|&f| self.fluid_of(f) == Some(fluid)).collect()
             };
-            let side = Side { inlets: of(&inlets), outlets: of(&outlets), pool: false };
+            let side = Side { inlets: of(&inlets), outlets: of(&outlets), ..Side::default() };
             let name = self.process.components[k].name.clone();
             let quoted = |flows: &[FlowId]| -> String {
                 let names: Vec<&str> = flows.iter().map(|&f| self.process.flows[f].name.as_str()).collect();
@@ -321,7 +365,10 @@ impl<'t> Reader<'t> {
         );
         let varies =
             |f: FlowId| self.fluid_of(f).is_some_and(|x| self.process.fluids[x].engine.elements_vary());
-        let any_varies = inlets.iter().chain(&outlets).any(|&f| varies(f));
+        let humid = |f: FlowId| {
+            self.fluid_of(f).is_some_and(|x| matches!(self.process.fluids[x].substance, Substance::HumidAir))
+        };
+        let any_air = inlets.iter().chain(&outlets).any(|&f| humid(f));
         let mut done: Vec<FluidId> = Vec::new();
         for &f in inlets.iter().chain(&outlets) {
             let Some(fluid) = self.fluid_of(f) else { continue };
@@ -333,9 +380,13 @@ impl<'t> Reader<'t> {
                 flows.iter().copied().filter(|&x| self.fluid_of(x) == Some(fluid)).collect()
             };
             let (i, o) = (of(&inlets), of(&outlets));
-            let meets_air = any_varies && matches!(self.process.fluids[fluid].substance, Substance::Water);
-            if through && !i.is_empty() && !o.is_empty() && !varies(f) && !meets_air {
-                sides.push(Side { inlets: i, outlets: o, pool: false });
+            let meets_air = any_air && matches!(self.process.fluids[fluid].substance, Substance::Water);
+            // A substance without formation data can only pass.
+            let inert = matches!(self.process.fluids[fluid].substance, Substance::Inert)
+                && self.process.fluids[fluid].engine.elements(0.0).is_none();
+            let passes = !i.is_empty() && !o.is_empty() && !varies(f) && !meets_air;
+            if passes && (through || inert) {
+                sides.push(Side { inlets: i, outlets: o, ..Side::default() });
             } else {
                 pool.inlets.extend(i);
                 pool.outlets.extend(o);
@@ -442,7 +493,7 @@ impl<'t> Reader<'t> {
                 let Some(fluid) = n.get("fluid").and_then(|f| reader.fluid(f)) else { continue };
                 let what = format!("\"{name}\" {member} content {}", i + 1);
                 let Some(state) = reader.content_state(n, fluid, &what, &mut shared) else { continue };
-                let (amount, form) = reader.amount(n, &name, "mass held in");
+                let (amount, form) = reader.content_amount(n, &name, state);
                 out.push(Content { state, amount, form });
             }
             out
@@ -450,6 +501,34 @@ impl<'t> Reader<'t> {
         let initial = read(self, "initial");
         let r#final = read(self, "final");
         self.process.components[k].holdup = Some(Holdup { initial, r#final, boundary_pressure });
+    }
+
+    /// The amount of a content. Mass and volume together fix the specific volume, a further
+    /// property of its state.
+    fn content_amount(&mut self, node: Node<'t>, name: &str, state: StateId) -> (VarId, AmountForm) {
+        let both = node.get("mass").zip(node.get("volume"));
+        let Some((_, volume_node)) = both else { return self.amount(node, name, "mass held in") };
+        let mass = self.var(node, "mass", Dimension::Mass, Class::Amount, 1.0);
+        let volume = self.var(node, "volume", Dimension::Volume, Class::Amount, 1.0);
+        let (Some(mass), Some(volume)) = (mass, volume) else {
+            return (self.constant(1.0), AmountForm::Mass);
+        };
+        if let (Var::Given(m), Var::Given(v)) = (&self.process.vars[mass], &self.process.vars[volume]) {
+            let (m0, v0) = (m.value(&self.inputs), v.value(&self.inputs));
+            if m0 > 0.0 && v0 > 0.0 {
+                // V/m, linearised about the figures.
+                let mut terms: Vec<(SourceId, f64)> = v.terms.iter().map(|&(s, w)| (s, w / m0)).collect();
+                terms.extend(m.terms.iter().map(|&(s, w)| (s, -w * v0 / (m0 * m0))));
+                let spread: f64 = terms.iter().map(|&(s, w)| w * self.inputs.values[s]).sum();
+                self.process.vars.push(Var::Given(Affine { constant: v0 / m0 - spread, terms }));
+                let var = self.process.vars.len() - 1;
+                let pointer = volume_node.pointer();
+                self.process.states[state].surplus.push(Surplus { property: Property::Volume, var, pointer });
+            } else {
+                self.fault(volume_node.fault(Code::OutOfBounds, "mass and volume must be positive"));
+            }
+        }
+        (mass, AmountForm::Mass)
     }
 
     /// The state of a content. A content that gives neither temperature nor another second
@@ -462,7 +541,10 @@ impl<'t> Reader<'t> {
         shared: &mut Option<VarId>,
     ) -> Option<StateId> {
         let second = ["temperature", "enthalpy", "entropy", "quality", "superheat", "subcooling", "phase"];
-        let dense = matches!(self.process.fluids[fluid].substance, Substance::Inert | Substance::Water);
+        let rigid = node.get("mass").is_some() && node.get("volume").is_some();
+        let dense = !rigid
+            && !self.process.fluids[fluid].engine.elements_vary()
+            && matches!(self.process.fluids[fluid].substance, Substance::Inert | Substance::Water);
         if second.iter().any(|m| node.get(m).is_some()) || !dense {
             return self.state(node, fluid, what, false, None);
         }
@@ -506,12 +588,7 @@ impl<'t> Reader<'t> {
                     Some(rest) => (-1.0, rest.trim()),
                     None => (1.0, text),
                 };
-                let component = &self.process.components[k];
-                let found = self
-                    .flow_ids
-                    .get(name)
-                    .copied()
-                    .filter(|f| component.inlets.contains(f) || component.outlets.contains(f));
+                let found = self.flow_ids.get(name).copied().and_then(|f| self.end_at(k, f));
                 match found {
                     Some(f) => list.push((f, sign)),
                     None => self.fault(item.fault(
