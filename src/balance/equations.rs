@@ -98,7 +98,10 @@ impl Equations {
                 for &element in Element::ALL {
                     let present = fluids.iter().any(|&f| {
                         let fluid = &process.fluids[f];
-                        fluid.engine.elements(sample_composition(fluid)).is_some_and(|(e, _)| e[element as usize] != 0.0)
+                        fluid
+                            .engine
+                            .elements(sample_composition(fluid))
+                            .is_some_and(|(e, _)| e[element as usize] != 0.0)
                     });
                     if present {
                         out.push(model, Row::Element(k, i, element));
@@ -221,12 +224,8 @@ impl Rows for Equations {
                 let surplus = &process.states[s].surplus[i];
                 Ok(view.property(s, surplus.property)?.minus(&view.var(surplus.var)?))
             }
-            Row::Mass(k, i) => {
-                Ok(region::set_mass(view, k, i)?.residual(view))
-            }
-            Row::Element(k, i, element) => {
-                Ok(region::element(view, k, i, element as usize)?.residual(view))
-            }
+            Row::Mass(k, i) => Ok(region::set_mass(view, k, i)?.residual(view)),
+            Row::Element(k, i, element) => Ok(region::element(view, k, i, element as usize)?.residual(view)),
             Row::Energy(k) => Ok(region::energy(view, &self.components[k])?.residual(view)),
         }
     }

@@ -157,8 +157,7 @@ fn is_groundless(process: &Process, scales: &[FluidScale], component: &Component
         let holdup = component.holdup.as_ref();
         let held = |contents: Option<&Vec<crate::process::Content>>, fluid: FluidId| {
             contents.is_some_and(|all| {
-                all.iter()
-                    .any(|c| side.contents.contains(&c.state) && process.states[c.state].fluid == fluid)
+                all.iter().any(|c| side.contents.contains(&c.state) && process.states[c.state].fluid == fluid)
             })
         };
         fluids_of(process, side).into_iter().any(|fluid| {

@@ -13,8 +13,8 @@ use crate::quantity::{Dimension, UnitSystem};
 use crate::rules;
 
 /// Everything that assembling needs at hand.
-struct Assembler<'a, 'e> {
-    evaluation: &'e Evaluation<'a>,
+pub(super) struct Assembler<'a, 'e> {
+    pub(super) evaluation: &'e Evaluation<'a>,
     sensitivity: &'e mut Sensitivity,
     units: UnitSystem,
 }
@@ -41,7 +41,11 @@ impl Report {
                 judgement.components[k],
                 Some(k),
             );
-            components.push(component.name.clone(), ComponentReport { kind: component.kind.name(), region });
+            let holdup = a.holdup(k, exergies);
+            components.push(
+                component.name.clone(),
+                ComponentReport { kind: component.kind.name(), implied: component.implied, region, holdup },
+            );
         }
         let mut groups = Named::default();
         for (g, group) in process.groups.iter().enumerate() {
@@ -147,11 +151,11 @@ fn statement(judgement: &Judgement, violations: &[Finding]) -> String {
 }
 
 impl Assembler<'_, '_> {
-    fn view(&self) -> View<'_> {
+    pub(super) fn view(&self) -> View<'_> {
         self.evaluation.view
     }
 
-    fn figure(&mut self, form: &Dual, dimension: Dimension) -> Figure {
+    pub(super) fn figure(&mut self, form: &Dual, dimension: Dimension) -> Figure {
         let u = self.sensitivity.uncertainty(self.evaluation.view.model, form);
         Figure::new(form.value, u, dimension, self.units)
     }

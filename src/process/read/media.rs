@@ -31,17 +31,17 @@ impl<'t> Reader<'t> {
             let var = self.var(node, member, Dimension::Fraction, Class::State, 1.0)?;
             readings.push((member, n, var, make));
         }
-        let second = match readings[..] {
-            [] | [_] => None,
-            [("o2_dry", ..), ("co2_dry", n, var, _)] => Some((n, var)),
-            [_, (_, n, ..), ..] => {
-                self.fault(
-                    n.fault(Code::Conflict, "the air ratio is given twice")
-                        .hint("only \"o2_dry\" and \"co2_dry\" may stand together; each then checks the other"),
-                );
-                return None;
-            }
-        };
+        let second =
+            match readings[..] {
+                [] | [_] => None,
+                [("o2_dry", ..), ("co2_dry", n, var, _)] => Some((n, var)),
+                [_, (_, n, ..), ..] => {
+                    self.fault(n.fault(Code::Conflict, "the air ratio is given twice").hint(
+                        "only \"o2_dry\" and \"co2_dry\" may stand together; each then checks the other",
+                    ));
+                    return None;
+                }
+            };
         let co = match node.get("co_dry") {
             Some(n) => {
                 let q = n.quantity(Dimension::Fraction, &mut self.faults)?;
@@ -163,8 +163,9 @@ impl<'t> Reader<'t> {
                 let mixture = ratio.and_then(moist_air);
                 if mixture.is_none() {
                     self.fault(
-                        node.fault(Code::MissingField, "the humidity of the oxidant is not known")
-                            .hint("give it with pressure and temperature, for instance \"relative_humidity\""),
+                        node.fault(Code::MissingField, "the humidity of the oxidant is not known").hint(
+                            "give it with pressure and temperature, for instance \"relative_humidity\"",
+                        ),
                     );
                 }
                 mixture

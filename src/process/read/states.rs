@@ -163,7 +163,8 @@ impl<'t> Reader<'t> {
                     .hint("move the figure into \"from\" or \"to\" under \"ends\""),
             );
         }
-        let near = self.state(ends.get("from")?, fluid, &format!("\"{name}\" where it leaves"), false, None)?;
+        let near =
+            self.state(ends.get("from")?, fluid, &format!("\"{name}\" where it leaves"), false, None)?;
         let far = self.state(ends.get("to")?, fluid, &format!("\"{name}\" where it arrives"), false, None)?;
         self.two_ended.push(TwoEnded { flow: f, near, far: None });
         Some(far)
@@ -178,8 +179,11 @@ impl<'t> Reader<'t> {
             let Carried::Material(arriving) = self.process.flows[f].carried.clone() else { continue };
             if self.component_ids.contains_key(name) {
                 self.fault(
-                    node.fault(Code::Conflict, format!("\"{name}\" has two ends and is named like a component"))
-                        .hint("rename the flow: its pipe is reported as a component of that name"),
+                    node.fault(
+                        Code::Conflict,
+                        format!("\"{name}\" has two ends and is named like a component"),
+                    )
+                    .hint("rename the flow: its pipe is reported as a component of that name"),
                 );
                 continue;
             }
@@ -188,14 +192,20 @@ impl<'t> Reader<'t> {
                 end.and_then(|n| self.var(n, member, dimension, Class::State, 1.0))
             };
             let (first, last) = (ends.get("from"), ends.get("to"));
-            let velocities =
-                (motion(first, "velocity", Dimension::Velocity), motion(last, "velocity", Dimension::Velocity));
+            let velocities = (
+                motion(first, "velocity", Dimension::Velocity),
+                motion(last, "velocity", Dimension::Velocity),
+            );
             let elevations =
                 (motion(first, "elevation", Dimension::Length), motion(last, "elevation", Dimension::Length));
             // A volume belongs to the end where the flow leaves; at the other one it differs.
             let amount = if arriving.form == AmountForm::Volume {
                 self.assume(node.pointer(), "the volume of a flow with two ends is that where it leaves");
-                self.unknown(format!("mass flow of \"{name}\" where it arrives"), Nature::Mass, node.pointer())
+                self.unknown(
+                    format!("mass flow of \"{name}\" where it arrives"),
+                    Nature::Mass,
+                    node.pointer(),
+                )
             } else {
                 arriving.amount
             };
