@@ -172,6 +172,13 @@ impl Rows for Equations {
         }
     }
 
+    fn weight(&self, row: usize) -> Option<f64> {
+        match self.rows[row] {
+            Row::Element(_, _, element) => Some(element.molar_mass()),
+            _ => None,
+        }
+    }
+
     fn unknowns(&self, row: usize) -> &[VarId] {
         &self.unknowns[row]
     }

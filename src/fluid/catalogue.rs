@@ -1,10 +1,11 @@
 //! Fluids by name.
 
+use super::Engine;
 use super::humid_air::HumidAir;
 use super::ideal_gas::IdealGas;
+use super::incompressible::{self, Incompressible};
 use super::solution::Solution;
 use super::steam::Steam;
-use super::{Engine, incompressible};
 use crate::diagnostic::nearest;
 use std::sync::{Arc, OnceLock};
 
@@ -30,7 +31,7 @@ pub enum Substance {
 }
 
 /// Names that are taken before any listed fluid.
-const BUILT_IN: [&str; 6] = ["water", "steam", "air", "humid air", "seawater", "sodium chloride"];
+const BUILT_IN: [&str; 7] = ["water", "steam", "air", "humid air", "seawater", "sodium chloride", "ash"];
 
 fn dry_air() -> Option<Arc<IdealGas>> {
     static AIR: OnceLock<Option<Arc<IdealGas>>> = OnceLock::new();
@@ -58,7 +59,12 @@ pub fn by_name(name: &str) -> Result<(Substance, Arc<dyn Engine>), Vec<String>> 
         }
         _ => {}
     }
-    if let Some(medium) = incompressible::Incompressible::listed(name) {
+    if name.eq_ignore_ascii_case("ash")
+        && let Ok(ash) = Incompressible::ash()
+    {
+        return Ok((Substance::Inert, Arc::new(ash)));
+    }
+    if let Some(medium) = Incompressible::listed(name).or_else(|| Incompressible::species(name)) {
         return Ok((Substance::Inert, Arc::new(medium)));
     }
     let known = BUILT_IN.iter().copied().chain(incompressible::LISTED.iter().map(|m| m.name));

@@ -11,6 +11,7 @@ impl<'t> Reader<'t> {
         for (name, node) in root.members() {
             let Some(&k) = self.component_ids.get(name) else { continue };
             self.losses(k, node);
+            self.ash(k, node);
             self.check_ports(k, node);
             self.ports(k, node);
             self.holdup(k, node);
@@ -186,6 +187,72 @@ impl<'t> Reader<'t> {
             let pointer = node.pointer_to("heat_loss");
             self.assume(pointer, "heat loss not given: adiabatic");
         }
+    }
+
+    /// Ash that a fuel brings along and no flow takes away, as a flow of its own.
+    fn ash(&mut self, k: ComponentId, node: Node<'t>) {
+        let component = &self.process.components[k];
+        if component.kind.info().sorting != Sorting::Pool {
+            return;
+        }
+        let substance = |f: &FlowId| self.fluid_of(*f).map(|x| self.process.fluids[x].substance.clone());
+        let brings = component
+            .inlets
+            .iter()
+            .any(|f| matches!(substance(f), Some(Substance::Fuel(fuel)) if fuel.ash() > 0.0));
+        let entering: Vec<Option<FluidId>> = component.inlets.iter().map(|&f| self.fluid_of(f)).collect();
+        let takes = component.outlets.iter().any(|f| {
+            matches!(substance(f), Some(Substance::Inert | Substance::Stated | Substance::Fuel(_)))
+                && !entering.contains(&self.fluid_of(*f))
+        });
+        if !brings || takes {
+            return;
+        }
+        let Ok(ash) = crate::fluid::incompressible::Incompressible::ash() else { return };
+        let name = format!("{}.ash", component.name);
+        let fluid = self.process.fluids.len();
+        self.process.fluids.push(Fluid {
+            name: "ash".to_owned(),
+            engine: Arc::new(ash),
+            substance: Substance::Inert,
+        });
+        let (p, t) = (
+            self.constant(crate::model::REFERENCE_PRESSURE),
+            self.constant(crate::model::REFERENCE_TEMPERATURE),
+        );
+        let amount = self.unknown(format!("mass flow of \"{name}\""), Nature::Mass, node.pointer());
+        self.process.states.push(StateSpec {
+            fluid,
+            form: StateForm::Pair(Pair::PressureTemperature),
+            a: p,
+            b: t,
+            c: None,
+            surplus: Vec::new(),
+            phase: None,
+            pointer: node.pointer(),
+            ambient: false,
+            wet_ambiguous: false,
+        });
+        let state = self.process.states.len() - 1;
+        self.assume(node.pointer(), "the ash of the fuel leaves at 25 degC");
+        let flow = self.process.flows.len();
+        self.process.flows.push(Flow {
+            name,
+            pointer: node.pointer(),
+            from: Some(k),
+            to: None,
+            carried: Carried::Material(Material {
+                state,
+                amount,
+                form: AmountForm::Mass,
+                velocity: None,
+                elevation: None,
+                stated_exergy: None,
+            }),
+            role: Some(Role::Loss),
+            implied: true,
+        });
+        self.process.components[k].outlets.push(flow);
     }
 
     fn material_flows(&self, k: ComponentId) -> (Vec<FlowId>, Vec<FlowId>) {

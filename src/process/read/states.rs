@@ -258,14 +258,26 @@ impl<'t> Reader<'t> {
                 outlets: vec![far],
                 sides: vec![Side { inlets: vec![f], outlets: vec![far], pool: varies, ..Side::default() }],
                 arrangement: Arrangement::Unknown,
-                given: Given::default(),
+                given: Given { heat_loss: true, ..Given::default() },
                 stated: Vec::new(),
                 holdup: None,
                 ports: Vec::new(),
                 purpose: None,
                 implied: true,
             });
-            self.assume(ends.pointer(), "no heat is lost between the two ends");
+            // What heat passes the wall follows from the balance.
+            let loss = self.unknown(format!("heat loss of \"{name}\""), Nature::Energy, ends.pointer());
+            let heat = self.process.flows.len();
+            self.process.flows.push(Flow {
+                name: format!("{name}.heat_loss"),
+                pointer: ends.pointer(),
+                from: Some(pipe),
+                to: None,
+                carried: Carried::Heat(loss, Boundary::Unknown),
+                role: Some(Role::Loss),
+                implied: true,
+            });
+            self.process.components[pipe].outlets.push(heat);
             self.two_ended[i].far = Some(far);
         }
     }
