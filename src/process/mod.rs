@@ -403,6 +403,8 @@ pub struct Component {
     pub ports: Vec<(&'static str, FlowId)>,
     /// Own fuel and product lists.
     pub purpose: Option<Purpose>,
+    /// Smallest cross-section that the flow passes, m².
+    pub throat_area: Option<VarId>,
     /// Whether it was made by the reader (the pipe of a flow with two ends).
     pub implied: bool,
 }

@@ -9,6 +9,7 @@ mod carnot;
 mod machine;
 mod measure;
 pub mod phrase;
+mod physics;
 mod remark;
 mod reservoir;
 mod saturation;
@@ -203,8 +204,26 @@ rules! {
     expander_beats_isentropic::ExpanderBeatsIsentropic,
     compressor_beats_isentropic::CompressorBeatsIsentropic,
     throttle_against_entropy::ThrottleAgainstEntropy,
+    pipe_against_entropy::PipeAgainstEntropy,
+    passive_pressure_rise::PassivePressureRise,
+    mixer_pressure_above_inlets::MixerPressureAboveInlets,
+    boundary_temperature_out_of_bounds::BoundaryTemperatureOutOfBounds,
+    batch_entropy_negative::BatchEntropyNegative,
+    heat_driven_chiller_beats_limit::HeatDrivenChillerBeatsLimit,
+    heat_transformer_beats_limit::HeatTransformerBeatsLimit,
+    separation_below_minimum_work::SeparationBelowMinimumWork,
+    electrochemical_limit_broken::ElectrochemicalLimitBroken,
+    flow_above_choked::FlowAboveChoked,
+    shock_in_reverse::ShockInReverse,
+    reaction_against_affinity::ReactionAgainstAffinity,
+    equilibrium_overshot::EquilibriumOvershot,
     terminal_temperature_cross::TerminalTemperatureCross,
     parallel_flow_outlet_cross::ParallelFlowOutletCross,
+    air_colder_than_coil::AirColderThanCoil,
+    radiation_exergy_above_limit::RadiationExergyAboveLimit,
+    flame_hotter_than_adiabatic::FlameHotterThanAdiabatic,
+    filling_hotter_than_limit::FillingHotterThanLimit,
+    mixed_temperature_out_of_bounds::MixedTemperatureOutOfBounds,
     mass_imbalance::MassImbalance,
     element_imbalance::ElementImbalance,
     energy_imbalance::EnergyImbalance,
@@ -215,9 +234,15 @@ rules! {
     vapour_below_saturation::VapourBelowSaturation,
     liquid_above_saturation::LiquidAboveSaturation,
     quality_out_of_range::QualityOutOfRange,
+    humidity_above_saturation::HumidityAboveSaturation,
+    humidity_ratio_above_saturation::HumidityRatioAboveSaturation,
+    water_below_wet_bulb::WaterBelowWetBulb,
+    flue_gas_line_mismatch::FlueGasLineMismatch,
+    ideal_gas_far_from_ideal::IdealGasFarFromIdeal,
     wetness_unknown::WetnessUnknown,
     reversed_flow::ReversedFlow,
     unusual_dead_state::UnusualDeadState,
+    below_acid_dew_point::BelowAcidDewPoint,
     gouy_stodola_mismatch::GouyStodolaMismatch,
 }
 

@@ -11,18 +11,18 @@ use crate::process::{Boundary, Carried, ComponentId, Side};
 
 /// One thing that heat is exchanged with.
 #[derive(Clone, Debug)]
-struct Exchange {
+pub(super) struct Exchange {
     /// The magnitude of the heat, W or J, where it is known.
-    heat: Option<Dual>,
+    pub(super) heat: Option<Dual>,
     /// Entropic mean temperature, K.
-    temperature: Dual,
+    pub(super) temperature: Dual,
 }
 
 /// What a device exchanges heat with.
 #[derive(Clone, Debug, Default)]
 pub(super) struct Reservoirs {
-    sources: Vec<Exchange>,
-    sinks: Vec<Exchange>,
+    pub(super) sources: Vec<Exchange>,
+    pub(super) sinks: Vec<Exchange>,
 }
 
 impl Reservoirs {

@@ -19,6 +19,10 @@ impl<'t> Reader<'t> {
             self.given(k, node);
             self.stated(k, node);
             self.purpose(k, node);
+            if let Some(geometry) = node.get("geometry") {
+                let area = self.var(geometry, "throat_area", Dimension::Area, Class::State, 1.0);
+                self.process.components[k].throat_area = area;
+            }
         }
     }
 

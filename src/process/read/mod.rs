@@ -386,6 +386,7 @@ impl<'t> Reader<'t> {
                     holdup: None,
                     ports: Vec::new(),
                     purpose: None,
+                    throat_area: None,
                     implied: false,
                 });
             }

@@ -263,6 +263,7 @@ impl<'t> Reader<'t> {
                 holdup: None,
                 ports: Vec::new(),
                 purpose: None,
+                throat_area: None,
                 implied: true,
             });
             // What heat passes the wall follows from the balance.
