@@ -1,8 +1,8 @@
 //! ideal-gas-far-from-ideal
 
-use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, measure, phrase};
+use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, measure, phrase, physics};
 use crate::balance::Evaluation;
-use crate::fluid::Substance;
+use crate::fluid::{Pair, Substance};
 use crate::model::{Decision, Dual, Margin};
 use crate::quantity::Dimension;
 
@@ -58,7 +58,12 @@ impl Rule for IdealGasFarFromIdeal {
             let departure = measure::formulation(view, s);
             if departure > LIMIT {
                 let scope = measure::scope_of_state(&view.model.process, s);
-                let form = Dual::constant(LIMIT - departure);
+                // By differences where the composition is fixed; a variable one counts as it stands.
+                let form = physics::by_state(view, s, |engine, p, h| {
+                    let at = engine.state(Pair::PressureEnthalpy, p, h, 0.0).ok()?;
+                    Some(LIMIT - engine.relative_uncertainty(&at))
+                })
+                .unwrap_or_else(|| Dual::constant(LIMIT - departure));
                 out.push(Margin {
                     pointer: Some(spec.pointer.clone()),
                     detail: s,

@@ -35,7 +35,7 @@ static INFO: RuleInfo = RuleInfo {
         r#"{"components": {"duct": {"kind": "pipe"}},
             "flows": {
               "before": {"kind": "material", "to": "duct", "fluid": "air", "pressure": "4.000 bar", "temperature": "392.93 K", "velocity": "119.21 m/s", "mass_flow": "1 kg/s"},
-              "after": {"kind": "material", "from": "duct", "fluid": "air", "pressure": "1.949 bar", "temperature": "373.13 K", "velocity": "232.34 m/s", "mass_flow": "1 kg/s"}}}"#,
+              "after": {"kind": "material", "from": "duct", "fluid": "air", "pressure": "1.949 bar", "temperature": "373.27 K", "velocity": "232.34 m/s", "mass_flow": "1 kg/s"}}}"#,
     ),
 };
 
