@@ -33,7 +33,7 @@ static INFO: RuleInfo = RuleInfo {
               "hot": {"kind": "material", "from": "burner", "fluid": "flue", "pressure": "1.013 bar"}}}"#,
     ),
     keeping: Case::Description(
-        r#"{"fluids": {"methane": {"kind": "ideal_gas", "mole_fractions": {"CH4": 1}}, "flue": {"kind": "combustion_gas", "fuel": "gas", "oxidant": "air", "o2_dry": "3.00 %", "co2_dry": "10.09 %"}},
+        r#"{"fluids": {"methane": {"kind": "ideal_gas", "mole_fractions": {"CH4": 1}}, "flue": {"kind": "combustion_gas", "fuel": "gas", "oxidant": "air", "o2_dry": "3.00 %", "co2_dry": "10.06 %"}},
              "components": {"burner": {"kind": "combustor"}},
             "flows": {
               "gas": {"kind": "material", "to": "burner", "fluid": "methane", "pressure": "1.050 bar", "temperature": "25.0 degC", "mole_flow": "2 mol/s"},

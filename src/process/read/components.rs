@@ -187,7 +187,24 @@ impl<'t> Reader<'t> {
                 matches!(self.process.flows[f].carried, Carried::Heat(..) | Carried::Radiation(..))
             });
         self.process.components[k].given.heat_loss = described;
-        if !described && !has_heat {
+        let converts = component.kind.info().purpose == kinds::Purposeful::Conversion;
+        if converts && !has_heat && given.is_some_and(|g| g.get("efficiency").is_some()) {
+            // What a converter does not pass on it gives off as heat.
+            let name = self.process.components[k].name.clone();
+            let loss = self.unknown(format!("heat loss of \"{name}\""), Nature::Energy, node.pointer());
+            let flow = self.process.flows.len();
+            self.process.flows.push(Flow {
+                name: format!("{name}.heat_loss"),
+                pointer: node.pointer(),
+                from: Some(k),
+                to: None,
+                carried: Carried::Heat(loss, Boundary::Unknown),
+                role: Some(Role::Loss),
+                implied: true,
+            });
+            self.process.components[k].outlets.push(flow);
+            self.process.components[k].given.heat_loss = true;
+        } else if !described && !has_heat {
             let pointer = node.pointer_to("heat_loss");
             self.assume(pointer, "heat loss not given: adiabatic");
         }
