@@ -1,7 +1,9 @@
 //! From a checked document to a process. Structural faults are collected, each at its place.
 
 mod components;
+mod ends;
 mod fluids;
+mod holdup;
 mod media;
 mod states;
 mod values;
