@@ -85,14 +85,26 @@ fn main() {
     };
     let small = without_exchangers();
     println!("report bytes: {} (with two exchangers), {} (without)", check(PLANT), check(&small));
-    row("bytes to report bytes, without exchangers", measure(30, 50, || { check(&small); }));
-    row("bytes to report bytes, with two exchangers", measure(30, 50, || { check(PLANT); }));
+    row(
+        "bytes to report bytes, without exchangers",
+        measure(30, 50, || {
+            check(&small);
+        }),
+    );
+    row(
+        "bytes to report bytes, with two exchangers",
+        measure(30, 50, || {
+            check(PLANT);
+        }),
+    );
 
     println!("\ngrowth with replicated components, bytes to report bytes");
     let mut points = Vec::new();
     for n in [10usize, 30, 100, 300, 1000] {
         let body = replicated(n);
-        let (best, median) = measure(5, (2000 / n).max(2), || { check(&body); });
+        let (best, median) = measure(5, (2000 / n).max(2), || {
+            check(&body);
+        });
         row(&format!("{n} components"), (best, median));
         points.push(((n as f64).ln(), best.ln()));
     }
