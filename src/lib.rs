@@ -13,4 +13,6 @@ pub mod api;
 pub mod diagnostic;
 pub mod document;
 pub mod fluid;
+pub mod pipeline;
 pub mod quantity;
+pub mod report;

@@ -1,0 +1,89 @@
+//! `POST /v1/checks`: one description in, one report out.
+
+use axum::body::Body;
+use axum::http::{HeaderName, HeaderValue, Response};
+
+use super::route::{
+    BASE, CSV, Call, Gives, HTML, JSON, Method, Outcome, Parameter, Route, TEXT, Takes, optional,
+};
+use crate::report::{Report, UnitSystem};
+
+/// The verdict beside the body, for users who read headers only.
+const VERDICT: HeaderName = HeaderName::from_static("verdict");
+
+/// A report holds its own style and diagrams and loads nothing.
+pub const PAGE_POLICY: &str = "default-src 'none'; style-src 'unsafe-inline'; img-src data:; base-uri 'none'; form-action 'none'; frame-ancestors 'none'";
+
+/// `?units=`.
+pub const UNITS: Parameter = Parameter {
+    name: "units",
+    in_path: false,
+    required: false,
+    choices: &["metric", "si", "us"],
+    description: "The units of the answer: metric (degC, bar, kW, kJ/kg; the default), si, or us.",
+    example: "metric",
+};
+
+/// `?deadline=`.
+pub const DEADLINE: Parameter = optional(
+    "deadline",
+    "How long the check may take, in seconds (5, 5s, 500ms), up to the longest that `/v1/limits` grants. \
+     A check that does not finish is answered with 503 `deadline-exceeded`; a report is never cut short.",
+    "5",
+);
+
+/// The route.
+pub const CHECK: Route = Route {
+    method: Method::Post,
+    path: "/v1/checks",
+    id: "check",
+    tag: Some("checks"),
+    summary: "Check one process description",
+    description: "Checks a description of a process against the balances of mass, elements and energy and against the \
+                  second law, and gives a report. The answer is 200 whatever the verdict; the header `Verdict` repeats it. \
+                  A description that cannot be read as one is answered with 422 and every fault located.",
+    parameters: &[UNITS, DEADLINE],
+    takes: Some(Takes {
+        media: &[JSON],
+        schema: "Description",
+        description: "The description of the process.",
+        examples: true,
+        streamed: false,
+    }),
+    gives: &[
+        Gives { media: JSON, schema: Some("Report") },
+        Gives { media: HTML, schema: None },
+        Gives { media: CSV, schema: None },
+        Gives { media: TEXT, schema: None },
+    ],
+    answer: "The report.",
+    refuses: &[406, 408, 413, 415, 422, 503],
+    handler: |call| Box::pin(check(call)),
+    ..BASE
+};
+
+/// A report in one of the media types of [`CHECK`].
+pub fn render(report: &Report, media: &str, units: UnitSystem) -> Vec<u8> {
+    match media {
+        HTML => report.to_html(units).into_bytes(),
+        CSV => report.to_csv(units).into_bytes(),
+        TEXT => report.to_text(units).into_bytes(),
+        _ => report.to_json(units),
+    }
+}
+
+async fn check(call: Call) -> Outcome {
+    let (deadline, units, media, body) = (call.deadline()?, call.query.units(), call.media, call.body);
+    let work = call.service.run(deadline, move |engine, limits, cancel| {
+        let report = engine.check(&body, limits, cancel)?;
+        Ok((report.verdict(), render(&report, media, units)))
+    });
+    let (verdict, bytes) = work.await?;
+    let mut response = Response::new(Body::from(bytes));
+    response.headers_mut().insert(VERDICT, HeaderValue::from_static(verdict));
+    if media == HTML {
+        let policy = HeaderValue::from_static(PAGE_POLICY);
+        response.headers_mut().insert(axum::http::header::CONTENT_SECURITY_POLICY, policy);
+    }
+    Ok(response)
+}
