@@ -145,7 +145,16 @@ impl From<Units> for UnitSystem {
 }
 
 fn main() -> ExitCode {
-    let outcome = match Flags::parse().command {
+    let flags = match Flags::try_parse() {
+        Ok(flags) => flags,
+        Err(message) => {
+            // Help and version come this way too. Code 2 belongs to descriptions.
+            let code = if message.use_stderr() { 3 } else { 0 };
+            let _ = message.print();
+            return ExitCode::from(code);
+        }
+    };
+    let outcome = match flags.command {
         Command::Serve(flags) => serve(*flags),
         Command::Check(flags) => run_check(&flags),
         Command::Demo(flags) => demo(&flags),

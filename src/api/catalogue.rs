@@ -9,7 +9,7 @@ use serde_json::{Value, json};
 use utoipa::ToSchema;
 
 use super::problem;
-use super::route::{BASE, Call, Gives, JSON, Outcome, Route};
+use super::route::{BASE, Call, Gives, JSON, Outcome, Route, json_response};
 use crate::diagnostic::Code;
 
 /// A handler that serves a value which is the same for the life of the process.
@@ -99,7 +99,7 @@ pub const LIMITS: Route = Route {
 };
 
 async fn limits(call: Call) -> Outcome {
-    Ok(Response::new(Body::from(json!(call.service.limits).to_string())))
+    json_response(&call.service.limits)
 }
 
 /// The fluids.

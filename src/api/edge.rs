@@ -85,6 +85,8 @@ pub async fn answer(
         headers.insert(REQUEST_ID, value);
     }
     headers.insert(X_CONTENT_TYPE_OPTIONS, HeaderValue::from_static("nosniff"));
+    // Of these nothing will be asked for.
+    let complete = method == Method::HEAD || response.body().is_end_stream();
     let entry = LogEntry {
         log,
         method,
@@ -93,7 +95,7 @@ pub async fn answer(
         id,
         begun,
         bytes: 0,
-        complete: false,
+        complete,
     };
     response.map(|body| Metered { body, entry, _in_flight: in_flight })
 }

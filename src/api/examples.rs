@@ -4,11 +4,10 @@
 use axum::body::Body;
 use axum::http::Response;
 use serde::Serialize;
-use serde_json::json;
 use utoipa::ToSchema;
 
 use super::problem::Problem;
-use super::route::{BASE, Call, Gives, JSON, Outcome, Parameter, Route};
+use super::route::{BASE, Call, Gives, JSON, Outcome, Parameter, Route, json_response};
 use crate::diagnostic::{Code, nearest};
 
 /// A description to try.
@@ -105,7 +104,7 @@ async fn list() -> Outcome {
         summary: example.summary,
         href: format!("/v1/examples/{}", example.name),
     });
-    Ok(Response::new(Body::from(json!(ExampleList { examples: examples.collect() }).to_string())))
+    json_response(&ExampleList { examples: examples.collect() })
 }
 
 async fn one(call: Call) -> Outcome {

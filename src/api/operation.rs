@@ -3,11 +3,10 @@
 use axum::body::Body;
 use axum::http::Response;
 use serde::Serialize;
-use serde_json::json;
 use utoipa::ToSchema;
 
 use super::problem::Problem;
-use super::route::{BASE, Call, Gives, JSON, Outcome, Route};
+use super::route::{BASE, Call, Gives, JSON, Outcome, Route, json_response};
 use crate::diagnostic::Code;
 
 /// The answer of `/livez` and `/readyz`.
@@ -65,7 +64,7 @@ pub const OPENAPI: Route = Route {
 
 fn healthy() -> Outcome {
     let health = Health { status: "ok", version: env!("CARGO_PKG_VERSION") };
-    Ok(Response::new(Body::from(json!(health).to_string())))
+    json_response(&health)
 }
 
 async fn ready(call: Call) -> Outcome {

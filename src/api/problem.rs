@@ -71,37 +71,39 @@ pub struct ProblemFault {
 pub struct Problem {
     /// Relative URI that names the kind of problem; its fragment is the code of the first fault.
     #[serde(rename = "type")]
-    pub kind: String,
+    #[schema(value_type = String)]
+    pub kind: Box<str>,
     /// The kind of problem in a few words.
     #[schema(value_type = String)]
-    pub title: Cow<'static, str>,
+    pub title: &'static str,
     /// The status code of the answer.
     #[schema(minimum = 400, maximum = 599)]
     pub status: u16,
     /// What went wrong this time.
-    pub detail: String,
+    #[schema(value_type = String)]
+    pub detail: Box<str>,
     /// The answer's `x-request-id`, also found in the log.
-    #[serde(skip_serializing_if = "String::is_empty")]
-    #[schema(required = false)]
-    pub request_id: String,
+    #[serde(skip_serializing_if = "str::is_empty")]
+    #[schema(value_type = String, required = false)]
+    pub request_id: Box<str>,
     /// Every fault that was found; empty where the fault is not in what was sent.
     pub errors: Vec<ProblemFault>,
 }
 
 impl Problem {
     /// A problem of one kind.
-    pub fn new(code: Code, detail: impl Into<String>) -> Problem {
+    pub fn new(code: Code, detail: impl Into<Box<str>>) -> Problem {
         Problem::with_status(status(code), code, detail)
     }
 
-    fn with_status(status: StatusCode, code: Code, detail: impl Into<String>) -> Problem {
+    fn with_status(status: StatusCode, code: Code, detail: impl Into<Box<str>>) -> Problem {
         let meaning = code.meaning();
         Problem {
-            kind: format!("/v1/codes#{code}"),
-            title: Cow::Borrowed(meaning.strip_suffix('.').unwrap_or(meaning)),
+            kind: format!("/v1/codes#{code}").into(),
+            title: meaning.strip_suffix('.').unwrap_or(meaning),
             status: status.as_u16(),
             detail: detail.into(),
-            request_id: String::new(),
+            request_id: Box::default(),
             errors: Vec::new(),
         }
     }
@@ -112,7 +114,7 @@ impl Problem {
         let mut problem = Problem::with_status(status, code_of(status), format!("{reason}."));
         if code_of(status) == Code::BadParameter {
             problem.kind = "about:blank".into();
-            problem.title = Cow::Borrowed(reason);
+            problem.title = reason;
         }
         problem
     }
@@ -170,7 +172,7 @@ impl Problem {
 
     /// The answer that carries this problem; `with_body` is false for HEAD.
     pub fn into_response(mut self, request_id: &str, with_body: bool) -> Response<Body> {
-        request_id.clone_into(&mut self.request_id);
+        self.request_id = request_id.into();
         let bytes = self.to_json();
         let length = bytes.len();
         let mut response =
@@ -197,7 +199,7 @@ mod tests {
             Diagnostic::new(Code::MissingField, "/flows/b", "fluid is missing"),
         ]);
         assert_eq!(problem.status, 422);
-        assert_eq!(problem.kind, "/v1/codes#unknown-unit");
+        assert_eq!(&*problem.kind, "/v1/codes#unknown-unit");
         assert!(problem.detail.starts_with("2 faults"));
         assert_eq!(problem.errors[1].pointer, "/flows/b");
         assert_eq!(problem.errors[0].hint.as_deref(), Some("bar?"));
@@ -206,7 +208,7 @@ mod tests {
     #[test]
     fn a_status_without_a_code_stays_generic() {
         let problem = Problem::from_status(StatusCode::EXPECTATION_FAILED);
-        assert_eq!((problem.status, problem.kind.as_str()), (417, "about:blank"));
-        assert_eq!(Problem::from_status(StatusCode::URI_TOO_LONG).kind, "/v1/codes#limit-exceeded");
+        assert_eq!((problem.status, &*problem.kind), (417, "about:blank"));
+        assert_eq!(&*Problem::from_status(StatusCode::URI_TOO_LONG).kind, "/v1/codes#limit-exceeded");
     }
 }

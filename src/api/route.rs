@@ -36,6 +36,14 @@ pub const TEXT: &str = "text/plain";
 pub type Outcome = Result<Response<Body>, Problem>;
 type Pending = Pin<Box<dyn Future<Output = Outcome> + Send>>;
 
+/// An answer with a value as JSON.
+pub fn json_response(value: &impl serde::Serialize) -> Outcome {
+    match serde_json::to_vec(value) {
+        Ok(bytes) => Ok(Response::new(Body::from(bytes))),
+        Err(_) => Err(Problem::new(Code::Internal, "the answer could not be written; the fault is ours")),
+    }
+}
+
 /// The method of a route; GET answers HEAD as well.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Method {
@@ -223,7 +231,7 @@ impl Route {
         }
         let mut response = (self.handler)(call).await?;
         let headers = response.headers_mut();
-        if !headers.contains_key(CONTENT_TYPE) {
+        if !self.gives.is_empty() && !headers.contains_key(CONTENT_TYPE) {
             let value = match media {
                 HTML => "text/html; charset=utf-8",
                 CSV => "text/csv; charset=utf-8",

@@ -151,7 +151,7 @@ fn bare_refusal(bytes: &[u8]) -> Option<StatusCode> {
 pub fn raw_problem(status: StatusCode) -> Vec<u8> {
     let id = RequestId::fresh();
     let mut problem = Problem::from_status(status);
-    problem.request_id.clone_from(&id.0);
+    problem.request_id = id.0.as_str().into();
     let body = problem.to_json();
     let retry = if status == StatusCode::SERVICE_UNAVAILABLE { "retry-after: 1\r\n" } else { "" };
     let mut bytes = format!(
