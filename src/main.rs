@@ -11,7 +11,6 @@ use std::time::Duration;
 use axum::body::Body;
 use axum::http::Request;
 use clap::{Parser, Subcommand, ValueEnum};
-use serde_json::Value;
 use tokio::runtime::Runtime;
 
 use sigmadot::api::engine::Core;
@@ -92,8 +91,8 @@ struct Check {
     #[arg(long, value_enum, default_value_t = Format::Text)]
     format: Format,
     /// The units of the report.
-    #[arg(long, value_enum, default_value_t = Units::Metric)]
-    units: Units,
+    #[arg(long, default_value = UnitSystem::Metric.text(), value_parser = unit_system)]
+    units: UnitSystem,
 }
 
 #[derive(clap::Args)]
@@ -116,13 +115,6 @@ enum Listing {
     Json,
 }
 
-#[derive(Clone, Copy, ValueEnum)]
-enum Units {
-    Metric,
-    Si,
-    Us,
-}
-
 impl Format {
     fn media(self) -> &'static str {
         match self {
@@ -134,14 +126,11 @@ impl Format {
     }
 }
 
-impl From<Units> for UnitSystem {
-    fn from(units: Units) -> Self {
-        match units {
-            Units::Metric => UnitSystem::Metric,
-            Units::Si => UnitSystem::Si,
-            Units::Us => UnitSystem::Us,
-        }
-    }
+fn unit_system(text: &str) -> Result<UnitSystem, String> {
+    UnitSystem::read(text).ok_or_else(|| {
+        let known: Vec<&str> = UnitSystem::ALL.iter().map(|system| system.text()).collect();
+        format!("one of {}", known.join(", "))
+    })
 }
 
 fn main() -> ExitCode {
@@ -267,7 +256,7 @@ fn exit_code(report: &Report) -> u8 {
 }
 
 fn run_check(flags: &Check) -> io::Result<ExitCode> {
-    let (limits, units) = (local_limits(), flags.units.into());
+    let (limits, units) = (local_limits(), flags.units);
     let mut codes = Vec::new();
     for file in &flags.files {
         let name = file.to_string_lossy();
@@ -369,16 +358,21 @@ fn health(address: SocketAddr) -> io::Result<ExitCode> {
 fn rules(format: Listing) -> io::Result<ExitCode> {
     let catalogue = catalogue::rules();
     if let Listing::Json = format {
-        return print(&format!("{catalogue:#}\n"));
+        return print(&format!("{:#}\n", serde_json::json!(catalogue)));
     }
     let mut text = String::new();
-    for rule in catalogue.get("rules").and_then(Value::as_array).into_iter().flatten() {
-        let member = |name: &str| rule.get(name).and_then(Value::as_str).unwrap_or_default();
-        text += &format!("{} [{}]\n    {}\n", member("rule"), member("authority"), member("summary"));
-        if !member("source").is_empty() {
-            text += &format!("    Source: {}\n", member("source"));
-        }
-        text.push('\n');
+    for rule in &catalogue.rules {
+        text += &format!(
+            "{} [{}, {}]\n    {}. {}\n    Applies to: {}\n    Usual cause: {}\n    Source: {}\n\n",
+            rule.name,
+            rule.authority,
+            rule.severity,
+            rule.title,
+            rule.inequality,
+            rule.applies_to,
+            rule.typical_cause,
+            rule.source,
+        );
     }
     print(&text)
 }

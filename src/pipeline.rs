@@ -4,6 +4,7 @@ use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, Ordering};
 
 use crate::diagnostic::{Code, Diagnostic};
+use crate::process;
 use crate::report::{Report, UnitSystem};
 
 /// How much a description may hold.
@@ -78,60 +79,42 @@ pub enum Failure {
     Cancelled,
 }
 
-fn parse(body: &[u8], limits: &Limits, cancel: &Cancel) -> Result<serde_json::Value, Failure> {
+fn read_limits(limits: &Limits) -> process::ReadLimits {
+    let mut read = process::ReadLimits::default();
+    read.tree.depth = limits.depth;
+    read.tree.key_bytes = limits.key_bytes;
+    read.tree.string_bytes = limits.text_bytes;
+    read.components = limits.components;
+    read.flows = limits.flows;
+    read.species = limits.species;
+    read.groups = limits.groups;
+    read
+}
+
+fn parse(body: &[u8], cancel: &Cancel) -> Result<serde_json::Value, Failure> {
     if cancel.is_cancelled() {
         return Err(Failure::Cancelled);
     }
-    let mut depth = 0_usize;
-    for byte in body {
-        match byte {
-            b'{' | b'[' => depth += 1,
-            b'}' | b']' => depth = depth.saturating_sub(1),
-            _ => {}
-        }
-        if depth > limits.depth {
-            let fault = Diagnostic::new(Code::TooDeep, "", "nested too deep");
-            return Err(Failure::Rejected(vec![fault]));
-        }
-    }
-    let value: serde_json::Value = serde_json::from_slice(body)
-        .map_err(|e| Failure::Rejected(vec![Diagnostic::new(Code::NotJson, "", e.to_string())]))?;
-    if value.is_object() {
-        Ok(value)
-    } else {
-        Err(Failure::Rejected(vec![Diagnostic::new(Code::WrongType, "", "an object is wanted")]))
-    }
+    serde_json::from_slice(body)
+        .map_err(|e| Failure::Rejected(vec![Diagnostic::new(Code::NotJson, "", e.to_string())]))
 }
 
 /// One description in, one report out.
 pub fn check_bytes(body: &[u8], limits: &Limits, cancel: &Cancel) -> Result<Report, Failure> {
-    let value = parse(body, limits, cancel)?;
-    if value.get("flows").is_none() {
-        return Err(Failure::Rejected(vec![Diagnostic::new(
-            Code::MissingField,
-            "/flows",
-            "flows is missing",
-        )]));
+    if cancel.is_cancelled() {
+        return Err(Failure::Cancelled);
     }
+    process::read(body, &read_limits(limits)).map_err(Failure::Rejected)?;
+    let value = parse(body, cancel)?;
     Ok(Report { name: value.get("name").map(ToString::to_string).unwrap_or_default() })
 }
 
 /// One state in, its properties out, as JSON.
-pub fn state_bytes(
-    body: &[u8],
-    _units: UnitSystem,
-    limits: &Limits,
-    cancel: &Cancel,
-) -> Result<Vec<u8>, Failure> {
-    parse(body, limits, cancel).map(|v| v.to_string().into_bytes())
+pub fn state_bytes(body: &[u8], _: UnitSystem, _: &Limits, cancel: &Cancel) -> Result<Vec<u8>, Failure> {
+    parse(body, cancel).map(|v| v.to_string().into_bytes())
 }
 
 /// One claim in, its judgement out, as JSON.
-pub fn claim_bytes(
-    body: &[u8],
-    _units: UnitSystem,
-    limits: &Limits,
-    cancel: &Cancel,
-) -> Result<Vec<u8>, Failure> {
-    parse(body, limits, cancel).map(|v| v.to_string().into_bytes())
+pub fn claim_bytes(body: &[u8], _: UnitSystem, _: &Limits, cancel: &Cancel) -> Result<Vec<u8>, Failure> {
+    parse(body, cancel).map(|v| v.to_string().into_bytes())
 }

@@ -19,7 +19,7 @@ pub const UNITS: Parameter = Parameter {
     name: "units",
     in_path: false,
     required: false,
-    choices: &["metric", "si", "us"],
+    choices: &[UnitSystem::Metric.text(), UnitSystem::Si.text(), UnitSystem::Us.text()],
     description: "The units of the answer: metric (degC, bar, kW, kJ/kg; the default), si, or us.",
     example: "metric",
 };

@@ -3,7 +3,10 @@
 use serde_json::{Map, Value, json};
 use utoipa::OpenApi;
 
-use super::catalogue::{CodeEntry, CodeList};
+use super::catalogue::{
+    CodeEntry, CodeList, FluidEntry, FluidList, KindEntry, KindList, PortEntry, QuantityEntry, RuleEntry,
+    RuleList, UnitEntry, UnitList,
+};
 use super::edge::REQUEST_ID;
 use super::examples::{EXAMPLES, ExampleEntry, ExampleList};
 use super::limits::{DescriptionLimits, PublishedLimits, ServiceLimits};
@@ -11,6 +14,8 @@ use super::operation::Health;
 use super::problem::{MEDIA_TYPE, Problem, ProblemFault};
 use super::route::{Gives, Parameter, Route, Takes};
 use super::routes::ROUTES;
+use crate::document::{ObjectShape, components};
+use crate::process::shape::DESCRIPTION;
 
 /// The types on the wire whose schemas are derived.
 #[derive(OpenApi)]
@@ -20,6 +25,16 @@ use super::routes::ROUTES;
     PublishedLimits,
     ServiceLimits,
     DescriptionLimits,
+    FluidList,
+    FluidEntry,
+    RuleList,
+    RuleEntry,
+    UnitList,
+    QuantityEntry,
+    UnitEntry,
+    KindList,
+    KindEntry,
+    PortEntry,
     CodeList,
     CodeEntry,
     ExampleList,
@@ -54,10 +69,13 @@ const REFUSALS: &[(u16, &str, &str)] = &[
     ),
 ];
 
+/// The objects that are sent, with everything they consist of.
+const SENT: &[&ObjectShape] = &[&DESCRIPTION];
+
 /// Schemas of what is sent: the description, a question for a state, a claim.
 pub fn request_components() -> Map<String, Value> {
-    let mut schemas = Map::new();
-    for name in ["Description", "StateQuestion", "Claim"] {
+    let mut schemas = components(SENT);
+    for name in ["StateQuestion", "Claim"] {
         schemas.insert(name.into(), json!({"type": "object"}));
     }
     schemas
@@ -66,9 +84,7 @@ pub fn request_components() -> Map<String, Value> {
 /// Schemas of what is answered and not derived above.
 pub fn response_components() -> Map<String, Value> {
     let mut schemas = Map::new();
-    for name in
-        ["Report", "StateAnswer", "ClaimAnswer", "FluidList", "RuleList", "UnitList", "ComponentKindList"]
-    {
+    for name in ["Report", "StateAnswer", "ClaimAnswer"] {
         schemas.insert(name.into(), json!({"type": "object"}));
     }
     schemas
@@ -104,7 +120,7 @@ pub fn document() -> Value {
             "title": env!("CARGO_PKG_NAME"),
             "version": env!("CARGO_PKG_VERSION"),
             "summary": "Checks processes against the second law of thermodynamics.",
-            "description": DESCRIPTION,
+            "description": ABOUT,
             "license": {"name": "MIT OR Apache-2.0", "identifier": "MIT OR Apache-2.0"},
         },
         "servers": [{"url": "/", "description": "This service."}],
@@ -122,7 +138,7 @@ pub fn document_text() -> String {
     text
 }
 
-const DESCRIPTION: &str = "Takes a description of a process (components, and the flows of matter, heat and work between \
+const ABOUT: &str = "Takes a description of a process (components, and the flows of matter, heat and work between \
     them) and answers with balances of mass, energy, entropy and exergy, and with every place where the description \
     contradicts the second law: by how much, and how sure that is.\n\nEvery value that has a dimension carries its unit. \
     Every answer from 400 on is `application/problem+json` and locates each fault with a JSON Pointer.\n\nA verdict \
@@ -251,6 +267,7 @@ fn taken(takes: &Takes) -> Value {
 #[cfg(test)]
 mod tests {
     use super::*;
+    use crate::document::clashing_names;
 
     fn references<'a>(value: &'a Value, found: &mut Vec<&'a str>) {
         match value {
@@ -272,6 +289,17 @@ mod tests {
         for reference in found {
             let pointer = reference.strip_prefix('#').unwrap();
             assert!(document.pointer(pointer).is_some(), "{reference} dangles");
+        }
+    }
+
+    #[test]
+    fn no_two_schemas_share_a_name() {
+        assert_eq!(clashing_names(SENT), Vec::<String>::new());
+        let derived = serde_json::to_value(Derived::openapi()).unwrap();
+        let derived = derived.pointer("/components/schemas").unwrap().as_object().unwrap();
+        let others = request_components().into_iter().chain(response_components());
+        for (name, _) in others {
+            assert!(!derived.contains_key(&name), "{name} twice");
         }
     }
 

@@ -56,11 +56,7 @@ impl Query {
 
     /// The units that `?units=` asks for.
     pub fn units(&self) -> UnitSystem {
-        match self.get("units") {
-            Some("si") => UnitSystem::Si,
-            Some("us") => UnitSystem::Us,
-            _ => UnitSystem::Metric,
-        }
+        self.get("units").and_then(UnitSystem::read).unwrap_or_default()
     }
 
     /// The time that `?deadline=` asks for, at most `longest`.

@@ -1,16 +1,6 @@
 //! The finished assessment and its exporters.
 
-/// Which units an answer is written in.
-#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
-pub enum UnitSystem {
-    /// degC, bar, kW.
-    #[default]
-    Metric,
-    /// K, Pa, W.
-    Si,
-    /// degF, psi, Btu/h.
-    Us,
-}
+pub use crate::quantity::UnitSystem;
 
 /// A finished assessment.
 #[derive(Debug)]
