@@ -20,17 +20,22 @@ pub const UNITS: Parameter = Parameter {
     in_path: false,
     required: false,
     choices: &[UnitSystem::Metric.text(), UnitSystem::Si.text(), UnitSystem::Us.text()],
+    pattern: None,
     description: "The units of the answer: metric (degC, bar, kW, kJ/kg; the default), si, or us.",
     example: "metric",
 };
 
-/// `?deadline=`.
-pub const DEADLINE: Parameter = optional(
-    "deadline",
-    "How long the check may take, in seconds (5, 5s, 500ms), up to the longest that `/v1/limits` grants. \
-     A check that does not finish is answered with 503 `deadline-exceeded`; a report is never cut short.",
-    "5",
-);
+/// `?deadline=`. The pattern is for the default of the longest deadline, 30 s.
+pub const DEADLINE: Parameter = Parameter {
+    pattern: Some("^(([1-9]|[12][0-9]|30)s?|([1-9][0-9]{0,3}|[12][0-9]{4}|30000)ms)$"),
+    ..optional(
+        "deadline",
+        "How long the check may take, in whole seconds (5 or 5s) or milliseconds (500ms), up to the longest that \
+         `/v1/limits` grants. A check that does not finish is answered with 503 `deadline-exceeded`; a report is never \
+         cut short.",
+        "5",
+    )
+};
 
 /// The route.
 pub const CHECK: Route = Route {

@@ -88,6 +88,7 @@ pub const ONE: Route = Route {
         in_path: true,
         required: true,
         choices: &[],
+        pattern: None,
         description: "A name from the list.",
         example: "laundry-let-down",
     }],

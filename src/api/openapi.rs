@@ -238,6 +238,9 @@ fn parameter(parameter: &Parameter) -> Value {
     if let (false, Some(members)) = (parameter.choices.is_empty(), schema.as_object_mut()) {
         members.insert("enum".into(), json!(parameter.choices));
     }
+    if let (Some(pattern), Some(members)) = (parameter.pattern, schema.as_object_mut()) {
+        members.insert("pattern".into(), json!(pattern));
+    }
     json!({
         "name": parameter.name,
         "in": if parameter.in_path { "path" } else { "query" },
@@ -261,7 +264,8 @@ fn taken(takes: &Takes) -> Value {
         members.insert("examples".into(), Value::Object(examples));
     }
     let media = takes.media.first().copied().unwrap_or_default();
-    json!({"required": true, "description": takes.description, "content": {media: content}})
+    // An empty stream is a stream; an empty body is no JSON.
+    json!({"required": !takes.streamed, "description": takes.description, "content": {media: content}})
 }
 
 #[cfg(test)]

@@ -52,6 +52,7 @@ pub const DOCS_FILE: Route = Route {
         in_path: true,
         required: true,
         choices: &[],
+        pattern: None,
         description: "A file of the documentation.",
         example: "index.html",
     }],

@@ -74,6 +74,8 @@ pub struct Parameter {
     pub required: bool,
     /// The words it takes; empty if it takes any text.
     pub choices: &'static [&'static str],
+    /// The regular expression that its text matches, for the documentation; the handler enforces it.
+    pub pattern: Option<&'static str>,
     /// What it does.
     pub description: &'static str,
     /// A value that works.
@@ -82,7 +84,7 @@ pub struct Parameter {
 
 /// An optional query parameter that takes any text.
 pub const fn optional(name: &'static str, description: &'static str, example: &'static str) -> Parameter {
-    Parameter { name, in_path: false, required: false, choices: &[], description, example }
+    Parameter { name, in_path: false, required: false, choices: &[], pattern: None, description, example }
 }
 
 /// The body that a route takes.
