@@ -10,6 +10,7 @@
 
 #[cfg(feature = "server")]
 pub mod api;
+pub mod assessment;
 pub mod balance;
 pub mod diagnostic;
 pub mod document;

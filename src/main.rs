@@ -18,8 +18,10 @@ use sigmadot::api::limits::PublishedLimits;
 use sigmadot::api::log::Log;
 use sigmadot::api::serve::{Settings, bind};
 use sigmadot::api::{catalogue, check, client, examples, limits, openapi, route};
-use sigmadot::pipeline::{Cancel, Failure, Limits, check_bytes};
-use sigmadot::report::{Report, UnitSystem};
+use sigmadot::pipeline::{Cancel, Failure, check_bytes};
+use sigmadot::process::ReadLimits;
+use sigmadot::quantity::UnitSystem;
+use sigmadot::report::Report;
 
 #[global_allocator]
 static ALLOCATOR: mimalloc::MiMalloc = mimalloc::MiMalloc;
@@ -105,8 +107,6 @@ struct Demo {
 enum Format {
     Json,
     Text,
-    Html,
-    Csv,
 }
 
 #[derive(Clone, Copy, ValueEnum)]
@@ -120,8 +120,6 @@ impl Format {
         match self {
             Format::Json => route::JSON,
             Format::Text => route::TEXT,
-            Format::Html => route::HTML,
-            Format::Csv => route::CSV,
         }
     }
 }
@@ -231,32 +229,31 @@ fn read(file: &OsString) -> io::Result<Vec<u8>> {
 
 /// A description on one's own disk may be as large as it likes; only its depth stays limited, since
 /// reading it is recursive.
-fn local_limits() -> Limits {
-    Limits {
-        depth: Limits::default().depth,
-        key_bytes: usize::MAX,
-        text_bytes: usize::MAX,
+fn local_limits() -> ReadLimits {
+    let mut limits = ReadLimits {
         components: usize::MAX,
         flows: usize::MAX,
         species: usize::MAX,
-        tags: usize::MAX,
-        profile_points: usize::MAX,
         groups: usize::MAX,
-        faults: Limits::default().faults,
-    }
+        ..ReadLimits::default()
+    };
+    limits.tree.key_bytes = usize::MAX;
+    limits.tree.string_bytes = usize::MAX;
+    limits.tree.free_key_chars = usize::MAX;
+    limits
 }
 
 /// The exit code of one report.
 fn exit_code(report: &Report) -> u8 {
-    match report.verdict() {
+    match report.verdict {
         "violated" => 1,
-        "holds" if report.complete() && report.data_verdict() != "contradictory" => 0,
+        "holds" if report.complete && report.data_verdict != "contradictory" => 0,
         _ => 3,
     }
 }
 
 fn run_check(flags: &Check) -> io::Result<ExitCode> {
-    let (limits, units) = (local_limits(), flags.units);
+    let limits = local_limits();
     let mut codes = Vec::new();
     for file in &flags.files {
         let name = file.to_string_lossy();
@@ -268,9 +265,9 @@ fn run_check(flags: &Check) -> io::Result<ExitCode> {
                 continue;
             }
         };
-        match check_bytes(&bytes, &limits, &Cancel::new()) {
+        match check_bytes(&bytes, &limits, flags.units, &Cancel::new()) {
             Ok(report) => {
-                let mut text = check::render(&report, flags.format.media(), units);
+                let mut text = check::render(&report, flags.format.media());
                 if text.last() != Some(&b'\n') {
                     text.push(b'\n');
                 }

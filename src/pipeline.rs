@@ -1,120 +1,154 @@
 //! The one place that composes the phases.
 
+use crate::assessment::{Exergies, Judgement, judge, margins};
+use crate::balance::{Equations, Evaluation};
+use crate::diagnostic::Diagnostic;
+use crate::document::{canonical, sha256_hex};
+use crate::evidence::Sensitivity;
+use crate::model::{Margin, Model, Plan, View, Workspace};
+use crate::process::{self, Inputs, ReadLimits};
+use crate::quantity::UnitSystem;
+use crate::report::{Report, StateReport};
 use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, Ordering};
 
-use crate::diagnostic::{Code, Diagnostic};
-use crate::process;
-use crate::report::{Report, UnitSystem};
-
-/// How much a description may hold.
-#[derive(Clone, Debug)]
-pub struct Limits {
-    /// Levels of nesting.
-    pub depth: usize,
-    /// Bytes in a member name.
-    pub key_bytes: usize,
-    /// Bytes in a string.
-    pub text_bytes: usize,
-    /// Components.
-    pub components: usize,
-    /// Flows.
-    pub flows: usize,
-    /// Species in a mixture.
-    pub species: usize,
-    /// Tags.
-    pub tags: usize,
-    /// Points of an exchanger's profile.
-    pub profile_points: usize,
-    /// Groups.
-    pub groups: usize,
-    /// Faults collected before reading stops.
-    pub faults: usize,
-}
-
-impl Default for Limits {
-    fn default() -> Self {
-        Limits {
-            depth: 32,
-            key_bytes: 64,
-            text_bytes: 1024,
-            components: 200,
-            flows: 500,
-            species: 40,
-            tags: 2000,
-            profile_points: 200,
-            groups: 64,
-            faults: 100,
-        }
-    }
-}
-
-/// A flag that stops a check from outside.
+/// A request to stop, shared between whoever waits and whoever computes.
 #[derive(Clone, Debug, Default)]
 pub struct Cancel(Arc<AtomicBool>);
 
 impl Cancel {
-    /// A flag that is not raised.
-    pub fn new() -> Self {
+    /// A request that has not been made yet.
+    pub fn new() -> Cancel {
         Cancel::default()
     }
 
-    /// Raises the flag.
+    /// Makes the request.
     pub fn cancel(&self) {
         self.0.store(true, Ordering::Relaxed);
     }
 
-    /// Whether the flag is raised.
+    /// Whether the request was made.
     pub fn is_cancelled(&self) -> bool {
         self.0.load(Ordering::Relaxed)
     }
+
+    /// # Errors
+    /// `Failure::Cancelled` if the request was made.
+    pub fn check(&self) -> Result<(), Failure> {
+        if self.is_cancelled() { Err(Failure::Cancelled) } else { Ok(()) }
+    }
 }
 
-/// Why there is no answer.
-#[derive(Debug)]
+/// Why there is no report.
+#[derive(Clone, Debug, PartialEq)]
 pub enum Failure {
-    /// The description has faults.
+    /// The description cannot be checked: every fault that was found.
     Rejected(Vec<Diagnostic>),
-    /// The flag was raised.
+    /// It was cancelled before it finished.
     Cancelled,
 }
 
-fn read_limits(limits: &Limits) -> process::ReadLimits {
-    let mut read = process::ReadLimits::default();
-    read.tree.depth = limits.depth;
-    read.tree.key_bytes = limits.key_bytes;
-    read.tree.string_bytes = limits.text_bytes;
-    read.components = limits.components;
-    read.flows = limits.flows;
-    read.species = limits.species;
-    read.groups = limits.groups;
-    read
+/// A compiled process, ready to be evaluated with any inputs: what a stored plant keeps.
+#[derive(Debug)]
+pub struct Bound {
+    /// Structure.
+    pub model: Model,
+    /// Equations and regions.
+    pub equations: Equations,
+    /// How the unknowns are found.
+    pub plan: Plan,
+    /// The inputs that the plan was made with.
+    pub inputs: Inputs,
 }
 
-fn parse(body: &[u8], cancel: &Cancel) -> Result<serde_json::Value, Failure> {
-    if cancel.is_cancelled() {
-        return Err(Failure::Cancelled);
+/// Room for one evaluation after another.
+#[derive(Debug, Default)]
+pub struct Room {
+    /// Values.
+    pub workspace: Workspace,
+    /// Gradients.
+    pub sensitivity: Sensitivity,
+    margins: Vec<Margin>,
+}
+
+impl Bound {
+    /// Compiles a process and finds how its unknowns are solved. The room holds the solution
+    /// afterwards.
+    pub fn compile(process: process::Process, inputs: Inputs, room: &mut Room) -> Bound {
+        let (model, inputs) = Model::compile(process, inputs);
+        room.workspace.bind(&model, &inputs);
+        let equations = Equations::compile(&model, &room.workspace);
+        let plan = Plan::make(&model, &equations, &mut room.workspace);
+        Bound { model, equations, plan, inputs }
     }
-    serde_json::from_slice(body)
-        .map_err(|e| Failure::Rejected(vec![Diagnostic::new(Code::NotJson, "", e.to_string())]))
-}
 
-/// One description in, one report out.
-pub fn check_bytes(body: &[u8], limits: &Limits, cancel: &Cancel) -> Result<Report, Failure> {
-    if cancel.is_cancelled() {
-        return Err(Failure::Cancelled);
+    /// Evaluates the balances at given inputs.
+    pub fn evaluate<'a>(&'a self, inputs: &Inputs, room: &'a mut Room) -> Evaluation<'a> {
+        room.workspace.bind(&self.model, inputs);
+        self.plan.execute(&self.model, &self.equations, &mut room.workspace);
+        let view = View { model: &self.model, workspace: &room.workspace };
+        Evaluation::new(view, &self.equations, &self.plan)
     }
-    process::read(body, &read_limits(limits)).map_err(Failure::Rejected)?;
-    let value = parse(body, cancel)?;
-    Ok(Report { name: value.get("name").map(ToString::to_string).unwrap_or_default() })
 }
 
-/// One state in, its properties out, as JSON.
-pub fn state_bytes(body: &[u8], _: UnitSystem, _: &Limits, cancel: &Cancel) -> Result<Vec<u8>, Failure> {
-    parse(body, cancel).map(|v| v.to_string().into_bytes())
+/// Evaluates and decides: the hot path of repeated checks of one process.
+pub fn evaluate_and_decide(bound: &Bound, inputs: &Inputs, room: &mut Room) -> Judgement {
+    room.workspace.bind(&bound.model, inputs);
+    bound.plan.execute(&bound.model, &bound.equations, &mut room.workspace);
+    let view = View { model: &bound.model, workspace: &room.workspace };
+    let evaluation = Evaluation::new(view, &bound.equations, &bound.plan);
+    room.sensitivity.take(view, &bound.equations, &bound.plan);
+    room.margins.clear();
+    margins(&evaluation, &mut room.margins);
+    judge(&evaluation, &room.margins, &mut room.sensitivity)
 }
 
-/// One claim in, its judgement out, as JSON.
-pub fn claim_bytes(body: &[u8], _: UnitSystem, _: &Limits, cancel: &Cancel) -> Result<Vec<u8>, Failure> {
-    parse(body, cancel).map(|v| v.to_string().into_bytes())
+/// From the bytes of a description to a report.
+///
+/// # Errors
+/// See [`Failure`].
+pub fn check_bytes(
+    body: &[u8],
+    limits: &ReadLimits,
+    units: UnitSystem,
+    cancel: &Cancel,
+) -> Result<Report, Failure> {
+    let (process, inputs) = process::read(body, limits).map_err(Failure::Rejected)?;
+    cancel.check()?;
+    let mut room = Room::default();
+    let bound = Bound::compile(process, inputs, &mut room);
+    cancel.check()?;
+    let view = View { model: &bound.model, workspace: &room.workspace };
+    let mut evaluation = Evaluation::new(view, &bound.equations, &bound.plan);
+    room.sensitivity.take(view, &bound.equations, &bound.plan);
+    let exergies = Exergies::derive(&evaluation);
+    evaluation.exergy_mismatch = Some(exergies.mismatches());
+    cancel.check()?;
+    let mut all = Vec::new();
+    margins(&evaluation, &mut all);
+    cancel.check()?;
+    let judgement = judge(&evaluation, &all, &mut room.sensitivity);
+    cancel.check()?;
+    let hash = sha256_hex(canonical(std::str::from_utf8(body).unwrap_or_default()).as_bytes());
+    Ok(Report::assemble(&evaluation, &judgement, &exergies, &mut room.sensitivity, units, hash))
+}
+
+/// From the bytes of a question to one state.
+///
+/// # Errors
+/// See [`Failure`]; a state outside the range of its formulation is rejected here.
+pub fn state_bytes(
+    body: &[u8],
+    limits: &ReadLimits,
+    units: UnitSystem,
+    cancel: &Cancel,
+) -> Result<StateReport, Failure> {
+    let (process, inputs) = process::read_state(body, limits).map_err(Failure::Rejected)?;
+    cancel.check()?;
+    let mut room = Room::default();
+    let bound = Bound::compile(process, inputs, &mut room);
+    let view = View { model: &bound.model, workspace: &room.workspace };
+    room.sensitivity.take(view, &bound.equations, &bound.plan);
+    cancel.check()?;
+    StateReport::assemble(view, &mut room.sensitivity, units).map_err(|fault| Failure::Rejected(vec![fault]))
 }

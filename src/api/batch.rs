@@ -17,7 +17,7 @@ use super::problem::Problem;
 use super::route::{BASE, Call, Gives, JSON, Method, NDJSON, Outcome, Route, Takes};
 use super::service::{Service, Ticket};
 use crate::diagnostic::Code;
-use crate::report::UnitSystem;
+use crate::quantity::UnitSystem;
 
 /// The route.
 pub const BATCH: Route = Route {
@@ -141,7 +141,7 @@ impl Reader {
         }
         let units = self.units;
         let queued = self.service.queue(move |engine, limits, cancel| {
-            engine.check(&line, limits, cancel).map(|report| report.to_json(units))
+            engine.check(&line, limits, units, cancel).map(|report| report.to_json())
         });
         let ticket = queued.await.map_err(Some)?;
         self.hand_over(Entry::Queued(ticket)).await.map_err(|Gone| None)

@@ -6,7 +6,7 @@ use std::time::Duration;
 use serde::Serialize;
 use utoipa::ToSchema;
 
-use crate::pipeline::Limits;
+use crate::process::ReadLimits;
 
 /// Limits on bytes, time and concurrency.
 #[derive(Clone, Debug, Serialize, ToSchema, clap::Args)]
@@ -94,74 +94,56 @@ impl ServiceLimits {
 #[derive(Clone, Debug, Serialize, ToSchema, clap::Args)]
 pub struct DescriptionLimits {
     /// Levels of nesting.
-    #[arg(long, value_name = "N", default_value_t = Limits::default().depth)]
+    #[arg(long, value_name = "N", default_value_t = ReadLimits::default().tree.depth)]
     pub depth: usize,
     /// Bytes in a member's name.
-    #[arg(long, value_name = "BYTES", default_value_t = Limits::default().key_bytes)]
+    #[arg(long, value_name = "BYTES", default_value_t = ReadLimits::default().tree.key_bytes)]
     pub key_bytes: usize,
-    /// Bytes in a string.
-    #[arg(long, value_name = "BYTES", default_value_t = Limits::default().text_bytes)]
+    /// Bytes in a text.
+    #[arg(long, value_name = "BYTES", default_value_t = ReadLimits::default().tree.string_bytes)]
     pub text_bytes: usize,
     /// Components.
-    #[arg(long, value_name = "N", default_value_t = Limits::default().components)]
+    #[arg(long, value_name = "N", default_value_t = ReadLimits::default().components)]
     pub components: usize,
     /// Flows.
-    #[arg(long, value_name = "N", default_value_t = Limits::default().flows)]
+    #[arg(long, value_name = "N", default_value_t = ReadLimits::default().flows)]
     pub flows: usize,
     /// Species in a mixture.
-    #[arg(long, value_name = "N", default_value_t = Limits::default().species)]
+    #[arg(long, value_name = "N", default_value_t = ReadLimits::default().species)]
     pub species: usize,
-    /// Tags.
-    #[arg(long, value_name = "N", default_value_t = Limits::default().tags)]
-    pub tags: usize,
-    /// Points of an exchanger's profile.
-    #[arg(long, value_name = "N", default_value_t = Limits::default().profile_points)]
-    pub profile_points: usize,
     /// Groups of components.
-    #[arg(long, value_name = "N", default_value_t = Limits::default().groups)]
+    #[arg(long, value_name = "N", default_value_t = ReadLimits::default().groups)]
     pub groups: usize,
-    /// Faults that are collected before reading stops.
-    #[arg(long, value_name = "N", default_value_t = Limits::default().faults)]
-    pub faults: usize,
 }
 
 impl Default for DescriptionLimits {
     fn default() -> Self {
-        Limits::default().into()
-    }
-}
-
-impl From<Limits> for DescriptionLimits {
-    fn from(l: Limits) -> Self {
+        let ReadLimits { tree, components, flows, species, groups } = ReadLimits::default();
         DescriptionLimits {
-            depth: l.depth,
-            key_bytes: l.key_bytes,
-            text_bytes: l.text_bytes,
-            components: l.components,
-            flows: l.flows,
-            species: l.species,
-            tags: l.tags,
-            profile_points: l.profile_points,
-            groups: l.groups,
-            faults: l.faults,
+            depth: tree.depth,
+            key_bytes: tree.key_bytes,
+            text_bytes: tree.string_bytes,
+            components,
+            flows,
+            species,
+            groups,
         }
     }
 }
 
-impl From<DescriptionLimits> for Limits {
-    fn from(l: DescriptionLimits) -> Self {
-        Limits {
-            depth: l.depth,
-            key_bytes: l.key_bytes,
-            text_bytes: l.text_bytes,
-            components: l.components,
-            flows: l.flows,
-            species: l.species,
-            tags: l.tags,
-            profile_points: l.profile_points,
-            groups: l.groups,
-            faults: l.faults,
-        }
+impl From<&DescriptionLimits> for ReadLimits {
+    fn from(limits: &DescriptionLimits) -> Self {
+        let mut read = ReadLimits {
+            components: limits.components,
+            flows: limits.flows,
+            species: limits.species,
+            groups: limits.groups,
+            ..ReadLimits::default()
+        };
+        read.tree.depth = limits.depth;
+        read.tree.key_bytes = limits.key_bytes;
+        read.tree.string_bytes = limits.text_bytes;
+        read
     }
 }
 

@@ -2,12 +2,11 @@
 //!
 //! ```text
 //! serve (listener, connections) → wire (bytes) → edge (id, panics, problems, log line)
-//!   → routes (the one list) → route (parameters, media types, body) → check | batch | ask | …
+//!   → routes (the one list) → route (parameters, media types, body) → check | batch | state | …
 //!   → service (deadline) → pool (worker threads) → engine (the library)
 //! ```
 
 pub mod activity;
-pub mod ask;
 pub mod batch;
 pub mod body;
 pub mod catalogue;
@@ -29,4 +28,5 @@ pub mod route;
 pub mod routes;
 pub mod serve;
 pub mod service;
+pub mod state;
 pub mod wire;

@@ -15,11 +15,14 @@ use super::problem::{MEDIA_TYPE, Problem, ProblemFault};
 use super::route::{Gives, Parameter, Route, Takes};
 use super::routes::ROUTES;
 use crate::document::{ObjectShape, components};
-use crate::process::shape::DESCRIPTION;
+use crate::process::shape::{DESCRIPTION, STATE_QUESTION};
+use crate::report::{Report, StateReport};
 
 /// The types on the wire whose schemas are derived.
 #[derive(OpenApi)]
 #[openapi(components(schemas(
+    Report,
+    StateReport,
     Problem,
     ProblemFault,
     PublishedLimits,
@@ -47,7 +50,6 @@ struct Derived;
 const TAGS: &[(&str, &str)] = &[
     ("checks", "One description of a process in, one report out."),
     ("states", "One state of a fluid."),
-    ("claims", "One claimed performance against its limits."),
     ("catalogues", "What the service knows and grants."),
     ("operation", "Health and documentation."),
 ];
@@ -69,32 +71,13 @@ const REFUSALS: &[(u16, &str, &str)] = &[
     ),
 ];
 
-/// The objects that are sent, with everything they consist of.
-const SENT: &[&ObjectShape] = &[&DESCRIPTION];
-
-/// Schemas of what is sent: the description, a question for a state, a claim.
-pub fn request_components() -> Map<String, Value> {
-    let mut schemas = components(SENT);
-    for name in ["StateQuestion", "Claim"] {
-        schemas.insert(name.into(), json!({"type": "object"}));
-    }
-    schemas
-}
-
-/// Schemas of what is answered and not derived above.
-pub fn response_components() -> Map<String, Value> {
-    let mut schemas = Map::new();
-    for name in ["Report", "StateAnswer", "ClaimAnswer"] {
-        schemas.insert(name.into(), json!({"type": "object"}));
-    }
-    schemas
-}
+/// The objects that are sent; what they consist of follows from their declarations.
+const SENT: &[&ObjectShape] = &[&DESCRIPTION, &STATE_QUESTION];
 
 /// The document.
 pub fn document() -> Value {
     let derived = serde_json::to_value(Derived::openapi()).unwrap_or_default();
-    let mut schemas = request_components();
-    schemas.extend(response_components());
+    let mut schemas = components(SENT);
     schemas.insert("BatchAnswer".into(), batch_answer());
     schemas.insert(
         "OpenApiDocument".into(),
@@ -204,17 +187,7 @@ fn operation(route: &Route) -> Value {
             responses.insert(status.to_string(), json!({"$ref": format!("#/components/responses/{name}")}));
         }
     }
-    let mut parameters: Vec<Value> = route.parameters.iter().map(parameter).collect();
-    if route.takes_fields {
-        parameters.push(json!({
-            "name": "fields",
-            "in": "query",
-            "description": "Members of the question; a member of a member is written with a dot.",
-            "style": "form",
-            "explode": true,
-            "schema": {"type": "object", "additionalProperties": {"type": "string"}},
-        }));
-    }
+    let parameters: Vec<Value> = route.parameters.iter().map(parameter).collect();
     let mut operation = json!({
         "tags": [route.tag],
         "summary": route.summary,
@@ -301,9 +274,9 @@ mod tests {
         assert_eq!(clashing_names(SENT), Vec::<String>::new());
         let derived = serde_json::to_value(Derived::openapi()).unwrap();
         let derived = derived.pointer("/components/schemas").unwrap().as_object().unwrap();
-        let others = request_components().into_iter().chain(response_components());
-        for (name, _) in others {
-            assert!(!derived.contains_key(&name), "{name} twice");
+        let others = components(SENT);
+        for name in others.keys() {
+            assert!(!derived.contains_key(name), "{name} twice");
         }
     }
 

@@ -7,7 +7,7 @@ use serde_json::{Map, Value};
 use super::problem::Problem;
 use super::route::{Parameter, Route};
 use crate::diagnostic::nearest;
-use crate::report::UnitSystem;
+use crate::quantity::UnitSystem;
 
 /// Names and values of a query that are known to the route, each at most once.
 #[derive(Debug, Default)]
@@ -25,7 +25,6 @@ impl Query {
             let known = || route.parameters.iter().filter(|p| !p.in_path).map(|p| p.name);
             match route.parameters.iter().find(|p| !p.in_path && p.name == name) {
                 Some(parameter) => parameter.check(&value)?,
-                None if route.takes_fields => {}
                 None => {
                     let hint = match nearest(&name, known()).first() {
                         Some(close) => format!("did you mean {close:?}?"),

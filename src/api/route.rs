@@ -27,8 +27,6 @@ pub const JSON: &str = "application/json";
 pub const NDJSON: &str = "application/x-ndjson";
 /// A page.
 pub const HTML: &str = "text/html";
-/// Comma-separated values.
-pub const CSV: &str = "text/csv";
 /// Plain text.
 pub const TEXT: &str = "text/plain";
 
@@ -128,8 +126,6 @@ pub struct Route {
     pub description: &'static str,
     /// Parameters in path and query.
     pub parameters: &'static [Parameter],
-    /// Whether further query parameters are fields of a description.
-    pub takes_fields: bool,
     /// The body it takes.
     pub takes: Option<Takes>,
     /// The media types it gives, the preferred first.
@@ -151,7 +147,6 @@ pub const BASE: Route = Route {
     summary: "",
     description: "",
     parameters: &[],
-    takes_fields: false,
     takes: None,
     gives: &[],
     answer: "",
@@ -236,7 +231,6 @@ impl Route {
         if !self.gives.is_empty() && !headers.contains_key(CONTENT_TYPE) {
             let value = match media {
                 HTML => "text/html; charset=utf-8",
-                CSV => "text/csv; charset=utf-8",
                 TEXT => "text/plain; charset=utf-8",
                 other => other,
             };

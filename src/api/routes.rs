@@ -9,17 +9,15 @@ use axum::routing::MethodRouter;
 use super::problem::Problem;
 use super::route::Route;
 use super::service::Service;
-use super::{ask, batch, catalogue, check, examples, operation, pages};
+use super::{batch, catalogue, check, examples, operation, pages, state};
 use crate::diagnostic::Code;
 
 /// Every route.
 pub const ROUTES: &[Route] = &[
     check::CHECK,
     batch::BATCH,
-    ask::GET_STATE,
-    ask::POST_STATE,
-    ask::POST_CLAIM,
-    ask::GET_CLAIM,
+    state::GET_STATE,
+    state::POST_STATE,
     catalogue::FLUIDS,
     catalogue::RULES,
     catalogue::UNITS,

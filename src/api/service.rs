@@ -13,7 +13,8 @@ use super::limits::PublishedLimits;
 use super::pool::{Full, Pool};
 use super::problem::Problem;
 use crate::diagnostic::Code;
-use crate::pipeline::{Cancel, Failure, Limits};
+use crate::pipeline::{Cancel, Failure};
+use crate::process::ReadLimits;
 
 /// The state of a running service.
 pub struct Service {
@@ -24,7 +25,7 @@ pub struct Service {
     /// What is granted.
     pub limits: PublishedLimits,
     /// The limits on a description, as the core takes them.
-    description: Arc<Limits>,
+    description: Arc<ReadLimits>,
     /// The OpenAPI document.
     pub openapi: Bytes,
     draining: AtomicBool,
@@ -73,7 +74,7 @@ impl Service {
     pub fn new(engine: Arc<dyn Engine>, mut limits: PublishedLimits) -> std::io::Result<Service> {
         limits.service.workers = limits.service.resolved_workers();
         let pool = Pool::start(limits.service.workers, limits.service.queue)?;
-        let description = Arc::new(Limits::from(limits.description.clone()));
+        let description = Arc::new(ReadLimits::from(&limits.description));
         let openapi = Bytes::from(super::openapi::document_text());
         Ok(Service { engine, pool, limits, description, openapi, draining: AtomicBool::new(false) })
     }
@@ -82,7 +83,7 @@ impl Service {
     pub async fn run<T: Send + 'static>(
         &self,
         deadline: Duration,
-        work: impl FnOnce(&dyn Engine, &Limits, &Cancel) -> Result<T, Failure> + Send + 'static,
+        work: impl FnOnce(&dyn Engine, &ReadLimits, &Cancel) -> Result<T, Failure> + Send + 'static,
     ) -> Result<T, Problem> {
         let (job, cancel) = self.job(work);
         let receiver = self.pool.try_submit(job).map_err(overloaded)?;
@@ -92,7 +93,7 @@ impl Service {
     /// Queues work of a stream, waiting for a place in the queue.
     pub async fn queue<T: Send + 'static>(
         &self,
-        work: impl FnOnce(&dyn Engine, &Limits, &Cancel) -> Result<T, Failure> + Send + 'static,
+        work: impl FnOnce(&dyn Engine, &ReadLimits, &Cancel) -> Result<T, Failure> + Send + 'static,
     ) -> Result<Ticket<T>, Problem> {
         let (job, cancel) = self.job(work);
         let receiver = self.pool.submit(job).await.map_err(overloaded)?;
@@ -101,7 +102,7 @@ impl Service {
 
     fn job<T, W>(&self, work: W) -> (impl FnOnce() -> Result<T, Failure> + use<T, W>, Cancel)
     where
-        W: FnOnce(&dyn Engine, &Limits, &Cancel) -> Result<T, Failure>,
+        W: FnOnce(&dyn Engine, &ReadLimits, &Cancel) -> Result<T, Failure>,
     {
         let cancel = Cancel::new();
         let (engine, limits, flag) =

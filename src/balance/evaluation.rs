@@ -1,7 +1,7 @@
 //! One evaluation of a process: solved unknowns and the balances that rules and report share.
 
 use super::{Balance, Bracket, Equations, Region, region};
-use crate::model::{Blocked, Dual, Plan, View};
+use crate::model::{Blocked, Dual, Plan, Scope, View};
 
 /// Energy and entropy over one region.
 #[derive(Clone, Debug)]
@@ -54,6 +54,8 @@ pub struct Evaluation<'a> {
     pub groups: Vec<RegionBalances>,
     /// The plant.
     pub plant: RegionBalances,
+    /// Mismatch and throughput of each exergy balance, once they are derived.
+    pub exergy_mismatch: Option<Vec<(Scope, f64, f64)>>,
 }
 
 impl<'a> Evaluation<'a> {
@@ -66,6 +68,7 @@ impl<'a> Evaluation<'a> {
             components: equations.components.iter().map(|r| RegionBalances::of(view, r)).collect(),
             groups: equations.groups.iter().map(|r| RegionBalances::of(view, r)).collect(),
             plant: RegionBalances::of(view, &equations.plant),
+            exergy_mismatch: None,
         }
     }
 

@@ -3,6 +3,7 @@
 use crate::fluid::Property;
 use crate::model::{Blocked, Dual, View, dual::log_mean};
 use crate::process::{Boundary, Carried, ComponentId, Content, FlowId, Process, VarId};
+use smallvec::SmallVec;
 
 /// Standard acceleration of free fall, m/s² (ISO 80000-3, conventional value).
 pub const GRAVITY: f64 = 9.80665;
@@ -103,13 +104,6 @@ impl Balance {
         }
     }
 
-    fn add_formulation(&mut self, key: (ComponentId, usize), derivative: f64) {
-        match self.formulation.iter_mut().find(|(k, _)| *k == key) {
-            Some((_, d)) => *d += derivative,
-            None => self.formulation.push((key, derivative)),
-        }
-    }
-
     fn close(&mut self, inward: f64, outward: f64) {
         self.throughput = inward.max(outward);
     }
@@ -175,28 +169,23 @@ pub fn energy(view: View<'_>, region: &Region) -> Result<Balance, Blocked> {
     let mut out = Balance::default();
     let (mut inward, mut outward) = (0.0, 0.0);
     let mut tally = |sign: f64, size: f64| if sign > 0.0 { inward += size } else { outward += size };
-    for (f, k, sign) in region.crossings() {
+    for (f, _, sign) in region.crossings() {
         let e = flow_energy(view, f)?;
         out.add(sign, &e);
         if let Some(m) = process.flows[f].material() {
-            let fluid = process.states[m.state].fluid;
             let relative = relative_enthalpy(view, m.state)?;
-            let mass = view.mass(f)?.value;
-            tally(sign, (mass * relative).abs());
-            let u = formulation_uncertainty(view, m.state);
-            out.add_formulation((k, fluid), sign * mass * relative * u);
+            tally(sign, (view.mass(f)?.value * relative).abs());
         } else {
             tally(sign, e.value.abs());
         }
     }
-    for (c, k, sign) in region.contents(process) {
+    for (c, _, sign) in region.contents(process) {
         let mass = view.mass_of(c.state, c.amount, c.form)?;
         out.add(sign, &mass.times(&view.internal_energy(c.state)?));
         let relative = relative_enthalpy(view, c.state)?;
         tally(sign, (mass.value * relative).abs());
-        let u = formulation_uncertainty(view, c.state);
-        out.add_formulation((k, process.states[c.state].fluid), sign * mass.value * relative * u);
     }
+    add_formulations(view, region, &mut out, relative_enthalpy);
     for &k in &region.members {
         if let Some(work) = boundary_work(view, k)? {
             tally(-1.0, work.value.abs());
@@ -315,17 +304,14 @@ pub fn entropy(view: View<'_>, region: &Region, bracket: Bracket) -> Result<Bala
     let mut out = Balance::default();
     let (mut inward, mut outward) = (0.0, 0.0);
     let mut tally = |sign: f64, size: f64| if sign > 0.0 { inward += size } else { outward += size };
-    for (f, k, sign) in region.crossings() {
+    for (f, _, sign) in region.crossings() {
         match &process.flows[f].carried {
             Carried::Material(m) => {
                 let mass = view.mass(f)?;
                 let s = view.entropy(m.state)?;
                 out.add(sign, &mass.times(&s));
-                let fluid = process.states[m.state].fluid;
                 let relative = relative_entropy(view, m.state)?;
                 tally(sign, (mass.value * relative).abs());
-                let u = formulation_uncertainty(view, m.state);
-                out.add_formulation((k, fluid), sign * mass.value * relative * u);
             }
             Carried::Heat(q, boundary) => {
                 let s = heat_entropy(view, *q, *boundary, sign, bracket, &region.members)?;
@@ -340,16 +326,66 @@ pub fn entropy(view: View<'_>, region: &Region, bracket: Bracket) -> Result<Bala
             Carried::Work(..) => {}
         }
     }
-    for (c, k, sign) in region.contents(process) {
+    for (c, _, sign) in region.contents(process) {
         let mass = view.mass_of(c.state, c.amount, c.form)?;
         out.add(sign, &mass.times(&view.entropy(c.state)?));
         let relative = relative_entropy(view, c.state)?;
         tally(sign, (mass.value * relative).abs());
-        let u = formulation_uncertainty(view, c.state);
-        out.add_formulation((k, process.states[c.state].fluid), sign * mass.value * relative * u);
     }
+    add_formulations(view, region, &mut out, relative_entropy);
     out.close(inward, outward);
     Ok(out)
+}
+
+/// Adds what the property formulations leave uncertain at the flows of every member: the terms of
+/// a union are the sums of its members' terms, so that balances stay additive in every respect.
+///
+/// One relative error is common to all states of a fluid in a component, the largest of theirs, so
+/// that it cancels for equal states.
+fn add_formulations(
+    view: View<'_>,
+    region: &Region,
+    out: &mut Balance,
+    relative: fn(View<'_>, usize) -> Result<f64, Blocked>,
+) {
+    let process = &view.model.process;
+    for &k in &region.members {
+        let component = &process.components[k];
+        let first = out.formulation.len();
+        let mut largest: SmallVec<[f64; 4]> = SmallVec::new();
+        let mut add = |state: usize, mass: Result<Dual, Blocked>, sign: f64| {
+            let (Ok(mass), Ok(figure)) = (mass, relative(view, state)) else { return };
+            let key = (k, process.states[state].fluid);
+            let u = formulation_uncertainty(view, state);
+            match out.formulation[first..].iter().position(|(other, _)| *other == key) {
+                Some(at) => {
+                    out.formulation[first + at].1 += sign * mass.value * figure;
+                    largest[at] = largest[at].max(u);
+                }
+                None => {
+                    out.formulation.push((key, sign * mass.value * figure));
+                    largest.push(u);
+                }
+            }
+        };
+        for (flows, sign) in [(&component.inlets, 1.0), (&component.outlets, -1.0)] {
+            for &f in flows {
+                if let Some(m) = process.flows[f].material() {
+                    add(m.state, view.mass(f), sign);
+                }
+            }
+        }
+        if let Some(holdup) = &component.holdup {
+            for (contents, sign) in [(&holdup.initial, 1.0), (&holdup.r#final, -1.0)] {
+                for c in contents {
+                    add(c.state, view.mass_of(c.state, c.amount, c.form), sign);
+                }
+            }
+        }
+        for ((_, derivative), u) in out.formulation[first..].iter_mut().zip(&largest) {
+            *derivative *= u;
+        }
+    }
 }
 
 fn relative_entropy(view: View<'_>, state: usize) -> Result<f64, Blocked> {

@@ -53,7 +53,7 @@ fn every_example_is_served_and_can_be_posted_as_it_is() {
 }
 
 #[test]
-fn states_and_claims_take_the_query_as_they_take_a_body() {
+fn states_take_the_query_as_they_take_a_body() {
     let server = Server::start();
     let by_query = server.get("/v1/states?fluid=water&pressure=10%20bar&temperature=300+degC");
     let by_body =
