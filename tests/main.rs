@@ -4,6 +4,7 @@
 
 #[cfg(feature = "server")]
 mod api;
+mod house;
 mod reference;
 mod supply;
 #[cfg(feature = "server")]
