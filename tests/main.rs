@@ -4,6 +4,7 @@
 
 #[cfg(feature = "server")]
 mod api;
+mod layers;
 mod reference;
 mod supply;
 #[cfg(feature = "server")]
