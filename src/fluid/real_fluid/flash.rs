@@ -1,0 +1,658 @@
+//! States from pairs of coordinates.
+
+use super::RealFluid;
+use super::grid::{Grid, Target};
+use super::point::Point;
+use super::saturation::{Curve, Saturation};
+use crate::fluid::{Phase, PropertyError, State};
+
+/// Lowest pressure that is taken, Pa: below it nothing is left to be called a fluid.
+const P_MIN: f64 = 1e-6;
+/// Slack at the ends of a range, relative, for states that come back from another pair.
+const SLACK: f64 = 1e-9;
+
+/// One end of a two-phase state with its derivatives along the saturation line.
+struct Edge {
+    t: f64,
+    t_p: f64,
+    h: f64,
+    h_p: f64,
+    s: f64,
+    s_p: f64,
+    v: f64,
+    v_p: f64,
+}
+
+/// Where one-phase iterations may move.
+struct Region {
+    t_low: f64,
+    t_high: f64,
+    /// Start: K and reduced density.
+    start: (f64, f64),
+}
+
+fn out_of_range(quantity: &'static str, unit: &'static str, value: f64, min: f64, max: f64) -> PropertyError {
+    PropertyError::OutOfRange { quantity, unit, value, min, max }
+}
+
+impl Target {
+    fn of(self, point: &Point) -> f64 {
+        if self == Target::Enthalpy { point.h } else { point.s }
+    }
+
+    /// Derivatives with respect to T at constant ρ and to ρ at constant T.
+    fn slopes(self, point: &Point) -> (f64, f64) {
+        match self {
+            Target::Enthalpy => (point.h_t(), point.h_rho()),
+            Target::Entropy => (point.cv / point.t, point.s_rho()),
+        }
+    }
+
+    /// Size against which a residual is small.
+    fn scale(self, point: &Point, r: f64) -> f64 {
+        if self == Target::Enthalpy { r * point.t } else { r }
+    }
+
+    fn range_error(self, value: f64, min: f64, max: f64) -> PropertyError {
+        match self {
+            Target::Enthalpy => out_of_range("enthalpy", "J/kg", value, min, max),
+            Target::Entropy => out_of_range("entropy", "J/(kg K)", value, min, max),
+        }
+    }
+}
+
+impl RealFluid {
+    fn check_pressure(&self, p: f64) -> Result<(), PropertyError> {
+        let max = self.equation.range.pressure_max;
+        if (P_MIN..=max * (1.0 + SLACK)).contains(&p) {
+            Ok(())
+        } else {
+            Err(out_of_range("pressure", "Pa", p, P_MIN, max))
+        }
+    }
+
+    fn check_temperature(&self, t: f64) -> Result<(), PropertyError> {
+        let range = self.equation.range;
+        if t >= range.temperature_min * (1.0 - SLACK) && t <= range.temperature_max * (1.0 + SLACK) {
+            Ok(())
+        } else {
+            Err(out_of_range("temperature", "K", t, range.temperature_min, range.temperature_max))
+        }
+    }
+
+    fn phase(&self, sat: &Saturation, p: f64, t: f64, dense: bool) -> Phase {
+        match (t > sat.t_c, p > sat.p_c) {
+            (true, true) => Phase::Supercritical,
+            (true, false) => Phase::Vapour,
+            (false, true) => Phase::Liquid,
+            (false, false) => {
+                if dense {
+                    Phase::Liquid
+                } else {
+                    Phase::Vapour
+                }
+            }
+        }
+    }
+
+    /// Vapour density expected at `p` and `x` on the saturation line, from Z falling with p.
+    fn vapour_guess(&self, sat: &Saturation, x: f64, t: f64, p: f64, dew: f64) -> f64 {
+        let scale = self.model.rho_r * self.model.r * t;
+        let z = dew / (scale * sat.at(Curve::LnDeltaVapour, x).exp());
+        p / (scale * (1.0 + (z - 1.0) * p / dew))
+    }
+
+    /// Density expected above the critical temperature or pressure.
+    fn outer_guess(&self, sat: &Saturation, grid: &Grid, p: f64, t: f64) -> f64 {
+        if p >= sat.p_c {
+            return grid.delta(p, t);
+        }
+        let scale = self.model.rho_r * self.model.r * t;
+        let z = sat.p_c / (scale * grid.delta(sat.p_c, t));
+        p / (scale * (1.0 + (z - 1.0) * p / sat.p_c))
+    }
+
+    /// The stable one-phase point at (p, T); in a blend's two-phase gap the nearer edge.
+    fn point_pt(
+        &self,
+        sat: &Saturation,
+        grid: &Grid,
+        p: f64,
+        t: f64,
+    ) -> Result<(Point, bool), PropertyError> {
+        let iso = self.model.isotherm(t);
+        let (found, dense) = if t >= sat.t_c || p >= sat.p_c {
+            let guess = self.outer_guess(sat, grid, p, t);
+            (self.model.density(&iso, p, guess, 0.0, f64::INFINITY), t < sat.t_c)
+        } else {
+            let x = sat.x_of_temperature(t);
+            let bubble = sat.at(Curve::LnBubble, x).exp();
+            if p >= bubble {
+                let edge = sat.at(Curve::DeltaLiquid, x);
+                // Rounding of the line must not shut the root out of the bracket.
+                (self.model.density(&iso, p, edge, edge * (1.0 - 1e-6), f64::INFINITY), true)
+            } else {
+                let dew = if sat.is_blend { sat.at(Curve::LnDew, x).exp() } else { bubble };
+                let edge = sat.at(Curve::LnDeltaVapour, x).exp();
+                let guess = self.vapour_guess(sat, x, t, p.min(dew), dew);
+                (self.model.density(&iso, p, guess, 0.0, edge * (1.0 + 1e-6)), false)
+            }
+        };
+        let delta = found.ok_or(PropertyError::NoConvergence)?;
+        Ok((self.model.point(&iso, delta), dense))
+    }
+
+    /// The state of a found one-phase point, with the coordinate that was asked for put exactly.
+    fn one_phase(
+        &self,
+        sat: &Saturation,
+        point: &Point,
+        p: f64,
+        dense: bool,
+    ) -> Result<State, PropertyError> {
+        let mut state = point.state(self.phase(sat, p, point.t, dense));
+        state.pressure = p;
+        finite(state)
+    }
+
+    pub(super) fn state_pt(&self, p: f64, t: f64) -> Result<State, PropertyError> {
+        self.check_pressure(p)?;
+        self.check_temperature(t)?;
+        let (sat, grid) = self.tables()?;
+        if sat.is_blend && t < sat.t_c && p < sat.p_c {
+            let x = sat.x_of_temperature(t);
+            if p < sat.at(Curve::LnBubble, x).exp() && p > sat.at(Curve::LnDew, x).exp() {
+                return self.state_in_glide(sat, grid, p, t);
+            }
+        }
+        let (point, dense) = self.point_pt(sat, grid, p, t)?;
+        let mut state = self.one_phase(sat, &point, p, dense)?;
+        state.temperature = t;
+        Ok(state)
+    }
+
+    /// A blend between its bubble and dew temperatures.
+    fn state_in_glide(&self, sat: &Saturation, grid: &Grid, p: f64, t: f64) -> Result<State, PropertyError> {
+        let (liquid, vapour) = self.edges(sat, grid, p)?;
+        let quality = ((t - liquid.t) / (vapour.t - liquid.t)).clamp(0.0, 1.0);
+        two_phase(p, quality, &liquid, &vapour)
+    }
+
+    /// The ends of the two-phase region at `p`, which must lie on both lines.
+    fn edges(&self, sat: &Saturation, grid: &Grid, p: f64) -> Result<(Edge, Edge), PropertyError> {
+        if sat.is_blend {
+            return Ok((
+                self.blend_edge(sat, grid, p, Curve::LnBubble)?,
+                self.blend_edge(sat, grid, p, Curve::LnDew)?,
+            ));
+        }
+        let x = sat.x_of_pressure(Curve::LnBubble, p);
+        let iso = self.model.isotherm(sat.temperature(x));
+        let l = self.model.point(&iso, sat.at(Curve::DeltaLiquid, x));
+        let v = self.model.point(&iso, sat.at(Curve::LnDeltaVapour, x).exp());
+        if x > 0.01 {
+            // Clausius and Clapeyron.
+            let t_p = (1.0 / v.rho - 1.0 / l.rho) / (v.s - l.s);
+            return Ok((along(&l, t_p), along(&v, t_p)));
+        }
+        // Near the critical point the differences vanish: the line's own slopes.
+        let t_p = sat.dt_dp(Curve::LnBubble, x);
+        let slope = |curve| sat.slope_in_pressure(curve, Curve::LnBubble, x);
+        let edge = |point: &Point, h, s, rho_p: f64| Edge {
+            t: point.t,
+            t_p,
+            h: point.h,
+            h_p: slope(h),
+            s: point.s,
+            s_p: slope(s),
+            v: 1.0 / point.rho,
+            v_p: -rho_p / (point.rho * point.rho),
+        };
+        let liquid_p = slope(Curve::DeltaLiquid) * self.model.rho_r;
+        let vapour_p = slope(Curve::LnDeltaVapour) * v.rho;
+        Ok((
+            edge(&l, Curve::EnthalpyLiquid, Curve::EntropyLiquid, liquid_p),
+            edge(&v, Curve::EnthalpyVapour, Curve::EntropyVapour, vapour_p),
+        ))
+    }
+
+    fn blend_edge(&self, sat: &Saturation, _grid: &Grid, p: f64, line: Curve) -> Result<Edge, PropertyError> {
+        let x = sat.x_of_pressure(line, p);
+        let iso = self.model.isotherm(sat.temperature(x));
+        let delta = if line == Curve::LnBubble {
+            let edge = sat.at(Curve::DeltaLiquid, x);
+            self.model.density(&iso, p, edge, 0.9 * edge, 1.2 * edge)
+        } else {
+            let edge = sat.at(Curve::LnDeltaVapour, x).exp();
+            self.model.density(&iso, p, edge, 0.0, 1.2 * edge)
+        };
+        let point = self.model.point(&iso, delta.ok_or(PropertyError::NoConvergence)?);
+        Ok(along(&point, sat.dt_dp(line, x)))
+    }
+
+    /// Whether `p` lies on both lines; the error names the limits.
+    fn check_saturation_pressure(&self, sat: &Saturation, p: f64) -> Result<f64, PropertyError> {
+        let min = sat.bubble_min.max(sat.dew_min);
+        if p < min * (1.0 - SLACK) || p > sat.p_c * (1.0 + SLACK) {
+            return Err(out_of_range("saturation pressure", "Pa", p, min, sat.p_c));
+        }
+        Ok(p.clamp(min, sat.p_c))
+    }
+
+    pub(super) fn state_px(&self, p: f64, quality: f64) -> Result<State, PropertyError> {
+        check_quality(quality)?;
+        let (sat, grid) = self.tables()?;
+        let p = self.check_saturation_pressure(sat, p)?;
+        let (liquid, vapour) = self.edges(sat, grid, p)?;
+        two_phase(p, quality, &liquid, &vapour)
+    }
+
+    pub(super) fn state_tx(&self, t: f64, quality: f64) -> Result<State, PropertyError> {
+        check_quality(quality)?;
+        let (sat, grid) = self.tables()?;
+        if t < sat.t_min * (1.0 - SLACK) || t > sat.t_c * (1.0 + SLACK) {
+            return Err(out_of_range("saturation temperature", "K", t, sat.t_min, sat.t_c));
+        }
+        let x = sat.x_of_temperature(t);
+        let p = if sat.is_blend {
+            self.blend_pressure(sat, sat.temperature(x), quality)
+        } else {
+            sat.at(Curve::LnBubble, x).exp()
+        };
+        let p = self.check_saturation_pressure(sat, p)?;
+        let (liquid, vapour) = self.edges(sat, grid, p)?;
+        let mut state = two_phase(p, quality, &liquid, &vapour)?;
+        state.temperature = t;
+        Ok(state)
+    }
+
+    /// The pressure at which (1 − x) T_bubble + x T_dew = `t`.
+    fn blend_pressure(&self, sat: &Saturation, t: f64, quality: f64) -> f64 {
+        let x = sat.x_of_temperature(t);
+        let mut low = sat.at(Curve::LnDew, x).exp();
+        let mut high = sat.at(Curve::LnBubble, x).exp();
+        let mut p = low + (1.0 - quality) * (high - low);
+        for _ in 0..60 {
+            let b = sat.x_of_pressure(Curve::LnBubble, p);
+            let d = sat.x_of_pressure(Curve::LnDew, p);
+            let error = (1.0 - quality) * sat.temperature(b) + quality * sat.temperature(d) - t;
+            if error > 0.0 {
+                high = p
+            } else {
+                low = p
+            }
+            let slope =
+                (1.0 - quality) * sat.dt_dp(Curve::LnBubble, b) + quality * sat.dt_dp(Curve::LnDew, d);
+            let next = p - error / slope;
+            let next = if next >= low && next <= high { next } else { 0.5 * (low + high) };
+            let done = (next - p).abs() <= 1e-13 * p;
+            p = next;
+            if done {
+                break;
+            }
+        }
+        p
+    }
+
+    /// (p, h) and (p, s).
+    pub(super) fn state_py(&self, p: f64, target: Target, value: f64) -> Result<State, PropertyError> {
+        self.check_pressure(p)?;
+        let (sat, grid) = self.tables()?;
+        let range = self.equation.range;
+        let (t_min, t_max) = (range.temperature_min, range.temperature_max);
+        if p >= sat.p_c {
+            let start = grid.guess(p, target, value);
+            let region = Region { t_low: t_min, t_high: t_max, start };
+            let point = self.solve_one_phase(sat, grid, p, target, value, &region)?;
+            return self.finish(sat, &point, p, target, value, point.t < sat.t_c);
+        }
+        let (h_l, h_v) = match target {
+            Target::Enthalpy => (Curve::EnthalpyLiquid, Curve::EnthalpyVapour),
+            Target::Entropy => (Curve::EntropyLiquid, Curve::EntropyVapour),
+        };
+        let mut vapour_from = t_min;
+        if p >= sat.dew_min {
+            let xd = sat.x_of_pressure(Curve::LnDew, p);
+            if value <= sat.at(h_v, xd) {
+                if p < sat.bubble_min * (1.0 - SLACK) {
+                    let min = sat.bubble_min;
+                    return Err(out_of_range("pressure of a wet state", "Pa", p, min, sat.p_c));
+                }
+                let xb = if sat.is_blend { sat.x_of_pressure(Curve::LnBubble, p) } else { xd };
+                if value >= sat.at(h_l, xb) {
+                    let (liquid, vapour) = self.edges(sat, grid, p)?;
+                    let (a, b) = match target {
+                        Target::Enthalpy => (liquid.h, vapour.h),
+                        Target::Entropy => (liquid.s, vapour.s),
+                    };
+                    let quality = if b > a { ((value - a) / (b - a)).clamp(0.0, 1.0) } else { 0.0 };
+                    return two_phase(p, quality, &liquid, &vapour);
+                }
+                let t_b = sat.temperature(xb);
+                let region =
+                    Region { t_low: t_min, t_high: t_b, start: (t_b, sat.at(Curve::DeltaLiquid, xb)) };
+                let point = self.solve_one_phase(sat, grid, p, target, value, &region)?;
+                return self.finish(sat, &point, p, target, value, true);
+            }
+            vapour_from = sat.temperature(xd);
+        }
+        let start = self.vapour_start(sat, p, target, value, vapour_from, t_max);
+        let region = Region { t_low: vapour_from, t_high: t_max, start };
+        let point = self.solve_one_phase(sat, grid, p, target, value, &region)?;
+        self.finish(sat, &point, p, target, value, false)
+    }
+
+    /// Temperature and density expected of superheated vapour.
+    fn vapour_start(
+        &self,
+        sat: &Saturation,
+        p: f64,
+        target: Target,
+        value: f64,
+        from: f64,
+        t_max: f64,
+    ) -> (f64, f64) {
+        let model = &self.model;
+        let scale = |t: f64| model.rho_r * model.r * t;
+        let x = sat.x_of_temperature(from);
+        let dew = sat.at(Curve::LnDew, x).exp();
+        let delta = sat.at(Curve::LnDeltaVapour, x).exp();
+        let departure = dew / (scale(from) * delta) - 1.0;
+        let (h, s) = (sat.at(Curve::EnthalpyVapour, x), sat.at(Curve::EntropyVapour, x));
+        let mut t = from;
+        // At p < dew the gas is nearly ideal: h as on the dew line, s shifted by R ln(dew/p).
+        let s = s + model.r * (dew / p).ln();
+        for _ in 0..2 {
+            let ideal = model.ideal.derivatives(model.t_r / (0.5 * (from + t)));
+            // A real vapour's heat capacity exceeds the ideal one by about its departure.
+            let cp = model.r * (1.0 - ideal.second) * (1.0 - 0.7 * departure * p / dew);
+            t = match target {
+                Target::Enthalpy => from + (value - h) / cp,
+                Target::Entropy => from * ((value - s) / cp).clamp(-5.0, 5.0).exp(),
+            }
+            .clamp(from, t_max);
+        }
+        let z = 1.0 + departure * (p / dew) * (from / t).powi(4);
+        (t, p / (scale(t) * z.max(0.2)))
+    }
+
+    fn finish(
+        &self,
+        sat: &Saturation,
+        point: &Point,
+        p: f64,
+        target: Target,
+        value: f64,
+        dense: bool,
+    ) -> Result<State, PropertyError> {
+        let mut state = self.one_phase(sat, point, p, dense)?;
+        match target {
+            Target::Enthalpy => state.enthalpy = value,
+            Target::Entropy => state.entropy = value,
+        }
+        Ok(state)
+    }
+
+    /// One-phase point at a pressure and an enthalpy or entropy: Newton in both unknowns, and where
+    /// it strays a bracketed search in T along the isobar.
+    fn solve_one_phase(
+        &self,
+        sat: &Saturation,
+        grid: &Grid,
+        p: f64,
+        target: Target,
+        value: f64,
+        region: &Region,
+    ) -> Result<Point, PropertyError> {
+        if let Some(point) = self.newton(p, target, value, region) {
+            return Ok(point);
+        }
+        self.search_along_isobar(sat, grid, p, target, value, region)
+    }
+
+    fn newton(&self, p: f64, target: Target, value: f64, region: &Region) -> Option<Point> {
+        let (mut t, mut delta) = region.start;
+        let mut last = f64::INFINITY;
+        for _ in 0..12 {
+            let iso = self.model.isotherm(t);
+            let point = match target {
+                Target::Enthalpy => self.model.point_without_entropy(&iso, delta),
+                Target::Entropy => self.model.point(&iso, delta),
+            };
+            let (y_t, y_rho) = target.slopes(&point);
+            let dp = p - point.p;
+            let dy = value - target.of(&point);
+            // Along the isobar dy = (y_t − y_ρ p_t/p_ρ) dT + y_ρ dp/p_ρ.
+            let along = y_t - y_rho * point.p_t / point.p_rho;
+            let dt = (dy - y_rho * dp / point.p_rho) / along;
+            let drho = (dp - point.p_t * dt) / point.p_rho;
+            let (rt, rd) = (dt / t, drho / point.rho);
+            if !(point.p_rho > 0.0 && along > 0.0 && rt.abs() < 0.6 && rd.abs() < 3.0) {
+                return None;
+            }
+            t += dt;
+            // In ln ρ for long steps, which keeps the density positive.
+            delta *= if rd.abs() < 1e-4 { 1.0 + rd } else { rd.exp() };
+            if t < region.t_low * (1.0 - SLACK) || t > region.t_high * (1.0 + SLACK) {
+                // Let the bracketed search decide whether this is the range's end or an overshoot.
+                return None;
+            }
+            let size = rt.abs().max(0.1 * rd.abs());
+            if size < 1e-8 || (size < 1e-6 && size >= 0.5 * last) {
+                let point = self.model.point(&self.model.isotherm(t), delta);
+                let good = (target.of(&point) - value).abs() <= 1e-9 * target.scale(&point, self.model.r);
+                return good.then_some(point);
+            }
+            last = size;
+        }
+        None
+    }
+
+    fn search_along_isobar(
+        &self,
+        sat: &Saturation,
+        grid: &Grid,
+        p: f64,
+        target: Target,
+        value: f64,
+        region: &Region,
+    ) -> Result<Point, PropertyError> {
+        // Below the critical point one side of the line belongs to this region; the other does not.
+        let inside = |t: f64| t.clamp(region.t_low, region.t_high);
+        let (mut low, mut high) = (region.t_low, region.t_high);
+        let at = |t: f64| -> Result<Point, PropertyError> {
+            let t = inside(t);
+            let on_line = p < sat.p_c && t < sat.t_c;
+            if on_line {
+                // Stay on the asked side where T is the saturation temperature to rounding.
+                let iso = self.model.isotherm(t);
+                let x = sat.x_of_temperature(t);
+                let found = if region.t_high <= sat.t_c
+                    && region.t_low < region.t_high
+                    && region.start.0 == region.t_high
+                {
+                    let edge = sat.at(Curve::DeltaLiquid, x);
+                    self.model.density(&iso, p, edge, edge * (1.0 - 1e-6), f64::INFINITY)
+                } else {
+                    let dew = sat.at(Curve::LnDew, x).exp();
+                    let edge = sat.at(Curve::LnDeltaVapour, x).exp();
+                    let guess = self.vapour_guess(sat, x, t, p.min(dew), dew);
+                    self.model.density(&iso, p, guess, 0.0, edge * (1.0 + 1e-6))
+                };
+                let delta = found.ok_or(PropertyError::NoConvergence)?;
+                return Ok(self.model.point(&iso, delta));
+            }
+            self.point_pt(sat, grid, p, t).map(|(point, _)| point)
+        };
+        let (first, last) = (at(low)?, at(high)?);
+        let slack = SLACK * target.scale(&last, self.model.r);
+        let (min, max) = (target.of(&first), target.of(&last));
+        if value < min - slack || value > max + slack {
+            return Err(target.range_error(value, min, max));
+        }
+        if value <= min {
+            return Ok(first);
+        }
+        if value >= max {
+            return Ok(last);
+        }
+        let mut t = inside(region.start.0);
+        if !(t > low && t < high) {
+            t = low + (high - low) * (value - min) / (max - min);
+        }
+        for _ in 0..100 {
+            let point = at(t)?;
+            let error = target.of(&point) - value;
+            if error > 0.0 {
+                high = t
+            } else {
+                low = t
+            }
+            let slope = if target == Target::Enthalpy { point.cp() } else { point.cp() / point.t };
+            let mut next = t - error / slope;
+            if !(next > low && next < high) {
+                next = 0.5 * (low + high);
+            }
+            let step = (next - t).abs();
+            if step <= 1e-13 * t || high - low <= 1e-14 * high {
+                return Ok(point);
+            }
+            t = next;
+        }
+        Err(PropertyError::NoConvergence)
+    }
+
+    /// (h, s): along the isentrope h rises with p (dh = v dp), through one and two phases alike,
+    /// so the pressure is found in a bracket with (p, s) states.
+    pub(super) fn state_hs(&self, h: f64, s: f64) -> Result<State, PropertyError> {
+        let (sat, _) = self.tables()?;
+        let range = self.equation.range;
+        let (mut low, mut high) = (P_MIN, range.pressure_max);
+        let mut p = 0.1 * sat.p_c;
+        let mut best: Option<State> = None;
+        let (mut seen_low, mut seen_high) = (false, false);
+        for _ in 0..120 {
+            let mut next = f64::NAN;
+            let mut step_is_final = false;
+            match self.state_py(p, Target::Entropy, s) {
+                Ok(state) => {
+                    let error = h - state.enthalpy;
+                    if error > 0.0 {
+                        low = p;
+                        seen_low = true;
+                    } else {
+                        high = p;
+                        seen_high = true;
+                    }
+                    next = isentropic_pressure(&state, error);
+                    step_is_final = (next - p).abs() <= 1e-12 * p || error == 0.0;
+                    best = Some(state);
+                }
+                // Too cold at this pressure: more is needed; too hot: less.
+                Err(PropertyError::OutOfRange { value, min, .. }) if value < min => low = p,
+                Err(PropertyError::OutOfRange { .. }) => high = p,
+                Err(other) => return Err(other),
+            }
+            if step_is_final || high / low - 1.0 < 1e-13 {
+                break;
+            }
+            p = if next > low && next < high { next } else { (low * high).sqrt() };
+        }
+        let Some(mut state) = best else {
+            return Err(out_of_range("entropy", "J/(kg K)", s, f64::MIN, f64::MAX));
+        };
+        let slack = 1e-7 * self.model.r * state.temperature;
+        if (state.enthalpy - h).abs() > slack {
+            let beyond =
+                if seen_low && !seen_high { (f64::MIN, state.enthalpy) } else { (state.enthalpy, f64::MAX) };
+            return Err(out_of_range("enthalpy at this entropy", "J/kg", h, beyond.0, beyond.1));
+        }
+        state.enthalpy = h;
+        state.entropy = s;
+        Ok(state)
+    }
+
+    pub(super) fn saturation_line(&self, p: f64, quality: f64) -> Result<(f64, f64), PropertyError> {
+        if !p.is_finite() || !quality.is_finite() {
+            return Err(PropertyError::NotFinite);
+        }
+        let (sat, _) = self.tables()?;
+        let line = if quality > 0.5 { Curve::LnDew } else { Curve::LnBubble };
+        if p > sat.p_c * (1.0 + SLACK) {
+            return Err(PropertyError::NoSaturation);
+        }
+        let min = if line == Curve::LnDew { sat.dew_min } else { sat.bubble_min };
+        if p < min * (1.0 - SLACK) {
+            return Err(out_of_range("saturation pressure", "Pa", p, min, sat.p_c));
+        }
+        let x = sat.x_of_pressure(line, p.clamp(min, sat.p_c));
+        Ok((sat.temperature(x), sat.dt_dp(line, x)))
+    }
+}
+
+fn check_quality(quality: f64) -> Result<(), PropertyError> {
+    if (0.0..=1.0).contains(&quality) { Ok(()) } else { Err(out_of_range("quality", "1", quality, 0.0, 1.0)) }
+}
+
+/// The pressure at which the isentrope through `state` has gained `error` (J/kg) of enthalpy, as a
+/// gas of the state's isentropic exponent would.
+fn isentropic_pressure(state: &State, error: f64) -> f64 {
+    let (p, v) = (state.pressure, state.volume);
+    let slope = state
+        .jacobian(crate::fluid::Pair::PressureEntropy)
+        .map_or(-v / p, |j| j[crate::fluid::Property::Volume as usize][0]);
+    // γ = −(v/p)/(∂v/∂p)_s
+    let gamma = -v / (p * slope);
+    let k = 1.0 - 1.0 / gamma;
+    let z = error / (p * v);
+    if k.abs() < 1e-6 || !k.is_finite() {
+        return p * z.clamp(-50.0, 50.0).exp();
+    }
+    let base = 1.0 + k * z;
+    if base > 0.0 { p * base.powf(1.0 / k) } else { f64::NAN }
+}
+
+/// A point's values with derivatives along a line of slope `t_p` = dT/dp.
+fn along(point: &Point, t_p: f64) -> Edge {
+    let v = 1.0 / point.rho;
+    let (cp, v_t, v_p) = (point.cp(), point.v_t(), point.v_p());
+    Edge {
+        t: point.t,
+        t_p,
+        h: point.h,
+        h_p: v - point.t * v_t + cp * t_p,
+        s: point.s,
+        s_p: -v_t + cp / point.t * t_p,
+        v,
+        v_p: v_p + v_t * t_p,
+    }
+}
+
+/// The state between two edges, every property linear in quality at constant pressure.
+fn two_phase(p: f64, quality: f64, l: &Edge, v: &Edge) -> Result<State, PropertyError> {
+    let mix = |a: f64, b: f64| a + quality * (b - a);
+    finite(State {
+        temperature: mix(l.t, v.t),
+        pressure: p,
+        enthalpy: mix(l.h, v.h),
+        entropy: mix(l.s, v.s),
+        volume: mix(l.v, v.v),
+        quality: Some(quality),
+        phase: Phase::TwoPhase,
+        gradient: [
+            [mix(l.t_p, v.t_p), v.t - l.t, 0.0],
+            [1.0, 0.0, 0.0],
+            [mix(l.h_p, v.h_p), v.h - l.h, 0.0],
+            [mix(l.s_p, v.s_p), v.s - l.s, 0.0],
+            [mix(l.v_p, v.v_p), v.v - l.v, 0.0],
+            [0.0, 1.0, 0.0],
+        ],
+    })
+}
+
+/// The state, unless a figure in it is not finite.
+fn finite(state: State) -> Result<State, PropertyError> {
+    let figures = [state.temperature, state.pressure, state.enthalpy, state.entropy, state.volume];
+    let all = figures.iter().chain(state.gradient.iter().flatten()).all(|x| x.is_finite());
+    if all && state.volume > 0.0 { Ok(state) } else { Err(PropertyError::NoConvergence) }
+}

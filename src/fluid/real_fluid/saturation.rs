@@ -1,0 +1,487 @@
+//! The saturation line as piecewise polynomials through converged points.
+//!
+//! The variable is x = √(1 − T/Tc), in which the densities of an analytic equation, its liquid and
+//! vapour being one curve through the critical point, are smooth. Every node solves the
+//! equilibrium conditions of the equation itself (for a blend treated as one substance: its
+//! published bubble and dew pressures); between nodes the polynomials repeat those conditions to
+//! about 1e-9. Nothing here is fitted or stored beforehand.
+
+use super::equation::{PressureLine, SaturationData};
+use super::point::Helmholtz;
+use super::residual::{Isotherm, order};
+
+/// Coefficients of a segment.
+const N: usize = 16;
+/// Curves of a segment, see [`Curve`].
+const CURVES: usize = 8;
+
+/// What a curve gives.
+#[derive(Clone, Copy, Debug, PartialEq)]
+#[repr(usize)]
+pub(super) enum Curve {
+    /// ln of the bubble pressure in Pa
+    LnBubble = 0,
+    /// ln of the dew pressure in Pa
+    LnDew = 1,
+    /// δ of the saturated liquid
+    DeltaLiquid = 2,
+    /// ln δ of the saturated vapour
+    LnDeltaVapour = 3,
+    /// J/kg
+    EnthalpyLiquid = 4,
+    /// J/kg
+    EnthalpyVapour = 5,
+    /// J/(kg K)
+    EntropyLiquid = 6,
+    /// J/(kg K)
+    EntropyVapour = 7,
+}
+
+/// Polynomials in u = (x − centre)/half.
+#[derive(Debug)]
+struct Segment {
+    centre: f64,
+    half: f64,
+    coefficients: [[f64; N]; CURVES],
+}
+
+/// A saturated pair: pressures in Pa, reduced densities.
+#[derive(Clone, Copy, Debug)]
+struct Node {
+    x: f64,
+    t: f64,
+    bubble: f64,
+    dew: f64,
+    liquid: f64,
+    vapour: f64,
+}
+
+/// The saturation line of one fluid.
+#[derive(Debug)]
+pub(super) struct Saturation {
+    /// Critical temperature of the equation (for a blend: of its pressure lines), K.
+    pub t_c: f64,
+    /// Pressure there, Pa.
+    pub p_c: f64,
+    /// Reduced density there.
+    pub delta_c: f64,
+    /// Lowest temperature, K.
+    pub t_min: f64,
+    /// Bubble pressure there, Pa.
+    pub bubble_min: f64,
+    /// Dew pressure there, Pa.
+    pub dew_min: f64,
+    /// Whether bubble and dew pressures differ.
+    pub is_blend: bool,
+    /// Lower ends of the segments in x, ascending, the first being 0.
+    starts: Vec<f64>,
+    x_max: f64,
+    segments: Vec<Segment>,
+}
+
+/// Newton's method for equal pressure and Gibbs energy (Akasaka, J. Therm. Sci. Technol. 3 (2008)
+/// 442, from memory) in the logarithms of the densities. `None` where it leaves the stable branches.
+fn equilibrium(model: &Helmholtz, iso: &Isotherm, guess: (f64, f64)) -> Option<(f64, f64)> {
+    let (mut l, mut v) = guess;
+    let mut last = f64::INFINITY;
+    for _ in 0..60 {
+        let a = model.residual.values::<{ order::ALONG }>(iso, l);
+        let b = model.residual.values::<{ order::ALONG }>(iso, v);
+        let pressure = l * (1.0 + a.d) - v * (1.0 + b.d);
+        let gibbs = (a.d + a.f + l.ln()) - (b.d + b.f + v.ln());
+        let (sa, sb) = (1.0 + 2.0 * a.d + a.dd, 1.0 + 2.0 * b.d + b.dd);
+        if !(sa > 0.0 && sb > 0.0) || l <= v {
+            return None;
+        }
+        let step_l = (v * gibbs - pressure) / (l - v) / sa;
+        let step_v = (l * gibbs - pressure) / (l - v) / sb;
+        if !(step_l.is_finite() && step_v.is_finite()) {
+            return None;
+        }
+        let damp = 1.0f64.min(0.1 / step_l.abs()).min(0.5 / step_v.abs());
+        l *= (damp * step_l).exp();
+        v *= (damp * step_v).exp();
+        let size = step_l.abs().max(step_v.abs());
+        if size < 1e-11 || (size < 1e-7 && size >= 0.5 * last) {
+            return (l > v).then_some((l, v));
+        }
+        last = size;
+    }
+    None
+}
+
+/// Equal Gibbs energy by bisection in pressure between the spinodals, for a start where nothing
+/// is known but the critical density.
+fn bracketed_equilibrium(model: &Helmholtz, iso: &Isotherm, delta_c: f64) -> Option<(f64, f64)> {
+    let at = |delta: f64| {
+        let v = model.residual.values::<{ order::ALONG }>(iso, delta);
+        (delta * (1.0 + v.d), 1.0 + 2.0 * v.d + v.dd, v.d + v.f + delta.ln())
+    };
+    // The unstable stretch around the critical density, then its two ends.
+    let unstable = (0..60).map(|k| delta_c * (0.6 + 0.015 * f64::from(k))).find(|d| at(*d).1 < 0.0)?;
+    let edge = |factor: f64| {
+        let mut inside = unstable;
+        let mut outside = unstable;
+        for _ in 0..400 {
+            outside *= factor;
+            if at(outside).1 > 0.0 {
+                break;
+            }
+            inside = outside;
+        }
+        for _ in 0..60 {
+            let middle = 0.5 * (inside + outside);
+            if at(middle).1 > 0.0 { outside = middle } else { inside = middle }
+        }
+        outside
+    };
+    let (vapour_end, liquid_end) = (edge(0.98), edge(1.02));
+    let scale = model.rho_r * model.r * model.t_r / iso.tau;
+    let (mut low, mut high) = (at(liquid_end).0.max(0.0), at(vapour_end).0);
+    let mut found = None;
+    for _ in 0..60 {
+        let p = 0.5 * (low + high);
+        let v = model.density(iso, p * scale, 0.5 * vapour_end, 0.0, vapour_end)?;
+        let l = model.density(iso, p * scale, 1.1 * liquid_end, liquid_end, f64::INFINITY)?;
+        if at(l).2 < at(v).2 {
+            high = p
+        } else {
+            low = p
+        }
+        found = Some((l, v));
+    }
+    found.and_then(|pair| equilibrium(model, iso, pair))
+}
+
+/// Solves nodes near nodes that are already known.
+struct Tracer<'a> {
+    model: &'a Helmholtz,
+    t_c: f64,
+    known: Vec<Node>,
+    lines: Option<(&'a PressureLine, &'a PressureLine)>,
+}
+
+impl Tracer<'_> {
+    /// Extrapolation variable: x near the critical point, 1/T away from it.
+    fn abscissa(&self, x: f64) -> f64 {
+        if x < 0.3 { x } else { 0.3 + (1.0 / (1.0 - x * x) - 1.0 / (1.0 - 0.09)) }
+    }
+
+    /// Densities expected at `x` from the two nearest known nodes.
+    fn guess(&self, x: f64) -> Option<(f64, f64)> {
+        let z = self.abscissa(x);
+        let mut near: Vec<&Node> = self.known.iter().collect();
+        near.sort_by(|a, b| (a.x - x).abs().total_cmp(&(b.x - x).abs()));
+        let (a, b) = (near.first()?, near.get(1).or(near.first())?);
+        let (za, zb) = (self.abscissa(a.x), self.abscissa(b.x));
+        let w = if za == zb { 0.0 } else { (z - za) / (zb - za) };
+        let liquid = a.liquid + w * (b.liquid - a.liquid);
+        let vapour = (a.vapour.ln() + w * (b.vapour.ln() - a.vapour.ln())).exp();
+        Some((liquid, vapour))
+    }
+
+    fn solve(&mut self, x: f64) -> Option<Node> {
+        if let Some(node) = self.known.iter().find(|n| (n.x - x).abs() < 1e-15) {
+            return Some(*node);
+        }
+        let t = self.t_c * (1.0 - x * x);
+        let iso = self.model.isotherm(t);
+        let node = match self.lines {
+            None => {
+                let (liquid, vapour) = equilibrium(self.model, &iso, self.guess(x)?)?;
+                // The vapour side fixes the pressure: the liquid's is lost in rounding at low p.
+                let p = self.model.point_without_entropy(&iso, vapour).p;
+                Node { x, t, bubble: p, dew: p, liquid, vapour }
+            }
+            Some((bubble, dew)) => {
+                let (bubble, dew) = (bubble.ln_pressure(t).exp(), dew.ln_pressure(t).exp());
+                let (guess_l, guess_v) = self.guess(x)?;
+                let liquid = self.model.density(&iso, bubble, guess_l, 0.7 * guess_l, 1.5 * guess_l)?;
+                let vapour = self.model.density(&iso, dew, guess_v, 0.0, 1.5 * guess_v)?;
+                Node { x, t, bubble, dew, liquid, vapour }
+            }
+        };
+        self.known.push(node);
+        Some(node)
+    }
+
+    /// The curves' values at a node.
+    fn curves(&self, node: &Node) -> [f64; CURVES] {
+        let iso = self.model.isotherm(node.t);
+        let l = self.model.point(&iso, node.liquid);
+        let v = self.model.point(&iso, node.vapour);
+        [node.bubble.ln(), node.dew.ln(), node.liquid, node.vapour.ln(), l.h, v.h, l.s, v.s]
+    }
+}
+
+/// Values at the N Chebyshev nodes u_k = cos(π (k + ½)/N) to coefficients of powers of u.
+fn powers_of(values: &[f64; N]) -> [f64; N] {
+    let n = N as f64;
+    let mut chebyshev = [0.0; N];
+    for (j, c) in chebyshev.iter_mut().enumerate() {
+        let sum: f64 = values
+            .iter()
+            .enumerate()
+            .map(|(k, v)| v * (std::f64::consts::PI * j as f64 * (k as f64 + 0.5) / n).cos())
+            .sum();
+        *c = sum * if j == 0 { 1.0 } else { 2.0 } / n;
+    }
+    // Σ c_j T_j(u) with T_{j+1} = 2 u T_j − T_{j−1}.
+    let mut out = [0.0; N];
+    let (mut before, mut now) = ([0.0; N], [0.0; N]);
+    before[0] = 1.0;
+    now[1] = 1.0;
+    for (j, c) in chebyshev.iter().enumerate() {
+        let polynomial = if j == 0 { &before } else { &now };
+        out.iter_mut().zip(polynomial).for_each(|(o, p)| *o += c * p);
+        if j >= 1 {
+            let mut next = before.map(|b| -b);
+            next.iter_mut().skip(1).zip(&now).for_each(|(x, p)| *x += 2.0 * p);
+            before = std::mem::replace(&mut now, next);
+        }
+    }
+    out
+}
+
+fn chebyshev_node(k: usize) -> f64 {
+    (std::f64::consts::PI * (k as f64 + 0.5) / N as f64).cos()
+}
+
+impl Saturation {
+    /// Traces the line from the critical point to `t_min` (K). `critical` is the stated critical
+    /// point: temperature in K, reduced density. `None` where the equation has no such line.
+    pub fn trace(
+        model: &Helmholtz,
+        data: &SaturationData,
+        critical: (f64, f64),
+        t_min: f64,
+    ) -> Option<Saturation> {
+        let own = model.critical_point(critical.0, critical.1);
+        let lines = match data {
+            SaturationData::Maxwell => None,
+            SaturationData::BubbleAndDew { bubble, dew } => Some((bubble, dew)),
+        };
+        let (t_c, delta_c) = match lines {
+            None => own?,
+            Some((bubble, _)) => (bubble.temperature, own.unwrap_or(critical).1),
+        };
+        let p_c = match lines {
+            None => model.point_without_entropy(&model.isotherm(t_c), delta_c).p,
+            Some((bubble, _)) => bubble.pressure,
+        };
+        let mut tracer = Tracer { model, t_c, known: Vec::new(), lines };
+        let x_max = (1.0 - t_min / t_c).sqrt();
+        let x_first = 0.3f64.min(0.9 * x_max);
+        let t_first = t_c * (1.0 - x_first * x_first);
+        let iso = model.isotherm(t_first);
+        let (liquid, vapour) = bracketed_equilibrium(model, &iso, delta_c)?;
+        tracer.known.push(Node {
+            x: x_first * (1.0 + 1e-9),
+            t: t_first,
+            bubble: 0.0,
+            dew: 0.0,
+            liquid,
+            vapour,
+        });
+        tracer.solve(x_first)?;
+        tracer.known.remove(0);
+        // Down to the lowest temperature in steps of 1/T, up towards the critical point in x.
+        let span = 1.0 / t_min - 1.0 / t_first;
+        for k in 1..=40 {
+            let t = 1.0 / (1.0 / t_first + span * f64::from(k) / 40.0);
+            tracer.solve((1.0 - t / t_c).max(0.0).sqrt().min(x_max))?;
+        }
+        let x_near = if lines.is_some() { 0.03 } else { 0.012 };
+        for k in 1..=24 {
+            tracer.solve(x_first + (x_near - x_first) * f64::from(k) / 24.0)?;
+        }
+        let mut out = Saturation {
+            t_c,
+            p_c,
+            delta_c,
+            t_min,
+            bubble_min: 0.0,
+            dew_min: 0.0,
+            is_blend: lines.is_some(),
+            starts: Vec::new(),
+            x_max,
+            segments: Vec::new(),
+        };
+        let smooth = model.residual.is_analytic() && lines.is_none();
+        let near = if smooth { 0.12f64.min(0.5 * x_max) } else { 0.12 };
+        if smooth {
+            out.push_critical_segment(&mut tracer, near)?;
+        } else {
+            // Not analytic at the critical point: ever shorter segments towards it.
+            let mut edges: Vec<f64> = (0..12).map(|k| near / f64::from(1u32 << k)).collect();
+            edges.reverse();
+            out.push_last_segment(&mut tracer, *edges.first()?)?;
+            for pair in edges.windows(2) {
+                if let [a, b] = pair {
+                    out.push_segment(&mut tracer, *a, *b)?;
+                }
+            }
+        }
+        let count = 14;
+        for k in 0..count {
+            let edge = |k: i32| near + (x_max - near) * f64::from(k) / f64::from(count);
+            out.push_segment(&mut tracer, edge(k), edge(k + 1))?;
+        }
+        out.bubble_min = out.at(Curve::LnBubble, x_max).exp();
+        out.dew_min = out.at(Curve::LnDew, x_max).exp();
+        Some(out)
+    }
+
+    fn push_segment(&mut self, tracer: &mut Tracer<'_>, from: f64, to: f64) -> Option<()> {
+        let (centre, half) = (0.5 * (from + to), 0.5 * (to - from));
+        let mut values = [[0.0; N]; CURVES];
+        for k in 0..N {
+            let node = tracer.solve(centre + half * chebyshev_node(k))?;
+            for (row, v) in values.iter_mut().zip(tracer.curves(&node)) {
+                row[k] = v;
+            }
+        }
+        self.starts.push(from);
+        self.segments.push(Segment { centre, half, coefficients: values.map(|v| powers_of(&v)) });
+        Some(())
+    }
+
+    /// Liquid and vapour as one curve through the critical point, the vapour at negative x.
+    fn push_critical_segment(&mut self, tracer: &mut Tracer<'_>, to: f64) -> Option<()> {
+        let mut values = [[0.0; N]; CURVES];
+        for k in 0..N / 2 {
+            let node = tracer.solve(to * chebyshev_node(k))?;
+            let c = tracer.curves(&node);
+            let mirror = N - 1 - k;
+            for (curve, row) in values.iter_mut().enumerate() {
+                row[k] = c[curve];
+                // Curves 2 and 3 hold δ and ln δ; the other pairs the same quantity twice.
+                row[mirror] = match curve {
+                    0 | 1 => c[curve],
+                    2 => c[3].exp(),
+                    3 => c[2].ln(),
+                    4 | 6 => c[curve + 1],
+                    _ => c[curve - 1],
+                };
+            }
+        }
+        self.starts.push(0.0);
+        self.segments.push(Segment { centre: 0.0, half: to, coefficients: values.map(|v| powers_of(&v)) });
+        Some(())
+    }
+
+    /// The last stretch to the critical point of an equation that is not analytic there: straight
+    /// in x² for the pressure and in x for the others.
+    fn push_last_segment(&mut self, tracer: &mut Tracer<'_>, to: f64) -> Option<()> {
+        let node = tracer.solve(to)?;
+        let edge = tracer.curves(&node);
+        let iso = tracer.model.isotherm(self.t_c);
+        let top = if self.is_blend {
+            // The lines need not meet in one point of the surface: end them where they are.
+            let mut top = edge;
+            top[0] = self.p_c.ln();
+            top[1] = self.p_c.ln();
+            top
+        } else {
+            let c = tracer.model.point(&iso, self.delta_c);
+            [self.p_c.ln(), self.p_c.ln(), self.delta_c, self.delta_c.ln(), c.h, c.h, c.s, c.s]
+        };
+        let mut coefficients = [[0.0; N]; CURVES];
+        for (k, row) in coefficients.iter_mut().enumerate() {
+            row[0] = top[k];
+            row[if k < 2 { 2 } else { 1 }] = edge[k] - top[k];
+        }
+        self.starts.push(0.0);
+        self.segments.push(Segment { centre: 0.0, half: to, coefficients });
+        Some(())
+    }
+
+    fn segment(&self, x: f64) -> Option<&Segment> {
+        let k = self.starts.partition_point(|s| *s <= x);
+        self.segments.get(k.saturating_sub(1))
+    }
+
+    /// x = √(1 − T/Tc) at `t` (K), within the line.
+    pub fn x_of_temperature(&self, t: f64) -> f64 {
+        (1.0 - t / self.t_c).max(0.0).sqrt().min(self.x_max)
+    }
+
+    /// T in K at `x`.
+    pub fn temperature(&self, x: f64) -> f64 {
+        self.t_c * (1.0 - x * x)
+    }
+
+    /// A curve's value at `x`.
+    #[inline]
+    pub fn at(&self, curve: Curve, x: f64) -> f64 {
+        self.segment(x).map_or(f64::NAN, |s| {
+            let u = (x - s.centre) / s.half;
+            s.coefficients[curve as usize].iter().rev().fold(0.0, |sum, c| sum * u + c)
+        })
+    }
+
+    /// A curve's value and derivative with respect to x.
+    #[inline]
+    pub fn with_slope(&self, curve: Curve, x: f64) -> (f64, f64) {
+        self.segment(x).map_or((f64::NAN, f64::NAN), |s| {
+            let u = (x - s.centre) / s.half;
+            let (mut y, mut dy) = (0.0, 0.0);
+            for c in s.coefficients[curve as usize].iter().rev() {
+                dy = dy * u + y;
+                y = y * u + c;
+            }
+            (y, dy / s.half)
+        })
+    }
+
+    /// x on the bubble or dew line (`curve`) at pressure `p` (Pa), which lies on it.
+    pub fn x_of_pressure(&self, curve: Curve, p: f64) -> f64 {
+        let target = p.ln();
+        if p >= self.p_c {
+            return 0.0;
+        }
+        // The line is nearly straight in 1/T; then Newton in w = x².
+        let (mut low, mut high) = (0usize, self.starts.len());
+        while high - low > 1 {
+            let middle = (low + high) / 2;
+            let start = self.starts.get(middle).copied().unwrap_or(self.x_max);
+            if self.at(curve, start) > target { low = middle } else { high = middle }
+        }
+        let x0 = self.starts.get(low).copied().unwrap_or(0.0);
+        let x1 = self.starts.get(low + 1).copied().unwrap_or(self.x_max);
+        let (y0, y1) = (self.at(curve, x0), self.at(curve, x1));
+        let z = |x: f64| 1.0 / (1.0 - x * x);
+        let inverse = z(x0) + (z(x1) - z(x0)) * ((target - y0) / (y1 - y0)).clamp(0.0, 1.0);
+        let mut w = (1.0 - 1.0 / inverse).max(0.0);
+        let w_max = self.x_max * self.x_max;
+        for _ in 0..20 {
+            let x = w.sqrt();
+            if x < 1e-9 {
+                return 0.0;
+            }
+            let (y, slope) = self.with_slope(curve, x);
+            let step = (y - target) / (slope / (2.0 * x));
+            let next = (w - step).clamp(0.25 * w, w_max);
+            let done = (next - w).abs() <= 1e-13 * (1.0 - w).max(0.0) + 1e-17 || step.abs() < 1e-9 * w;
+            w = next;
+            if done {
+                break;
+            }
+        }
+        w.sqrt()
+    }
+
+    /// dT/dp (K/Pa) along the bubble or dew line at `x`.
+    pub fn dt_dp(&self, curve: Curve, x: f64) -> f64 {
+        let x = x.max(1e-6);
+        let (ln_p, slope) = self.with_slope(curve, x);
+        -2.0 * x * self.t_c / (ln_p.exp() * slope)
+    }
+
+    /// Derivative of a curve with respect to pressure along the line at `x`.
+    pub fn slope_in_pressure(&self, curve: Curve, line: Curve, x: f64) -> f64 {
+        let x = x.max(1e-6);
+        let (ln_p, p_slope) = self.with_slope(line, x);
+        self.with_slope(curve, x).1 / (ln_p.exp() * p_slope)
+    }
+}
