@@ -123,7 +123,7 @@ impl RealFluid {
         let iso = self.model.isotherm(t);
         let (found, dense) = if t >= sat.t_c || p >= sat.p_c {
             let guess = self.outer_guess(sat, grid, p, t);
-            (self.model.density(&iso, p, guess, 0.0, f64::INFINITY), t < sat.t_c)
+            (self.model.density(&iso, p, guess, sat.least_density(t), f64::INFINITY), t < sat.t_c)
         } else {
             let x = sat.x_of_temperature(t);
             let bubble = sat.at(Curve::LnBubble, x).exp();

@@ -1,6 +1,7 @@
 //! A coarse table above the critical pressure that starts iterations near their end.
 
 use super::point::Helmholtz;
+use super::saturation::Saturation;
 
 /// Rows in pressure.
 const ROWS: usize = 12;
@@ -33,10 +34,10 @@ pub(super) struct Grid {
 }
 
 impl Grid {
-    /// Fills the table for `p_c`..`p_max` (Pa) and `t_min`..`t_max` (K). Cells where the equation
+    /// Fills the table up to `p_max` (Pa) and `t_max` (K). Cells where the equation
     /// has no state repeat their neighbour's density.
-    pub fn fill(model: &Helmholtz, critical: (f64, f64), p_max: f64, t_min: f64, t_max: f64) -> Grid {
-        let (t_c, p_c) = critical;
+    pub fn fill(model: &Helmholtz, sat: &Saturation, p_max: f64, t_max: f64) -> Grid {
+        let (t_c, p_c, t_min) = (sat.t_c, sat.p_c, sat.t_min);
         let temperatures = std::array::from_fn(|k| {
             // A third of the columns on each side of the critical region, a third within it.
             let part = |from: f64, to: f64, k: usize, n: usize| from * (to / from).powf(k as f64 / n as f64);
@@ -56,7 +57,7 @@ impl Grid {
             let mut guess = p / (model.rho_r * model.r * t_max);
             for (cell, &t) in row.iter_mut().zip(&temperatures).rev() {
                 let iso = model.isotherm(t);
-                if let Some(delta) = model.density(&iso, p, guess, 0.0, f64::INFINITY) {
+                if let Some(delta) = model.density(&iso, p, guess, sat.least_density(t), f64::INFINITY) {
                     guess = delta;
                 }
                 let point = model.point(&iso, guess);

@@ -83,13 +83,7 @@ impl RealFluid {
                 (critical.temperature, delta),
                 range.temperature_min,
             )?;
-            let grid = Grid::fill(
-                &self.model,
-                (saturation.t_c, saturation.p_c),
-                range.pressure_max,
-                range.temperature_min,
-                range.temperature_max,
-            );
+            let grid = Grid::fill(&self.model, &saturation, range.pressure_max, range.temperature_max);
             Some(Tables { saturation, grid })
         });
         tables.as_ref().map(|t| (&t.saturation, &t.grid)).ok_or(PropertyError::NoSaturation)
@@ -225,5 +219,28 @@ impl Engine for RealFluid {
 
     fn relative_uncertainty(&self, _state: &State) -> f64 {
         self.equation.uncertainty.enthalpy_difference
+    }
+}
+
+#[cfg(test)]
+mod debug {
+    use super::*;
+    #[test]
+    fn trace_all() {
+        for f in catalogue() {
+            let e = &f.equation;
+            let own = f
+                .model
+                .critical_point(e.critical.temperature, e.critical.molar_density / e.reducing.molar_density);
+            let now = std::time::Instant::now();
+            let ok = f.tables().is_ok();
+            println!(
+                "{:20} {ok} own {own:?} stated {} {} {:?}",
+                f.name(),
+                e.critical.temperature,
+                e.critical.molar_density / e.reducing.molar_density,
+                now.elapsed()
+            );
+        }
     }
 }

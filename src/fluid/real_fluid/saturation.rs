@@ -117,25 +117,22 @@ fn bracketed_equilibrium(model: &Helmholtz, iso: &Isotherm, delta_c: f64) -> Opt
         let v = model.residual.values::<{ order::ALONG }>(iso, delta);
         (delta * (1.0 + v.d), 1.0 + 2.0 * v.d + v.dd, v.d + v.f + delta.ln())
     };
-    // The unstable stretch around the critical density, then its two ends.
-    let unstable = (0..60).map(|k| delta_c * (0.6 + 0.015 * f64::from(k))).find(|d| at(*d).1 < 0.0)?;
-    let edge = |factor: f64| {
-        let mut inside = unstable;
-        let mut outside = unstable;
-        for _ in 0..400 {
-            outside *= factor;
-            if at(outside).1 > 0.0 {
-                break;
-            }
-            inside = outside;
-        }
+    // The outermost ends of the unstable stretch: some equations are wavy within it.
+    let edge = |from: f64, factor: f64| {
+        let mut stable = from * delta_c;
+        let steps = ((1.0 / from).ln() / factor.ln()) as usize;
+        let mut unstable = (1..steps).map(|k| from * delta_c * factor.powi(k as i32)).find(|delta| {
+            let inside = at(*delta).1 < 0.0;
+            stable = if inside { stable } else { *delta };
+            inside
+        })?;
         for _ in 0..60 {
-            let middle = 0.5 * (inside + outside);
-            if at(middle).1 > 0.0 { outside = middle } else { inside = middle }
+            let middle = 0.5 * (stable + unstable);
+            if at(middle).1 > 0.0 { stable = middle } else { unstable = middle }
         }
-        outside
+        Some(stable)
     };
-    let (vapour_end, liquid_end) = (edge(0.98), edge(1.02));
+    let (vapour_end, liquid_end) = (edge(0.05, 1.01)?, edge(2.5, 0.99)?);
     let scale = model.rho_r * model.r * model.t_r / iso.tau;
     let (mut low, mut high) = (at(liquid_end).0.max(0.0), at(vapour_end).0);
     let mut found = None;
@@ -165,6 +162,10 @@ impl Tracer<'_> {
     /// Extrapolation variable: x near the critical point, 1/T away from it.
     fn abscissa(&self, x: f64) -> f64 {
         if x < 0.3 { x } else { 0.3 + (1.0 / (1.0 - x * x) - 1.0 / (1.0 - 0.09)) }
+    }
+
+    fn x_of_abscissa(&self, z: f64) -> f64 {
+        if z < 0.3 { z } else { (1.0 - 1.0 / (z - 0.3 + 1.0 / (1.0 - 0.09))).sqrt() }
     }
 
     /// Densities expected at `x` from the two nearest known nodes.
@@ -271,7 +272,8 @@ impl Saturation {
         };
         let mut tracer = Tracer { model, t_c, known: Vec::new(), lines };
         let x_max = (1.0 - t_min / t_c).sqrt();
-        let x_first = 0.3f64.min(0.9 * x_max);
+        // Close to the critical point, where the isotherm's loop is a simple one.
+        let x_first = 0.1;
         let t_first = t_c * (1.0 - x_first * x_first);
         let iso = model.isotherm(t_first);
         let (liquid, vapour) = bracketed_equilibrium(model, &iso, delta_c)?;
@@ -285,15 +287,19 @@ impl Saturation {
         });
         tracer.solve(x_first)?;
         tracer.known.remove(0);
-        // Down to the lowest temperature in steps of 1/T, up towards the critical point in x.
-        let span = 1.0 / t_min - 1.0 / t_first;
-        for k in 1..=40 {
-            let t = 1.0 / (1.0 / t_first + span * f64::from(k) / 40.0);
-            tracer.solve((1.0 - t / t_c).max(0.0).sqrt().min(x_max))?;
+        // Down to the lowest temperature in even steps of the abscissa, up to the critical point in x.
+        let (z_first, z_last) = (tracer.abscissa(x_first), tracer.abscissa(x_max));
+        let steps = ((z_last - z_first) / 0.02).ceil().max(1.0);
+        for k in 1..=steps as usize {
+            let z = z_first + (z_last - z_first) * k as f64 / steps;
+            tracer.solve(tracer.x_of_abscissa(z).min(x_max))?;
         }
-        let x_near = if lines.is_some() { 0.03 } else { 0.012 };
-        for k in 1..=24 {
-            tracer.solve(x_first + (x_near - x_first) * f64::from(k) / 24.0)?;
+        let smooth = model.residual.is_analytic() && lines.is_none();
+        let x_near = if smooth { 2e-3 } else { 2e-5 };
+        let mut x = x_first;
+        while x > x_near {
+            x *= 0.8;
+            tracer.solve(x)?;
         }
         let mut out = Saturation {
             t_c,
@@ -307,32 +313,28 @@ impl Saturation {
             x_max,
             segments: Vec::new(),
         };
-        let smooth = model.residual.is_analytic() && lines.is_none();
-        let near = if smooth { 0.12f64.min(0.5 * x_max) } else { 0.12 };
-        if smooth {
-            out.push_critical_segment(&mut tracer, near)?;
+        let near = if smooth {
+            // As wide as one polynomial through the critical point carries.
+            let widths = [0.12, 0.06, 0.03, 0.015];
+            *widths.iter().find(|w| out.push_critical_segment(&mut tracer, **w).is_some())?
         } else {
-            // Not analytic at the critical point: ever shorter segments towards it.
-            let mut edges: Vec<f64> = (0..12).map(|k| near / f64::from(1u32 << k)).collect();
-            edges.reverse();
-            out.push_last_segment(&mut tracer, *edges.first()?)?;
-            for pair in edges.windows(2) {
-                if let [a, b] = pair {
-                    out.push_segment(&mut tracer, *a, *b)?;
-                }
-            }
-        }
-        let count = 14;
-        for k in 0..count {
-            let edge = |k: i32| near + (x_max - near) * f64::from(k) / f64::from(count);
-            out.push_segment(&mut tracer, edge(k), edge(k + 1))?;
+            out.push_last_segment(&mut tracer, 4e-5)?;
+            4e-5
+        };
+        // Segments that grow away from the critical point, then even ones.
+        let mut from = near;
+        while from < x_max * (1.0 - 1e-12) {
+            let to = (2.0 * from).min(from + 0.06).min(x_max);
+            out.push_segments(&mut tracer, from, to, 4)?;
+            from = to;
         }
         out.bubble_min = out.at(Curve::LnBubble, x_max).exp();
         out.dew_min = out.at(Curve::LnDew, x_max).exp();
         Some(out)
     }
 
-    fn push_segment(&mut self, tracer: &mut Tracer<'_>, from: f64, to: f64) -> Option<()> {
+    /// One segment, or its halves where its polynomials miss what lies between their nodes.
+    fn push_segments(&mut self, tracer: &mut Tracer<'_>, from: f64, to: f64, depth: u32) -> Option<()> {
         let (centre, half) = (0.5 * (from + to), 0.5 * (to - from));
         let mut values = [[0.0; N]; CURVES];
         for k in 0..N {
@@ -343,10 +345,32 @@ impl Saturation {
         }
         self.starts.push(from);
         self.segments.push(Segment { centre, half, coefficients: values.map(|v| powers_of(&v)) });
+        if depth > 0 && !self.last_is_accurate(tracer, from, to)? {
+            self.starts.pop();
+            self.segments.pop();
+            self.push_segments(tracer, from, centre, depth - 1)?;
+            self.push_segments(tracer, centre, to, depth - 1)?;
+        }
         Some(())
     }
 
-    /// Liquid and vapour as one curve through the critical point, the vapour at negative x.
+    /// Whether the last segment repeats the densities and pressures that are solved between its nodes.
+    fn last_is_accurate(&self, tracer: &mut Tracer<'_>, from: f64, to: f64) -> Option<bool> {
+        let mut accurate = true;
+        for part in [0.31, 0.57, 0.86] {
+            let x = from + part * (to - from);
+            let c = tracer.solve(x).map(|node| tracer.curves(&node))?;
+            let miss = |curve: Curve| (self.at(curve, x) - c[curve as usize]).abs();
+            accurate &= miss(Curve::LnBubble) < 1e-10
+                && miss(Curve::LnDew) < 1e-10
+                && miss(Curve::DeltaLiquid) < 3e-10
+                && miss(Curve::LnDeltaVapour) < 3e-10;
+        }
+        Some(accurate)
+    }
+
+    /// Liquid and vapour as one curve through the critical point, the vapour at negative x. `None`
+    /// where one polynomial does not carry that far.
     fn push_critical_segment(&mut self, tracer: &mut Tracer<'_>, to: f64) -> Option<()> {
         let mut values = [[0.0; N]; CURVES];
         for k in 0..N / 2 {
@@ -367,6 +391,11 @@ impl Saturation {
         }
         self.starts.push(0.0);
         self.segments.push(Segment { centre: 0.0, half: to, coefficients: values.map(|v| powers_of(&v)) });
+        if to > 0.016 && !self.last_is_accurate(tracer, 0.0, to)? {
+            self.starts.pop();
+            self.segments.pop();
+            return None;
+        }
         Some(())
     }
 
@@ -404,6 +433,12 @@ impl Saturation {
     /// x = √(1 − T/Tc) at `t` (K), within the line.
     pub fn x_of_temperature(&self, t: f64) -> f64 {
         (1.0 - t / self.t_c).max(0.0).sqrt().min(self.x_max)
+    }
+
+    /// Least reduced density of the fluid above the critical pressure at `t` (K): below the critical
+    /// temperature that of the saturated liquid, since the isotherm has other roots beneath it.
+    pub fn least_density(&self, t: f64) -> f64 {
+        if t < self.t_c { self.at(Curve::DeltaLiquid, self.x_of_temperature(t)) * (1.0 - 1e-6) } else { 0.0 }
     }
 
     /// T in K at `x`.
