@@ -102,6 +102,16 @@ impl PressureLine {
         let sum: f64 = self.terms.iter().map(|[n, e]| n * theta.powf(*e)).sum();
         self.pressure.ln() + self.temperature / t * sum
     }
+
+    /// The temperature (K) at or below `t` where the pressure is that of `ln_pressure`.
+    pub fn temperature_at(&self, ln_pressure: f64, t: f64) -> f64 {
+        let (mut low, mut high) = (0.8 * t, t);
+        for _ in 0..60 {
+            let middle = 0.5 * (low + high);
+            if self.ln_pressure(middle) > ln_pressure { high = middle } else { low = middle }
+        }
+        high
+    }
 }
 
 #[derive(Clone, Debug, Deserialize)]

@@ -162,7 +162,7 @@ impl RealFluid {
         if sat.is_blend && t < sat.t_c && p < sat.p_c {
             let x = sat.x_of_temperature(t);
             if p < sat.at(Curve::LnBubble, x).exp() && p > sat.at(Curve::LnDew, x).exp() {
-                return self.state_in_glide(sat, grid, p, t);
+                return self.wet(sat, p, |l, v| ((t - l.t) / (v.t - l.t)).clamp(0.0, 1.0));
             }
         }
         let (point, dense) = self.point_pt(sat, grid, p, t)?;
@@ -171,20 +171,10 @@ impl RealFluid {
         Ok(state)
     }
 
-    /// A blend between its bubble and dew temperatures.
-    fn state_in_glide(&self, sat: &Saturation, grid: &Grid, p: f64, t: f64) -> Result<State, PropertyError> {
-        let (liquid, vapour) = self.edges(sat, grid, p)?;
-        let quality = ((t - liquid.t) / (vapour.t - liquid.t)).clamp(0.0, 1.0);
-        two_phase(p, quality, &liquid, &vapour)
-    }
-
     /// The ends of the two-phase region at `p`, which must lie on both lines.
-    fn edges(&self, sat: &Saturation, grid: &Grid, p: f64) -> Result<(Edge, Edge), PropertyError> {
+    fn edges(&self, sat: &Saturation, p: f64) -> Result<(Edge, Edge), PropertyError> {
         if sat.is_blend {
-            return Ok((
-                self.blend_edge(sat, grid, p, Curve::LnBubble)?,
-                self.blend_edge(sat, grid, p, Curve::LnDew)?,
-            ));
+            return Ok((self.blend_edge(sat, p, Curve::LnBubble)?, self.blend_edge(sat, p, Curve::LnDew)?));
         }
         let x = sat.x_of_pressure(Curve::LnBubble, p);
         let iso = self.model.isotherm(sat.temperature(x));
@@ -216,7 +206,7 @@ impl RealFluid {
         ))
     }
 
-    fn blend_edge(&self, sat: &Saturation, _grid: &Grid, p: f64, line: Curve) -> Result<Edge, PropertyError> {
+    fn blend_edge(&self, sat: &Saturation, p: f64, line: Curve) -> Result<Edge, PropertyError> {
         let x = sat.x_of_pressure(line, p);
         let iso = self.model.isotherm(sat.temperature(x));
         let delta = if line == Curve::LnBubble {
@@ -232,7 +222,7 @@ impl RealFluid {
 
     /// Whether `p` lies on both lines; the error names the limits.
     fn check_saturation_pressure(&self, sat: &Saturation, p: f64) -> Result<f64, PropertyError> {
-        let min = sat.bubble_min.max(sat.dew_min);
+        let min = sat.dew_min;
         if p < min * (1.0 - SLACK) || p > sat.p_c * (1.0 + SLACK) {
             return Err(out_of_range("saturation pressure", "Pa", p, min, sat.p_c));
         }
@@ -241,15 +231,28 @@ impl RealFluid {
 
     pub(super) fn state_px(&self, p: f64, quality: f64) -> Result<State, PropertyError> {
         check_quality(quality)?;
-        let (sat, grid) = self.tables()?;
+        let (sat, _) = self.tables()?;
         let p = self.check_saturation_pressure(sat, p)?;
-        let (liquid, vapour) = self.edges(sat, grid, p)?;
-        two_phase(p, quality, &liquid, &vapour)
+        self.wet(sat, p, |_, _| quality)
+    }
+
+    /// The two-phase state at `p` with the quality that `choose` makes of the two edges.
+    fn wet(
+        &self,
+        sat: &Saturation,
+        p: f64,
+        choose: impl Fn(&Edge, &Edge) -> f64,
+    ) -> Result<State, PropertyError> {
+        let (liquid, vapour) = self.edges(sat, p)?;
+        let state = two_phase(p, choose(&liquid, &vapour), &liquid, &vapour)?;
+        // A blend's bubble temperature may lie below the range where its dew temperature does not.
+        self.check_temperature(state.temperature)?;
+        Ok(state)
     }
 
     pub(super) fn state_tx(&self, t: f64, quality: f64) -> Result<State, PropertyError> {
         check_quality(quality)?;
-        let (sat, grid) = self.tables()?;
+        let (sat, _) = self.tables()?;
         if t < sat.t_min * (1.0 - SLACK) || t > sat.t_c * (1.0 + SLACK) {
             return Err(out_of_range("saturation temperature", "K", t, sat.t_min, sat.t_c));
         }
@@ -260,8 +263,7 @@ impl RealFluid {
             sat.at(Curve::LnBubble, x).exp()
         };
         let p = self.check_saturation_pressure(sat, p)?;
-        let (liquid, vapour) = self.edges(sat, grid, p)?;
-        let mut state = two_phase(p, quality, &liquid, &vapour)?;
+        let mut state = self.wet(sat, p, |_, _| quality)?;
         state.temperature = t;
         Ok(state)
     }
@@ -314,21 +316,20 @@ impl RealFluid {
         if p >= sat.dew_min {
             let xd = sat.x_of_pressure(Curve::LnDew, p);
             if value <= sat.at(h_v, xd) {
-                if p < sat.bubble_min * (1.0 - SLACK) {
-                    let min = sat.bubble_min;
-                    return Err(out_of_range("pressure of a wet state", "Pa", p, min, sat.p_c));
-                }
                 let xb = if sat.is_blend { sat.x_of_pressure(Curve::LnBubble, p) } else { xd };
                 if value >= sat.at(h_l, xb) {
-                    let (liquid, vapour) = self.edges(sat, grid, p)?;
-                    let (a, b) = match target {
-                        Target::Enthalpy => (liquid.h, vapour.h),
-                        Target::Entropy => (liquid.s, vapour.s),
-                    };
-                    let quality = if b > a { ((value - a) / (b - a)).clamp(0.0, 1.0) } else { 0.0 };
-                    return two_phase(p, quality, &liquid, &vapour);
+                    return self.wet(sat, p, |liquid, vapour| {
+                        let (a, b) = match target {
+                            Target::Enthalpy => (liquid.h, vapour.h),
+                            Target::Entropy => (liquid.s, vapour.s),
+                        };
+                        if b > a { ((value - a) / (b - a)).clamp(0.0, 1.0) } else { 0.0 }
+                    });
                 }
                 let t_b = sat.temperature(xb);
+                if t_b < t_min * (1.0 - SLACK) {
+                    return Err(target.range_error(value, sat.at(h_l, xb), f64::MAX));
+                }
                 let region =
                     Region { t_low: t_min, t_high: t_b, start: (t_b, sat.at(Curve::DeltaLiquid, xb)) };
                 let point = self.solve_one_phase(sat, grid, p, target, value, &region)?;

@@ -65,7 +65,8 @@ pub(super) struct Saturation {
     pub p_c: f64,
     /// Reduced density there.
     pub delta_c: f64,
-    /// Lowest temperature, K.
+    /// Lowest temperature, K. A blend's line is traced a little further, to where the bubble
+    /// pressure is the dew pressure at this temperature.
     pub t_min: f64,
     /// Bubble pressure there, Pa.
     pub bubble_min: f64,
@@ -271,7 +272,8 @@ impl Saturation {
             Some((bubble, _)) => bubble.pressure,
         };
         let mut tracer = Tracer { model, t_c, known: Vec::new(), lines };
-        let x_max = (1.0 - t_min / t_c).sqrt();
+        let t_end = lines.map_or(t_min, |(bubble, dew)| bubble.temperature_at(dew.ln_pressure(t_min), t_min));
+        let x_max = (1.0 - t_end / t_c).sqrt();
         // Close to the critical point, where the isotherm's loop is a simple one.
         let x_first = 0.1;
         let t_first = t_c * (1.0 - x_first * x_first);
@@ -295,7 +297,7 @@ impl Saturation {
             tracer.solve(tracer.x_of_abscissa(z).min(x_max))?;
         }
         let smooth = model.residual.is_analytic() && lines.is_none();
-        let x_near = if smooth { 2e-3 } else { 2e-5 };
+        let x_near = if smooth { 2e-3 } else { 3e-4 };
         let mut x = x_first;
         while x > x_near {
             x *= 0.8;
@@ -318,8 +320,8 @@ impl Saturation {
             let widths = [0.12, 0.06, 0.03, 0.015];
             *widths.iter().find(|w| out.push_critical_segment(&mut tracer, **w).is_some())?
         } else {
-            out.push_last_segment(&mut tracer, 4e-5)?;
-            4e-5
+            out.push_last_segment(&mut tracer, 5e-4)?;
+            5e-4
         };
         // Segments that grow away from the critical point, then even ones.
         let mut from = near;
@@ -328,8 +330,9 @@ impl Saturation {
             out.push_segments(&mut tracer, from, to, 4)?;
             from = to;
         }
-        out.bubble_min = out.at(Curve::LnBubble, x_max).exp();
-        out.dew_min = out.at(Curve::LnDew, x_max).exp();
+        let x_min = out.x_of_temperature(t_min);
+        out.bubble_min = out.at(Curve::LnBubble, x_min).exp();
+        out.dew_min = out.at(Curve::LnDew, x_min).exp();
         Some(out)
     }
 
