@@ -29,6 +29,15 @@ struct Region {
     t_high: f64,
     /// Start: K and reduced density.
     start: (f64, f64),
+    /// Which end, if any, lies on the saturation line rather than at the end of the range.
+    edge: Option<Side>,
+}
+
+/// Side of the saturation line.
+#[derive(Clone, Copy, PartialEq)]
+enum Side {
+    Liquid,
+    Vapour,
 }
 
 fn out_of_range(quantity: &'static str, unit: &'static str, value: f64, min: f64, max: f64) -> PropertyError {
@@ -112,6 +121,31 @@ impl RealFluid {
         p / (scale * (1.0 + (z - 1.0) * p / sat.p_c))
     }
 
+    /// Greatest reduced density of the vapour at `t` (K), whose saturated one is `edge`; rounding of
+    /// the line must not shut the root out.
+    fn most_density(&self, sat: &Saturation, t: f64, edge: f64) -> f64 {
+        if t < sat.t_loop { edge * (1.0 + 1e-6) } else { f64::INFINITY }
+    }
+
+    /// The liquid below the critical point at `p` (Pa) and `t` (K).
+    fn liquid(&self, sat: &Saturation, p: f64, t: f64) -> Option<Point> {
+        let iso = self.model.isotherm(t);
+        let edge = sat.at(Curve::DeltaLiquid, sat.x_of_temperature(t));
+        let delta = self.model.density(&iso, p, edge, sat.least_density(t), f64::INFINITY)?;
+        Some(self.model.point(&iso, delta))
+    }
+
+    /// The vapour below the critical point at `p` (Pa) and `t` (K).
+    fn vapour(&self, sat: &Saturation, p: f64, t: f64) -> Option<Point> {
+        let iso = self.model.isotherm(t);
+        let x = sat.x_of_temperature(t);
+        let dew = sat.at(Curve::LnDew, x).exp();
+        let edge = sat.at(Curve::LnDeltaVapour, x).exp();
+        let guess = self.vapour_guess(sat, x, t, p.min(dew), dew);
+        let delta = self.model.density(&iso, p, guess, 0.0, self.most_density(sat, t, edge))?;
+        Some(self.model.point(&iso, delta))
+    }
+
     /// The stable one-phase point at (p, T); in a blend's two-phase gap the nearer edge.
     fn point_pt(
         &self,
@@ -120,23 +154,15 @@ impl RealFluid {
         p: f64,
         t: f64,
     ) -> Result<(Point, bool), PropertyError> {
-        let iso = self.model.isotherm(t);
-        let (found, dense) = if t >= sat.t_c || p >= sat.p_c {
+        let (iso, found, dense) = if t >= sat.t_c || p >= sat.p_c {
+            let iso = self.model.isotherm(t);
             let guess = self.outer_guess(sat, grid, p, t);
-            (self.model.density(&iso, p, guess, sat.least_density(t), f64::INFINITY), t < sat.t_c)
+            let found = self.model.density(&iso, p, guess, sat.least_density(t), f64::INFINITY);
+            (iso, found, t < sat.t_c)
         } else {
-            let x = sat.x_of_temperature(t);
-            let bubble = sat.at(Curve::LnBubble, x).exp();
-            if p >= bubble {
-                let edge = sat.at(Curve::DeltaLiquid, x);
-                // Rounding of the line must not shut the root out of the bracket.
-                (self.model.density(&iso, p, edge, edge * (1.0 - 1e-6), f64::INFINITY), true)
-            } else {
-                let dew = if sat.is_blend { sat.at(Curve::LnDew, x).exp() } else { bubble };
-                let edge = sat.at(Curve::LnDeltaVapour, x).exp();
-                let guess = self.vapour_guess(sat, x, t, p.min(dew), dew);
-                (self.model.density(&iso, p, guess, 0.0, edge * (1.0 + 1e-6)), false)
-            }
+            let dense = p >= sat.at(Curve::LnBubble, sat.x_of_temperature(t)).exp();
+            let found = if dense { self.liquid(sat, p, t) } else { self.vapour(sat, p, t) };
+            return found.map(|point| (point, dense)).ok_or(PropertyError::NoConvergence);
         };
         let delta = found.ok_or(PropertyError::NoConvergence)?;
         Ok((self.model.point(&iso, delta), dense))
@@ -211,10 +237,10 @@ impl RealFluid {
         let iso = self.model.isotherm(sat.temperature(x));
         let delta = if line == Curve::LnBubble {
             let edge = sat.at(Curve::DeltaLiquid, x);
-            self.model.density(&iso, p, edge, 0.9 * edge, 1.2 * edge)
+            self.model.density(&iso, p, edge, sat.least_density(sat.temperature(x)), f64::INFINITY)
         } else {
             let edge = sat.at(Curve::LnDeltaVapour, x).exp();
-            self.model.density(&iso, p, edge, 0.0, 1.2 * edge)
+            self.model.density(&iso, p, edge, 0.0, self.most_density(sat, sat.temperature(x), edge))
         };
         let point = self.model.point(&iso, delta.ok_or(PropertyError::NoConvergence)?);
         Ok(along(&point, sat.dt_dp(line, x)))
@@ -304,7 +330,7 @@ impl RealFluid {
         let (t_min, t_max) = (range.temperature_min, range.temperature_max);
         if p >= sat.p_c {
             let start = grid.guess(p, target, value);
-            let region = Region { t_low: t_min, t_high: t_max, start };
+            let region = Region { t_low: t_min, t_high: t_max, start, edge: None };
             let point = self.solve_one_phase(sat, grid, p, target, value, &region)?;
             return self.finish(sat, &point, p, target, value, point.t < sat.t_c);
         }
@@ -313,6 +339,7 @@ impl RealFluid {
             Target::Entropy => (Curve::EntropyLiquid, Curve::EntropyVapour),
         };
         let mut vapour_from = t_min;
+        let mut edge = None;
         if p >= sat.dew_min {
             let xd = sat.x_of_pressure(Curve::LnDew, p);
             if value <= sat.at(h_v, xd) {
@@ -330,15 +357,20 @@ impl RealFluid {
                 if t_b < t_min * (1.0 - SLACK) {
                     return Err(target.range_error(value, sat.at(h_l, xb), f64::MAX));
                 }
-                let region =
-                    Region { t_low: t_min, t_high: t_b, start: (t_b, sat.at(Curve::DeltaLiquid, xb)) };
+                let region = Region {
+                    t_low: t_min,
+                    t_high: t_b,
+                    start: (t_b, sat.at(Curve::DeltaLiquid, xb)),
+                    edge: Some(Side::Liquid),
+                };
                 let point = self.solve_one_phase(sat, grid, p, target, value, &region)?;
                 return self.finish(sat, &point, p, target, value, true);
             }
             vapour_from = sat.temperature(xd);
+            edge = Some(Side::Vapour);
         }
         let start = self.vapour_start(sat, p, target, value, vapour_from, t_max);
-        let region = Region { t_low: vapour_from, t_high: t_max, start };
+        let region = Region { t_low: vapour_from, t_high: t_max, start, edge };
         let point = self.solve_one_phase(sat, grid, p, target, value, &region)?;
         self.finish(sat, &point, p, target, value, false)
     }
@@ -458,37 +490,26 @@ impl RealFluid {
         value: f64,
         region: &Region,
     ) -> Result<Point, PropertyError> {
-        // Below the critical point one side of the line belongs to this region; the other does not.
         let inside = |t: f64| t.clamp(region.t_low, region.t_high);
         let (mut low, mut high) = (region.t_low, region.t_high);
         let at = |t: f64| -> Result<Point, PropertyError> {
             let t = inside(t);
-            let on_line = p < sat.p_c && t < sat.t_c;
-            if on_line {
-                // Stay on the asked side where T is the saturation temperature to rounding.
-                let iso = self.model.isotherm(t);
-                let x = sat.x_of_temperature(t);
-                let found = if region.t_high <= sat.t_c
-                    && region.t_low < region.t_high
-                    && region.start.0 == region.t_high
-                {
-                    let edge = sat.at(Curve::DeltaLiquid, x);
-                    self.model.density(&iso, p, edge, edge * (1.0 - 1e-6), f64::INFINITY)
-                } else {
-                    let dew = sat.at(Curve::LnDew, x).exp();
-                    let edge = sat.at(Curve::LnDeltaVapour, x).exp();
-                    let guess = self.vapour_guess(sat, x, t, p.min(dew), dew);
-                    self.model.density(&iso, p, guess, 0.0, edge * (1.0 + 1e-6))
-                };
-                let delta = found.ok_or(PropertyError::NoConvergence)?;
-                return Ok(self.model.point(&iso, delta));
-            }
-            self.point_pt(sat, grid, p, t).map(|(point, _)| point)
+            let found = if region.edge == Some(Side::Liquid) {
+                self.liquid(sat, p, t)
+            } else if region.edge == Some(Side::Vapour) && t < sat.t_c {
+                self.vapour(sat, p, t)
+            } else {
+                return self.point_pt(sat, grid, p, t).map(|(point, _)| point);
+            };
+            found.ok_or(PropertyError::NoConvergence)
         };
         let (first, last) = (at(low)?, at(high)?);
         let slack = SLACK * target.scale(&last, self.model.r);
         let (min, max) = (target.of(&first), target.of(&last));
-        if value < min - slack || value > max + slack {
+        // Near the critical point rounding of p alone moves the ends on the saturation line.
+        let below = value < min - slack && region.edge != Some(Side::Vapour);
+        let above = value > max + slack && region.edge != Some(Side::Liquid);
+        if below || above {
             return Err(target.range_error(value, min, max));
         }
         if value <= min {

@@ -51,16 +51,19 @@ impl Grid {
         let ln_p0 = p_c.ln();
         let ln_step = (p_max.max(1.5 * p_c) / p_c).ln() / (ROWS - 1) as f64;
         let mut grid = Grid { ln_p0, ln_step, temperatures, cells: [[Cell::default(); COLUMNS]; ROWS] };
+        // Each row starts from the one below it: from the dilute side the first root met is the fluid's.
+        let mut guesses = temperatures.map(|t| {
+            let ideal = p_c / (model.rho_r * model.r * t);
+            if t < t_c { sat.least_density(t).max(ideal) } else { ideal }
+        });
         for (j, row) in grid.cells.iter_mut().enumerate() {
             let p = (ln_p0 + ln_step * j as f64).exp() * (1.0 + 1e-9);
-            // From the dilute end, where the ideal gas is a fair start, to the dense one.
-            let mut guess = p / (model.rho_r * model.r * t_max);
-            for (cell, &t) in row.iter_mut().zip(&temperatures).rev() {
+            for ((cell, &t), guess) in row.iter_mut().zip(&temperatures).zip(&mut guesses) {
                 let iso = model.isotherm(t);
-                if let Some(delta) = model.density(&iso, p, guess, sat.least_density(t), f64::INFINITY) {
-                    guess = delta;
+                if let Some(delta) = model.density(&iso, p, *guess, sat.least_density(t), f64::INFINITY) {
+                    *guess = delta;
                 }
-                let point = model.point(&iso, guess);
+                let point = model.point(&iso, *guess);
                 *cell = Cell { ln_delta: guess.ln(), h: point.h, s: point.s };
             }
         }

@@ -226,6 +226,25 @@ impl Engine for RealFluid {
 mod debug {
     use super::*;
     #[test]
+    fn iso() {
+        for (n, p, t) in [
+            ("isopentane", 7.088901123200994e8, 3.9762783841963255e2),
+            ("methane", 6.132218816136279e8, 5.535953052070022e2),
+        ] {
+            let f = by_name(n).unwrap();
+            let (sat, grid) = f.tables().unwrap();
+            let iso = f.model.isotherm(t);
+            let g = grid.delta(p, t);
+            println!("{n} guess {g} {:?}", f.model.density(&iso, p, g, sat.least_density(t), f64::INFINITY));
+            for k in 0..40 {
+                let d = g * (0.9 + 0.01 * k as f64);
+                let pt = f.model.point(&iso, d);
+                println!("{d} {:e} {:e}", pt.p, pt.p_rho);
+            }
+        }
+    }
+
+    #[test]
     fn trace_all() {
         for f in catalogue() {
             let e = &f.equation;

@@ -63,8 +63,9 @@ pub(super) struct Saturation {
     pub t_c: f64,
     /// Pressure there, Pa.
     pub p_c: f64,
-    /// Reduced density there.
-    pub delta_c: f64,
+    /// Above this temperature (K) an isotherm has one density for each pressure: the critical
+    /// temperature of the equation itself, for a blend a little below `t_c`.
+    pub t_loop: f64,
     /// Lowest temperature, K. A blend's line is traced a little further, to where the bubble
     /// pressure is the dew pressure at this temperature.
     pub t_min: f64,
@@ -263,10 +264,8 @@ impl Saturation {
             SaturationData::Maxwell => None,
             SaturationData::BubbleAndDew { bubble, dew } => Some((bubble, dew)),
         };
-        let (t_c, delta_c) = match lines {
-            None => own?,
-            Some((bubble, _)) => (bubble.temperature, own.unwrap_or(critical).1),
-        };
+        let (t_loop, delta_c) = own?;
+        let t_c = lines.map_or(t_loop, |(bubble, _)| bubble.temperature);
         let p_c = match lines {
             None => model.point_without_entropy(&model.isotherm(t_c), delta_c).p,
             Some((bubble, _)) => bubble.pressure,
@@ -306,7 +305,7 @@ impl Saturation {
         let mut out = Saturation {
             t_c,
             p_c,
-            delta_c,
+            t_loop,
             t_min,
             bubble_min: 0.0,
             dew_min: 0.0,
@@ -320,7 +319,7 @@ impl Saturation {
             let widths = [0.12, 0.06, 0.03, 0.015];
             *widths.iter().find(|w| out.push_critical_segment(&mut tracer, **w).is_some())?
         } else {
-            out.push_last_segment(&mut tracer, 5e-4)?;
+            out.push_last_segment(&mut tracer, 5e-4, delta_c)?;
             5e-4
         };
         // Segments that grow away from the critical point, then even ones.
@@ -404,7 +403,7 @@ impl Saturation {
 
     /// The last stretch to the critical point of an equation that is not analytic there: straight
     /// in x² for the pressure and in x for the others.
-    fn push_last_segment(&mut self, tracer: &mut Tracer<'_>, to: f64) -> Option<()> {
+    fn push_last_segment(&mut self, tracer: &mut Tracer<'_>, to: f64, delta_c: f64) -> Option<()> {
         let node = tracer.solve(to)?;
         let edge = tracer.curves(&node);
         let iso = tracer.model.isotherm(self.t_c);
@@ -415,8 +414,8 @@ impl Saturation {
             top[1] = self.p_c.ln();
             top
         } else {
-            let c = tracer.model.point(&iso, self.delta_c);
-            [self.p_c.ln(), self.p_c.ln(), self.delta_c, self.delta_c.ln(), c.h, c.h, c.s, c.s]
+            let c = tracer.model.point(&iso, delta_c);
+            [self.p_c.ln(), self.p_c.ln(), delta_c, delta_c.ln(), c.h, c.h, c.s, c.s]
         };
         let mut coefficients = [[0.0; N]; CURVES];
         for (k, row) in coefficients.iter_mut().enumerate() {
@@ -441,7 +440,11 @@ impl Saturation {
     /// Least reduced density of the fluid above the critical pressure at `t` (K): below the critical
     /// temperature that of the saturated liquid, since the isotherm has other roots beneath it.
     pub fn least_density(&self, t: f64) -> f64 {
-        if t < self.t_c { self.at(Curve::DeltaLiquid, self.x_of_temperature(t)) * (1.0 - 1e-6) } else { 0.0 }
+        if t < self.t_loop {
+            self.at(Curve::DeltaLiquid, self.x_of_temperature(t)) * (1.0 - 1e-6)
+        } else {
+            0.0
+        }
     }
 
     /// T in K at `x`.
