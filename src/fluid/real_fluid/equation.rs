@@ -114,6 +114,68 @@ impl PressureLine {
     }
 }
 
+/// How a piece of a melting line depends on θ = T/T0.
+#[derive(Clone, Copy, Debug, Deserialize)]
+#[serde(rename_all = "snake_case")]
+pub(super) enum MeltingForm {
+    /// p0 + Σ a (θ^t − 1)
+    Power,
+    /// p0 + Σ a (θ − 1)^t
+    Difference,
+}
+
+/// One piece of a melting line.
+#[derive(Clone, Debug, Deserialize)]
+#[serde(deny_unknown_fields)]
+pub(super) struct MeltingPiece {
+    pub form: MeltingForm,
+    /// T0, K
+    pub temperature: f64,
+    /// p0, Pa
+    pub pressure: f64,
+    /// Upper end of the piece, K; the last one is continued.
+    pub temperature_max: f64,
+    /// a in Pa, t
+    pub terms: Vec<[f64; 2]>,
+}
+
+/// A published melting line: above its pressure the substance is solid.
+#[derive(Clone, Debug, Deserialize)]
+#[serde(deny_unknown_fields)]
+pub(super) struct Melting {
+    pub citation: String,
+    pub pieces: Vec<MeltingPiece>,
+}
+
+impl Melting {
+    /// Highest pressure (Pa) of the liquid at `t` (K), with a margin for the line's own scatter.
+    pub fn highest_pressure(&self, t: f64) -> f64 {
+        let piece = self.pieces.iter().find(|p| t <= p.temperature_max).or(self.pieces.last());
+        let line = piece.map_or(f64::INFINITY, |piece| {
+            let theta = (t / piece.temperature).max(1.0);
+            let term = |[a, e]: &[f64; 2]| match piece.form {
+                MeltingForm::Power => a * (theta.powf(*e) - 1.0),
+                MeltingForm::Difference => a * (theta - 1.0).powf(*e),
+            };
+            piece.pressure + piece.terms.iter().map(term).sum::<f64>()
+        });
+        1.01 * line.max(0.0) + 1e5
+    }
+
+    /// Lowest temperature (K) between `low` and `high` at which `p` (Pa) is still liquid.
+    pub fn lowest_temperature(&self, p: f64, low: f64, high: f64) -> f64 {
+        if self.highest_pressure(low) >= p {
+            return low;
+        }
+        let (mut low, mut high) = (low, high);
+        for _ in 0..60 {
+            let middle = 0.5 * (low + high);
+            if self.highest_pressure(middle) >= p { high = middle } else { low = middle }
+        }
+        high
+    }
+}
+
 #[derive(Clone, Debug, Deserialize)]
 #[serde(tag = "kind", rename_all = "snake_case", deny_unknown_fields)]
 pub(super) enum SaturationData {
@@ -189,6 +251,8 @@ pub(super) struct Equation {
     pub range: Range,
     pub reducing: Reducing,
     pub critical: CriticalPoint,
+    /// Where it is published; without it the liquid is followed to the equation's own limits.
+    pub melting: Option<Melting>,
     pub saturation: SaturationData,
     pub ideal: Vec<IdealTerms>,
     pub residual: Vec<ResidualTerms>,

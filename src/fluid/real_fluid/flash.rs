@@ -3,6 +3,7 @@
 use super::RealFluid;
 use super::grid::{Grid, Target};
 use super::point::Point;
+use super::residual::Isotherm;
 use super::saturation::{Curve, Saturation};
 use crate::fluid::{Phase, PropertyError, State};
 
@@ -89,6 +90,25 @@ impl RealFluid {
         }
     }
 
+    /// Refuses the solid.
+    fn check_melting(&self, p: f64, t: f64) -> Result<(), PropertyError> {
+        if let Some(line) = &self.equation.melting
+            && t < self.t_melt_max
+        {
+            let max = line.highest_pressure(t);
+            if p > max {
+                return Err(out_of_range("pressure, above the melting line,", "Pa", p, P_MIN, max));
+            }
+        }
+        Ok(())
+    }
+
+    /// Lowest temperature of the fluid at `p`: the range's, or where it freezes.
+    fn lowest_temperature(&self, p: f64) -> f64 {
+        let low = self.equation.range.temperature_min;
+        self.equation.melting.as_ref().map_or(low, |m| m.lowest_temperature(p, low, self.t_melt_max.max(low)))
+    }
+
     fn phase(&self, sat: &Saturation, p: f64, t: f64, dense: bool) -> Phase {
         match (t > sat.t_c, p > sat.p_c) {
             (true, true) => Phase::Supercritical,
@@ -131,8 +151,8 @@ impl RealFluid {
     fn liquid(&self, sat: &Saturation, p: f64, t: f64) -> Option<Point> {
         let iso = self.model.isotherm(t);
         let edge = sat.at(Curve::DeltaLiquid, sat.x_of_temperature(t));
-        let delta = self.model.density(&iso, p, edge, sat.least_density(t), f64::INFINITY)?;
-        Some(self.model.point(&iso, delta))
+        let found = self.model.density(&iso, p, edge, sat.least_density(t), f64::INFINITY);
+        found.map(|delta| self.model.point(&iso, delta)).or_else(|| self.edge_point(&iso, p, edge))
     }
 
     /// The vapour below the critical point at `p` (Pa) and `t` (K).
@@ -142,8 +162,15 @@ impl RealFluid {
         let dew = sat.at(Curve::LnDew, x).exp();
         let edge = sat.at(Curve::LnDeltaVapour, x).exp();
         let guess = self.vapour_guess(sat, x, t, p.min(dew), dew);
-        let delta = self.model.density(&iso, p, guess, 0.0, self.most_density(sat, t, edge))?;
-        Some(self.model.point(&iso, delta))
+        let found = self.model.density(&iso, p, guess, 0.0, self.most_density(sat, t, edge));
+        found.map(|delta| self.model.point(&iso, delta)).or_else(|| self.edge_point(&iso, p, edge))
+    }
+
+    /// The saturated point itself where `p` is its pressure to rounding: next to the critical point
+    /// the isotherm is so flat that no other density can be told from it.
+    fn edge_point(&self, iso: &Isotherm, p: f64, edge: f64) -> Option<Point> {
+        let point = self.model.point(iso, edge);
+        ((point.p / p - 1.0).abs() < 1e-8).then_some(point)
     }
 
     /// The stable one-phase point at (p, T); in a blend's two-phase gap the nearer edge.
@@ -154,18 +181,17 @@ impl RealFluid {
         p: f64,
         t: f64,
     ) -> Result<(Point, bool), PropertyError> {
-        let (iso, found, dense) = if t >= sat.t_c || p >= sat.p_c {
+        let (found, dense) = if t >= sat.t_c || p >= sat.p_c {
             let iso = self.model.isotherm(t);
             let guess = self.outer_guess(sat, grid, p, t);
             let found = self.model.density(&iso, p, guess, sat.least_density(t), f64::INFINITY);
-            (iso, found, t < sat.t_c)
+            (found.map(|delta| self.model.point(&iso, delta)), t < sat.t_c)
+        } else if p >= sat.at(Curve::LnBubble, sat.x_of_temperature(t)).exp() {
+            (self.liquid(sat, p, t), true)
         } else {
-            let dense = p >= sat.at(Curve::LnBubble, sat.x_of_temperature(t)).exp();
-            let found = if dense { self.liquid(sat, p, t) } else { self.vapour(sat, p, t) };
-            return found.map(|point| (point, dense)).ok_or(PropertyError::NoConvergence);
+            (self.vapour(sat, p, t), false)
         };
-        let delta = found.ok_or(PropertyError::NoConvergence)?;
-        Ok((self.model.point(&iso, delta), dense))
+        found.map(|point| (point, dense)).ok_or(PropertyError::NoConvergence)
     }
 
     /// The state of a found one-phase point, with the coordinate that was asked for put exactly.
@@ -184,6 +210,7 @@ impl RealFluid {
     pub(super) fn state_pt(&self, p: f64, t: f64) -> Result<State, PropertyError> {
         self.check_pressure(p)?;
         self.check_temperature(t)?;
+        self.check_melting(p, t)?;
         let (sat, grid) = self.tables()?;
         if sat.is_blend && t < sat.t_c && p < sat.p_c {
             let x = sat.x_of_temperature(t);
@@ -355,7 +382,7 @@ impl RealFluid {
                 }
                 let t_b = sat.temperature(xb);
                 if t_b < t_min * (1.0 - SLACK) {
-                    return Err(target.range_error(value, sat.at(h_l, xb), f64::MAX));
+                    return Err(target.range_error(value, sat.at(h_l, xb), sat.at(h_v, xd)));
                 }
                 let region = Region {
                     t_low: t_min,
@@ -437,7 +464,9 @@ impl RealFluid {
         value: f64,
         region: &Region,
     ) -> Result<Point, PropertyError> {
-        if let Some(point) = self.newton(p, target, value, region) {
+        if let Some(point) = self.newton(p, target, value, region)
+            && self.check_melting(p, point.t).is_ok()
+        {
             return Ok(point);
         }
         self.search_along_isobar(sat, grid, p, target, value, region)
@@ -490,8 +519,9 @@ impl RealFluid {
         value: f64,
         region: &Region,
     ) -> Result<Point, PropertyError> {
+        let mut low = region.t_low.max(self.lowest_temperature(p)).min(region.t_high);
         let inside = |t: f64| t.clamp(region.t_low, region.t_high);
-        let (mut low, mut high) = (region.t_low, region.t_high);
+        let mut high = region.t_high;
         let at = |t: f64| -> Result<Point, PropertyError> {
             let t = inside(t);
             let found = if region.edge == Some(Side::Liquid) {
@@ -552,7 +582,6 @@ impl RealFluid {
         let (mut low, mut high) = (P_MIN, range.pressure_max);
         let mut p = 0.1 * sat.p_c;
         let mut best: Option<State> = None;
-        let (mut seen_low, mut seen_high) = (false, false);
         for _ in 0..120 {
             let mut next = f64::NAN;
             let mut step_is_final = false;
@@ -560,11 +589,9 @@ impl RealFluid {
                 Ok(state) => {
                     let error = h - state.enthalpy;
                     if error > 0.0 {
-                        low = p;
-                        seen_low = true;
+                        low = p
                     } else {
-                        high = p;
-                        seen_high = true;
+                        high = p
                     }
                     next = isentropic_pressure(&state, error);
                     step_is_final = (next - p).abs() <= 1e-12 * p || error == 0.0;
@@ -580,14 +607,21 @@ impl RealFluid {
             }
             p = if next > low && next < high { next } else { (low * high).sqrt() };
         }
+        // Where the search ends without the state, its end is the range's end on this isentrope.
+        let liquid = Curve::EnthalpyLiquid;
+        let coldest = sat.x_of_temperature(sat.t_min);
+        let (h_cold, s_cold) = (sat.at(liquid, coldest), sat.at(Curve::EntropyLiquid, coldest));
+        let hottest = self.model.ideal_gas(range.temperature_max, P_MIN);
         let Some(mut state) = best else {
-            return Err(out_of_range("entropy", "J/(kg K)", s, f64::MIN, f64::MAX));
+            return Err(out_of_range("entropy", "J/(kg K)", s, s_cold, hottest.1));
         };
-        let slack = 1e-7 * self.model.r * state.temperature;
-        if (state.enthalpy - h).abs() > slack {
-            let beyond =
-                if seen_low && !seen_high { (f64::MIN, state.enthalpy) } else { (state.enthalpy, f64::MAX) };
-            return Err(out_of_range("enthalpy at this entropy", "J/kg", h, beyond.0, beyond.1));
+        if (state.enthalpy - h).abs() > 1e-7 * self.model.r * state.temperature {
+            let (min, max) = if h > state.enthalpy {
+                (h_cold.min(state.enthalpy), state.enthalpy)
+            } else {
+                (state.enthalpy, hottest.0.max(state.enthalpy))
+            };
+            return Err(out_of_range("enthalpy at this entropy", "J/kg", h, min, max));
         }
         state.enthalpy = h;
         state.entropy = s;

@@ -42,6 +42,8 @@ pub struct RealFluid {
     equation: Equation,
     model: Helmholtz,
     elements: Elements,
+    /// Above this temperature (K) no pressure in range freezes the fluid.
+    t_melt_max: f64,
     tables: OnceLock<Option<Tables>>,
 }
 
@@ -69,7 +71,11 @@ impl RealFluid {
             let element = Element::from_symbol(symbol).ok_or_else(|| format!("no element {symbol}"))?;
             elements[element as usize] = count / equation.molar_mass;
         }
-        Ok(RealFluid { equation, model, elements, tables: OnceLock::new() })
+        let range = equation.range;
+        let t_melt_max = equation.melting.as_ref().map_or(0.0, |m| {
+            m.lowest_temperature(range.pressure_max, range.temperature_min, range.temperature_max)
+        });
+        Ok(RealFluid { equation, model, elements, t_melt_max, tables: OnceLock::new() })
     }
 
     fn tables(&self) -> Result<(&Saturation, &Grid), PropertyError> {
@@ -149,6 +155,11 @@ impl RealFluid {
         Ok((saturation.t_min, saturation.bubble_min))
     }
 
+    /// Source of the melting line that bounds the liquid, where one is published.
+    pub fn melting_source(&self) -> Option<&str> {
+        self.equation.melting.as_ref().map(|m| m.citation.as_str())
+    }
+
     /// Whether the fluid is a blend treated as one substance.
     pub fn is_pseudo_pure(&self) -> bool {
         matches!(self.equation.saturation, SaturationData::BubbleAndDew { .. })
@@ -157,15 +168,8 @@ impl RealFluid {
     /// The ideal gas of this equation at `t` (K) and 1 bar, on the equation's datum. With an
     /// absolute ideal-gas function of the same species it gives the bridge to absolute values.
     pub fn ideal_part(&self, t: f64) -> IdealGasReference {
-        let tau = self.model.t_r / t;
-        let ideal = self.model.ideal.values(tau);
-        let r = self.model.r;
-        let delta = 1e5 / (r * t * self.model.rho_r);
-        IdealGasReference {
-            enthalpy: r * t * (1.0 + ideal.first),
-            entropy: r * (ideal.first - ideal.value - delta.ln()),
-            heat_capacity: r * (1.0 - ideal.second),
-        }
+        let (enthalpy, entropy, heat_capacity) = self.model.ideal_gas(t, 1e5);
+        IdealGasReference { enthalpy, entropy, heat_capacity }
     }
 }
 
@@ -227,19 +231,25 @@ mod debug {
     use super::*;
     #[test]
     fn iso() {
-        for (n, p, t) in [
-            ("isopentane", 7.088901123200994e8, 3.9762783841963255e2),
-            ("methane", 6.132218816136279e8, 5.535953052070022e2),
+        for (n, p) in [
+            ("methanol", 8.215853274423202e6),
+            ("methanol", 8.215866574122752e6),
+            ("pentane", 3.3675189836070687e6),
         ] {
             let f = by_name(n).unwrap();
             let (sat, grid) = f.tables().unwrap();
+            let x = sat.x_of_pressure(saturation::Curve::LnBubble, p);
+            let t = sat.temperature(x);
+            let (dl, dv) = (
+                sat.at(saturation::Curve::DeltaLiquid, x),
+                sat.at(saturation::Curve::LnDeltaVapour, x).exp(),
+            );
+            println!("{n} pc {} tc {} x {x} t {t} dl {dl} dv {dv}", sat.p_c, sat.t_c);
             let iso = f.model.isotherm(t);
-            let g = grid.delta(p, t);
-            println!("{n} guess {g} {:?}", f.model.density(&iso, p, g, sat.least_density(t), f64::INFINITY));
-            for k in 0..40 {
-                let d = g * (0.9 + 0.01 * k as f64);
+            for k in 0..41 {
+                let d = dv + (dl - dv) * (k as f64 - 10.0) / 20.0;
                 let pt = f.model.point(&iso, d);
-                println!("{d} {:e} {:e}", pt.p, pt.p_rho);
+                println!("{d} {:e} {:e}", pt.p - p, pt.p_rho);
             }
         }
     }

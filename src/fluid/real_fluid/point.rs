@@ -56,6 +56,14 @@ impl Helmholtz {
         self.residual.isotherm(self.t_r / t)
     }
 
+    /// The ideal gas at `t` (K) and `p` (Pa): h in J/kg, s and cp in J/(kg K).
+    pub fn ideal_gas(&self, t: f64, p: f64) -> (f64, f64, f64) {
+        let ideal = self.ideal.values(self.t_r / t);
+        let delta = p / (self.r * t * self.rho_r);
+        let s = self.r * (ideal.first - ideal.value - delta.ln());
+        (self.r * t * (1.0 + ideal.first), s, self.r * (1.0 - ideal.second))
+    }
+
     /// All properties on an isotherm at reduced density `delta`.
     pub fn point(&self, iso: &Isotherm, delta: f64) -> Point {
         self.evaluate::<true>(iso, delta)
