@@ -170,7 +170,7 @@ impl RealFluid {
     /// the isotherm is so flat that no other density can be told from it.
     fn edge_point(&self, iso: &Isotherm, p: f64, edge: f64) -> Option<Point> {
         let point = self.model.point(iso, edge);
-        ((point.p / p - 1.0).abs() < 1e-8).then_some(point)
+        ((point.p / p - 1.0).abs() < 1e-6).then_some(point)
     }
 
     /// The stable one-phase point at (p, T); in a blend's two-phase gap the nearer edge.
@@ -185,7 +185,8 @@ impl RealFluid {
             let iso = self.model.isotherm(t);
             let guess = self.outer_guess(sat, grid, p, t);
             let found = self.model.density(&iso, p, guess, sat.least_density(t), f64::INFINITY);
-            (found.map(|delta| self.model.point(&iso, delta)), t < sat.t_c)
+            let point = found.map(|delta| self.model.point(&iso, delta));
+            (point.or_else(|| self.edge_point(&iso, p, sat.least_density(t))), t < sat.t_c)
         } else if p >= sat.at(Curve::LnBubble, sat.x_of_temperature(t)).exp() {
             (self.liquid(sat, p, t), true)
         } else {
@@ -552,7 +553,7 @@ impl RealFluid {
         if !(t > low && t < high) {
             t = low + (high - low) * (value - min) / (max - min);
         }
-        for _ in 0..100 {
+        for round in 0..120 {
             let point = at(t)?;
             let error = target.of(&point) - value;
             if error > 0.0 {
@@ -562,7 +563,8 @@ impl RealFluid {
             }
             let slope = if target == Target::Enthalpy { point.cp() } else { point.cp() / point.t };
             let mut next = t - error / slope;
-            if !(next > low && next < high) {
+            // Where rounding outweighs the slope Newton's steps wander: halve.
+            if !(next > low && next < high) || round > 50 {
                 next = 0.5 * (low + high);
             }
             let step = (next - t).abs();

@@ -231,26 +231,20 @@ mod debug {
     use super::*;
     #[test]
     fn iso() {
-        for (n, p) in [
-            ("methanol", 8.215853274423202e6),
-            ("methanol", 8.215866574122752e6),
-            ("pentane", 3.3675189836070687e6),
-        ] {
-            let f = by_name(n).unwrap();
-            let (sat, grid) = f.tables().unwrap();
-            let x = sat.x_of_pressure(saturation::Curve::LnBubble, p);
-            let t = sat.temperature(x);
-            let (dl, dv) = (
-                sat.at(saturation::Curve::DeltaLiquid, x),
-                sat.at(saturation::Curve::LnDeltaVapour, x).exp(),
-            );
-            println!("{n} pc {} tc {} x {x} t {t} dl {dl} dv {dv}", sat.p_c, sat.t_c);
-            let iso = f.model.isotherm(t);
-            for k in 0..41 {
-                let d = dv + (dl - dv) * (k as f64 - 10.0) / 20.0;
-                let pt = f.model.point(&iso, d);
-                println!("{d} {:e} {:e}", pt.p - p, pt.p_rho);
+        for f in catalogue().iter().filter(|f| !f.is_pseudo_pure()) {
+            let (sat, _) = f.tables().unwrap();
+            let mut worst = Vec::new();
+            for x in [1e-5, 3e-5, 1e-4, 3e-4, 1e-3, 3e-3, 1e-2, 2e-2, 4e-2, 0.1] {
+                let iso = f.model.isotherm(sat.temperature(x));
+                let (dl, dv) = (
+                    sat.at(saturation::Curve::DeltaLiquid, x),
+                    sat.at(saturation::Curve::LnDeltaVapour, x).exp(),
+                );
+                let p = sat.at(saturation::Curve::LnBubble, x).exp();
+                let (l, v) = (f.model.point(&iso, dl), f.model.point(&iso, dv));
+                worst.push(format!("{:.0e}/{:.0e}", l.p / p - 1.0, v.p / p - 1.0));
             }
+            println!("{:20} {} {:?}", f.name(), sat.first_half(), worst.join(" "));
         }
     }
 
