@@ -152,7 +152,7 @@ impl RealFluid {
         let iso = self.model.isotherm(t);
         let edge = sat.at(Curve::DeltaLiquid, sat.x_of_temperature(t));
         let found = self.model.density(&iso, p, edge, sat.least_density(t), f64::INFINITY);
-        found.map(|delta| self.model.point(&iso, delta)).or_else(|| self.edge_point(&iso, p, edge))
+        found.map(|delta| self.model.point(&iso, delta)).or_else(|| self.edge_point(sat, &iso, p, edge))
     }
 
     /// The vapour below the critical point at `p` (Pa) and `t` (K).
@@ -163,12 +163,17 @@ impl RealFluid {
         let edge = sat.at(Curve::LnDeltaVapour, x).exp();
         let guess = self.vapour_guess(sat, x, t, p.min(dew), dew);
         let found = self.model.density(&iso, p, guess, 0.0, self.most_density(sat, t, edge));
-        found.map(|delta| self.model.point(&iso, delta)).or_else(|| self.edge_point(&iso, p, edge))
+        found.map(|delta| self.model.point(&iso, delta)).or_else(|| self.edge_point(sat, &iso, p, edge))
     }
 
     /// The saturated point itself where `p` is its pressure to rounding: next to the critical point
-    /// the isotherm is so flat that no other density can be told from it.
-    fn edge_point(&self, iso: &Isotherm, p: f64, edge: f64) -> Option<Point> {
+    /// the isotherm is so flat that no other density can be told from it. A blend's pressure lines
+    /// may miss the loop of its equation there: then whatever density has that pressure.
+    fn edge_point(&self, sat: &Saturation, iso: &Isotherm, p: f64, edge: f64) -> Option<Point> {
+        if sat.is_blend {
+            let delta = self.model.density(iso, p, edge, 0.0, f64::INFINITY)?;
+            return Some(self.model.point(iso, delta));
+        }
         let point = self.model.point(iso, edge);
         ((point.p / p - 1.0).abs() < 1e-6).then_some(point)
     }
@@ -186,7 +191,7 @@ impl RealFluid {
             let guess = self.outer_guess(sat, grid, p, t);
             let found = self.model.density(&iso, p, guess, sat.least_density(t), f64::INFINITY);
             let point = found.map(|delta| self.model.point(&iso, delta));
-            (point.or_else(|| self.edge_point(&iso, p, sat.least_density(t))), t < sat.t_c)
+            (point.or_else(|| self.edge_point(sat, &iso, p, sat.least_density(t))), t < sat.t_c)
         } else if p >= sat.at(Curve::LnBubble, sat.x_of_temperature(t)).exp() {
             (self.liquid(sat, p, t), true)
         } else {
@@ -262,15 +267,9 @@ impl RealFluid {
 
     fn blend_edge(&self, sat: &Saturation, p: f64, line: Curve) -> Result<Edge, PropertyError> {
         let x = sat.x_of_pressure(line, p);
-        let iso = self.model.isotherm(sat.temperature(x));
-        let delta = if line == Curve::LnBubble {
-            let edge = sat.at(Curve::DeltaLiquid, x);
-            self.model.density(&iso, p, edge, sat.least_density(sat.temperature(x)), f64::INFINITY)
-        } else {
-            let edge = sat.at(Curve::LnDeltaVapour, x).exp();
-            self.model.density(&iso, p, edge, 0.0, self.most_density(sat, sat.temperature(x), edge))
-        };
-        let point = self.model.point(&iso, delta.ok_or(PropertyError::NoConvergence)?);
+        let t = sat.temperature(x);
+        let found = if line == Curve::LnBubble { self.liquid(sat, p, t) } else { self.vapour(sat, p, t) };
+        let point = found.ok_or(PropertyError::NoConvergence)?;
         Ok(along(&point, sat.dt_dp(line, x)))
     }
 

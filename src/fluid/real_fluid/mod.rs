@@ -231,20 +231,41 @@ mod debug {
     use super::*;
     #[test]
     fn iso() {
-        for f in catalogue().iter().filter(|f| !f.is_pseudo_pure()) {
-            let (sat, _) = f.tables().unwrap();
-            let mut worst = Vec::new();
-            for x in [1e-5, 3e-5, 1e-4, 3e-4, 1e-3, 3e-3, 1e-2, 2e-2, 4e-2, 0.1] {
-                let iso = f.model.isotherm(sat.temperature(x));
-                let (dl, dv) = (
-                    sat.at(saturation::Curve::DeltaLiquid, x),
-                    sat.at(saturation::Curve::LnDeltaVapour, x).exp(),
+        for (n, p, h) in [
+            ("R32", 5.78264509394984e6, 4.141469237724816e5),
+            ("isobutane", 3.629000016649734e6, 6.33937311062898e5),
+        ] {
+            let f = by_name(n).unwrap();
+            let (sat, grid) = f.tables().unwrap();
+            println!("{n} p-pc {:e} guess {:?}", p - sat.p_c, grid.guess(p, Target::Enthalpy, h));
+            let mut t = sat.t_c * (1.0 - 1e-5);
+            while t < sat.t_c * (1.0 + 1e-5) {
+                println!(
+                    "t-tc {:e} {:?}",
+                    t - sat.t_c,
+                    f.state_pt(p, t).map(|s| (1.0 / s.volume, s.enthalpy - h))
                 );
-                let p = sat.at(saturation::Curve::LnBubble, x).exp();
-                let (l, v) = (f.model.point(&iso, dl), f.model.point(&iso, dv));
-                worst.push(format!("{:.0e}/{:.0e}", l.p / p - 1.0, v.p / p - 1.0));
+                t += sat.t_c * 1e-6;
             }
-            println!("{:20} {} {:?}", f.name(), sat.first_half(), worst.join(" "));
+        }
+        for (n, p) in [("R410A", 4.892768262475762e6), ("R507A", 3.698064208037658e6)] {
+            let f = by_name(n).unwrap();
+            let (sat, _) = f.tables().unwrap();
+            for c in [saturation::Curve::LnBubble, saturation::Curve::LnDew] {
+                let x = sat.x_of_pressure(c, p);
+                let t = sat.temperature(x);
+                println!(
+                    "{n} x {x} t {t} loop {} least {} at {} ",
+                    sat.t_loop,
+                    sat.least_density(t),
+                    sat.at(saturation::Curve::LnDeltaVapour, x).exp()
+                );
+                let iso = f.model.isotherm(t);
+                for k in 0..40 {
+                    let d = 0.6 + k as f64 * 0.02;
+                    println!("{d} {:e}", f.model.point(&iso, d).p - p);
+                }
+            }
         }
     }
 

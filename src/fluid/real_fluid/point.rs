@@ -102,6 +102,8 @@ impl Helmholtz {
         let (mut low, mut high) = (low, high);
         let mut x = guess.clamp(low, high);
         let mut last = f64::INFINITY;
+        // Least |y|, its density, and what rounding makes of y there.
+        let mut best = (f64::INFINITY, x, 0.0);
         for _ in 0..80 {
             let v = self.residual.values::<{ order::ALONG }>(iso, x);
             let y = x * (1.0 + v.d) - target;
@@ -109,10 +111,13 @@ impl Helmholtz {
             if y == 0.0 {
                 return Some(x);
             }
+            if y.abs() < best.0 {
+                best = (y.abs(), x, slope.abs() * x * 1e-13);
+            }
             if y < 0.0 {
-                low = x
+                low = x;
             } else {
-                high = x
+                high = x;
             }
             let mut next = x - y / slope;
             let regular = slope > 0.0 && next > low && next < high && next.is_finite();
@@ -138,17 +143,17 @@ impl Helmholtz {
                     0.5 * (low + high)
                 };
                 if high - low <= 4.0 * f64::EPSILON * high {
-                    // A bracket that has closed holds a root only where both its ends were seen.
-                    let scale = (slope.abs() * x + target) * 1e-6;
-                    return (y.abs() <= scale).then_some(x);
+                    break;
                 }
             }
             x = next;
             if x > 20.0 {
-                return None;
+                break;
             }
         }
-        None
+        // On a flat isotherm rounding keeps the steps from shrinking though the pressure is met; a
+        // bracket may also have closed on an end that is no root.
+        (best.0 <= 1e-10 * target + best.2).then_some(best.1)
     }
 
     /// The isotherm's point where (∂p/∂ρ)_T and (∂²p/∂ρ²)_T vanish: (T in K, δ).
@@ -186,19 +191,25 @@ impl Helmholtz {
 }
 
 impl Point {
+    /// ρ² (∂p/∂ρ)_T, kept above zero: at the critical point itself the derivatives at constant
+    /// pressure are infinite, and rounding may turn their sign.
+    fn stiffness(&self) -> f64 {
+        self.rho * self.rho * self.p_rho.max(1e-13 * self.p / self.rho)
+    }
+
     /// J/(kg K)
     pub fn cp(&self) -> f64 {
-        self.cv + self.t * self.p_t * self.p_t / (self.rho * self.rho * self.p_rho)
+        self.cv + self.t * self.p_t * self.v_t()
     }
 
     /// (∂v/∂T)_p, m³/(kg K)
     pub fn v_t(&self) -> f64 {
-        self.p_t / (self.rho * self.rho * self.p_rho)
+        self.p_t / self.stiffness()
     }
 
     /// (∂v/∂p)_T, m³/(kg Pa)
     pub fn v_p(&self) -> f64 {
-        -1.0 / (self.rho * self.rho * self.p_rho)
+        -1.0 / self.stiffness()
     }
 
     /// (∂h/∂T)_ρ, J/(kg K)
