@@ -40,7 +40,8 @@ fn main() -> Result<(), String> {
             let clock = Instant::now();
             sum = 0.0;
             for &(a, b) in states {
-                let state = fluid.state(pair, a, b, 0.0).map_err(|e| format!("{name} {word} {a} {b}: {e}"))?;
+                let state =
+                    fluid.state(pair, a, b, 0.0).map_err(|e| format!("{name} {word} {a} {b}: {e}"))?;
                 sum += state.volume + state.gradient[2][1];
             }
             least = least.min(clock.elapsed().as_secs_f64());

@@ -10,19 +10,7 @@ use crate::fluid::{Phase, PropertyError, State};
 /// Lowest pressure that is taken, Pa: below it nothing is left to be called a fluid.
 const P_MIN: f64 = 1e-6;
 /// Slack at the ends of a range, relative, for states that come back from another pair.
-const SLACK: f64 = 1e-9;
-
-/// One end of a two-phase state with its derivatives along the saturation line.
-struct Edge {
-    t: f64,
-    t_p: f64,
-    h: f64,
-    h_p: f64,
-    s: f64,
-    s_p: f64,
-    v: f64,
-    v_p: f64,
-}
+pub(super) const SLACK: f64 = 1e-9;
 
 /// Where one-phase iterations may move.
 struct Region {
@@ -41,7 +29,13 @@ enum Side {
     Vapour,
 }
 
-fn out_of_range(quantity: &'static str, unit: &'static str, value: f64, min: f64, max: f64) -> PropertyError {
+pub(super) fn out_of_range(
+    quantity: &'static str,
+    unit: &'static str,
+    value: f64,
+    min: f64,
+    max: f64,
+) -> PropertyError {
     PropertyError::OutOfRange { quantity, unit, value, min, max }
 }
 
@@ -81,7 +75,7 @@ impl RealFluid {
         }
     }
 
-    fn check_temperature(&self, t: f64) -> Result<(), PropertyError> {
+    pub(super) fn check_temperature(&self, t: f64) -> Result<(), PropertyError> {
         let range = self.equation.range;
         if t >= range.temperature_min * (1.0 - SLACK) && t <= range.temperature_max * (1.0 + SLACK) {
             Ok(())
@@ -148,7 +142,7 @@ impl RealFluid {
     }
 
     /// The liquid below the critical point at `p` (Pa) and `t` (K).
-    fn liquid(&self, sat: &Saturation, p: f64, t: f64) -> Option<Point> {
+    pub(super) fn liquid(&self, sat: &Saturation, p: f64, t: f64) -> Option<Point> {
         let iso = self.model.isotherm(t);
         let edge = sat.at(Curve::DeltaLiquid, sat.x_of_temperature(t));
         let found = self.model.density(&iso, p, edge, sat.least_density(t), f64::INFINITY);
@@ -156,7 +150,7 @@ impl RealFluid {
     }
 
     /// The vapour below the critical point at `p` (Pa) and `t` (K).
-    fn vapour(&self, sat: &Saturation, p: f64, t: f64) -> Option<Point> {
+    pub(super) fn vapour(&self, sat: &Saturation, p: f64, t: f64) -> Option<Point> {
         let iso = self.model.isotherm(t);
         let x = sat.x_of_temperature(t);
         let dew = sat.at(Curve::LnDew, x).exp();
@@ -228,125 +222,6 @@ impl RealFluid {
         let mut state = self.one_phase(sat, &point, p, dense)?;
         state.temperature = t;
         Ok(state)
-    }
-
-    /// The ends of the two-phase region at `p`, which must lie on both lines.
-    fn edges(&self, sat: &Saturation, p: f64) -> Result<(Edge, Edge), PropertyError> {
-        if sat.is_blend {
-            return Ok((self.blend_edge(sat, p, Curve::LnBubble)?, self.blend_edge(sat, p, Curve::LnDew)?));
-        }
-        let x = sat.x_of_pressure(Curve::LnBubble, p);
-        let iso = self.model.isotherm(sat.temperature(x));
-        let l = self.model.point(&iso, sat.at(Curve::DeltaLiquid, x));
-        let v = self.model.point(&iso, sat.at(Curve::LnDeltaVapour, x).exp());
-        if x > 0.01 {
-            // Clausius and Clapeyron.
-            let t_p = (1.0 / v.rho - 1.0 / l.rho) / (v.s - l.s);
-            return Ok((along(&l, t_p), along(&v, t_p)));
-        }
-        // Near the critical point the differences vanish: the line's own slopes.
-        let t_p = sat.dt_dp(Curve::LnBubble, x);
-        let slope = |curve| sat.slope_in_pressure(curve, Curve::LnBubble, x);
-        let edge = |point: &Point, h, s, rho_p: f64| Edge {
-            t: point.t,
-            t_p,
-            h: point.h,
-            h_p: slope(h),
-            s: point.s,
-            s_p: slope(s),
-            v: 1.0 / point.rho,
-            v_p: -rho_p / (point.rho * point.rho),
-        };
-        let liquid_p = slope(Curve::DeltaLiquid) * self.model.rho_r;
-        let vapour_p = slope(Curve::LnDeltaVapour) * v.rho;
-        Ok((
-            edge(&l, Curve::EnthalpyLiquid, Curve::EntropyLiquid, liquid_p),
-            edge(&v, Curve::EnthalpyVapour, Curve::EntropyVapour, vapour_p),
-        ))
-    }
-
-    fn blend_edge(&self, sat: &Saturation, p: f64, line: Curve) -> Result<Edge, PropertyError> {
-        let x = sat.x_of_pressure(line, p);
-        let t = sat.temperature(x);
-        let found = if line == Curve::LnBubble { self.liquid(sat, p, t) } else { self.vapour(sat, p, t) };
-        let point = found.ok_or(PropertyError::NoConvergence)?;
-        Ok(along(&point, sat.dt_dp(line, x)))
-    }
-
-    /// Whether `p` lies on both lines; the error names the limits.
-    fn check_saturation_pressure(&self, sat: &Saturation, p: f64) -> Result<f64, PropertyError> {
-        let min = sat.dew_min;
-        if p < min * (1.0 - SLACK) || p > sat.p_c * (1.0 + SLACK) {
-            return Err(out_of_range("saturation pressure", "Pa", p, min, sat.p_c));
-        }
-        Ok(p.clamp(min, sat.p_c))
-    }
-
-    pub(super) fn state_px(&self, p: f64, quality: f64) -> Result<State, PropertyError> {
-        check_quality(quality)?;
-        let (sat, _) = self.tables()?;
-        let p = self.check_saturation_pressure(sat, p)?;
-        self.wet(sat, p, |_, _| quality)
-    }
-
-    /// The two-phase state at `p` with the quality that `choose` makes of the two edges.
-    fn wet(
-        &self,
-        sat: &Saturation,
-        p: f64,
-        choose: impl Fn(&Edge, &Edge) -> f64,
-    ) -> Result<State, PropertyError> {
-        let (liquid, vapour) = self.edges(sat, p)?;
-        let state = two_phase(p, choose(&liquid, &vapour), &liquid, &vapour)?;
-        // A blend's bubble temperature may lie below the range where its dew temperature does not.
-        self.check_temperature(state.temperature)?;
-        Ok(state)
-    }
-
-    pub(super) fn state_tx(&self, t: f64, quality: f64) -> Result<State, PropertyError> {
-        check_quality(quality)?;
-        let (sat, _) = self.tables()?;
-        if t < sat.t_min * (1.0 - SLACK) || t > sat.t_c * (1.0 + SLACK) {
-            return Err(out_of_range("saturation temperature", "K", t, sat.t_min, sat.t_c));
-        }
-        let x = sat.x_of_temperature(t);
-        let p = if sat.is_blend {
-            self.blend_pressure(sat, sat.temperature(x), quality)
-        } else {
-            sat.at(Curve::LnBubble, x).exp()
-        };
-        let p = self.check_saturation_pressure(sat, p)?;
-        let mut state = self.wet(sat, p, |_, _| quality)?;
-        state.temperature = t;
-        Ok(state)
-    }
-
-    /// The pressure at which (1 − x) T_bubble + x T_dew = `t`.
-    fn blend_pressure(&self, sat: &Saturation, t: f64, quality: f64) -> f64 {
-        let x = sat.x_of_temperature(t);
-        let mut low = sat.at(Curve::LnDew, x).exp();
-        let mut high = sat.at(Curve::LnBubble, x).exp();
-        let mut p = low + (1.0 - quality) * (high - low);
-        for _ in 0..60 {
-            let b = sat.x_of_pressure(Curve::LnBubble, p);
-            let d = sat.x_of_pressure(Curve::LnDew, p);
-            let error = (1.0 - quality) * sat.temperature(b) + quality * sat.temperature(d) - t;
-            if error > 0.0 {
-                high = p
-            } else {
-                low = p
-            }
-            let slope =
-                (1.0 - quality) * sat.dt_dp(Curve::LnBubble, b) + quality * sat.dt_dp(Curve::LnDew, d);
-            let next = p - error / slope;
-            let next = if next >= low && next <= high { next } else { 0.5 * (low + high) };
-            let done = (next - p).abs() <= 1e-13 * p;
-            p = next;
-            if done {
-                break;
-            }
-        }
-        p
     }
 
     /// (p, h) and (p, s).
@@ -628,27 +503,6 @@ impl RealFluid {
         state.entropy = s;
         Ok(state)
     }
-
-    pub(super) fn saturation_line(&self, p: f64, quality: f64) -> Result<(f64, f64), PropertyError> {
-        if !p.is_finite() || !quality.is_finite() {
-            return Err(PropertyError::NotFinite);
-        }
-        let (sat, _) = self.tables()?;
-        let line = if quality > 0.5 { Curve::LnDew } else { Curve::LnBubble };
-        if p > sat.p_c * (1.0 + SLACK) {
-            return Err(PropertyError::NoSaturation);
-        }
-        let min = if line == Curve::LnDew { sat.dew_min } else { sat.bubble_min };
-        if p < min * (1.0 - SLACK) {
-            return Err(out_of_range("saturation pressure", "Pa", p, min, sat.p_c));
-        }
-        let x = sat.x_of_pressure(line, p.clamp(min, sat.p_c));
-        Ok((sat.temperature(x), sat.dt_dp(line, x)))
-    }
-}
-
-fn check_quality(quality: f64) -> Result<(), PropertyError> {
-    if (0.0..=1.0).contains(&quality) { Ok(()) } else { Err(out_of_range("quality", "1", quality, 0.0, 1.0)) }
 }
 
 /// The pressure at which the isentrope through `state` has gained `error` (J/kg) of enthalpy, as a
@@ -669,46 +523,8 @@ fn isentropic_pressure(state: &State, error: f64) -> f64 {
     if base > 0.0 { p * base.powf(1.0 / k) } else { f64::NAN }
 }
 
-/// A point's values with derivatives along a line of slope `t_p` = dT/dp.
-fn along(point: &Point, t_p: f64) -> Edge {
-    let v = 1.0 / point.rho;
-    let (cp, v_t, v_p) = (point.cp(), point.v_t(), point.v_p());
-    Edge {
-        t: point.t,
-        t_p,
-        h: point.h,
-        h_p: v - point.t * v_t + cp * t_p,
-        s: point.s,
-        s_p: -v_t + cp / point.t * t_p,
-        v,
-        v_p: v_p + v_t * t_p,
-    }
-}
-
-/// The state between two edges, every property linear in quality at constant pressure.
-fn two_phase(p: f64, quality: f64, l: &Edge, v: &Edge) -> Result<State, PropertyError> {
-    let mix = |a: f64, b: f64| a + quality * (b - a);
-    finite(State {
-        temperature: mix(l.t, v.t),
-        pressure: p,
-        enthalpy: mix(l.h, v.h),
-        entropy: mix(l.s, v.s),
-        volume: mix(l.v, v.v),
-        quality: Some(quality),
-        phase: Phase::TwoPhase,
-        gradient: [
-            [mix(l.t_p, v.t_p), v.t - l.t, 0.0],
-            [1.0, 0.0, 0.0],
-            [mix(l.h_p, v.h_p), v.h - l.h, 0.0],
-            [mix(l.s_p, v.s_p), v.s - l.s, 0.0],
-            [mix(l.v_p, v.v_p), v.v - l.v, 0.0],
-            [0.0, 1.0, 0.0],
-        ],
-    })
-}
-
 /// The state, unless a figure in it is not finite.
-fn finite(state: State) -> Result<State, PropertyError> {
+pub(super) fn finite(state: State) -> Result<State, PropertyError> {
     let figures = [state.temperature, state.pressure, state.enthalpy, state.entropy, state.volume];
     let all = figures.iter().chain(state.gradient.iter().flatten()).all(|x| x.is_finite());
     if all && state.volume > 0.0 { Ok(state) } else { Err(PropertyError::NoConvergence) }

@@ -18,6 +18,7 @@ mod point;
 mod registry;
 mod residual;
 mod saturation;
+mod wet;
 
 use crate::fluid::{Datum, Element, Elements, Engine, Pair, PropertyError, Provenance, State};
 use equation::{Equation, SaturationData};
@@ -223,68 +224,5 @@ impl Engine for RealFluid {
 
     fn relative_uncertainty(&self, _state: &State) -> f64 {
         self.equation.uncertainty.enthalpy_difference
-    }
-}
-
-#[cfg(test)]
-mod debug {
-    use super::*;
-    #[test]
-    fn iso() {
-        for (n, p, h) in [
-            ("R32", 5.78264509394984e6, 4.141469237724816e5),
-            ("isobutane", 3.629000016649734e6, 6.33937311062898e5),
-        ] {
-            let f = by_name(n).unwrap();
-            let (sat, grid) = f.tables().unwrap();
-            println!("{n} p-pc {:e} guess {:?}", p - sat.p_c, grid.guess(p, Target::Enthalpy, h));
-            let mut t = sat.t_c * (1.0 - 1e-5);
-            while t < sat.t_c * (1.0 + 1e-5) {
-                println!(
-                    "t-tc {:e} {:?}",
-                    t - sat.t_c,
-                    f.state_pt(p, t).map(|s| (1.0 / s.volume, s.enthalpy - h))
-                );
-                t += sat.t_c * 1e-6;
-            }
-        }
-        for (n, p) in [("R410A", 4.892768262475762e6), ("R507A", 3.698064208037658e6)] {
-            let f = by_name(n).unwrap();
-            let (sat, _) = f.tables().unwrap();
-            for c in [saturation::Curve::LnBubble, saturation::Curve::LnDew] {
-                let x = sat.x_of_pressure(c, p);
-                let t = sat.temperature(x);
-                println!(
-                    "{n} x {x} t {t} loop {} least {} at {} ",
-                    sat.t_loop,
-                    sat.least_density(t),
-                    sat.at(saturation::Curve::LnDeltaVapour, x).exp()
-                );
-                let iso = f.model.isotherm(t);
-                for k in 0..40 {
-                    let d = 0.6 + k as f64 * 0.02;
-                    println!("{d} {:e}", f.model.point(&iso, d).p - p);
-                }
-            }
-        }
-    }
-
-    #[test]
-    fn trace_all() {
-        for f in catalogue() {
-            let e = &f.equation;
-            let own = f
-                .model
-                .critical_point(e.critical.temperature, e.critical.molar_density / e.reducing.molar_density);
-            let now = std::time::Instant::now();
-            let ok = f.tables().is_ok();
-            println!(
-                "{:20} {ok} own {own:?} stated {} {} {:?}",
-                f.name(),
-                e.critical.temperature,
-                e.critical.molar_density / e.reducing.molar_density,
-                now.elapsed()
-            );
-        }
     }
 }

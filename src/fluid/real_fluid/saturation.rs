@@ -40,12 +40,39 @@ pub(super) enum Curve {
     EntropyVapour = 7,
 }
 
-/// Polynomials in u = (x − centre)/half.
+/// Polynomials in u = (x − centre)/half; the curves of one power of u stand together.
 #[derive(Debug)]
 struct Segment {
     centre: f64,
     half: f64,
-    coefficients: [[f64; N]; CURVES],
+    coefficients: [[f64; CURVES]; N],
+}
+
+impl Segment {
+    fn new(centre: f64, half: f64, curves: &[[f64; N]; CURVES]) -> Segment {
+        let coefficients = std::array::from_fn(|power| std::array::from_fn(|curve| curves[curve][power]));
+        Segment { centre, half, coefficients }
+    }
+}
+
+/// All curves at one x.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Line {
+    values: [f64; CURVES],
+    /// d/dx
+    slopes: [f64; CURVES],
+}
+
+impl Line {
+    /// A curve's value.
+    pub fn value(&self, curve: Curve) -> f64 {
+        self.values[curve as usize]
+    }
+
+    /// A curve's derivative with respect to x.
+    pub fn slope(&self, curve: Curve) -> f64 {
+        self.slopes[curve as usize]
+    }
 }
 
 /// A saturated pair: pressures in Pa, reduced densities.
@@ -80,6 +107,8 @@ pub(super) struct Saturation {
     pub is_blend: bool,
     /// Lower ends of the segments in x, ascending, the first being 0.
     starts: Vec<f64>,
+    /// ln of the bubble and dew pressures there and at the last end.
+    ln_pressures: [Vec<f64>; 2],
     x_max: f64,
     segments: Vec<Segment>,
 }
@@ -316,6 +345,7 @@ impl Saturation {
             dew_min: 0.0,
             is_blend: lines.is_some(),
             starts: Vec::new(),
+            ln_pressures: [Vec::new(), Vec::new()],
             x_max,
             segments: Vec::new(),
         };
@@ -334,6 +364,9 @@ impl Saturation {
             out.push_segments(&mut tracer, from, to, 4)?;
             from = to;
         }
+        let ends: Vec<f64> = out.starts.iter().copied().chain([x_max]).collect();
+        out.ln_pressures =
+            [Curve::LnBubble, Curve::LnDew].map(|c| ends.iter().map(|x| out.at(c, *x)).collect());
         let x_min = out.x_of_temperature(t_min);
         out.bubble_min = out.at(Curve::LnBubble, x_min).exp();
         out.dew_min = out.at(Curve::LnDew, x_min).exp();
@@ -351,7 +384,7 @@ impl Saturation {
             }
         }
         self.starts.push(from);
-        self.segments.push(Segment { centre, half, coefficients: values.map(|v| powers_of(&v)) });
+        self.segments.push(Segment::new(centre, half, &values.map(|v| powers_of(&v))));
         if depth > 0 && !self.last_is_accurate(tracer, from, to)? {
             self.starts.pop();
             self.segments.pop();
@@ -370,10 +403,13 @@ impl Saturation {
             let miss = |curve: Curve| (self.at(curve, x) - c[curve as usize]).abs();
             // Rounding alone moves a density by the reciprocal of the isotherm's slope, which is as x².
             let rounding = 3e-10 + 1e-15 / (x * x);
-            accurate &= miss(Curve::LnBubble) < 1e-11
-                && miss(Curve::LnDew) < 1e-11
-                && miss(Curve::DeltaLiquid) < rounding
-                && miss(Curve::LnDeltaVapour) < rounding;
+            let (r, t) = (tracer.model.r, self.temperature(x));
+            let curves = [Curve::DeltaLiquid, Curve::LnDeltaVapour].map(|c| (c, rounding));
+            let energies = [Curve::EnthalpyLiquid, Curve::EnthalpyVapour].map(|c| (c, rounding * r * t));
+            let entropies = [Curve::EntropyLiquid, Curve::EntropyVapour].map(|c| (c, rounding * r));
+            let pressures = [Curve::LnBubble, Curve::LnDew].map(|c| (c, 1e-11));
+            let all = [curves, energies, entropies, pressures];
+            accurate &= all.iter().flatten().all(|(curve, limit)| miss(*curve) < *limit);
         }
         Some(accurate)
     }
@@ -399,7 +435,7 @@ impl Saturation {
             }
         }
         self.starts.push(0.0);
-        self.segments.push(Segment { centre: 0.0, half: to, coefficients: values.map(|v| powers_of(&v)) });
+        self.segments.push(Segment::new(0.0, to, &values.map(|v| powers_of(&v))));
         if to > NARROWEST && !self.last_is_accurate(tracer, 0.0, to)? {
             self.starts.pop();
             self.segments.pop();
@@ -430,13 +466,8 @@ impl Saturation {
             row[if k < 2 { 2 } else { 1 }] = edge[k] - top[k];
         }
         self.starts.push(0.0);
-        self.segments.push(Segment { centre: 0.0, half: to, coefficients });
+        self.segments.push(Segment::new(0.0, to, &coefficients));
         Some(())
-    }
-
-    #[cfg(test)]
-    pub fn first_half(&self) -> f64 {
-        self.segments[0].half
     }
 
     fn segment(&self, x: f64) -> Option<&Segment> {
@@ -469,7 +500,16 @@ impl Saturation {
     pub fn at(&self, curve: Curve, x: f64) -> f64 {
         self.segment(x).map_or(f64::NAN, |s| {
             let u = (x - s.centre) / s.half;
-            s.coefficients[curve as usize].iter().rev().fold(0.0, |sum, c| sum * u + c)
+            let (w, k) = (u * u, curve as usize);
+            // Even and odd powers apart: two short chains instead of one long one.
+            let (mut even, mut odd) = (0.0, 0.0);
+            for pair in s.coefficients.chunks_exact(2).rev() {
+                if let [a, b] = pair {
+                    even = even * w + a[k];
+                    odd = odd * w + b[k];
+                }
+            }
+            even + u * odd
         })
     }
 
@@ -478,13 +518,35 @@ impl Saturation {
     pub fn with_slope(&self, curve: Curve, x: f64) -> (f64, f64) {
         self.segment(x).map_or((f64::NAN, f64::NAN), |s| {
             let u = (x - s.centre) / s.half;
-            let (mut y, mut dy) = (0.0, 0.0);
-            for c in s.coefficients[curve as usize].iter().rev() {
-                dy = dy * u + y;
-                y = y * u + c;
+            let (w, k) = (u * u, curve as usize);
+            let (mut even, mut odd, mut even_w, mut odd_w) = (0.0, 0.0, 0.0, 0.0);
+            for pair in s.coefficients.chunks_exact(2).rev() {
+                if let [a, b] = pair {
+                    even_w = even_w * w + even;
+                    odd_w = odd_w * w + odd;
+                    even = even * w + a[k];
+                    odd = odd * w + b[k];
+                }
             }
-            (y, dy / s.half)
+            (even + u * odd, (odd + 2.0 * u * (even_w + u * odd_w)) / s.half)
         })
+    }
+
+    /// All curves at `x`.
+    pub fn line(&self, x: f64) -> Line {
+        let mut out = Line { values: [f64::NAN; CURVES], slopes: [f64::NAN; CURVES] };
+        if let Some(s) = self.segment(x) {
+            let u = (x - s.centre) / s.half;
+            (out.values, out.slopes) = ([0.0; CURVES], [0.0; CURVES]);
+            for row in s.coefficients.iter().rev() {
+                for ((y, dy), c) in out.values.iter_mut().zip(&mut out.slopes).zip(row) {
+                    *dy = *dy * u + *y;
+                    *y = *y * u + c;
+                }
+            }
+            out.slopes.iter_mut().for_each(|dy| *dy /= s.half);
+        }
+        out
     }
 
     /// x on the bubble or dew line (`curve`) at pressure `p` (Pa), which lies on it.
@@ -494,15 +556,12 @@ impl Saturation {
             return 0.0;
         }
         // The line is nearly straight in 1/T; then Newton in w = x².
-        let (mut low, mut high) = (0usize, self.starts.len());
-        while high - low > 1 {
-            let middle = (low + high) / 2;
-            let start = self.starts.get(middle).copied().unwrap_or(self.x_max);
-            if self.at(curve, start) > target { low = middle } else { high = middle }
-        }
-        let x0 = self.starts.get(low).copied().unwrap_or(0.0);
-        let x1 = self.starts.get(low + 1).copied().unwrap_or(self.x_max);
-        let (y0, y1) = (self.at(curve, x0), self.at(curve, x1));
+        let ends = &self.ln_pressures[usize::from(curve == Curve::LnDew)];
+        let k = ends.partition_point(|y| *y > target).clamp(1, self.starts.len()) - 1;
+        let x0 = self.starts.get(k).copied().unwrap_or(0.0);
+        let x1 = self.starts.get(k + 1).copied().unwrap_or(self.x_max);
+        let y0 = ends.get(k).copied().unwrap_or(target);
+        let y1 = ends.get(k + 1).copied().unwrap_or(y0 - 1.0);
         let z = |x: f64| 1.0 / (1.0 - x * x);
         let inverse = z(x0) + (z(x1) - z(x0)) * ((target - y0) / (y1 - y0)).clamp(0.0, 1.0);
         let mut w = (1.0 - 1.0 / inverse).max(0.0);
@@ -529,12 +588,5 @@ impl Saturation {
         let x = x.max(1e-6);
         let (ln_p, slope) = self.with_slope(curve, x);
         -2.0 * x * self.t_c / (ln_p.exp() * slope)
-    }
-
-    /// Derivative of a curve with respect to pressure along the line at `x`.
-    pub fn slope_in_pressure(&self, curve: Curve, line: Curve, x: f64) -> f64 {
-        let x = x.max(1e-6);
-        let (ln_p, p_slope) = self.with_slope(line, x);
-        self.with_slope(curve, x).1 / (ln_p.exp() * p_slope)
     }
 }
