@@ -55,6 +55,33 @@ impl Segment {
     }
 }
 
+/// x² as polynomials in u = (ln p − centre)/half: ln p is smooth in x² through the critical point.
+#[derive(Debug, Default)]
+struct Inverse {
+    /// ln p at the upper ends of the pieces, descending, and at the last lower end.
+    ends: Vec<f64>,
+    /// Centre, half, coefficients.
+    pieces: Vec<(f64, f64, [f64; N])>,
+}
+
+impl Inverse {
+    fn value(&self, ln_p: f64) -> f64 {
+        let k = self.ends.partition_point(|end| *end > ln_p).clamp(1, self.pieces.len().max(1)) - 1;
+        self.pieces.get(k).map_or(0.0, |(centre, half, coefficients)| {
+            let u = (ln_p - centre) / half;
+            let w = u * u;
+            let (mut even, mut odd) = (0.0, 0.0);
+            for pair in coefficients.chunks_exact(2).rev() {
+                if let [a, b] = pair {
+                    even = even * w + a;
+                    odd = odd * w + b;
+                }
+            }
+            even + u * odd
+        })
+    }
+}
+
 /// All curves at one x.
 #[derive(Clone, Copy, Debug)]
 pub(super) struct Line {
@@ -107,8 +134,8 @@ pub(super) struct Saturation {
     pub is_blend: bool,
     /// Lower ends of the segments in x, ascending, the first being 0.
     starts: Vec<f64>,
-    /// ln of the bubble and dew pressures there and at the last end.
-    ln_pressures: [Vec<f64>; 2],
+    /// x² over ln p of the bubble and the dew line, segment by segment.
+    inverses: [Inverse; 2],
     x_max: f64,
     segments: Vec<Segment>,
 }
@@ -345,7 +372,7 @@ impl Saturation {
             dew_min: 0.0,
             is_blend: lines.is_some(),
             starts: Vec::new(),
-            ln_pressures: [Vec::new(), Vec::new()],
+            inverses: [Inverse::default(), Inverse::default()],
             x_max,
             segments: Vec::new(),
         };
@@ -364,9 +391,7 @@ impl Saturation {
             out.push_segments(&mut tracer, from, to, 4)?;
             from = to;
         }
-        let ends: Vec<f64> = out.starts.iter().copied().chain([x_max]).collect();
-        out.ln_pressures =
-            [Curve::LnBubble, Curve::LnDew].map(|c| ends.iter().map(|x| out.at(c, *x)).collect());
+        out.inverses = [out.invert(Curve::LnBubble), out.invert(Curve::LnDew)];
         let x_min = out.x_of_temperature(t_min);
         out.bubble_min = out.at(Curve::LnBubble, x_min).exp();
         out.dew_min = out.at(Curve::LnDew, x_min).exp();
@@ -551,36 +576,63 @@ impl Saturation {
 
     /// x on the bubble or dew line (`curve`) at pressure `p` (Pa), which lies on it.
     pub fn x_of_pressure(&self, curve: Curve, p: f64) -> f64 {
-        let target = p.ln();
         if p >= self.p_c {
             return 0.0;
         }
-        // The line is nearly straight in 1/T; then Newton in w = x².
-        let ends = &self.ln_pressures[usize::from(curve == Curve::LnDew)];
-        let k = ends.partition_point(|y| *y > target).clamp(1, self.starts.len()) - 1;
-        let x0 = self.starts.get(k).copied().unwrap_or(0.0);
-        let x1 = self.starts.get(k + 1).copied().unwrap_or(self.x_max);
-        let y0 = ends.get(k).copied().unwrap_or(target);
-        let y1 = ends.get(k + 1).copied().unwrap_or(y0 - 1.0);
-        let z = |x: f64| 1.0 / (1.0 - x * x);
-        let inverse = z(x0) + (z(x1) - z(x0)) * ((target - y0) / (y1 - y0)).clamp(0.0, 1.0);
-        let mut w = (1.0 - 1.0 / inverse).max(0.0);
-        let w_max = self.x_max * self.x_max;
-        for _ in 0..20 {
-            let x = w.sqrt();
-            if x < 1e-9 {
-                return 0.0;
-            }
+        let target = p.ln();
+        let mut w = self.inverses[usize::from(curve == Curve::LnDew)].value(target).max(0.0);
+        // One step in x² makes up for what the inverse polynomial leaves.
+        let x = w.sqrt();
+        if x > 1e-9 {
             let (y, slope) = self.with_slope(curve, x);
-            let step = (y - target) / (slope / (2.0 * x));
-            let next = (w - step).clamp(0.25 * w, w_max);
-            let done = (next - w).abs() <= 1e-13 * (1.0 - w).max(0.0) + 1e-17 || step.abs() < 1e-9 * w;
-            w = next;
-            if done {
-                break;
-            }
+            w = (w - (y - target) * 2.0 * x / slope).clamp(0.0, self.x_max * self.x_max);
         }
         w.sqrt()
+    }
+
+    /// x and all curves of a pure fluid at pressure `p` (Pa), which lies on the line.
+    pub fn line_at_pressure(&self, p: f64) -> (f64, Line) {
+        let target = p.ln();
+        let x = self.inverses[0].value(target).clamp(0.0, self.x_max * self.x_max).sqrt();
+        let mut line = self.line(x.max(1e-6));
+        // One step along the slopes makes up for what the inverse polynomial leaves.
+        let step = if p >= self.p_c { -x.max(1e-6) } else { (target - line.values[0]) / line.slopes[0] };
+        line.values.iter_mut().zip(&line.slopes).for_each(|(y, dy)| *y += dy * step);
+        ((x.max(1e-6) + step).clamp(0.0, self.x_max), line)
+    }
+
+    /// The inverse of a pressure curve, by bisection at each node.
+    fn invert(&self, curve: Curve) -> Inverse {
+        let ends: Vec<f64> = self.starts.iter().copied().chain([self.x_max]).collect();
+        let mut out = Inverse { ends: ends.iter().map(|x| self.at(curve, *x)).collect(), pieces: Vec::new() };
+        for pair in ends.windows(2) {
+            let &[from, to] = pair else { continue };
+            let (top, bottom) = (self.at(curve, from), self.at(curve, to));
+            let (centre, half) = (0.5 * (top + bottom), 0.5 * (top - bottom));
+            let values = std::array::from_fn(|k| {
+                let target = centre + half * chebyshev_node(k);
+                let (mut low, mut high) = (from * from, to * to);
+                let mut w = low + (high - low) * (top - target) / (top - bottom);
+                for _ in 0..40 {
+                    let (y, slope) = self.with_slope(curve, w.sqrt());
+                    if y > target {
+                        low = w
+                    } else {
+                        high = w
+                    }
+                    let next = w - (y - target) * 2.0 * w.sqrt() / slope;
+                    let next = if next >= low && next <= high { next } else { 0.5 * (low + high) };
+                    let done = (next - w).abs() <= 1e-15 * w;
+                    w = next;
+                    if done {
+                        break;
+                    }
+                }
+                w
+            });
+            out.pieces.push((centre, half, powers_of(&values)));
+        }
+        out
     }
 
     /// dT/dp (K/Pa) along the bubble or dew line at `x`.

@@ -24,21 +24,19 @@ impl RealFluid {
         if sat.is_blend {
             return Ok((self.blend_edge(sat, p, Curve::LnBubble)?, self.blend_edge(sat, p, Curve::LnDew)?));
         }
-        let x = sat.x_of_pressure(Curve::LnBubble, p);
-        let line = sat.line(x);
-        // At the critical point the slopes along the line are infinite: those just below it.
-        let x = x.max(1e-6);
-        let slopes = if x > 1e-6 { line } else { sat.line(x) };
-        let x_p = 1.0 / (p * slopes.slope(Curve::LnBubble));
+        // At the critical point the slopes along the line are infinite; there they are those at x = 1e-6.
+        let (x, line) = sat.line_at_pressure(p);
+        let x_p = 1.0 / (p * line.slope(Curve::LnBubble));
+        let (t, t_p) = (sat.temperature(x), -2.0 * x.max(1e-6) * sat.t_c * x_p);
         let edge = |h: Curve, s: Curve, delta: f64, delta_x: f64| {
             let v = 1.0 / (delta * self.model.rho_r);
             Edge {
-                t: sat.temperature(x),
-                t_p: -2.0 * x * sat.t_c * x_p,
+                t,
+                t_p,
                 h: line.value(h),
-                h_p: slopes.slope(h) * x_p,
+                h_p: line.slope(h) * x_p,
                 s: line.value(s),
-                s_p: slopes.slope(s) * x_p,
+                s_p: line.slope(s) * x_p,
                 v,
                 v_p: -v * delta_x / delta * x_p,
             }
@@ -46,12 +44,12 @@ impl RealFluid {
         let liquid = line.value(Curve::DeltaLiquid);
         let vapour = line.value(Curve::LnDeltaVapour).exp();
         Ok((
-            edge(Curve::EnthalpyLiquid, Curve::EntropyLiquid, liquid, slopes.slope(Curve::DeltaLiquid)),
+            edge(Curve::EnthalpyLiquid, Curve::EntropyLiquid, liquid, line.slope(Curve::DeltaLiquid)),
             edge(
                 Curve::EnthalpyVapour,
                 Curve::EntropyVapour,
                 vapour,
-                vapour * slopes.slope(Curve::LnDeltaVapour),
+                vapour * line.slope(Curve::LnDeltaVapour),
             ),
         ))
     }
