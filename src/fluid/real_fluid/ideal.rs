@@ -111,3 +111,55 @@ impl Ideal {
         IdealValues { value, first, second }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::fluid::real_fluid::catalogue;
+
+    #[test]
+    fn derivatives_are_those_of_the_function() {
+        for fluid in catalogue() {
+            let ideal = &fluid.model.ideal;
+            for tau in [0.3, 0.7, 1.0, 1.7, 3.0] {
+                let h = 1e-5;
+                let (up, at, down) =
+                    (ideal.values(tau * (1.0 + h)), ideal.values(tau), ideal.values(tau * (1.0 - h)));
+                let first = (up.value - down.value) / (2.0 * h);
+                let second = (up.first - down.first) / (2.0 * h) - at.first;
+                assert!((first - at.first).abs() < 1e-7 * (1.0 + at.first.abs()), "{} {tau}", fluid.name());
+                assert!(
+                    (second - at.second).abs() < 1e-6 * (1.0 + at.second.abs()),
+                    "{} {tau}",
+                    fluid.name()
+                );
+                let short = ideal.derivatives(tau);
+                assert!(short.first == at.first && short.second == at.second);
+            }
+        }
+    }
+
+    /// Ideal-gas heat capacities at 298.15 K in units of R: common knowledge to two digits, so that
+    /// a slip in one of the published forms shows.
+    #[test]
+    fn heat_capacities_are_known() {
+        for (name, ratio) in [
+            ("argon", 2.5),
+            ("helium", 2.5),
+            ("nitrogen", 3.503),
+            ("oxygen", 3.534),
+            ("hydrogen", 3.468),
+            ("carbon monoxide", 3.505),
+            ("carbon dioxide", 4.466),
+            ("ammonia", 4.29),
+            ("methane", 4.29),
+            ("methanol", 5.3),
+            ("propane", 8.85),
+            ("R22", 6.7),
+        ] {
+            let fluid = crate::fluid::real_fluid::by_name(name).unwrap();
+            let own = fluid.ideal_part(298.15).heat_capacity / fluid.model.r;
+            assert!((own / ratio - 1.0).abs() < 0.012, "{name}: {own}");
+        }
+        assert!(catalogue().iter().all(|f| f.ideal_part(300.0).heat_capacity > 2.4 * f.model.r));
+    }
+}

@@ -433,3 +433,47 @@ impl NonAnalytic {
             * (db * qt * (1.0 + delta * qd) + delta * pd * qt + pt * (1.0 + delta * qd) + pdt * delta);
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::fluid::real_fluid::catalogue;
+
+    /// Every derivative against differences of the next lower one, in every fluid.
+    #[test]
+    fn derivatives_are_those_of_the_function() {
+        for fluid in catalogue() {
+            let model = &fluid.model.residual;
+            let at = |tau: f64, delta: f64| model.values::<{ order::FULL }>(&model.isotherm(tau), delta);
+            for (tau, delta) in [(0.8, 0.4), (1.1, 1.6), (1.3, 2.4), (1.02, 0.97), (0.6, 1.3), (1.6, 0.01)] {
+                let h = 1e-5;
+                let v = at(tau, delta);
+                let along = |y: fn(&Values) -> f64| {
+                    (y(&at(tau, delta * (1.0 + h))) - y(&at(tau, delta * (1.0 - h)))) / (2.0 * h)
+                };
+                let across = |y: fn(&Values) -> f64| {
+                    (y(&at(tau * (1.0 + h), delta)) - y(&at(tau * (1.0 - h), delta))) / (2.0 * h)
+                };
+                for (what, difference, value) in [
+                    ("d", along(|v| v.f), v.d),
+                    ("dd", along(|v| v.d), v.d + v.dd),
+                    ("t", across(|v| v.f), v.t),
+                    ("tt", across(|v| v.t), v.t + v.tt),
+                    ("dt", across(|v| v.d), v.dt),
+                    ("dt", along(|v| v.t), v.dt),
+                ] {
+                    let scale = 1.0 + value.abs();
+                    let error = (difference - value).abs() / scale;
+                    assert!(error < 1e-5, "{} {what} at {tau} {delta}: {error:e}", fluid.name());
+                }
+                if model.is_analytic() {
+                    let third = model.values::<{ order::THIRD }>(&model.isotherm(tau), delta);
+                    let error =
+                        (along(|v| v.dd) - (2.0 * third.dd + third.ddd)).abs() / (1.0 + third.ddd.abs());
+                    assert!(error < 1e-5, "{} ddd at {tau} {delta}: {error:e}", fluid.name());
+                    assert!(third.f == v.f && third.d == v.d && third.dd == v.dd);
+                }
+            }
+        }
+    }
+}
