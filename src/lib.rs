@@ -10,7 +10,15 @@
 
 #[cfg(feature = "server")]
 pub mod api;
+pub mod assessment;
+pub mod balance;
 pub mod diagnostic;
 pub mod document;
+pub mod evidence;
 pub mod fluid;
+pub mod model;
+pub mod pipeline;
+pub mod process;
 pub mod quantity;
+pub mod report;
+pub mod rules;

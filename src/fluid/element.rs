@@ -16,7 +16,8 @@ macro_rules! elements {
             pub const fn symbol(self) -> &'static str {
                 match self { $(Element::$name => stringify!($name),)+ }
             }
-            /// Standard atomic mass, kg/mol (IUPAC 2021 abridged values).
+            /// Standard atomic mass, kg/mol (IUPAC 1995 values, which NASA/TP-2002-211556 uses: the
+            /// mass of each of its species is the sum over its atoms, so mass and elements agree).
             pub const fn molar_mass(self) -> f64 {
                 match self { $(Element::$name => $mass * 1e-3,)+ }
             }
@@ -25,9 +26,9 @@ macro_rules! elements {
 }
 
 elements! {
-    C 12.011, H 1.008, O 15.999, N 14.007, S 32.06, Ar 39.95, He 4.0026, Ne 20.180, Kr 83.798,
-    Xe 131.29, Cl 35.45, F 18.998, Na 22.990, K 39.098, Ca 40.078, Mg 24.305, Fe 55.845,
-    Al 26.982, Si 28.085, P 30.974,
+    C 12.0107, H 1.00794, O 15.9994, N 14.0067, S 32.065, Ar 39.948, He 4.002602, Ne 20.1797,
+    Kr 83.798, Xe 131.293, Cl 35.453, F 18.9984032, Na 22.98977, K 39.0983, Ca 40.078, Mg 24.305,
+    Fe 55.845, Al 26.981538, Si 28.0855, P 30.973761,
 }
 
 /// Moles of each element, indexed by `Element as usize`.

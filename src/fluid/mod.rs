@@ -4,23 +4,28 @@
 //! and returns a finite [`State`] with its first partial derivatives, or a [`PropertyError`] with
 //! the limit that was broken. It never panics and has no mutable state.
 
+pub mod catalogue;
+pub mod chemistry;
 pub mod combustion_gas;
 pub mod element;
 mod error;
 pub mod fuel;
+pub mod heat_capacity;
 pub mod humid_air;
 pub mod ideal_gas;
 pub mod incompressible;
+mod numeric;
 pub mod perfect_gas;
 pub mod real_fluid;
 pub mod solution;
-mod state;
+pub mod state;
 pub mod stated;
 pub mod steam;
 
+pub use catalogue::{Substance, by_name, names};
 pub use element::{Element, Elements};
 pub use error::PropertyError;
-pub use state::{Pair, Phase, Property, State};
+pub use state::{CompositionForm, Pair, Phase, Property, State};
 
 /// Where a formulation comes from, for the report and the catalogue.
 #[derive(Clone, Debug, PartialEq)]
@@ -81,6 +86,36 @@ pub trait Engine: Send + Sync + std::fmt::Debug {
 
     /// The way to the absolute datum; `None` where the formulation has no formation data.
     fn datum(&self) -> Option<Datum>;
+
+    /// The way to the absolute datum at composition `c`, and its derivative with respect to `c`.
+    fn datum_at(&self, c: f64) -> Option<(Datum, Datum)> {
+        let _ = c;
+        self.datum().map(|d| (d, Datum { enthalpy: 0.0, entropy: 0.0 }))
+    }
+
+    /// The composition coordinate from the figure that is given, at pressure `p` (Pa) and
+    /// temperature `t` (K), with its derivatives with respect to p, T and the figure.
+    ///
+    /// # Errors
+    /// A figure outside its range, or a form that the engine does not know.
+    fn composition(
+        &self,
+        form: CompositionForm,
+        p: f64,
+        t: f64,
+        figure: f64,
+    ) -> Result<(f64, [f64; 3]), PropertyError> {
+        let _ = (p, t);
+        match form {
+            CompositionForm::Direct => Ok((figure, [0.0, 0.0, 1.0])),
+            _ => Err(PropertyError::Unstated("a composition in this form")),
+        }
+    }
+
+    /// Whether the composition is a coordinate (`c`) rather than fixed.
+    fn elements_vary(&self) -> bool {
+        false
+    }
 
     /// Relative standard uncertainty of enthalpy and entropy *differences* by this formulation at
     /// a state (k = 1), as its source gives it.

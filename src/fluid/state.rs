@@ -105,6 +105,19 @@ impl fmt::Display for Pair {
     }
 }
 
+/// How the composition coordinate of a variable mixture is given.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum CompositionForm {
+    /// The engine's own coordinate (humidity ratio, air ratio, salinity).
+    Direct,
+    /// Relative humidity at the state's T and p, 0 to 1.
+    RelativeHumidity,
+    /// Thermodynamic wet-bulb temperature at the state's T and p, K.
+    WetBulb,
+    /// Dew-point (or frost-point) temperature at the state's p, K.
+    DewPoint,
+}
+
 /// One state of a fluid. Immutable; SI units.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct State {
@@ -194,7 +207,7 @@ impl State {
         let rb = self.gradient[second as usize];
         let det = ra[0] * rb[1] - ra[1] * rb[0];
         let scale = (ra[0] * rb[1]).abs() + (ra[1] * rb[0]).abs();
-        if !(det.abs() > 1e-13 * scale) {
+        if det.is_nan() || det.abs() <= 1e-13 * scale {
             return None;
         }
         // Rows of the inverse: d(basis)/d(a, b).

@@ -1,1 +1,236 @@
-//! (module)
+//! The rules: one file a rule. A rule turns an evaluation into margins and, given a decision, into
+//! an explanation. [`ALL`] lists them; the catalogue, the report and the tests draw from it.
+//!
+//! To add a rule: write its file after the pattern of any other (a documented struct, its
+//! [`RuleInfo`] with a breaking and a keeping case, its margins, its explanation), and add it to
+//! the list below.
+
+mod carnot;
+mod machine;
+mod measure;
+pub mod phrase;
+mod remark;
+mod reservoir;
+mod saturation;
+mod terminal;
+#[cfg(test)]
+mod tests;
+
+use crate::balance::Evaluation;
+use crate::model::{Decision, Family, Margin};
+use crate::quantity::Dimension;
+
+/// By what right a rule speaks.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Authority {
+    /// A law of nature: may say impossible.
+    Law,
+    /// The data contradict each other.
+    Data,
+    /// Common practice: unusual.
+    Practice,
+    /// The tool checks itself.
+    SelfCheck,
+}
+
+impl Authority {
+    /// The word in reports.
+    pub const fn text(self) -> &'static str {
+        match self {
+            Authority::Law => "law",
+            Authority::Data => "data",
+            Authority::Practice => "practice",
+            Authority::SelfCheck => "self-check",
+        }
+    }
+
+    /// What a violation is called.
+    pub const fn complaint(self) -> &'static str {
+        match self {
+            Authority::Law => "impossible",
+            Authority::Data => "contradiction",
+            Authority::Practice => "unusual",
+            Authority::SelfCheck => "internal",
+        }
+    }
+}
+
+/// How much hangs on a finding.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub enum Severity {
+    /// Advice.
+    Advice,
+    /// Minor.
+    Minor,
+    /// Major.
+    Major,
+    /// Critical.
+    Critical,
+    /// Cannot be evaluated.
+    Fatal,
+    /// A fault of the tool.
+    Internal,
+}
+
+impl Severity {
+    /// The word in reports.
+    pub const fn text(self) -> &'static str {
+        match self {
+            Severity::Advice => "advice",
+            Severity::Minor => "minor",
+            Severity::Major => "major",
+            Severity::Critical => "critical",
+            Severity::Fatal => "fatal",
+            Severity::Internal => "internal",
+        }
+    }
+}
+
+/// Which defect a rule sees: rules of one aspect that are broken at one place are one defect.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub enum Aspect {
+    /// The entropy balance and everything that follows from it.
+    Entropy,
+    /// Temperatures inside or at the ends of an exchanger.
+    Interior,
+    /// The direction or equilibrium of a reaction.
+    Reaction,
+    /// A claimed figure.
+    Claim,
+    /// Conservation of mass, elements and energy.
+    Closure,
+    /// What one state says of itself.
+    State,
+    /// A habit of the trade.
+    Practice,
+    /// The tool's own arithmetic.
+    Tool,
+}
+
+/// A case that breaks or keeps a rule.
+#[derive(Clone, Copy, Debug)]
+pub enum Case {
+    /// A description.
+    Description(&'static str),
+    /// No description can show it; the reason.
+    None(&'static str),
+}
+
+/// What the catalogue says of a rule.
+#[derive(Debug)]
+pub struct RuleInfo {
+    /// Its one identity.
+    pub name: &'static str,
+    /// Short title.
+    pub title: &'static str,
+    /// By what right it speaks.
+    pub authority: Authority,
+    /// How much hangs on a violation.
+    pub severity: Severity,
+    /// Which defect it sees.
+    pub aspect: Aspect,
+    /// The inequality, in words and symbols.
+    pub inequality: &'static str,
+    /// Where it applies.
+    pub applies_to: &'static str,
+    /// What it needs.
+    pub needs: &'static str,
+    /// Usual causes of a violation.
+    pub typical_cause: &'static str,
+    /// Source of the rule.
+    pub source: &'static str,
+    /// A description that breaks it.
+    pub breaking: Case,
+    /// A description that keeps it.
+    pub keeping: Case,
+}
+
+/// A figure in an explanation, SI, with its dimension.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Figure {
+    /// SI value.
+    pub value: f64,
+    /// What it measures.
+    pub dimension: Dimension,
+}
+
+/// What a rule says of a margin that does not hold.
+#[derive(Clone, Debug, Default)]
+pub struct Explanation {
+    /// One sentence with its numbers.
+    pub statement: String,
+    /// The figure that was tested.
+    pub value: Option<Figure>,
+    /// Its bound.
+    pub limit: Option<Figure>,
+    /// A milder severity, where the case is milder than the rule.
+    pub severity: Option<Severity>,
+    /// Rules that this finding covers by its nature.
+    pub covers: Vec<&'static str>,
+}
+
+/// A rule.
+pub trait Rule: Sync {
+    /// What the catalogue says of it.
+    fn info(&self) -> &'static RuleInfo;
+
+    /// Appends its margins. `me` is the rule's index in [`ALL`].
+    fn margins(&self, me: usize, evaluation: &Evaluation<'_>, out: &mut Vec<Margin>);
+
+    /// Explains a margin that does not hold, or that is at its limit.
+    fn explain(&self, evaluation: &Evaluation<'_>, margin: &Margin, decision: &Decision) -> Explanation;
+}
+
+macro_rules! rules {
+    ($($module:ident :: $rule:ident),+ $(,)?) => {
+        $(pub mod $module;)+
+
+        /// Every rule; for rules of one aspect, the one that names the defect best comes first.
+        pub static ALL: &[&dyn Rule] = &[$(&$module::$rule),+];
+    };
+}
+
+rules! {
+    negative_entropy_generation::NegativeEntropyGeneration,
+    negative_group_entropy_generation::NegativeGroupEntropyGeneration,
+    negative_plant_entropy_generation::NegativePlantEntropyGeneration,
+    heat_flows_uphill::HeatFlowsUphill,
+    clausius_inequality_broken::ClausiusInequalityBroken,
+    work_from_one_reservoir::WorkFromOneReservoir,
+    engine_beats_carnot::EngineBeatsCarnot,
+    refrigerator_beats_carnot::RefrigeratorBeatsCarnot,
+    heat_pump_beats_carnot::HeatPumpBeatsCarnot,
+    expander_beats_isentropic::ExpanderBeatsIsentropic,
+    compressor_beats_isentropic::CompressorBeatsIsentropic,
+    throttle_against_entropy::ThrottleAgainstEntropy,
+    terminal_temperature_cross::TerminalTemperatureCross,
+    parallel_flow_outlet_cross::ParallelFlowOutletCross,
+    mass_imbalance::MassImbalance,
+    element_imbalance::ElementImbalance,
+    energy_imbalance::EnergyImbalance,
+    composition_sum::CompositionSum,
+    surplus_property_mismatch::SurplusPropertyMismatch,
+    redundant_readings_disagree::RedundantReadingsDisagree,
+    state_outside_formulation::StateOutsideFormulation,
+    vapour_below_saturation::VapourBelowSaturation,
+    liquid_above_saturation::LiquidAboveSaturation,
+    quality_out_of_range::QualityOutOfRange,
+    wetness_unknown::WetnessUnknown,
+    reversed_flow::ReversedFlow,
+    unusual_dead_state::UnusualDeadState,
+    gouy_stodola_mismatch::GouyStodolaMismatch,
+}
+
+/// The index of a rule by name.
+pub fn find(name: &str) -> Option<usize> {
+    ALL.iter().position(|r| r.info().name == name)
+}
+
+/// The family of a rule's tests by its authority and aspect.
+pub const fn family(info: &RuleInfo) -> Family {
+    match info.aspect {
+        Aspect::Entropy | Aspect::Interior => Family::Entropy,
+        Aspect::Closure => Family::Closure,
+        _ => Family::None,
+    }
+}

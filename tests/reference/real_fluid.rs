@@ -192,7 +192,7 @@ fn phases_are_in_equilibrium() {
         let (t_t, _) = fluid.triple().unwrap();
         let mut previous = f64::INFINITY;
         let steps = (0..60).map(|k| t_t + (t_c - t_t) * f64::from(k) / 60.0);
-        for t in steps.chain([t_c - 0.1, t_c - 0.01, t_c - 0.001]) {
+        for t in steps.chain([0.1f64, 0.01, 0.001].map(|d| t_c - d.min(1e-2 * (t_c - t_t)))) {
             let at = |q: f64| fluid.state(Pair::TemperatureQuality, t, q, 0.0).unwrap();
             let (l, v) = (at(0.0), at(1.0));
             let (latent, ds) = (v.enthalpy - l.enthalpy, v.entropy - l.entropy);
@@ -370,7 +370,7 @@ fn finite(s: &State) -> bool {
 /// converge on a state that exists. `FLUID_STATES` sets the number of draws for each fluid.
 #[test]
 fn any_input_is_answered_or_refused() {
-    let draws: usize = std::env::var("FLUID_STATES").ok().and_then(|n| n.parse().ok()).unwrap_or(600);
+    let draws: usize = std::env::var("FLUID_STATES").ok().and_then(|n| n.parse().ok()).unwrap_or(100);
     let odd = [
         0.0,
         -0.0,

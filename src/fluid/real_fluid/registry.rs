@@ -2,7 +2,7 @@
 
 use super::RealFluid;
 use crate::diagnostic::nearest;
-use std::sync::OnceLock;
+use std::sync::{Arc, OnceLock};
 
 /// Every data file.
 const FILES: &[&str] = &[
@@ -49,9 +49,9 @@ const FILES: &[&str] = &[
 
 /// Every fluid, in the order of the files. Read once; the package's tests read every file, so none
 /// is left out.
-pub fn catalogue() -> &'static [RealFluid] {
-    static FLUIDS: OnceLock<Vec<RealFluid>> = OnceLock::new();
-    FLUIDS.get_or_init(|| FILES.iter().filter_map(|text| RealFluid::parse(text).ok()).collect())
+pub fn catalogue() -> &'static [Arc<RealFluid>] {
+    static FLUIDS: OnceLock<Vec<Arc<RealFluid>>> = OnceLock::new();
+    FLUIDS.get_or_init(|| FILES.iter().filter_map(|text| RealFluid::parse(text).ok().map(Arc::new)).collect())
 }
 
 /// What is compared of a name: letters and digits, in lower case.
@@ -64,7 +64,7 @@ fn fold(name: &str) -> String {
 ///
 /// # Errors
 /// The nearest names that are known, none where nothing is near.
-pub fn by_name(name: &str) -> Result<&'static RealFluid, Vec<&'static str>> {
+pub fn by_name(name: &str) -> Result<&'static Arc<RealFluid>, Vec<&'static str>> {
     let folded = fold(name);
     let fluids = catalogue();
     fluids
@@ -121,7 +121,7 @@ mod tests {
             ("R-507", "R507A"),
             ("sulphur dioxide", "sulfur dioxide"),
         ] {
-            assert_eq!(by_name(written).map(RealFluid::name), Ok(canonical), "{written}");
+            assert_eq!(by_name(written).map(|f| f.name()), Ok(canonical), "{written}");
         }
     }
 

@@ -1,0 +1,461 @@
+//! The equations of a process as rows that should be zero.
+
+use super::region::{self, Region};
+use crate::fluid::{Element, Pair, Property};
+use crate::model::{Blocked, Dual, Model, Rows, View, Workspace, fluids_of};
+use crate::process::kinds::Kind;
+use crate::process::{
+    AmountForm, Carried, ComponentId, FlowId, PressureLoss, StateForm, StateId, Var, VarId,
+};
+
+/// One equation.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Row {
+    /// A section of a machine has the given isentropic efficiency: component, flow before, after.
+    Isentropic(ComponentId, FlowId, FlowId),
+    /// Work out equals the given efficiency times work (or heat) in.
+    Efficiency(ComponentId),
+    /// Useful heat equals the given coefficient of performance times the drive.
+    Cop(ComponentId),
+    /// Outlet pressure of a side follows from its inlet pressure: component, index in `given`.
+    PressureLoss(ComponentId, usize),
+    /// A property given beyond need: state, index.
+    Surplus(StateId, usize),
+    /// Mass of one side of a component.
+    Mass(ComponentId, usize),
+    /// One element of one side of a component.
+    Element(ComponentId, usize, Element),
+    /// Energy of a component.
+    Energy(ComponentId),
+}
+
+/// All equations of a process, with the regions they are drawn around.
+#[derive(Clone, Debug, Default)]
+pub struct Equations {
+    rows: Vec<Row>,
+    unknowns: Vec<Vec<VarId>>,
+    /// One region a component.
+    pub components: Vec<Region>,
+    /// One region a group.
+    pub groups: Vec<Region>,
+    /// The plant.
+    pub plant: Region,
+}
+
+impl Equations {
+    /// Draws the regions and lists the rows. The workspace must be bound: sections of a machine
+    /// are ordered by outlet pressure.
+    pub fn compile(model: &Model, workspace: &Workspace) -> Equations {
+        let process = &model.process;
+        let mut out = Equations {
+            components: (0..process.components.len()).map(|k| Region::of_component(process, k)).collect(),
+            groups: process.groups.iter().map(|g| Region::around(process, &g.members)).collect(),
+            plant: Region::around(process, &(0..process.components.len()).collect::<Vec<_>>()),
+            ..Equations::default()
+        };
+        for (k, component) in process.components.iter().enumerate() {
+            if component.given.isentropic_efficiency.is_some()
+                && let Some(side) = component.sides.first()
+                && let [inlet] = side.inlets[..]
+            {
+                let mut before = inlet;
+                for outlet in by_pressure(model, workspace, &side.outlets, component.kind) {
+                    out.push(model, Row::Isentropic(k, before, outlet));
+                    before = outlet;
+                }
+            }
+            if component.given.efficiency.is_some() {
+                out.push(model, Row::Efficiency(k));
+            }
+            if component.given.cop.is_some() {
+                out.push(model, Row::Cop(k));
+            }
+            for i in 0..component.given.pressure_loss.len() {
+                out.push(model, Row::PressureLoss(k, i));
+            }
+        }
+        for (s, spec) in process.states.iter().enumerate() {
+            for (i, surplus) in spec.surplus.iter().enumerate() {
+                // A temperature at saturation must not settle the quality.
+                if !(spec.wet_ambiguous && surplus.property == Property::Temperature) {
+                    out.push(model, Row::Surplus(s, i));
+                }
+            }
+        }
+        for (k, component) in process.components.iter().enumerate() {
+            for i in 0..component.sides.len() {
+                if !component.sides[i].inlets.is_empty() || !component.sides[i].outlets.is_empty() {
+                    out.push(model, Row::Mass(k, i));
+                }
+            }
+        }
+        for (k, component) in process.components.iter().enumerate() {
+            for (i, side) in component.sides.iter().enumerate().filter(|(_, s)| s.pool) {
+                let fluids = fluids_of(process, side);
+                if fluids.len() < 2 && !fluids.iter().any(|&f| process.fluids[f].engine.elements_vary()) {
+                    continue;
+                }
+                for &element in Element::ALL {
+                    let present = fluids.iter().any(|&f| {
+                        let engine = &process.fluids[f].engine;
+                        engine.elements(0.1).is_some_and(|(e, _)| e[element as usize] != 0.0)
+                    });
+                    if present {
+                        out.push(model, Row::Element(k, i, element));
+                    }
+                }
+            }
+        }
+        for k in 0..process.components.len() {
+            let region = &out.components[k];
+            if region.inlets.is_empty() && region.outlets.is_empty() && process.components[k].holdup.is_none()
+            {
+                continue;
+            }
+            out.push(model, Row::Energy(k));
+        }
+        out
+    }
+
+    fn push(&mut self, model: &Model, row: Row) {
+        let mut unknowns = unknowns_of(model, row);
+        unknowns.sort_unstable();
+        unknowns.dedup();
+        self.rows.push(row);
+        self.unknowns.push(unknowns);
+    }
+
+    /// The rows in order.
+    pub fn rows(&self) -> &[Row] {
+        &self.rows
+    }
+
+    /// The index of a row.
+    pub fn find(&self, row: Row) -> Option<usize> {
+        self.rows.iter().position(|r| *r == row)
+    }
+}
+
+/// Outlets in the order in which the working fluid passes them.
+pub fn by_pressure(model: &Model, workspace: &Workspace, outlets: &[FlowId], kind: Kind) -> Vec<FlowId> {
+    let view = View { model, workspace };
+    let pressure = |f: FlowId| {
+        model.process.flows[f]
+            .material()
+            .and_then(|m| view.property(m.state, Property::Pressure).ok())
+            .map_or(0.0, |p| p.value)
+    };
+    let mut out = outlets.to_vec();
+    let falling = matches!(kind, Kind::Turbine | Kind::Engine);
+    out.sort_by(|&a, &b| {
+        let order = pressure(a).total_cmp(&pressure(b));
+        if falling { order.reverse() } else { order }
+    });
+    out
+}
+
+impl Rows for Equations {
+    fn len(&self) -> usize {
+        self.rows.len()
+    }
+
+    fn class(&self, row: usize) -> u8 {
+        match self.rows[row] {
+            Row::Isentropic(..) | Row::Efficiency(_) | Row::Cop(_) | Row::PressureLoss(..) => 0,
+            Row::Surplus(..) => 1,
+            Row::Mass(..) => 2,
+            Row::Element(..) => 3,
+            Row::Energy(_) => 4,
+        }
+    }
+
+    fn unknowns(&self, row: usize) -> &[VarId] {
+        &self.unknowns[row]
+    }
+
+    fn residual(&self, view: View<'_>, row: usize) -> Result<Dual, Blocked> {
+        let process = &view.model.process;
+        match self.rows[row] {
+            Row::Isentropic(k, before, after) => isentropic(view, k, before, after),
+            Row::Efficiency(k) => {
+                let efficiency = given(process.components[k].given.efficiency)?;
+                let (work_in, work_out, heat_in, _) = transfers(view, k)?;
+                let taken = if process.components[k].kind == Kind::HeatEngine { heat_in } else { work_in };
+                Ok(work_out.minus(&taken.times(&view.var(efficiency)?)))
+            }
+            Row::Cop(k) => {
+                let component = &process.components[k];
+                let cop = given(component.given.cop)?;
+                let (work_in, _, heat_in, heat_out) = transfers(view, k)?;
+                let (useful, drive) = match component.kind {
+                    Kind::HeatPump => (heat_out, work_in),
+                    Kind::AbsorptionMachine => {
+                        let port = |name: &str| {
+                            let flow = component.ports.iter().find(|p| p.0 == name);
+                            let flow = flow.ok_or(Blocked::Missing("the driving and cooled ports"))?;
+                            region::flow_energy(view, flow.1)
+                        };
+                        (port("cooled")?, port("driving")?)
+                    }
+                    _ => (heat_in, work_in),
+                };
+                Ok(useful.minus(&drive.times(&view.var(cop)?)))
+            }
+            Row::PressureLoss(k, i) => {
+                let component = &process.components[k];
+                let (side, loss) = component.given.pressure_loss[i];
+                let ends = component.sides.get(side).and_then(|s| {
+                    let inlet = process.flows[*s.inlets.first()?].material()?.state;
+                    let outlet = process.flows[*s.outlets.first()?].material()?.state;
+                    Some((inlet, outlet))
+                });
+                let (inlet, outlet) = ends.ok_or(Blocked::Missing("an inlet and an outlet"))?;
+                let before = view.property(inlet, Property::Pressure)?;
+                let after = view.property(outlet, Property::Pressure)?;
+                Ok(match loss {
+                    PressureLoss::Difference(v) => after.minus(&before).plus(&view.var(v)?),
+                    PressureLoss::Fraction(v) => after.minus(&before).plus(&before.times(&view.var(v)?)),
+                })
+            }
+            Row::Surplus(s, i) => {
+                let surplus = &process.states[s].surplus[i];
+                Ok(view.property(s, surplus.property)?.minus(&view.var(surplus.var)?))
+            }
+            Row::Mass(k, i) => {
+                let balance = side_mass(view, k, i)?;
+                Ok(balance.residual(view))
+            }
+            Row::Element(k, i, element) => {
+                Ok(region::element(view, side_flows(view, k, i), element as usize)?.residual(view))
+            }
+            Row::Energy(k) => Ok(region::energy(view, &self.components[k])?.residual(view)),
+        }
+    }
+}
+
+fn given(var: Option<VarId>) -> Result<VarId, Blocked> {
+    var.ok_or(Blocked::Missing("a given figure"))
+}
+
+/// Flows of a side with their sign.
+pub fn side_flows<'a>(
+    view: View<'a>,
+    k: ComponentId,
+    side: usize,
+) -> impl Iterator<Item = (FlowId, f64)> + 'a {
+    let side = &view.model.process.components[k].sides[side];
+    side.inlets.iter().map(|&f| (f, 1.0)).chain(side.outlets.iter().map(|&f| (f, -1.0)))
+}
+
+/// Mass of one side; contents of a vessel are counted with its first side.
+///
+/// # Errors
+/// `Blocked`.
+pub fn side_mass(view: View<'_>, k: ComponentId, side: usize) -> Result<region::Balance, Blocked> {
+    let flows: Vec<_> = side_flows(view, k, side).collect();
+    let with_contents = side == 0;
+    let region = Region {
+        inlets: flows.iter().filter(|f| f.1 > 0.0).map(|f| (f.0, k)).collect(),
+        outlets: flows.iter().filter(|f| f.1 < 0.0).map(|f| (f.0, k)).collect(),
+        members: if with_contents { vec![k] } else { Vec::new() },
+    };
+    region::mass(view, &region)
+}
+
+/// Work in, work out, heat in and heat out of a component.
+///
+/// # Errors
+/// `Blocked`.
+pub fn transfers(view: View<'_>, k: ComponentId) -> Result<(Dual, Dual, Dual, Dual), Blocked> {
+    let component = &view.model.process.components[k];
+    let mut out = [Dual::default(), Dual::default(), Dual::default(), Dual::default()];
+    for (flows, inward) in [(&component.inlets, true), (&component.outlets, false)] {
+        for &f in flows {
+            let (index, var) = match view.model.process.flows[f].carried {
+                Carried::Work(v, _) => (usize::from(!inward), v),
+                Carried::Heat(v, _) | Carried::Radiation(v, _) => (2 + usize::from(!inward), v),
+                Carried::Material(_) => continue,
+            };
+            out[index].add_scaled(1.0, &view.var(var)?);
+        }
+    }
+    let [a, b, c, d] = out;
+    Ok((a, b, c, d))
+}
+
+/// The enthalpy after an isentropic change of state from one flow to the pressure of another.
+///
+/// # Errors
+/// `Blocked`.
+pub fn isentropic_enthalpy(view: View<'_>, before: FlowId, after: FlowId) -> Result<Dual, Blocked> {
+    let process = &view.model.process;
+    let missing = Blocked::Missing("material");
+    let first = process.flows[before].material().ok_or(missing.clone())?;
+    let second = process.flows[after].material().ok_or(missing)?;
+    let p = view.property(second.state, Property::Pressure)?;
+    let s = view.property(first.state, Property::Entropy)?;
+    let fluid = process.states[first.state].fluid;
+    let c = match process.states[first.state].c {
+        Some(_) => view.composition(first.state)?.value,
+        None => 0.0,
+    };
+    let end = process.fluids[fluid]
+        .engine
+        .state(Pair::PressureEntropy, p.value, s.value, c)
+        .map_err(|_| Blocked::State(second.state))?;
+    // dh = v dp + T ds.
+    let mut h = p.map(end.enthalpy, end.volume);
+    h.terms.extend(s.terms.iter().map(|&(slot, d)| (slot, d * end.temperature)));
+    Ok(h)
+}
+
+fn isentropic(view: View<'_>, k: ComponentId, before: FlowId, after: FlowId) -> Result<Dual, Blocked> {
+    let process = &view.model.process;
+    let component = &process.components[k];
+    let efficiency = view.var(given(component.given.isentropic_efficiency)?)?;
+    let enthalpy = |f: FlowId| {
+        let m = process.flows[f].material().ok_or(Blocked::Missing("material"))?;
+        view.property(m.state, Property::Enthalpy)
+    };
+    let (h1, h2) = (enthalpy(before)?, enthalpy(after)?);
+    let ideal = isentropic_enthalpy(view, before, after)?.minus(&h1);
+    let actual = h2.minus(&h1);
+    Ok(match component.kind {
+        Kind::Turbine | Kind::Engine => actual.minus(&efficiency.times(&ideal)),
+        _ => actual.times(&efficiency).minus(&ideal),
+    })
+}
+
+/// The unknown variables that a row depends on.
+fn unknowns_of(model: &Model, row: Row) -> Vec<VarId> {
+    let process = &model.process;
+    let mut out = Vec::new();
+    let mut var = |v: VarId| {
+        if matches!(process.vars[v], Var::Unknown { .. }) {
+            out.push(v);
+        }
+    };
+    let property = |s: StateId, property: Property, var: &mut dyn FnMut(VarId)| {
+        let spec = &process.states[s];
+        if let StateForm::Pair(pair) = spec.form {
+            let (a, b) = pair.properties();
+            if property == a {
+                return var(spec.a);
+            }
+            if property == b {
+                return var(spec.b);
+            }
+        }
+        for v in spec.vars() {
+            var(v);
+        }
+    };
+    let mass = |f: FlowId, var: &mut dyn FnMut(VarId)| {
+        if let Some(m) = process.flows[f].material() {
+            var(m.amount);
+            if m.form != AmountForm::Mass {
+                for v in process.states[m.state].vars() {
+                    var(v);
+                }
+            }
+        }
+    };
+    let contents = |k: ComponentId, var: &mut dyn FnMut(VarId), whole: bool| {
+        for c in process.components[k].holdup.iter().flat_map(|h| h.initial.iter().chain(&h.r#final)) {
+            var(c.amount);
+            if whole || c.form != AmountForm::Mass {
+                for v in process.states[c.state].vars() {
+                    var(v);
+                }
+            }
+        }
+    };
+    match row {
+        Row::Isentropic(k, before, after) => {
+            if let Some(v) = process.components[k].given.isentropic_efficiency {
+                var(v);
+            }
+            if let (Some(first), Some(second)) =
+                (process.flows[before].material(), process.flows[after].material())
+            {
+                for v in process.states[first.state].vars() {
+                    var(v);
+                }
+                property(second.state, Property::Enthalpy, &mut var);
+                property(second.state, Property::Pressure, &mut var);
+            }
+        }
+        Row::Efficiency(k) | Row::Cop(k) => {
+            let component = &process.components[k];
+            for f in component.inlets.iter().chain(&component.outlets) {
+                match process.flows[*f].carried {
+                    Carried::Work(v, _) | Carried::Heat(v, _) | Carried::Radiation(v, _) => var(v),
+                    Carried::Material(_) => {}
+                }
+            }
+        }
+        Row::PressureLoss(k, i) => {
+            let component = &process.components[k];
+            let (side, loss) = component.given.pressure_loss[i];
+            let (PressureLoss::Difference(v) | PressureLoss::Fraction(v)) = loss;
+            var(v);
+            if let Some(side) = component.sides.get(side) {
+                for f in side.inlets.first().into_iter().chain(side.outlets.first()) {
+                    if let Some(m) = process.flows[*f].material() {
+                        property(m.state, Property::Pressure, &mut var);
+                    }
+                }
+            }
+        }
+        Row::Surplus(s, i) => {
+            let surplus = &process.states[s].surplus[i];
+            var(surplus.var);
+            for v in process.states[s].vars() {
+                var(v);
+            }
+        }
+        Row::Mass(k, i) => {
+            let side = &process.components[k].sides[i];
+            for &f in side.inlets.iter().chain(&side.outlets) {
+                mass(f, &mut var);
+            }
+            if i == 0 {
+                contents(k, &mut var, false);
+            }
+        }
+        Row::Element(k, i, _) => {
+            let side = &process.components[k].sides[i];
+            for &f in side.inlets.iter().chain(&side.outlets) {
+                mass(f, &mut var);
+                if let Some(m) = process.flows[f].material()
+                    && let Some((_, v)) = process.states[m.state].c
+                {
+                    var(v);
+                }
+            }
+        }
+        Row::Energy(k) => {
+            let component = &process.components[k];
+            for &f in component.inlets.iter().chain(&component.outlets) {
+                match &process.flows[f].carried {
+                    Carried::Material(m) => {
+                        mass(f, &mut var);
+                        property(m.state, Property::Enthalpy, &mut var);
+                        if let Some((_, v)) = process.states[m.state].c {
+                            var(v);
+                        }
+                        for v in m.velocity.into_iter().chain(m.elevation) {
+                            var(v);
+                        }
+                    }
+                    Carried::Work(v, _) | Carried::Heat(v, _) | Carried::Radiation(v, _) => var(*v),
+                }
+            }
+            contents(k, &mut var, true);
+            if let Some(v) = component.holdup.as_ref().and_then(|h| h.boundary_pressure) {
+                var(v);
+            }
+        }
+    }
+    out
+}

@@ -1,0 +1,434 @@
+//! A closed boundary and what crosses it.
+
+use crate::fluid::Property;
+use crate::model::{Blocked, Dual, View, dual::log_mean};
+use crate::process::{Boundary, Carried, ComponentId, Content, FlowId, Process, VarId};
+use smallvec::SmallVec;
+
+/// Standard acceleration of free fall, m/s² (ISO 80000-3, conventional value).
+pub const GRAVITY: f64 = 9.80665;
+
+/// A closed boundary: a component, a group of components, or the plant.
+#[derive(Clone, Debug, Default)]
+pub struct Region {
+    /// Flows that enter, with the component inside that they touch.
+    pub inlets: Vec<(FlowId, ComponentId)>,
+    /// Flows that leave, with the component inside that they touch.
+    pub outlets: Vec<(FlowId, ComponentId)>,
+    /// Components inside.
+    pub members: Vec<ComponentId>,
+}
+
+impl Region {
+    /// The boundary around a set of components.
+    pub fn around(process: &Process, members: &[ComponentId]) -> Region {
+        let mut inside = vec![false; process.components.len()];
+        for &k in members {
+            inside[k] = true;
+        }
+        let mut region = Region { members: members.to_vec(), ..Region::default() };
+        for (f, flow) in process.flows.iter().enumerate() {
+            let from = flow.from.filter(|&k| inside[k]);
+            let to = flow.to.filter(|&k| inside[k]);
+            match (from, to) {
+                (None, Some(k)) => region.inlets.push((f, k)),
+                (Some(k), None) => region.outlets.push((f, k)),
+                _ => {}
+            }
+        }
+        region
+    }
+
+    /// The boundary around one component.
+    pub fn of_component(process: &Process, k: ComponentId) -> Region {
+        let component = &process.components[k];
+        Region {
+            inlets: component.inlets.iter().map(|&f| (f, k)).collect(),
+            outlets: component.outlets.iter().map(|&f| (f, k)).collect(),
+            members: vec![k],
+        }
+    }
+
+    /// Flows across the boundary with their sign (+1 in, −1 out) and the member they touch.
+    pub fn crossings(&self) -> impl Iterator<Item = (FlowId, ComponentId, f64)> + '_ {
+        let inward = self.inlets.iter().map(|&(f, k)| (f, k, 1.0));
+        let outward = self.outlets.iter().map(|&(f, k)| (f, k, -1.0));
+        inward.chain(outward)
+    }
+
+    /// Contents before (+1, as if they entered) and after (−1) a batch.
+    pub fn contents<'a>(
+        &'a self,
+        process: &'a Process,
+    ) -> impl Iterator<Item = (&'a Content, ComponentId, f64)> + 'a {
+        self.members.iter().flat_map(move |&k| {
+            let holdup = process.components[k].holdup.as_ref();
+            let before = holdup.into_iter().flat_map(|h| &h.initial).map(move |c| (c, k, 1.0));
+            let after = holdup.into_iter().flat_map(|h| &h.r#final).map(move |c| (c, k, -1.0));
+            before.chain(after)
+        })
+    }
+}
+
+/// In, out and difference of one conserved quantity over a region.
+#[derive(Clone, Debug, Default)]
+pub struct Balance {
+    /// What enters (content before a batch included).
+    pub inflow: Dual,
+    /// What leaves (content after a batch included).
+    pub outflow: Dual,
+    /// Sum of magnitudes relative to the reference state: the scale of closure.
+    pub throughput: f64,
+    /// Uncertainty of the property formulations: (component, fluid) and derivative.
+    pub formulation: Vec<((ComponentId, usize), f64)>,
+}
+
+impl Balance {
+    /// Inflow minus outflow, with the formulation terms as gradient entries.
+    pub fn residual(&self, view: View<'_>) -> Dual {
+        let mut out = self.inflow.clone();
+        out.add_scaled(-1.0, &self.outflow);
+        for (key, derivative) in &self.formulation {
+            if let Some(&source) = view.model.formulation.get(key) {
+                out.terms.push((view.model.source_slot(source), *derivative));
+            }
+        }
+        out
+    }
+
+    fn add(&mut self, sign: f64, figure: &Dual) {
+        if sign > 0.0 {
+            self.inflow.add_scaled(1.0, figure);
+        } else {
+            self.outflow.add_scaled(1.0, figure);
+        }
+    }
+
+    fn close(&mut self, inward: f64, outward: f64) {
+        self.throughput = inward.max(outward);
+    }
+}
+
+/// Mass over a region, kg/s or kg.
+///
+/// # Errors
+/// The first thing that blocks it.
+pub fn mass(view: View<'_>, region: &Region) -> Result<Balance, Blocked> {
+    let process = &view.model.process;
+    let mut out = Balance::default();
+    for (f, _, sign) in region.crossings() {
+        if process.flows[f].material().is_some() {
+            out.add(sign, &view.mass(f)?);
+        }
+    }
+    for (c, _, sign) in region.contents(process) {
+        out.add(sign, &view.mass_of(c.state, c.amount, c.form)?);
+    }
+    let (i, o) = (out.inflow.value.abs(), out.outflow.value.abs());
+    out.close(i, o);
+    Ok(out)
+}
+
+/// What a flow carries of energy on the datum of the balances, W or J.
+///
+/// # Errors
+/// `Blocked`.
+pub fn flow_energy(view: View<'_>, f: FlowId) -> Result<Dual, Blocked> {
+    match &view.model.process.flows[f].carried {
+        Carried::Material(m) => {
+            Ok(view.mass(f)?.times(&specific_energy(view, m.state, m.velocity, m.elevation)?))
+        }
+        Carried::Heat(q, _) | Carried::Work(q, _) | Carried::Radiation(q, _) => view.var(*q),
+    }
+}
+
+/// h + w²/2 + g z, J/kg.
+fn specific_energy(
+    view: View<'_>,
+    state: usize,
+    velocity: Option<VarId>,
+    elevation: Option<VarId>,
+) -> Result<Dual, Blocked> {
+    let mut theta = view.enthalpy(state)?;
+    if let Some(w) = velocity {
+        let w = view.var(w)?;
+        theta.add_scaled(1.0, &w.map(0.5 * w.value * w.value, w.value));
+    }
+    if let Some(z) = elevation {
+        theta.add_scaled(GRAVITY, &view.var(z)?);
+    }
+    Ok(theta)
+}
+
+/// Energy over a region, W or J. The boundary work of a batch counts as outflow.
+///
+/// # Errors
+/// The first thing that blocks it.
+pub fn energy(view: View<'_>, region: &Region) -> Result<Balance, Blocked> {
+    let process = &view.model.process;
+    let mut out = Balance::default();
+    let (mut inward, mut outward) = (0.0, 0.0);
+    let mut tally = |sign: f64, size: f64| if sign > 0.0 { inward += size } else { outward += size };
+    for (f, _, sign) in region.crossings() {
+        let e = flow_energy(view, f)?;
+        out.add(sign, &e);
+        if let Some(m) = process.flows[f].material() {
+            let relative = relative_enthalpy(view, m.state)?;
+            tally(sign, (view.mass(f)?.value * relative).abs());
+        } else {
+            tally(sign, e.value.abs());
+        }
+    }
+    for (c, _, sign) in region.contents(process) {
+        let mass = view.mass_of(c.state, c.amount, c.form)?;
+        out.add(sign, &mass.times(&view.internal_energy(c.state)?));
+        let relative = relative_enthalpy(view, c.state)?;
+        tally(sign, (mass.value * relative).abs());
+    }
+    add_formulations(view, region, &mut out, relative_enthalpy);
+    for &k in &region.members {
+        if let Some(work) = boundary_work(view, k)? {
+            tally(-1.0, work.value.abs());
+            out.add(-1.0, &work);
+        }
+    }
+    out.close(inward, outward);
+    Ok(out)
+}
+
+/// Work p_b (V₂ − V₁) that the contents of a component do at their moving boundary, J; `None`
+/// where no boundary moves.
+///
+/// # Errors
+/// `Blocked`.
+pub fn boundary_work(view: View<'_>, k: ComponentId) -> Result<Option<Dual>, Blocked> {
+    let Some(holdup) = &view.model.process.components[k].holdup else { return Ok(None) };
+    let Some(p) = holdup.boundary_pressure else { return Ok(None) };
+    let mut change = Dual::default();
+    for (contents, sign) in [(&holdup.initial, -1.0), (&holdup.r#final, 1.0)] {
+        for c in contents {
+            let volume =
+                view.mass_of(c.state, c.amount, c.form)?.times(&view.property(c.state, Property::Volume)?);
+            change.add_scaled(sign, &volume);
+        }
+    }
+    Ok(Some(view.var(p)?.times(&change)))
+}
+
+/// h − h(298.15 K, 1 bar) of a state, J/kg: independent of the datum of the balances.
+fn relative_enthalpy(view: View<'_>, state: usize) -> Result<f64, Blocked> {
+    let fluid = view.model.process.states[state].fluid;
+    let h = view.property(state, Property::Enthalpy)?.value;
+    Ok(h - view.model.scales[fluid].reference.0)
+}
+
+/// Relative standard uncertainty of the formulation at a state (zero where it cannot be had).
+fn formulation_uncertainty(view: View<'_>, state: usize) -> f64 {
+    let fluid = view.model.process.states[state].fluid;
+    view.state(state).map_or(0.0, |s| view.model.process.fluids[fluid].engine.relative_uncertainty(&s.state))
+}
+
+/// Which end of the bracket is taken where a boundary temperature is not given.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Bracket {
+    /// The temperature that makes entropy generation largest.
+    Lenient,
+    /// The one that makes it smallest.
+    Strict,
+}
+
+/// The entropy that a heat flow carries, W/K or J/K, seen from inside the region it enters
+/// (`sign` +1) or leaves (−1); `members` are the components inside.
+pub(super) fn heat_entropy(
+    view: View<'_>,
+    heat: VarId,
+    boundary: Boundary,
+    sign: f64,
+    bracket: Bracket,
+    members: &[ComponentId],
+) -> Result<Dual, Blocked> {
+    let q = view.var(heat)?;
+    let temperature = match boundary {
+        Boundary::Isothermal(t) => view.var(t)?,
+        Boundary::Sliding(a, b) => log_mean(&view.var(a)?, &view.var(b)?),
+        Boundary::Unknown => {
+            // The declared direction decides, or its opposite for a negative amount.
+            let inward = sign * q.value >= 0.0;
+            let (coldest, hottest) = temperature_range(view, members);
+            let ambient = view.model.process.environment.temperature;
+            match (inward, bracket) {
+                (true, Bracket::Lenient) => return Ok(q.map(0.0, 0.0)),
+                (true, Bracket::Strict) => Dual::constant(coldest.unwrap_or(ambient)),
+                (false, Bracket::Lenient) => Dual::constant(hottest.map_or(ambient, |t| t.min(ambient))),
+                (false, Bracket::Strict) => Dual::constant(hottest.unwrap_or(ambient).max(ambient)),
+            }
+        }
+    };
+    Ok(q.times(&temperature.reciprocal()))
+}
+
+/// Coldest and hottest material temperature at the boundary of a set of components.
+fn temperature_range(view: View<'_>, members: &[ComponentId]) -> (Option<f64>, Option<f64>) {
+    let process = &view.model.process;
+    let mut range: (Option<f64>, Option<f64>) = (None, None);
+    let mut take = |state: usize| {
+        if let Ok(t) = view.property(state, Property::Temperature) {
+            range.0 = Some(range.0.map_or(t.value, |m: f64| m.min(t.value)));
+            range.1 = Some(range.1.map_or(t.value, |m: f64| m.max(t.value)));
+        }
+    };
+    for &k in members {
+        let component = &process.components[k];
+        for f in component.inlets.iter().chain(&component.outlets) {
+            if let Some(m) = process.flows[*f].material() {
+                take(m.state);
+            }
+        }
+        for c in component.holdup.iter().flat_map(|h| h.initial.iter().chain(&h.r#final)) {
+            take(c.state);
+        }
+    }
+    range
+}
+
+/// Entropy flux of black-body radiation is 4/3 of rate over source temperature (Planck; Petela,
+/// J. Heat Transfer 86 (1964) 187).
+pub const RADIATION_ENTROPY: f64 = 4.0 / 3.0;
+
+/// Entropy over a region, W/K or J/K: entropy generation is outflow minus inflow.
+///
+/// # Errors
+/// The first thing that blocks it.
+pub fn entropy(view: View<'_>, region: &Region, bracket: Bracket) -> Result<Balance, Blocked> {
+    let process = &view.model.process;
+    let mut out = Balance::default();
+    let (mut inward, mut outward) = (0.0, 0.0);
+    let mut tally = |sign: f64, size: f64| if sign > 0.0 { inward += size } else { outward += size };
+    for (f, _, sign) in region.crossings() {
+        match &process.flows[f].carried {
+            Carried::Material(m) => {
+                let mass = view.mass(f)?;
+                let s = view.entropy(m.state)?;
+                out.add(sign, &mass.times(&s));
+                let relative = relative_entropy(view, m.state)?;
+                tally(sign, (mass.value * relative).abs());
+            }
+            Carried::Heat(q, boundary) => {
+                let s = heat_entropy(view, *q, *boundary, sign, bracket, &region.members)?;
+                tally(sign, s.value.abs());
+                out.add(sign, &s);
+            }
+            Carried::Radiation(q, t) => {
+                let s = view.var(*q)?.times(&view.var(*t)?.reciprocal()).scaled(RADIATION_ENTROPY);
+                tally(sign, s.value.abs());
+                out.add(sign, &s);
+            }
+            Carried::Work(..) => {}
+        }
+    }
+    for (c, _, sign) in region.contents(process) {
+        let mass = view.mass_of(c.state, c.amount, c.form)?;
+        out.add(sign, &mass.times(&view.entropy(c.state)?));
+        let relative = relative_entropy(view, c.state)?;
+        tally(sign, (mass.value * relative).abs());
+    }
+    add_formulations(view, region, &mut out, relative_entropy);
+    out.close(inward, outward);
+    Ok(out)
+}
+
+/// Adds what the property formulations leave uncertain at the flows of every member: the terms of
+/// a union are the sums of its members' terms, so that balances stay additive in every respect.
+///
+/// One relative error is common to all states of a fluid in a component, the largest of theirs, so
+/// that it cancels for equal states.
+fn add_formulations(
+    view: View<'_>,
+    region: &Region,
+    out: &mut Balance,
+    relative: fn(View<'_>, usize) -> Result<f64, Blocked>,
+) {
+    let process = &view.model.process;
+    for &k in &region.members {
+        let component = &process.components[k];
+        let first = out.formulation.len();
+        let mut largest: SmallVec<[f64; 4]> = SmallVec::new();
+        let mut add = |state: usize, mass: Result<Dual, Blocked>, sign: f64| {
+            let (Ok(mass), Ok(figure)) = (mass, relative(view, state)) else { return };
+            let key = (k, process.states[state].fluid);
+            let u = formulation_uncertainty(view, state);
+            match out.formulation[first..].iter().position(|(other, _)| *other == key) {
+                Some(at) => {
+                    out.formulation[first + at].1 += sign * mass.value * figure;
+                    largest[at] = largest[at].max(u);
+                }
+                None => {
+                    out.formulation.push((key, sign * mass.value * figure));
+                    largest.push(u);
+                }
+            }
+        };
+        for (flows, sign) in [(&component.inlets, 1.0), (&component.outlets, -1.0)] {
+            for &f in flows {
+                if let Some(m) = process.flows[f].material() {
+                    add(m.state, view.mass(f), sign);
+                }
+            }
+        }
+        if let Some(holdup) = &component.holdup {
+            for (contents, sign) in [(&holdup.initial, 1.0), (&holdup.r#final, -1.0)] {
+                for c in contents {
+                    add(c.state, view.mass_of(c.state, c.amount, c.form), sign);
+                }
+            }
+        }
+        for ((_, derivative), u) in out.formulation[first..].iter_mut().zip(&largest) {
+            *derivative *= u;
+        }
+    }
+}
+
+fn relative_entropy(view: View<'_>, state: usize) -> Result<f64, Blocked> {
+    let fluid = view.model.process.states[state].fluid;
+    let s = view.property(state, Property::Entropy)?.value;
+    Ok(s - view.model.scales[fluid].reference.1)
+}
+
+/// Whether a region has a heat flow whose boundary temperature is not given.
+pub fn has_open_boundary(process: &Process, region: &Region) -> bool {
+    region
+        .crossings()
+        .any(|(f, _, _)| matches!(process.flows[f].carried, Carried::Heat(_, Boundary::Unknown)))
+}
+
+/// The material flows of a region that come from or go to different substances, element by
+/// element: moles in and out of one element.
+///
+/// # Errors
+/// `Blocked`; `Missing` where a fluid's make-up is not known.
+pub fn element(
+    view: View<'_>,
+    flows: impl Iterator<Item = (FlowId, f64)>,
+    index: usize,
+) -> Result<Balance, Blocked> {
+    let process = &view.model.process;
+    let mut out = Balance::default();
+    for (f, sign) in flows {
+        let Some(m) = process.flows[f].material() else { continue };
+        let spec = &process.states[m.state];
+        let engine = &process.fluids[spec.fluid].engine;
+        let missing = Blocked::Missing("the elements that the fluid consists of");
+        let share = if engine.elements_vary() {
+            let c = view.composition(m.state)?;
+            let (elements, slopes) = engine.elements(c.value).ok_or(missing)?;
+            c.map(elements[index], slopes[index])
+        } else {
+            let (elements, _) = engine.elements(0.0).ok_or(missing)?;
+            Dual::constant(elements[index])
+        };
+        out.add(sign, &view.mass(f)?.times(&share));
+    }
+    let (i, o) = (out.inflow.value.abs(), out.outflow.value.abs());
+    out.close(i, o);
+    Ok(out)
+}

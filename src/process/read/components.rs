@@ -1,0 +1,527 @@
+//! Components: ports, sides, what is given, claimed and held.
+
+use super::kinds::{Direction, Sorting, Stuff};
+use super::values::Class;
+use super::*;
+
+impl<'t> Reader<'t> {
+    /// Reads what is left of every component, after all flows are known.
+    pub(super) fn components_rest(&mut self) {
+        let Some(root) = self.root.get("components") else { return };
+        for (name, node) in root.members() {
+            let Some(&k) = self.component_ids.get(name) else { continue };
+            self.losses(k, node);
+            self.check_ports(k, node);
+            self.ports(k, node);
+            self.sides(k, node);
+            self.given(k, node);
+            self.stated(k, node);
+            self.holdup(k, node);
+            self.purpose(k, node);
+        }
+    }
+
+    fn stuff(&self, f: FlowId) -> Stuff {
+        match self.process.flows[f].carried {
+            Carried::Material(_) => Stuff::Material,
+            Carried::Heat(..) | Carried::Radiation(..) => Stuff::Heat,
+            Carried::Work(..) => Stuff::Work,
+        }
+    }
+
+    fn check_ports(&mut self, k: ComponentId, node: Node<'t>) {
+        let component = &self.process.components[k];
+        let kind = component.kind;
+        let mut found = Vec::new();
+        for (flows, direction) in [(&component.inlets, Direction::In), (&component.outlets, Direction::Out)] {
+            for stuff in [Stuff::Material, Stuff::Heat, Stuff::Work] {
+                let names: Vec<String> = flows
+                    .iter()
+                    .filter(|&&f| self.described_stuff(f) == stuff)
+                    .map(|&f| self.process.flows[f].name.clone())
+                    .collect();
+                found.push((stuff, direction, names));
+            }
+        }
+        let name = component.name.clone();
+        for (stuff, direction, names) in found {
+            let port = kind.info().ports.iter().find(|p| p.stuff == stuff && p.direction == direction);
+            let (min, max) = port.map_or((0, 0), |p| (p.min, p.max));
+            let what = match (stuff, direction) {
+                (Stuff::Material, Direction::In) => "material inlet",
+                (Stuff::Material, Direction::Out) => "material outlet",
+                (Stuff::Heat, Direction::In) => "heat inlet",
+                (Stuff::Heat, Direction::Out) => "heat outlet",
+                (Stuff::Work, Direction::In) => "work inlet",
+                (Stuff::Work, Direction::Out) => "work outlet",
+            };
+            if names.len() < min {
+                self.fault(
+                    node.fault(
+                        Code::MissingPort,
+                        format!("{} \"{name}\" has {} {what}, it needs {min}", kind.name(), names.len()),
+                    )
+                    .hint("a flow names its component in \"from\" or \"to\""),
+                );
+            }
+            if names.len() > max {
+                self.fault(
+                    node.fault(
+                        Code::TooManyPorts,
+                        format!(
+                            "{} \"{name}\" takes at most {max} {what}, but has {}: \"{}\"",
+                            kind.name(),
+                            names.len(),
+                            names.join("\", \"")
+                        ),
+                    )
+                    .hint("a control_volume takes any flows"),
+                );
+            }
+        }
+    }
+
+    /// What a flow is said to carry, whether or not it could be read.
+    fn described_stuff(&self, f: FlowId) -> Stuff {
+        match self.flow_nodes.get(f).and_then(|(_, n)| n.get("kind")).and_then(Node::text) {
+            Some("heat" | "radiation") => Stuff::Heat,
+            Some("work") => Stuff::Work,
+            Some(_) => Stuff::Material,
+            None => self.stuff(f),
+        }
+    }
+
+    fn ports(&mut self, k: ComponentId, node: Node<'t>) {
+        let Some(map) = node.get("ports") else { return };
+        let kind = self.process.components[k].kind;
+        for (role, n) in map.members() {
+            let Some(&known) = kind.info().roles.iter().find(|r| **r == role) else {
+                let hint = if kind.info().roles.is_empty() {
+                    "this kind has no named ports".to_owned()
+                } else {
+                    format!("this kind has the ports {}", kind.info().roles.join(", "))
+                };
+                self.fault(
+                    n.fault(Code::UnknownChoice, format!("{} has no port \"{role}\"", kind.name()))
+                        .hint(hint),
+                );
+                continue;
+            };
+            let items: Vec<Node<'t>> = if n.text().is_some() { vec![n] } else { n.items().collect() };
+            for item in items {
+                if let Some(f) = self.own_flow(k, item) {
+                    self.process.components[k].ports.push((known, f));
+                }
+            }
+        }
+    }
+
+    /// A flow of this component by the name that stands at a place.
+    fn own_flow(&mut self, k: ComponentId, node: Node<'t>) -> Option<FlowId> {
+        let name = node.text().unwrap_or_default();
+        let component = &self.process.components[k];
+        match self.flow_ids.get(name).copied() {
+            Some(f) if component.inlets.contains(&f) || component.outlets.contains(&f) => Some(f),
+            Some(_) => {
+                let message = format!("flow \"{name}\" does not touch \"{}\"", component.name);
+                self.fault(node.fault(Code::DanglingReference, message));
+                None
+            }
+            None => {
+                let near = nearest(name, self.flow_ids.keys().copied());
+                let mut fault = node.fault(Code::DanglingReference, format!("there is no flow \"{name}\""));
+                if !near.is_empty() {
+                    fault = fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")));
+                }
+                self.fault(fault);
+                None
+            }
+        }
+    }
+
+    /// Heat loss and mechanical loss as flows of their own.
+    fn losses(&mut self, k: ComponentId, node: Node<'t>) {
+        let given = node.get("given");
+        let sources = [(Some(node), "heat_loss"), (given, "heat_loss"), (given, "mechanical_loss")];
+        let mut described = false;
+        for (holder, member) in sources {
+            let Some(holder) = holder else { continue };
+            if holder.get(member).is_none() {
+                continue;
+            }
+            let factor = match (self.process.basis, self.process.duration) {
+                (Basis::Amount, Some(seconds)) => seconds,
+                _ => 1.0,
+            };
+            let Some(v) = self.var(holder, member, Dimension::Power, Class::Amount, factor) else { continue };
+            described |= member == "heat_loss";
+            let name = self.process.components[k].name.clone();
+            let flow = self.process.flows.len();
+            self.process.flows.push(Flow {
+                name: format!("{name}.{member}"),
+                pointer: holder.pointer_to(member),
+                from: Some(k),
+                to: None,
+                carried: Carried::Heat(v, Boundary::Unknown),
+                role: Some(Role::Loss),
+                implied: true,
+            });
+            self.process.components[k].outlets.push(flow);
+        }
+        let component = &self.process.components[k];
+        let has_heat =
+            component.inlets.iter().chain(&component.outlets).any(|&f| {
+                matches!(self.process.flows[f].carried, Carried::Heat(..) | Carried::Radiation(..))
+            });
+        self.process.components[k].given.heat_loss = described;
+        if !described && !has_heat {
+            let pointer = node.pointer_to("heat_loss");
+            self.assume(pointer, "heat loss not given: adiabatic");
+        }
+    }
+
+    fn material_flows(&self, k: ComponentId) -> (Vec<FlowId>, Vec<FlowId>) {
+        let component = &self.process.components[k];
+        let pick = |flows: &[FlowId]| -> Vec<FlowId> {
+            flows.iter().copied().filter(|&f| self.stuff(f) == Stuff::Material).collect()
+        };
+        (pick(&component.inlets), pick(&component.outlets))
+    }
+
+    fn fluid_of(&self, f: FlowId) -> Option<FluidId> {
+        self.process.flows[f].material().map(|m| self.process.states[m.state].fluid)
+    }
+
+    /// Sorts the material flows of a component into sides.
+    fn sides(&mut self, k: ComponentId, node: Node<'t>) {
+        let kind = self.process.components[k].kind;
+        self.process.components[k].arrangement = match node.get("arrangement").and_then(Node::text) {
+            Some("counterflow") => Arrangement::Counterflow,
+            Some("parallel") => Arrangement::Parallel,
+            Some("shell_1_2") => Arrangement::Shell12,
+            Some("crossflow") => Arrangement::Crossflow,
+            _ => Arrangement::Unknown,
+        };
+        let (mut inlets, mut outlets) = self.material_flows(k);
+        let mut sides = Vec::new();
+        if let Some(list) = node.get("sides") {
+            for (i, n) in list.items().enumerate() {
+                let mut side = Side::default();
+                for (member, left, taken) in
+                    [("in", &mut inlets, &mut side.inlets), ("out", &mut outlets, &mut side.outlets)]
+                {
+                    for item in n.get(member).into_iter().flat_map(Node::items) {
+                        let Some(f) = self.own_flow(k, item) else { continue };
+                        match left.iter().position(|&x| x == f) {
+                            Some(at) => {
+                                left.remove(at);
+                                taken.push(f);
+                            }
+                            None => self.faults.push(item.fault(
+                                Code::Conflict,
+                                format!(
+                                    "\"{}\" is not a free material flow in this direction",
+                                    item.text().unwrap_or_default()
+                                ),
+                            )),
+                        }
+                    }
+                }
+                if let Some(v) =
+                    self.var(n, "pressure_loss", Dimension::PressureDifference, Class::Parameter, 1.0)
+                {
+                    self.process.components[k].given.pressure_loss.push((i, PressureLoss::Difference(v)));
+                }
+                sides.push(side);
+            }
+        }
+        let own_sides = !sides.is_empty();
+        match kind.info().sorting {
+            Sorting::Single => {
+                if !inlets.is_empty() || !outlets.is_empty() {
+                    sides.push(Side { inlets, outlets, pool: false });
+                }
+            }
+            Sorting::Sides => self.infer_sides(k, node, &mut sides, inlets, outlets, own_sides),
+            Sorting::Pool => self.infer_pool(kind, &mut sides, inlets, outlets),
+        }
+        let holds = node.get("holdup").is_some();
+        if sides.is_empty() && holds {
+            sides.push(Side::default());
+        }
+        for side in &mut sides {
+            let mut fluids: Vec<FluidId> =
+                side.inlets.iter().chain(&side.outlets).filter_map(|&f| self.fluid_of(f)).collect();
+            fluids.sort_unstable();
+            fluids.dedup();
+            side.pool =
+                fluids.len() > 1 || fluids.iter().any(|&f| self.process.fluids[f].engine.elements_vary());
+        }
+        self.process.components[k].sides = sides;
+    }
+
+    /// One side a fluid, where that is unambiguous.
+    fn infer_sides(
+        &mut self,
+        k: ComponentId,
+        node: Node<'t>,
+        sides: &mut Vec<Side>,
+        inlets: Vec<FlowId>,
+        outlets: Vec<FlowId>,
+        own_sides: bool,
+    ) {
+        let mut fluids: Vec<FluidId> = Vec::new();
+        for &f in inlets.iter().chain(&outlets) {
+            if let Some(fluid) = self.fluid_of(f)
+                && !fluids.contains(&fluid)
+            {
+                fluids.push(fluid);
+            }
+        }
+        for fluid in fluids {
+            let of = |flows: &[FlowId]| -> Vec<FlowId> {
+                flows.iter().copied().filter(|&f| self.fluid_of(f) == Some(fluid)).collect()
+            };
+            let side = Side { inlets: of(&inlets), outlets: of(&outlets), pool: false };
+            let name = self.process.components[k].name.clone();
+            let quoted = |flows: &[FlowId]| -> String {
+                let names: Vec<&str> = flows.iter().map(|&f| self.process.flows[f].name.as_str()).collect();
+                format!("\"{}\"", names.join("\", \""))
+            };
+            if side.inlets.is_empty() || side.outlets.is_empty() {
+                let lone = quoted(if side.inlets.is_empty() { &side.outlets } else { &side.inlets });
+                self.fault(
+                    node.fault(
+                        Code::MissingPort,
+                        format!("{lone} at \"{name}\" has no counterpart of the same fluid"),
+                    )
+                    .hint("name the sides: \"sides\": [{\"in\": [\"…\"], \"out\": [\"…\"]}, …]"),
+                );
+            } else if side.inlets.len() > 1 && side.outlets.len() > 1 && !own_sides {
+                let message = format!(
+                    "the sides of \"{name}\" cannot be told apart: {} enter and {} leave",
+                    quoted(&side.inlets),
+                    quoted(&side.outlets)
+                );
+                self.fault(
+                    node.fault(Code::AmbiguousPort, message)
+                        .hint("name the sides: \"sides\": [{\"in\": [\"…\"], \"out\": [\"…\"]}, …]"),
+                );
+            }
+            sides.push(side);
+        }
+    }
+
+    /// Fluids that pass through unchanged keep to themselves; everything else is one pool.
+    fn infer_pool(&self, kind: Kind, sides: &mut Vec<Side>, inlets: Vec<FlowId>, outlets: Vec<FlowId>) {
+        let mut pool = Side { pool: true, ..Side::default() };
+        let through = matches!(
+            kind,
+            Kind::ControlVolume | Kind::Boiler | Kind::Engine | Kind::Storage | Kind::CoolingCoil
+        );
+        let varies =
+            |f: FlowId| self.fluid_of(f).is_some_and(|x| self.process.fluids[x].engine.elements_vary());
+        let any_varies = inlets.iter().chain(&outlets).any(|&f| varies(f));
+        let mut done: Vec<FluidId> = Vec::new();
+        for &f in inlets.iter().chain(&outlets) {
+            let Some(fluid) = self.fluid_of(f) else { continue };
+            if done.contains(&fluid) {
+                continue;
+            }
+            done.push(fluid);
+            let of = |flows: &[FlowId]| -> Vec<FlowId> {
+                flows.iter().copied().filter(|&x| self.fluid_of(x) == Some(fluid)).collect()
+            };
+            let (i, o) = (of(&inlets), of(&outlets));
+            let meets_air = any_varies && matches!(self.process.fluids[fluid].substance, Substance::Water);
+            if through && !i.is_empty() && !o.is_empty() && !varies(f) && !meets_air {
+                sides.push(Side { inlets: i, outlets: o, pool: false });
+            } else {
+                pool.inlets.extend(i);
+                pool.outlets.extend(o);
+            }
+        }
+        if !pool.inlets.is_empty() || !pool.outlets.is_empty() {
+            sides.push(pool);
+        }
+    }
+
+    fn given(&mut self, k: ComponentId, node: Node<'t>) {
+        let Some(given) = node.get("given") else { return };
+        let kind = self.process.components[k].kind;
+        for (member, n) in given.members() {
+            let base = if member == "pressure_loss_fraction" { "pressure_loss" } else { member };
+            if !kind.info().given.contains(&base) {
+                let takes = kind.info().given.join(", ");
+                self.fault(
+                    n.fault(Code::Conflict, format!("{} does not take \"{member}\"", kind.name())).hint(
+                        if takes.is_empty() {
+                            "this kind takes nothing under \"given\"".to_owned()
+                        } else {
+                            format!("it takes {takes}")
+                        },
+                    ),
+                );
+            }
+        }
+        for (member, upper) in [("isentropic_efficiency", 1e3), ("efficiency", 1e3), ("cop", 1e4)] {
+            let Some(v) = self.var(given, member, Dimension::Fraction, Class::Parameter, 1.0) else {
+                continue;
+            };
+            let value = match &self.process.vars[v] {
+                Var::Given(a) => a.value(&self.inputs),
+                Var::Unknown { .. } => continue,
+            };
+            if !(value > 0.0 && value < upper)
+                && let Some(n) = given.get(member)
+            {
+                self.fault(n.fault(Code::OutOfBounds, format!("\"{member}\" must be positive")));
+                continue;
+            }
+            let slot = &mut self.process.components[k].given;
+            match member {
+                "isentropic_efficiency" => slot.isentropic_efficiency = Some(v),
+                "efficiency" => slot.efficiency = Some(v),
+                _ => slot.cop = Some(v),
+            }
+        }
+        if self.process.components[k].given.isentropic_efficiency.is_some()
+            && self.process.components[k].sides.first().is_none_or(|s| s.inlets.len() != 1)
+            && let Some(n) = given.get("isentropic_efficiency")
+        {
+            self.fault(n.fault(
+                Code::Conflict,
+                "an isentropic efficiency needs exactly one inlet of the working fluid",
+            ));
+        }
+        if let Some(v) =
+            self.var(given, "pressure_loss", Dimension::PressureDifference, Class::Parameter, 1.0)
+        {
+            self.process.components[k].given.pressure_loss.push((0, PressureLoss::Difference(v)));
+        }
+        if let Some(v) = self.var(given, "pressure_loss_fraction", Dimension::Fraction, Class::Parameter, 1.0)
+        {
+            self.process.components[k].given.pressure_loss.push((0, PressureLoss::Fraction(v)));
+        }
+    }
+
+    fn stated(&mut self, k: ComponentId, node: Node<'t>) {
+        let Some(stated) = node.get("stated_performance") else { return };
+        for (member, what, dimension) in [
+            ("isentropic_efficiency", StatedFigure::IsentropicEfficiency, Dimension::Fraction),
+            ("efficiency", StatedFigure::Efficiency, Dimension::Fraction),
+            ("cop", StatedFigure::Cop, Dimension::Fraction),
+            ("exergy_efficiency", StatedFigure::ExergyEfficiency, Dimension::Fraction),
+            ("power", StatedFigure::Power, Dimension::Power),
+            ("duty", StatedFigure::Duty, Dimension::Power),
+        ] {
+            if let Some(var) = self.var(stated, member, dimension, Class::Claim, 1.0) {
+                let pointer = stated.pointer_to(member);
+                self.process.components[k].stated.push(Stated { what, var, pointer });
+            }
+        }
+    }
+
+    fn holdup(&mut self, k: ComponentId, node: Node<'t>) {
+        let Some(holdup) = node.get("holdup") else { return };
+        if self.process.basis == Basis::Rate {
+            self.fault(
+                holdup
+                    .fault(Code::Conflict, "a holdup needs \"basis\": \"amount\"")
+                    .hint("before and after belong to a batch"),
+            );
+            return;
+        }
+        let boundary_pressure = self.var(holdup, "boundary_pressure", Dimension::Pressure, Class::State, 1.0);
+        let name = self.process.components[k].name.clone();
+        // Contents that end in equilibrium share one unknown temperature.
+        let mut shared = None;
+        let mut read = |reader: &mut Self, member: &str| -> Vec<Content> {
+            let mut out = Vec::new();
+            for (i, n) in holdup.get(member).into_iter().flat_map(Node::items).enumerate() {
+                let Some(fluid) = n.get("fluid").and_then(|f| reader.fluid(f)) else { continue };
+                let what = format!("\"{name}\" {member} content {}", i + 1);
+                let Some(state) = reader.content_state(n, fluid, &what, &mut shared) else { continue };
+                let (amount, form) = reader.amount(n, &name, "mass held in");
+                out.push(Content { state, amount, form });
+            }
+            out
+        };
+        let initial = read(self, "initial");
+        let r#final = read(self, "final");
+        self.process.components[k].holdup = Some(Holdup { initial, r#final, boundary_pressure });
+    }
+
+    /// The state of a content. A content that gives neither temperature nor another second
+    /// property takes the one unknown temperature that all such contents share.
+    fn content_state(
+        &mut self,
+        node: Node<'t>,
+        fluid: FluidId,
+        what: &str,
+        shared: &mut Option<VarId>,
+    ) -> Option<StateId> {
+        let second = ["temperature", "enthalpy", "entropy", "quality", "superheat", "subcooling", "phase"];
+        let dense = matches!(self.process.fluids[fluid].substance, Substance::Inert | Substance::Water);
+        if second.iter().any(|m| node.get(m).is_some()) || !dense {
+            return self.state(node, fluid, what, false, None);
+        }
+        let p = match self.var(node, "pressure", Dimension::Pressure, Class::State, 1.0) {
+            Some(p) => p,
+            None => {
+                self.assume(node.pointer(), "pressure of a content not given: ambient pressure");
+                self.ambient().1
+            }
+        };
+        let t = match *shared {
+            Some(t) => t,
+            None => {
+                let t = self.unknown(format!("temperature of {what}"), Nature::Temperature, node.pointer());
+                *shared = Some(t);
+                t
+            }
+        };
+        self.process.states.push(StateSpec {
+            fluid,
+            form: StateForm::Pair(Pair::PressureTemperature),
+            a: p,
+            b: t,
+            c: None,
+            surplus: Vec::new(),
+            phase: None,
+            pointer: node.pointer(),
+            ambient: false,
+            wet_ambiguous: false,
+        });
+        Some(self.process.states.len() - 1)
+    }
+
+    fn purpose(&mut self, k: ComponentId, node: Node<'t>) {
+        let Some(purpose) = node.get("purpose") else { return };
+        let mut lists = [Vec::new(), Vec::new()];
+        for (member, list) in ["fuel", "product"].into_iter().zip(&mut lists) {
+            for item in purpose.get(member).into_iter().flat_map(Node::items) {
+                let text = item.text().unwrap_or_default();
+                let (sign, name) = match text.strip_prefix('-') {
+                    Some(rest) => (-1.0, rest.trim()),
+                    None => (1.0, text),
+                };
+                let component = &self.process.components[k];
+                let found = self
+                    .flow_ids
+                    .get(name)
+                    .copied()
+                    .filter(|f| component.inlets.contains(f) || component.outlets.contains(f));
+                match found {
+                    Some(f) => list.push((f, sign)),
+                    None => self.fault(item.fault(
+                        Code::DanglingReference,
+                        format!("there is no flow \"{name}\" at this component"),
+                    )),
+                }
+            }
+        }
+        let [fuel, product] = lists;
+        self.process.components[k].purpose = Some(Purpose { fuel, product });
+    }
+}
