@@ -1,11 +1,11 @@
 //! Fluids by name.
 
-use super::Engine;
 use super::humid_air::HumidAir;
 use super::ideal_gas::IdealGas;
 use super::incompressible::{self, Incompressible};
 use super::solution::Solution;
 use super::steam::Steam;
+use super::{Engine, real_fluid};
 use crate::diagnostic::nearest;
 use std::sync::{Arc, OnceLock};
 
@@ -59,6 +59,10 @@ pub fn by_name(name: &str) -> Result<(Substance, Arc<dyn Engine>), Vec<String>> 
         }
         _ => {}
     }
+    let near = match real_fluid::by_name(name) {
+        Ok(fluid) => return Ok((Substance::Pure, fluid.clone())),
+        Err(near) => near,
+    };
     if name.eq_ignore_ascii_case("ash")
         && let Ok(ash) = Incompressible::ash()
     {
@@ -67,6 +71,13 @@ pub fn by_name(name: &str) -> Result<(Substance, Arc<dyn Engine>), Vec<String>> 
     if let Some(medium) = Incompressible::listed(name).or_else(|| Incompressible::species(name)) {
         return Ok((Substance::Inert, Arc::new(medium)));
     }
-    let known = BUILT_IN.iter().copied().chain(incompressible::LISTED.iter().map(|m| m.name));
-    Err(nearest(name, known).into_iter().map(str::to_owned).collect())
+    let mut known: Vec<&str> = near;
+    known.extend(nearest(name, names()));
+    known.dedup();
+    Err(known.into_iter().map(str::to_owned).collect())
+}
+
+/// Every name that [`by_name`] knows by heart, for the catalogue.
+pub fn names() -> impl Iterator<Item = &'static str> {
+    BUILT_IN.into_iter().chain(incompressible::LISTED.iter().map(|medium| medium.name))
 }

@@ -136,7 +136,11 @@ impl<'t> Reader<'t> {
             "humid_air" => self.named_fluid(node, "humid air").map(|named| named.1),
             "pure" => {
                 let n = node.get("name")?;
-                self.named_fluid(n, n.text().unwrap_or_default()).map(|named| named.1)
+                let name = n.text().unwrap_or_default();
+                match crate::fluid::real_fluid::by_name(name) {
+                    Ok(fluid) => Some((Substance::Pure, fluid.clone(), None)),
+                    Err(_) => self.named_fluid(n, name).map(|named| named.1),
+                }
             }
             "ideal_gas" => {
                 let gas = Arc::new(self.ideal_gas(node)?);
