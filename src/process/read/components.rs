@@ -237,10 +237,8 @@ impl<'t> Reader<'t> {
             engine: Arc::new(ash),
             substance: Substance::Inert,
         });
-        let (p, t) = (
-            self.constant(crate::model::REFERENCE_PRESSURE),
-            self.constant(crate::model::REFERENCE_TEMPERATURE),
-        );
+        // The state in which the ash of a fuel has neither enthalpy nor entropy.
+        let (p, t) = (self.constant(1e5), self.constant(298.15));
         let amount = self.unknown(format!("mass flow of \"{name}\""), Nature::Mass, node.pointer());
         self.process.states.push(StateSpec {
             fluid,

@@ -10,6 +10,8 @@ use crate::fluid::ideal_gas::{IdealGas, Species, find_species};
 use crate::fluid::solution::{Glycol, GlycolKind, Solution};
 use crate::fluid::{Elements, Engine};
 
+type MakeReading = fn(f64) -> Reading;
+
 /// Excess of oxidant at which a gas is set up whose air ratio is left to be solved for.
 const FIRST_EXCESS: f64 = 0.2;
 
@@ -19,7 +21,7 @@ impl<'t> Reader<'t> {
     pub(super) fn combustion_gas(&mut self, node: Node<'t>) -> Option<Medium> {
         let fuel = self.burnt_fuel(node.get("fuel")?)?;
         let oxidant = self.oxidant(node.get("oxidant")?)?;
-        let kinds: [(&str, fn(f64) -> Reading); 4] = [
+        let kinds: [(&str, MakeReading); 4] = [
             ("o2_dry", Reading::OxygenDry),
             ("o2_wet", Reading::OxygenWet),
             ("co2_dry", Reading::CarbonDioxideDry),
