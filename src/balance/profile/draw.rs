@@ -1,0 +1,154 @@
+//! What a drawn profile shows beyond the figures that decide.
+
+use super::composite::{self, Curve};
+use super::pair::{Pair, Place};
+use super::Profile;
+use crate::model::{Blocked, View};
+
+/// Most points of a drawn profile.
+pub const MOST_POINTS: usize = 200;
+
+/// A drawn profile.
+#[derive(Clone, Debug, Default)]
+pub struct Drawing {
+    /// Share of the duty, temperature of what gives heat, of what takes it (K), in order of the
+    /// share.
+    pub points: Vec<(f64, f64, f64)>,
+    /// ∫ dq/ΔT, W/K or J/K, where heat runs downhill all along and the duties agree.
+    pub conductance: Option<f64>,
+    /// Log-mean of the differences at the two ends, K, where both are positive.
+    pub log_mean_difference: Option<f64>,
+    /// Duty as share of that of an exchanger of infinite area with the same streams at their
+    /// inlets, two streams only.
+    pub effectiveness: Option<f64>,
+}
+
+impl Profile {
+    fn pair<'a>(&'a self, view: View<'a>) -> Option<Pair<'a>> {
+        match (&self.hot[..], &self.cold[..]) {
+            ([hot], [cold]) => Some(Pair { view, hot, cold, parallel: self.parallel }),
+            _ => None,
+        }
+    }
+
+    /// The profile refined for drawing: between its points straight lines are off by less than a
+    /// tenth of the temperature difference, at most 0.1 K, as far as [`MOST_POINTS`] allows.
+    ///
+    /// # Errors
+    /// A state outside a formulation's range.
+    pub fn draw(&self, view: View<'_>) -> Result<Drawing, Blocked> {
+        let points = match self.pair(view) {
+            Some(pair) => refined(&pair)?,
+            None => {
+                let (hot, cold) = (Curve::new(view, &self.hot)?, Curve::new(view, &self.cold)?);
+                let mut points = Vec::new();
+                for x in composite::bends(&hot, &cold) {
+                    let (h, c) = (hot.at(x), cold.at(x));
+                    points.push((x, h.0, c.0));
+                    if h.1 > h.0 || c.1 > c.0 {
+                        points.push((x, h.1, c.1));
+                    }
+                }
+                thinned(points)
+            }
+        };
+        let mut conductance = (self.balanced && !points.is_empty()).then_some(0.0);
+        for (a, b) in points.iter().zip(points.iter().skip(1)) {
+            let (d0, d1) = (a.1 - a.2, b.1 - b.2);
+            let downhill = d0 > 0.0 && d1 > 0.0;
+            conductance = conductance
+                .filter(|_| downhill)
+                .map(|sum| sum + self.duty.value * (b.0 - a.0) / log_mean(d0, d1));
+        }
+        let ends = points.first().zip(points.last()).map(|(a, b)| (a.1 - a.2, b.1 - b.2));
+        let log_mean_difference = ends.filter(|d| d.0 > 0.0 && d.1 > 0.0).map(|d| log_mean(d.0, d.1));
+        let effectiveness = self.largest_duty(view).map(|q| self.duty.value / q);
+        Ok(Drawing { points, conductance, log_mean_difference, effectiveness })
+    }
+
+    /// The duty of an exchanger of infinite area whose streams enter as they do here and leave at
+    /// the same pressures, W or J: the largest for which the curves do not cross. `None` for more
+    /// than two streams, for duties that differ, and where it cannot be had within the range of
+    /// the formulations.
+    pub fn largest_duty(&self, view: View<'_>) -> Option<f64> {
+        let pair = self.pair(view)?;
+        if !self.balanced {
+            return None;
+        }
+        // `None` where a state leaves its formulation.
+        let lawful = |factor: f64| -> Option<bool> {
+            let (hot, cold) = (pair.hot.with_duty(view, factor)?, pair.cold.with_duty(view, factor)?);
+            let changed = Pair { hot: &hot, cold: &cold, ..pair };
+            Some(changed.least().ok()? >= 0.0)
+        };
+        let (mut low, mut high) = if self.pinch.difference.value >= 0.0 { (1.0, 2.0) } else { (0.0, 1.0) };
+        if low > 0.0 {
+            while lawful(high).unwrap_or(false) {
+                (low, high) = (high, 2.0 * high);
+                if high > 1e6 {
+                    return None;
+                }
+            }
+        }
+        for _ in 0..50 {
+            let middle = 0.5 * (low + high);
+            if high - low < 1e-9 * high {
+                break;
+            }
+            if lawful(middle).unwrap_or(false) { low = middle } else { high = middle }
+        }
+        // A bound by the range of a formulation is no bound by a law.
+        lawful(high)?;
+        (low > 0.0).then_some(low * self.duty.value)
+    }
+}
+
+fn log_mean(a: f64, b: f64) -> f64 {
+    let r = (b - a) / a;
+    if r.abs() < 1e-5 { 0.5 * (a + b) } else { (b - a) / (b / a).ln() }
+}
+
+/// Nodes of a pair, halved until straight.
+fn refined(pair: &Pair<'_>) -> Result<Vec<(f64, f64, f64)>, Blocked> {
+    let nodes = pair.nodes()?;
+    let mut out: Vec<Place> = nodes;
+    // Breadth first, so that a bound on the number of points is shared fairly.
+    let mut rough: Vec<bool> = vec![true; out.len().saturating_sub(1)];
+    while rough.iter().any(|&r| r) && out.len() < MOST_POINTS {
+        let mut next = Vec::with_capacity(2 * out.len());
+        let mut still = Vec::with_capacity(2 * out.len());
+        let mut room = MOST_POINTS - out.len();
+        for (i, place) in out.iter().enumerate() {
+            next.push(*place);
+            let Some(b) = out.get(i + 1) else { continue };
+            let halve = rough.get(i).copied().unwrap_or(false) && room > 0 && b.x - place.x > 1e-6;
+            if !halve {
+                still.push(false);
+                continue;
+            }
+            let middle = pair.at(0.5 * (place.x + b.x))?;
+            let allowed = 0.1 * (middle.hot - middle.cold).abs().clamp(0.01, 1.0);
+            let off = (middle.hot - 0.5 * (place.hot + b.hot))
+                .abs()
+                .max((middle.cold - 0.5 * (place.cold + b.cold)).abs());
+            if off > allowed {
+                next.push(middle);
+                still.extend([true, true]);
+                room -= 1;
+            } else {
+                still.push(false);
+            }
+        }
+        (out, rough) = (next, still);
+    }
+    Ok(out.iter().map(|p| (p.x, p.hot, p.cold)).collect())
+}
+
+/// Every so many points of a long list, its ends included.
+fn thinned(points: Vec<(f64, f64, f64)>) -> Vec<(f64, f64, f64)> {
+    let n = points.len();
+    if n <= MOST_POINTS {
+        return points;
+    }
+    (0..MOST_POINTS).filter_map(|i| points.get(i * (n - 1) / (MOST_POINTS - 1)).copied()).collect()
+}
