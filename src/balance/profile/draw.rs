@@ -1,9 +1,9 @@
 //! What a drawn profile shows beyond the figures that decide.
 
+use super::Profile;
 use super::composite::{self, Curve};
 use super::pair::{Pair, Place};
-use super::Profile;
-use crate::model::{Blocked, View};
+use crate::model::{Blocked, Dual, Slot, View};
 
 /// Most points of a drawn profile.
 pub const MOST_POINTS: usize = 200;
@@ -62,24 +62,25 @@ impl Profile {
         }
         let ends = points.first().zip(points.last()).map(|(a, b)| (a.1 - a.2, b.1 - b.2));
         let log_mean_difference = ends.filter(|d| d.0 > 0.0 && d.1 > 0.0).map(|d| log_mean(d.0, d.1));
-        let effectiveness = self.largest_duty(view).map(|q| self.duty.value / q);
+        let effectiveness = self.room(view).map(|factor| 1.0 / factor.value);
         Ok(Drawing { points, conductance, log_mean_difference, effectiveness })
     }
 
-    /// The duty of an exchanger of infinite area whose streams enter as they do here and leave at
-    /// the same pressures, W or J: the largest for which the curves do not cross. `None` for more
-    /// than two streams, for duties that differ, and where it cannot be had within the range of
-    /// the formulations.
-    pub fn largest_duty(&self, view: View<'_>) -> Option<f64> {
+    /// What the duty would have to be multiplied by for the curves to touch: the exchanger of
+    /// infinite area whose streams enter as they do here and leave at the same pressures. With
+    /// its gradient. `None` for more than two streams, for duties that differ, and where it cannot
+    /// be had within the range of the formulations.
+    pub fn room(&self, view: View<'_>) -> Option<Dual> {
         let pair = self.pair(view)?;
         if !self.balanced {
             return None;
         }
+        let changed =
+            |factor: &Dual| Some((pair.hot.with_duty(view, factor)?, pair.cold.with_duty(view, factor)?));
         // `None` where a state leaves its formulation.
         let lawful = |factor: f64| -> Option<bool> {
-            let (hot, cold) = (pair.hot.with_duty(view, factor)?, pair.cold.with_duty(view, factor)?);
-            let changed = Pair { hot: &hot, cold: &cold, ..pair };
-            Some(changed.least().ok()? >= 0.0)
+            let (hot, cold) = changed(&Dual::constant(factor))?;
+            Some(Pair { hot: &hot, cold: &cold, ..pair }.least().ok()? >= 0.0)
         };
         let (mut low, mut high) = if self.pinch.difference.value >= 0.0 { (1.0, 2.0) } else { (0.0, 1.0) };
         if low > 0.0 {
@@ -90,16 +91,27 @@ impl Profile {
                 }
             }
         }
-        for _ in 0..50 {
+        for _ in 0..60 {
             let middle = 0.5 * (low + high);
-            if high - low < 1e-9 * high {
+            if high - low < 1e-12 * high {
                 break;
             }
             if lawful(middle).unwrap_or(false) { low = middle } else { high = middle }
         }
-        // A bound by the range of a formulation is no bound by a law.
+        // A bound by the range of a formulation is no bound by a law; nor is there room where the
+        // streams enter crossed.
         lawful(high)?;
-        (low > 0.0).then_some(low * self.duty.value)
+        if low == 0.0 {
+            return None;
+        }
+        // D(factor, inputs) = 0 fixes the factor; it goes by a slot of its own.
+        let (hot, cold) = changed(&Dual::slot(Slot::MAX, low))?;
+        let (pinch, _) = Pair { hot: &hot, cold: &cold, ..pair }.judge().ok()?;
+        let (own, mut others): (Vec<_>, Vec<_>) =
+            pinch.difference.terms.into_iter().partition(|t| t.0 == Slot::MAX);
+        let slope: f64 = own.iter().map(|t| t.1).sum();
+        others.iter_mut().for_each(|t| t.1 /= -slope);
+        slope.is_normal().then(|| Dual { value: low, terms: others.into() })
     }
 }
 

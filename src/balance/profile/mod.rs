@@ -178,7 +178,9 @@ fn passages(view: View<'_>, k: ComponentId) -> Result<Vec<Passage>, Blocked> {
                     Boundary::Sliding(a, b) => (view.var(a)?, view.var(b)?),
                     Boundary::Unknown if q.value == 0.0 => continue,
                     Boundary::Unknown => {
-                        return Err(Blocked::Missing("the temperature at which the heat crosses the boundary"));
+                        return Err(Blocked::Missing(
+                            "the temperature at which the heat crosses the boundary",
+                        ));
                     }
                 };
                 out.extend(Passage::body(q, entering, a, b));

@@ -29,7 +29,7 @@ pub(super) struct Place {
 }
 
 impl Place {
-    fn difference(&self) -> f64 {
+    fn gap(&self) -> f64 {
         self.hot - self.cold
     }
 }
@@ -93,7 +93,7 @@ impl Pair<'_> {
     /// Nodes, and between them the middle and, where the difference has a minimum inside, that.
     fn places(&self) -> Result<Vec<Place>, Blocked> {
         let nodes = self.nodes()?;
-        let lowest = nodes.iter().map(Place::difference).fold(f64::INFINITY, f64::min);
+        let lowest = nodes.iter().map(Place::gap).fold(f64::INFINITY, f64::min);
         let mut out = Vec::with_capacity(3 * nodes.len());
         for (left, right) in nodes.iter().zip(nodes.iter().skip(1)) {
             out.push(*left);
@@ -102,7 +102,7 @@ impl Pair<'_> {
                 continue;
             }
             let middle = self.at(left.x + 0.5 * width)?;
-            let (a, b, c) = (left.difference(), middle.difference(), right.difference());
+            let (a, b, c) = (left.gap(), middle.gap(), right.gap());
             let bend = a - 2.0 * b + c;
             // Vertex of the parabola through the three differences.
             let vertex = 0.5 + 0.25 * (a - c) / bend;
@@ -134,7 +134,7 @@ impl Pair<'_> {
             let wide_right = b - best.x > best.x - a;
             let x = if wide_right { best.x + GOLDEN * (b - best.x) } else { best.x - GOLDEN * (best.x - a) };
             let new = self.at(x)?;
-            let (inner, outer) = if new.difference() < best.difference() { (new, best) } else { (best, new) };
+            let (inner, outer) = if new.gap() < best.gap() { (new, best) } else { (best, new) };
             if outer.x < inner.x {
                 a = outer.x;
             } else {
@@ -151,15 +151,12 @@ impl Pair<'_> {
     /// A state outside the formulation's range.
     pub fn judge(&self) -> Result<(Pinch, Option<Crossing>), Blocked> {
         let places = self.places()?;
-        let lowest = places
-            .iter()
-            .enumerate()
-            .min_by(|a, b| a.1.difference().total_cmp(&b.1.difference()))
-            .map(|(i, p)| (i, *p));
+        let lowest =
+            places.iter().enumerate().min_by(|a, b| a.1.gap().total_cmp(&b.1.gap())).map(|(i, p)| (i, *p));
         let Some((index, place)) = lowest else { return Err(BEYOND) };
         let difference = self.difference(&place)?;
         let pinch = Pinch { difference, hot: place.hot, cold: place.cold, place: place.x };
-        let crossing = if place.difference() < 0.0 { Some(self.crossing(&places, index)?) } else { None };
+        let crossing = if place.gap() < 0.0 { Some(self.crossing(&places, index)?) } else { None };
         Ok((pinch, crossing))
     }
 
@@ -168,7 +165,7 @@ impl Pair<'_> {
     /// # Errors
     /// A state outside the formulation's range.
     pub fn least(&self) -> Result<f64, Blocked> {
-        Ok(self.places()?.iter().map(Place::difference).fold(f64::INFINITY, f64::min))
+        Ok(self.places()?.iter().map(Place::gap).fold(f64::INFINITY, f64::min))
     }
 
     /// The difference at a place with its gradient, the motion of a kink included.
@@ -178,18 +175,18 @@ impl Pair<'_> {
         let (hot, cold) = match place.origin {
             Origin::Hot(i) => {
                 let kink = self.hot.kinks.get(i).ok_or(BEYOND)?;
-                let (y, spot) = self.hot.dual_kink(view, kink)?;
-                (spot.t, self.cold.dual_at(view, &turn(&y))?.t)
+                let (y, t) = self.hot.dual_kink(view, kink)?;
+                (t, self.cold.dual_at(view, &turn(&y))?.t)
             }
             Origin::Cold(i) => {
                 let kink = self.cold.kinks.get(i).ok_or(BEYOND)?;
-                let (y, spot) = self.cold.dual_kink(view, kink)?;
-                (self.hot.dual_at(view, &turn(&y))?, spot.t)
+                let (y, t) = self.cold.dual_kink(view, kink)?;
+                (self.hot.dual_at(view, &turn(&y))?.t, t)
             }
             // Between kinks the difference is stationary, at the ends the place is fixed.
             Origin::End | Origin::Free => {
                 let x = Dual::constant(place.x);
-                (self.hot.dual_at(view, &turn(&x))?, self.cold.dual_at(view, &x)?.t)
+                (self.hot.dual_at(view, &turn(&x))?.t, self.cold.dual_at(view, &x)?.t)
             }
         };
         Ok(hot.minus(&cold))
@@ -197,8 +194,8 @@ impl Pair<'_> {
 
     /// The section around the least difference in which the curves are crossed.
     fn crossing(&self, places: &[Place], lowest: usize) -> Result<Crossing, Blocked> {
-        let left = places[..lowest].iter().rposition(|p| p.difference() >= 0.0);
-        let right = places[lowest..].iter().position(|p| p.difference() >= 0.0).map(|i| lowest + i);
+        let left = places[..lowest].iter().rposition(|p| p.gap() >= 0.0);
+        let right = places[lowest..].iter().position(|p| p.gap() >= 0.0).map(|i| lowest + i);
         let from = match left {
             Some(i) => self.root(&places[i], &places[i + 1])?,
             None => 0.0,
@@ -214,13 +211,13 @@ impl Pair<'_> {
     /// Where the difference vanishes between two places of opposite sign, by regula falsi with
     /// halved weights (Illinois).
     fn root(&self, a: &Place, b: &Place) -> Result<f64, Blocked> {
-        let (mut x0, mut f0, mut x1, mut f1) = (a.x, a.difference(), b.x, b.difference());
+        let (mut x0, mut f0, mut x1, mut f1) = (a.x, a.gap(), b.x, b.gap());
         for _ in 0..60 {
             if (x1 - x0).abs() < 1e-12 || f1 == f0 {
                 break;
             }
             let x = x1 - f1 * (x1 - x0) / (f1 - f0);
-            let f = self.at(x)?.difference();
+            let f = self.at(x)?.gap();
             if f.signum() != f1.signum() {
                 (x0, f0) = (x1, f1);
             } else {

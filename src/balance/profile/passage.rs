@@ -1,6 +1,6 @@
 //! One stream on its way through an exchanger: temperature and entropy over its own share of duty.
 
-use crate::fluid::{Engine, Pair, Phase, Property, State};
+use crate::fluid::{Engine, Pair, Phase, Property, State, state::PROPERTIES};
 use crate::model::{Blocked, Dual, View};
 use crate::process::{FlowId, FluidId};
 
@@ -37,7 +37,14 @@ struct End {
 
 #[derive(Clone, Debug)]
 enum Way {
-    Material { fluid: FluidId, composition: Dual, mass: Dual, inlet: Box<End>, outlet: Box<End>, phases: [Phase; 2] },
+    Material {
+        fluid: FluidId,
+        composition: Dual,
+        mass: Dual,
+        inlet: Box<End>,
+        outlet: Box<End>,
+        phases: [Phase; 2],
+    },
     /// A body at the boundary between two temperatures (equal for a reservoir).
     Body { inlet: Dual, outlet: Dual },
 }
@@ -69,7 +76,8 @@ impl Passage {
         };
         let (mut first, mut last) = (state(inlet)?, state(outlet)?);
         let fluid = process.states[first].fluid;
-        let changes = Blocked::Missing("the way along which a mixture that changes composition gives off heat");
+        let changes =
+            Blocked::Missing("the way along which a mixture that changes composition gives off heat");
         if process.states[last].fluid != fluid {
             return Err(changes);
         }
@@ -127,26 +135,36 @@ impl Passage {
         Some(Passage { duty, hot, kinks: Vec::new(), way: Way::Body { inlet, outlet } })
     }
 
-    /// The same stream from the same inlet with its duty multiplied, without gradients; `None`
-    /// where it leaves the formulation.
-    pub fn with_duty(&self, view: View<'_>, factor: f64) -> Option<Passage> {
-        let mut out = Passage { kinks: Vec::new(), ..self.clone() };
-        out.duty = Dual::constant(self.duty.value * factor);
-        match &mut out.way {
+    /// The same stream from the same inlet with its duty multiplied; `None` where it leaves the
+    /// formulation.
+    pub fn with_duty(&self, view: View<'_>, factor: &Dual) -> Option<Passage> {
+        let duty = self.duty.times(factor);
+        let way = match &self.way {
             Way::Body { inlet, outlet } => {
-                *outlet = Dual::constant(inlet.value + factor * (outlet.value - inlet.value));
+                let outlet = mix(inlet, outlet, factor);
                 (outlet.value > 0.0).then_some(())?;
+                Way::Body { inlet: inlet.clone(), outlet }
             }
-            Way::Material { fluid, composition, inlet, outlet, .. } => {
-                let h = inlet.h.value + factor * (outlet.h.value - inlet.h.value);
+            Way::Material { fluid, composition, mass, inlet, outlet, phases } => {
+                let h = mix(&inlet.h, &outlet.h, factor);
+                let p = outlet.p.clone();
                 let engine = &view.model.process.fluids[*fluid].engine;
-                let state =
-                    engine.state(Pair::PressureEnthalpy, outlet.p.value, h, composition.value).ok()?;
-                outlet.h = Dual::constant(h);
-                outlet.t = Dual::constant(state.temperature);
-                outlet.s = Dual::constant(state.entropy);
+                let state = engine.state(Pair::PressureEnthalpy, p.value, h.value, composition.value).ok()?;
+                let jacobian = state.jacobian(Pair::PressureEnthalpy)?;
+                let follow = |property| follow(&state, &jacobian, property, &p, &h, composition);
+                let (t, s) = (follow(Property::Temperature), follow(Property::Entropy));
+                let end = End { t, s, p, h };
+                Way::Material {
+                    fluid: *fluid,
+                    composition: composition.clone(),
+                    mass: mass.clone(),
+                    inlet: inlet.clone(),
+                    outlet: Box::new(end),
+                    phases: [phases[0], state.phase],
+                }
             }
-        }
+        };
+        let mut out = Passage { duty, hot: self.hot, kinks: Vec::new(), way };
         out.find_kinks(view);
         Some(out)
     }
@@ -187,11 +205,7 @@ impl Passage {
                 break;
             }
         }
-        (1e-12..=1.0 - 1e-12).contains(&y).then_some(Kink {
-            y,
-            t: found.temperature,
-            quality,
-        })
+        (1e-12..=1.0 - 1e-12).contains(&y).then_some(Kink { y, t: found.temperature, quality })
     }
 
     /// Temperature at a share `y` of the way, K.
@@ -275,43 +289,30 @@ impl Passage {
                 let h = mix(&inlet.h, &outlet.h, y);
                 let state = self.state(view, y.value)?;
                 let jacobian = state.jacobian(Pair::PressureEnthalpy).ok_or(BEYOND)?;
-                let follow = |property: Property| {
-                    let row = jacobian[property as usize];
-                    let mut out = p.map(state.get(property), row[0]);
-                    out.terms.extend(h.terms.iter().map(|&(slot, d)| (slot, d * row[1])));
-                    if row[2] != 0.0 {
-                        out.terms.extend(composition.terms.iter().map(|&(slot, d)| (slot, d * row[2])));
-                    }
-                    out
-                };
-                Ok(Spot {
-                    t: follow(Property::Temperature),
-                    s: mass.times(&follow(Property::Entropy)),
-                })
+                let follow = |property| follow(&state, &jacobian, property, &p, &h, composition);
+                Ok(Spot { t: follow(Property::Temperature), s: mass.times(&follow(Property::Entropy)) })
             }
         }
     }
 
-    /// Where a kink lies and what it is there, with gradients.
+    /// Where a kink lies and its temperature, with gradients.
     ///
     /// # Errors
     /// A state outside the formulation's range.
-    pub fn dual_kink(&self, view: View<'_>, kink: &Kink) -> Result<(Dual, Spot), Blocked> {
-        let Way::Material { fluid, mass, inlet, outlet, .. } = &self.way else { return Err(BEYOND) };
+    pub fn dual_kink(&self, view: View<'_>, kink: &Kink) -> Result<(Dual, Dual), Blocked> {
+        let Way::Material { fluid, inlet, outlet, .. } = &self.way else { return Err(BEYOND) };
         let engine = &*view.model.process.fluids[*fluid].engine;
         let (dp, dh) = (outlet.p.value - inlet.p.value, outlet.h.value - inlet.h.value);
         let here = Dual::constant(kink.y);
         let p = mix(&inlet.p, &outlet.p, &here);
         let saturated = saturation(engine, p.value, kink.quality).ok_or(BEYOND)?;
-        let slope = |property| along(&saturated, property).ok_or(BEYOND);
-        let rise = slope(Property::Enthalpy)?;
+        let rise = along(&saturated, Property::Enthalpy).ok_or(BEYOND)?;
         // h(y) = h_sat(p(y)) fixes y.
         let error = mix(&inlet.h, &outlet.h, &here).minus(&p.map(saturated.enthalpy, rise));
         let y = error.map(kink.y, -1.0 / (dh - rise * dp));
-        let p = mix(&inlet.p, &outlet.p, &y);
-        let t = p.map(saturated.temperature, slope(Property::Temperature)?);
-        let s = mass.times(&p.map(saturated.entropy, slope(Property::Entropy)?));
-        Ok((y, Spot { t, s }))
+        let slope = along(&saturated, Property::Temperature).ok_or(BEYOND)?;
+        let t = mix(&inlet.p, &outlet.p, &y).map(saturated.temperature, slope);
+        Ok((y, t))
     }
 
     /// dT/dy at a share of the way, K.
@@ -329,6 +330,24 @@ impl Passage {
             }
         }
     }
+}
+
+/// A property by its derivatives with respect to pressure, enthalpy and composition.
+fn follow(
+    state: &State,
+    jacobian: &[[f64; 3]; PROPERTIES],
+    property: Property,
+    p: &Dual,
+    h: &Dual,
+    composition: &Dual,
+) -> Dual {
+    let row = jacobian[property as usize];
+    let mut out = p.map(state.get(property), row[0]);
+    out.terms.extend(h.terms.iter().map(|&(slot, d)| (slot, d * row[1])));
+    if row[2] != 0.0 {
+        out.terms.extend(composition.terms.iter().map(|&(slot, d)| (slot, d * row[2])));
+    }
+    out
 }
 
 /// (1 − y) a + y b.
