@@ -2,9 +2,11 @@
 
 mod assemble;
 mod figure;
+mod profile;
 mod text;
 
 pub use figure::{Figure, Named};
+pub use profile::{CrossedReport, PinchReport, ProfilePoint, ProfileReport};
 
 use serde::Serialize;
 #[cfg(feature = "server")]
@@ -291,6 +293,10 @@ pub struct ComponentReport {
     /// Its balances.
     #[serde(flatten)]
     pub region: RegionReport,
+    /// Temperatures inside an exchanger.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub profile: Option<ProfileReport>,
 }
 
 /// A flow.
