@@ -156,7 +156,10 @@ impl Assembler<'_, '_> {
             points,
             pinch,
             crossed,
-            conductance: drawing.conductance.filter(|_| rate).map(|c| self.bare(c, Dimension::ThermalConductance)),
+            conductance: drawing
+                .conductance
+                .filter(|_| rate)
+                .map(|c| self.bare(c, Dimension::ThermalConductance)),
             log_mean_difference: drawing
                 .log_mean_difference
                 .map(|d| self.bare(d, Dimension::TemperatureDifference)),

@@ -79,12 +79,17 @@ pub(super) fn explain(evaluation: &Evaluation<'_>, margin: &Margin, decision: &D
         )
     };
     if let Some(crossing) = &profile.crossing {
+        let sigma = phrase::figure(crossing.generation.value, phrase::entropy_dimension(evaluation));
         statement.push_str(&format!(
-            " From {} to {} heat would run uphill; that section generates {}.",
+            " From {} to {} heat would run uphill",
             place(evaluation, profile, crossing.from),
             place(evaluation, profile, crossing.to),
-            phrase::figure(crossing.generation.value, phrase::entropy_dimension(evaluation)),
         ));
+        statement.push_str(&if crossing.generation.value < 0.0 {
+            format!("; that section generates {sigma}.")
+        } else {
+            format!(", which only friction hides in the {sigma} that the section generates.")
+        });
     }
     Explanation {
         statement,
@@ -100,7 +105,7 @@ pub(super) const CROSSED: &str = r#"{"fluids": {"gas": {"kind": "perfect_gas", "
               "sides": [{"in": ["gas-in"], "out": ["gas-out"]}, {"in": ["feedwater"], "out": ["steam"]}]}},
             "flows": {
               "gas-in": {"kind": "material", "to": "boiler", "fluid": "gas", "pressure": "1.02 bar", "temperature": "530.0 degC", "mass_flow": "55.5556 kg/s"},
-              "gas-out": {"kind": "material", "from": "boiler", "fluid": "gas", "pressure": "1.00 bar"},
+              "gas-out": {"kind": "material", "from": "boiler", "fluid": "gas", "pressure": "1.02 bar"},
               "feedwater": {"kind": "material", "to": "boiler", "fluid": "water", "pressure": "40.0 bar", "temperature": "105.0 degC", "mass_flow": "10 kg/s"},
               "steam": {"kind": "material", "from": "boiler", "fluid": "water", "pressure": "40.0 bar", "quality": 1}}}"#;
 
@@ -110,6 +115,6 @@ pub(super) const UNCROSSED: &str = r#"{"fluids": {"gas": {"kind": "perfect_gas",
               "sides": [{"in": ["gas-in"], "out": ["gas-out"]}, {"in": ["feedwater"], "out": ["steam"]}]}},
             "flows": {
               "gas-in": {"kind": "material", "to": "boiler", "fluid": "gas", "pressure": "1.02 bar", "temperature": "600.0 degC", "mass_flow": "60 kg/s"},
-              "gas-out": {"kind": "material", "from": "boiler", "fluid": "gas", "pressure": "1.00 bar"},
+              "gas-out": {"kind": "material", "from": "boiler", "fluid": "gas", "pressure": "1.02 bar"},
               "feedwater": {"kind": "material", "to": "boiler", "fluid": "water", "pressure": "40.0 bar", "temperature": "105.0 degC", "mass_flow": "10 kg/s"},
               "steam": {"kind": "material", "from": "boiler", "fluid": "water", "pressure": "40.0 bar", "quality": 1}}}"#;

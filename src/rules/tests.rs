@@ -225,7 +225,8 @@ fn only_the_primary_tests_are_listed_when_blocked_and_count_in_the_entropy_famil
                     let mut margins = Vec::new();
                     rule.margins(me, evaluation, &mut margins);
                     let info = rule.info();
-                    let interior = ["internal-temperature-cross", "composite-curves-cross"].contains(&info.name);
+                    let interior =
+                        ["internal-temperature-cross", "composite-curves-cross"].contains(&info.name);
                     let primary = info.name.starts_with("negative-") || interior;
                     for m in margins {
                         assert!(primary || m.form.is_ok(), "{} is blocked", info.name);
