@@ -257,17 +257,17 @@ impl<'p> Curve<'p> {
         Ok(slopes.minus(&balance).scaled(1.0 / capacity))
     }
 
-    /// Σ m s of all streams, of which each has passed the given shares, minus the same at others:
-    /// entropy rise from the first place to the second along the cold-to-hot axis.
-    fn rise(&self, view: View<'_>, from: &[f64], to: &[f64]) -> Result<Dual, Blocked> {
+    /// Entropy rise of all streams from one share of the heat to another, along the axis.
+    fn rise(&self, view: View<'_>, from: f64, to: f64) -> Result<Dual, Blocked> {
         let mut out = Dual::default();
-        for ((course, &a), &b) in self.courses.iter().zip(from).zip(to) {
-            if a == b {
-                continue;
-            }
-            for (u, sign) in [(b, 1.0), (a, -1.0)] {
+        for (x, t, sign) in [(from, self.at(from).1, -1.0), (to, self.at(to).0, 1.0)] {
+            let shares = self.shares(x, t);
+            for (course, &u) in self.courses.iter().zip(&shares) {
                 let spot = course.passage.dual_at(view, &Dual::constant(course.turned(u)))?;
                 out.add_scaled(sign, &spot.s);
+                // The share of the whole is fixed, not that of each stream: what lacks passes at
+                // the temperature of the place.
+                out.add_scaled(sign * (x - u) / t, &course.passage.duty);
             }
         }
         Ok(out)
@@ -366,10 +366,7 @@ pub(super) fn judge(
     let to = right.map_or(1.0, |i| zero(&places[i - 1], &places[i]));
     let weight = cold.total / hot.total;
     let weight = if (weight - 1.0).abs() <= BALANCED { 1.0 } else { weight };
-    let rise = |curve: &Curve<'_>| {
-        curve.rise(view, &curve.shares(from, curve.at(from).1), &curve.shares(to, curve.at(to).0))
-    };
-    let (s_hot, s_cold) = (rise(&hot)?, rise(&cold)?);
+    let (s_hot, s_cold) = (hot.rise(view, from, to)?, cold.rise(view, from, to)?);
     let throughput = s_cold.value.abs() + weight * s_hot.value.abs();
     // Along the axis the entropy of the hot streams rises as they give off heat backwards.
     let generation = s_cold.minus(&s_hot.scaled(weight));
