@@ -78,40 +78,51 @@ impl Profile {
         let changed =
             |factor: &Dual| Some((pair.hot.with_duty(view, factor)?, pair.cold.with_duty(view, factor)?));
         // `None` where a state leaves its formulation.
-        let lawful = |factor: f64| -> Option<bool> {
+        let least = |factor: f64| -> Option<f64> {
             let (hot, cold) = changed(&Dual::constant(factor))?;
-            Some(Pair { hot: &hot, cold: &cold, ..pair }.least().ok()? >= 0.0)
+            Pair { hot: &hot, cold: &cold, ..pair }.least().ok()
         };
-        let (mut low, mut high) = if self.pinch.difference.value >= 0.0 { (1.0, 2.0) } else { (0.0, 1.0) };
-        if low > 0.0 {
-            while lawful(high).unwrap_or(false) {
-                (low, high) = (high, 2.0 * high);
-                if high > 1e6 {
-                    return None;
-                }
-            }
+        let own = self.pinch.difference.value;
+        let (mut low, mut high) = (None, None);
+        if own >= 0.0 {
+            low = Some((1.0, own))
+        } else {
+            high = Some((1.0, Some(own)))
         }
+        let mut factor = if own >= 0.0 { 2.0 } else { 0.5 };
         for _ in 0..60 {
-            let middle = 0.5 * (low + high);
-            if high - low < 1e-12 * high {
+            match least(factor) {
+                Some(gap) if gap >= 0.0 => low = Some((factor, gap)),
+                gap => high = Some((factor, gap)),
+            }
+            let last = factor;
+            factor = match (low, high) {
+                (Some((a, f)), Some((b, Some(g)))) => {
+                    // A secant kept off the ends of the bracket, so that both of them move.
+                    let secant = a + (b - a) * f / (f - g);
+                    secant.clamp(a + 0.01 * (b - a), b - 0.01 * (b - a))
+                }
+                (Some((a, _)), Some((b, None))) => 0.5 * (a + b),
+                (Some((a, _)), None) => 2.0 * a,
+                (None, _) => 0.5 * factor,
+            };
+            if (factor - last).abs() <= 1e-10 * factor || !(1e-6..=1e6).contains(&factor) {
                 break;
             }
-            if lawful(middle).unwrap_or(false) { low = middle } else { high = middle }
         }
         // A bound by the range of a formulation is no bound by a law; nor is there room where the
         // streams enter crossed.
-        lawful(high)?;
-        if low == 0.0 {
-            return None;
-        }
+        let ((low, f), (high, g)) = (low?, high?);
+        let g = g?;
+        let touching = if f > g { low + (high - low) * f / (f - g) } else { low };
         // D(factor, inputs) = 0 fixes the factor; it goes by a slot of its own.
-        let (hot, cold) = changed(&Dual::slot(Slot::MAX, low))?;
+        let (hot, cold) = changed(&Dual::slot(Slot::MAX, touching))?;
         let (pinch, _) = Pair { hot: &hot, cold: &cold, ..pair }.judge().ok()?;
         let (own, mut others): (Vec<_>, Vec<_>) =
             pinch.difference.terms.into_iter().partition(|t| t.0 == Slot::MAX);
         let slope: f64 = own.iter().map(|t| t.1).sum();
         others.iter_mut().for_each(|t| t.1 /= -slope);
-        slope.is_normal().then(|| Dual { value: low, terms: others.into() })
+        slope.is_normal().then(|| Dual { value: touching, terms: others.into() })
     }
 }
 
