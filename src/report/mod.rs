@@ -3,10 +3,12 @@
 mod assemble;
 mod figure;
 mod profile;
+mod state;
 mod text;
 
 pub use figure::{Figure, Named};
 pub use profile::{CrossedReport, PinchReport, ProfilePoint, ProfileReport};
+pub use state::StateReport;
 
 use serde::Serialize;
 #[cfg(feature = "server")]

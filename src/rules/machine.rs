@@ -46,8 +46,11 @@ fn claims(component: &Component) -> impl Iterator<Item = (usize, &Stated)> {
     claims.filter(|(_, s)| s.what == StatedFigure::IsentropicEfficiency)
 }
 
-/// One margin for each section (detail: its index) and one for each claimed isentropic efficiency
-/// (detail: number of sections + index of the claim).
+/// One margin for each section and one for each claimed isentropic efficiency.
+///
+/// The only section of a machine is its entropy balance seen from another side (detail 0); each of
+/// several sections is a test of its own (detail: its index + 1), and so is each claim (detail:
+/// number of sections + index of the claim + 1).
 pub(super) fn margins(machine: Machine, me: usize, evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
     let view = evaluation.view;
     let process = &view.model.process;
@@ -60,7 +63,7 @@ pub(super) fn margins(machine: Machine, me: usize, evaluation: &Evaluation<'_>, 
             if let Some((rise, throughput)) = measure::entropy_rise(view, k, before, after) {
                 out.push(Margin {
                     pointer: Some(process.flows[after].pointer.clone()),
-                    detail: i,
+                    detail: if sections.len() == 1 { 0 } else { i + 1 },
                     ..measure::lower_bound(me, Scope::Component(k), rise, throughput)
                 });
             }
@@ -73,7 +76,7 @@ pub(super) fn margins(machine: Machine, me: usize, evaluation: &Evaluation<'_>, 
             let form = if within { Dual::constant(0.0) } else { form };
             out.push(Margin {
                 pointer: Some(stated.pointer.clone()),
-                detail: sections.len() + i,
+                detail: sections.len() + i + 1,
                 ..measure::lower_bound(me, Scope::Component(k), form, 1.0 + claim.value.abs())
             });
         }
@@ -92,8 +95,8 @@ pub(super) fn explain(
     let component = &process.components[k];
     let subject = phrase::subject(evaluation, margin.scope);
     let sections = sections(evaluation, component);
-    let Some(&(before, after)) = sections.get(margin.detail) else {
-        let stated = margin.detail.checked_sub(sections.len()).and_then(|i| component.stated.get(i));
+    let Some(&(before, after)) = sections.get(margin.detail.saturating_sub(1)) else {
+        let stated = margin.detail.checked_sub(sections.len() + 1).and_then(|i| component.stated.get(i));
         let Some(claim) = stated.and_then(|s| evaluation.view.var(s.var).ok()) else {
             return Explanation::default();
         };

@@ -368,12 +368,29 @@ fn an_impossible_section_shows_although_the_whole_machine_is_sound() {
     near(all[0].0.form.as_ref().unwrap().value, -51.975, 0.01);
     near(all[1].0.form.as_ref().unwrap().value, 781.10, 0.02);
     assert_eq!(all[0].0.pointer.as_deref(), Some("/flows/bleed"));
+    // None is the balance of the whole from another side.
+    assert!(all.iter().all(|f| f.0.detail > 0));
+    assert_eq!(only("expander-beats-isentropic", breaking("expander-beats-isentropic")).0.detail, 0);
     assert!(all[0].2.statement.contains("1.046"), "{}", all[0].2.statement);
     // A bearing loss leaves the fluid adiabatic; a claim above one is impossible.
     near(all[2].0.form.as_ref().unwrap().value, -0.02, 1e-12);
     assert!(all[2].2.statement.contains("claimed"), "{}", all[2].2.statement);
     let cooled = description.replace("mechanical_loss", "heat_loss");
     assert!(findings("expander-beats-isentropic", &cooled).is_empty());
+}
+
+#[test]
+fn a_view_from_another_side_is_as_sure_as_the_balance() {
+    for (name, mass) in [
+        ("expander-beats-isentropic", 5.0),
+        ("compressor-beats-isentropic", 12.0),
+        ("throttle-against-entropy", 1.5),
+    ] {
+        let primary = only("negative-entropy-generation", breaking(name)).1;
+        let other = only(name, breaking(name)).1;
+        near(other.value * mass, primary.value, 1e-9 * primary.value.abs());
+        near(other.u * mass, primary.u, 1e-9 * primary.u);
+    }
 }
 
 #[test]
