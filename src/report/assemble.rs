@@ -13,8 +13,8 @@ use crate::quantity::{Dimension, UnitSystem};
 use crate::rules;
 
 /// Everything that assembling needs at hand.
-struct Assembler<'a, 'e> {
-    evaluation: &'e Evaluation<'a>,
+pub(super) struct Assembler<'a, 'e> {
+    pub(super) evaluation: &'e Evaluation<'a>,
     sensitivity: &'e mut Sensitivity,
     units: UnitSystem,
 }
@@ -41,7 +41,11 @@ impl Report {
                 judgement.components[k],
                 Some(k),
             );
-            components.push(component.name.clone(), ComponentReport { kind: component.kind.name(), region });
+            let profile = a.profile(k);
+            components.push(
+                component.name.clone(),
+                ComponentReport { kind: component.kind.name(), region, profile },
+            );
         }
         let mut groups = Named::default();
         for (g, group) in process.groups.iter().enumerate() {
@@ -151,16 +155,20 @@ impl Assembler<'_, '_> {
         self.evaluation.view
     }
 
-    fn figure(&mut self, form: &Dual, dimension: Dimension) -> Figure {
+    pub(super) fn figure(&mut self, form: &Dual, dimension: Dimension) -> Figure {
         let u = self.sensitivity.uncertainty(self.evaluation.view.model, form);
         Figure::new(form.value, u, dimension, self.units)
     }
 
-    fn bare(&self, value: f64, dimension: Dimension) -> Figure {
+    pub(super) fn bare(&self, value: f64, dimension: Dimension) -> Figure {
         Figure::new(value, 0.0, dimension, self.units)
     }
 
-    fn dimensions(&self) -> (Dimension, Dimension, Dimension, Dimension) {
+    pub(super) fn units(&self) -> UnitSystem {
+        self.units
+    }
+
+    pub(super) fn dimensions(&self) -> (Dimension, Dimension, Dimension, Dimension) {
         match self.evaluation.view.model.process.basis {
             Basis::Rate => {
                 (Dimension::MassFlow, Dimension::MoleFlow, Dimension::Power, Dimension::EntropyRate)

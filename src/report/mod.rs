@@ -2,10 +2,12 @@
 
 mod assemble;
 mod figure;
+mod profile;
 mod state;
 mod text;
 
 pub use figure::{Figure, Named};
+pub use profile::{CrossedReport, PinchReport, ProfilePoint, ProfileReport};
 pub use state::StateReport;
 
 use serde::Serialize;
@@ -293,6 +295,10 @@ pub struct ComponentReport {
     /// Its balances.
     #[serde(flatten)]
     pub region: RegionReport,
+    /// Temperatures inside an exchanger.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub profile: Option<ProfileReport>,
 }
 
 /// A flow.

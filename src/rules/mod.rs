@@ -6,6 +6,7 @@
 //! the list below.
 
 mod carnot;
+mod interior;
 mod machine;
 mod measure;
 pub mod phrase;
@@ -203,13 +204,18 @@ rules! {
     expander_beats_isentropic::ExpanderBeatsIsentropic,
     compressor_beats_isentropic::CompressorBeatsIsentropic,
     throttle_against_entropy::ThrottleAgainstEntropy,
+    internal_temperature_cross::InternalTemperatureCross,
+    composite_curves_cross::CompositeCurvesCross,
     terminal_temperature_cross::TerminalTemperatureCross,
     parallel_flow_outlet_cross::ParallelFlowOutletCross,
+    exchanger_effectiveness_above_one::ExchangerEffectivenessAboveOne,
+    section_entropy_negative::SectionEntropyNegative,
     mass_imbalance::MassImbalance,
     element_imbalance::ElementImbalance,
     energy_imbalance::EnergyImbalance,
     composition_sum::CompositionSum,
     surplus_property_mismatch::SurplusPropertyMismatch,
+    saturation_mismatch::SaturationMismatch,
     redundant_readings_disagree::RedundantReadingsDisagree,
     state_outside_formulation::StateOutsideFormulation,
     vapour_below_saturation::VapourBelowSaturation,
@@ -217,6 +223,8 @@ rules! {
     quality_out_of_range::QualityOutOfRange,
     wetness_unknown::WetnessUnknown,
     reversed_flow::ReversedFlow,
+    unusual_approach::UnusualApproach,
+    unusual_pressure_drop::UnusualPressureDrop,
     unusual_dead_state::UnusualDeadState,
     gouy_stodola_mismatch::GouyStodolaMismatch,
 }
