@@ -281,10 +281,12 @@ pub fn judge(evaluation: &Evaluation<'_>, margins: &[Margin], sensitivity: &mut 
     out
 }
 
-/// Whether a margin sees the same defect as its component's entropy balance from another side.
+/// Whether a margin sees the same defect as its component's entropy balance, or as its smallest
+/// temperature difference, from another side.
 fn secondary(margin: &Margin) -> bool {
-    let info = rules::ALL[margin.rule].info();
-    info.aspect == Aspect::Entropy && margin.family == Family::None && margin.detail == 0
+    let aspect = rules::ALL[margin.rule].info().aspect;
+    margin.family == Family::None
+        && (aspect == Aspect::Interior || aspect == Aspect::Entropy && margin.detail == 0)
 }
 
 /// A secondary view never says more than the test it follows from: the probability of a false
@@ -297,7 +299,7 @@ fn follow_primary(margins: &[Margin], decisions: &mut [Option<Decision>]) {
         let primary = (0..margins.len()).find(|&j| {
             margins[j].scope == margins[i].scope
                 && margins[j].family == Family::Entropy
-                && rules::ALL[margins[j].rule].info().aspect == Aspect::Entropy
+                && rules::ALL[margins[j].rule].info().aspect == rules::ALL[margins[i].rule].info().aspect
         });
         if let Some(Some(first)) = primary.map(|j| decisions[j])
             && let Some(own) = &mut decisions[i]

@@ -4,8 +4,10 @@
 mod equations;
 mod evaluation;
 pub mod exergy;
+pub mod profile;
 pub mod region;
 
 pub use equations::{Equations, Row, by_pressure, isentropic_enthalpy, transfers};
 pub use evaluation::{Evaluation, RegionBalances};
+pub use profile::Profile;
 pub use region::{Balance, Bracket, Region};

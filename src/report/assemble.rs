@@ -41,11 +41,10 @@ impl Report {
                 judgement.components[k],
                 Some(k),
             );
-            let holdup = a.holdup(k, exergies);
-            components.push(
-                component.name.clone(),
-                ComponentReport { kind: component.kind.name(), implied: component.implied, region, holdup },
-            );
+            let (holdup, profile) = (a.holdup(k, exergies), a.profile(k));
+            let (kind, implied) = (component.kind.name(), component.implied);
+            components
+                .push(component.name.clone(), ComponentReport { kind, implied, region, holdup, profile });
         }
         let mut groups = Named::default();
         for (g, group) in process.groups.iter().enumerate() {
@@ -160,11 +159,15 @@ impl Assembler<'_, '_> {
         Figure::new(form.value, u, dimension, self.units)
     }
 
-    fn bare(&self, value: f64, dimension: Dimension) -> Figure {
+    pub(super) fn bare(&self, value: f64, dimension: Dimension) -> Figure {
         Figure::new(value, 0.0, dimension, self.units)
     }
 
-    fn dimensions(&self) -> (Dimension, Dimension, Dimension, Dimension) {
+    pub(super) fn units(&self) -> UnitSystem {
+        self.units
+    }
+
+    pub(super) fn dimensions(&self) -> (Dimension, Dimension, Dimension, Dimension) {
         match self.evaluation.view.model.process.basis {
             Basis::Rate => {
                 (Dimension::MassFlow, Dimension::MoleFlow, Dimension::Power, Dimension::EntropyRate)

@@ -3,10 +3,12 @@
 mod assemble;
 mod figure;
 mod holdup;
+mod profile;
 mod state;
 mod text;
 
 pub use figure::{Figure, Named};
+pub use profile::{CrossedReport, PinchReport, ProfilePoint, ProfileReport};
 pub use state::StateReport;
 
 use serde::Serialize;
@@ -301,6 +303,10 @@ pub struct ComponentReport {
     #[serde(skip_serializing_if = "Option::is_none")]
     #[cfg_attr(feature = "server", schema(nullable = false))]
     pub holdup: Option<HoldupReport>,
+    /// Temperatures inside an exchanger.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub profile: Option<ProfileReport>,
 }
 
 /// What a component holds before and after a batch.

@@ -6,6 +6,7 @@
 //! the list below.
 
 mod carnot;
+mod interior;
 mod machine;
 mod measure;
 pub mod phrase;
@@ -217,8 +218,12 @@ rules! {
     shock_in_reverse::ShockInReverse,
     reaction_against_affinity::ReactionAgainstAffinity,
     equilibrium_overshot::EquilibriumOvershot,
+    internal_temperature_cross::InternalTemperatureCross,
+    composite_curves_cross::CompositeCurvesCross,
     terminal_temperature_cross::TerminalTemperatureCross,
     parallel_flow_outlet_cross::ParallelFlowOutletCross,
+    exchanger_effectiveness_above_one::ExchangerEffectivenessAboveOne,
+    section_entropy_negative::SectionEntropyNegative,
     air_colder_than_coil::AirColderThanCoil,
     radiation_exergy_above_limit::RadiationExergyAboveLimit,
     flame_hotter_than_adiabatic::FlameHotterThanAdiabatic,
@@ -229,6 +234,7 @@ rules! {
     energy_imbalance::EnergyImbalance,
     composition_sum::CompositionSum,
     surplus_property_mismatch::SurplusPropertyMismatch,
+    saturation_mismatch::SaturationMismatch,
     redundant_readings_disagree::RedundantReadingsDisagree,
     state_outside_formulation::StateOutsideFormulation,
     vapour_below_saturation::VapourBelowSaturation,
@@ -241,6 +247,8 @@ rules! {
     ideal_gas_far_from_ideal::IdealGasFarFromIdeal,
     wetness_unknown::WetnessUnknown,
     reversed_flow::ReversedFlow,
+    unusual_approach::UnusualApproach,
+    unusual_pressure_drop::UnusualPressureDrop,
     unusual_dead_state::UnusualDeadState,
     below_acid_dew_point::BelowAcidDewPoint,
     gouy_stodola_mismatch::GouyStodolaMismatch,
