@@ -3,9 +3,9 @@
 use super::region::{self, Region};
 use crate::fluid::{Element, Pair, Property};
 use crate::model::{Blocked, Dual, Model, Rows, View, Workspace, fluids_of, sample_composition};
-use crate::process::kinds::Kind;
+use crate::process::kinds::{Kind, Purposeful};
 use crate::process::{
-    AmountForm, Carried, ComponentId, FlowId, PressureLoss, StateForm, StateId, Var, VarId,
+    AmountForm, Carried, ComponentId, FlowId, PressureLoss, Side, StateForm, StateId, Var, VarId,
 };
 
 /// One equation.
@@ -203,7 +203,7 @@ impl Rows for Equations {
                         let port = |name: &str| {
                             let flow = component.ports.iter().find(|p| p.0 == name);
                             let flow = flow.ok_or(Blocked::Missing("the driving and cooled ports"))?;
-                            region::flow_energy(view, flow.1)
+                            port_heat(view, k, flow.1)
                         };
                         (port("cooled")?, port("driving")?)
                     }
@@ -242,7 +242,37 @@ fn given(var: Option<VarId>) -> Result<VarId, Blocked> {
     var.ok_or(Blocked::Missing("a given figure"))
 }
 
-/// Work in, work out, heat in and heat out of a component.
+/// The heat that a device takes in through a port: a flow of heat, or what the material of the
+/// side to which a flow belongs gives off.
+fn port_heat(view: View<'_>, k: ComponentId, flow: FlowId) -> Result<Dual, Blocked> {
+    let side = view.model.process.components[k]
+        .sides
+        .iter()
+        .find(|s| s.inlets.contains(&flow) || s.outlets.contains(&flow));
+    match side {
+        Some(side) => side_heat(view, side),
+        None => region::flow_energy(view, flow),
+    }
+}
+
+/// What the material of one side gives off, W or J.
+fn side_heat(view: View<'_>, side: &Side) -> Result<Dual, Blocked> {
+    let mut out = Dual::default();
+    for (flows, sign) in [(&side.inlets, 1.0), (&side.outlets, -1.0)] {
+        for &f in flows {
+            out.add_scaled(sign, &region::flow_energy(view, f)?);
+        }
+    }
+    Ok(out)
+}
+
+/// Whether the sides of a kind are what it exchanges heat with.
+const fn exchanges_by_sides(kind: Kind) -> bool {
+    matches!(kind.info().purpose, Purposeful::Engine | Purposeful::HeatMover)
+}
+
+/// Work in, work out, heat in and heat out of a component. Of cyclic devices the sides count as
+/// heat, by what their material gives off or takes up.
 ///
 /// # Errors
 /// `Blocked`.
@@ -257,6 +287,13 @@ pub fn transfers(view: View<'_>, k: ComponentId) -> Result<(Dual, Dual, Dual, Du
                 Carried::Material(_) => continue,
             };
             out[index].add_scaled(1.0, &view.var(var)?);
+        }
+    }
+    if exchanges_by_sides(component.kind) {
+        for side in component.sides.iter().filter(|s| !s.inlets.is_empty() && !s.outlets.is_empty()) {
+            let heat = side_heat(view, side)?;
+            let (index, sign) = if heat.value >= 0.0 { (2, 1.0) } else { (3, -1.0) };
+            out[index].add_scaled(sign, &heat);
         }
     }
     let [a, b, c, d] = out;
@@ -376,8 +413,12 @@ fn unknowns_of(model: &Model, row: Row) -> Vec<VarId> {
         Row::Efficiency(k) | Row::Cop(k) => {
             let component = &process.components[k];
             for f in component.inlets.iter().chain(&component.outlets) {
-                match process.flows[*f].carried {
-                    Carried::Work(v, _) | Carried::Heat(v, _) | Carried::Radiation(v, _) => var(v),
+                match &process.flows[*f].carried {
+                    Carried::Work(v, _) | Carried::Heat(v, _) | Carried::Radiation(v, _) => var(*v),
+                    Carried::Material(m) if exchanges_by_sides(component.kind) => {
+                        mass(*f, &mut var);
+                        property(m.state, Property::Enthalpy, &mut var);
+                    }
                     Carried::Material(_) => {}
                 }
             }

@@ -1,6 +1,6 @@
 //! A closed boundary and what crosses it.
 
-use crate::fluid::Property;
+use crate::fluid::{Property, Substance};
 use crate::model::{Blocked, Dual, View, dual::log_mean};
 use crate::process::{Boundary, Carried, ComponentId, Content, FlowId, Process, StateId, VarId};
 use smallvec::SmallVec;
@@ -383,6 +383,7 @@ pub fn entropy(view: View<'_>, region: &Region, bracket: Bracket) -> Result<Bala
         tally(sign, (mass.value * relative).abs());
     }
     add_formulations(view, region, &mut out, relative_entropy);
+    add_fuel_entropies(view, region, &mut out);
     out.close(inward, outward);
     Ok(out)
 }
@@ -434,6 +435,25 @@ fn add_formulations(
         }
         for ((_, derivative), u) in out.formulation[first..].iter_mut().zip(&largest) {
             *derivative *= u;
+        }
+    }
+}
+
+/// Adds what the correlations of chemical exergy leave uncertain in the entropy of fuels.
+fn add_fuel_entropies(view: View<'_>, region: &Region, out: &mut Balance) {
+    let process = &view.model.process;
+    for &k in &region.members {
+        let component = &process.components[k];
+        for (flows, sign) in [(&component.inlets, 1.0), (&component.outlets, -1.0)] {
+            for &f in flows {
+                let Some(m) = process.flows[f].material() else { continue };
+                let fluid = process.states[m.state].fluid;
+                if let Substance::Fuel(fuel) = &process.fluids[fluid].substance
+                    && let Ok(mass) = view.mass(f)
+                {
+                    out.formulation.push(((k, fluid), sign * mass.value * fuel.entropy_uncertainty()));
+                }
+            }
         }
     }
 }
