@@ -258,7 +258,7 @@ static POWER_TERM: ObjectShape = ObjectShape {
 
 static FLUID_COMBUSTION_GAS: ObjectShape = ObjectShape {
     name: "FluidCombustionGas",
-    doc: "What a fuel and an oxidant become; the air ratio follows from one reading.",
+    doc: "What a fuel and an oxidant become; the air ratio follows from one reading, or from the balances.",
     fields: &[&[
         required("fuel", Shape::Name, "The flow of fuel."),
         required("oxidant", Shape::Name, "The flow of air or oxygen."),

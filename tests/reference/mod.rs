@@ -4,6 +4,7 @@ mod chemistry;
 mod exchanger;
 mod gas;
 mod humid_air;
+mod kinds;
 mod plants;
 mod real_fluid;
 mod solution;

@@ -259,7 +259,7 @@ impl<'t> Reader<'t> {
             return None;
         }
         let mut parts: Vec<(Species, f64)> = Vec::new();
-        let mut good = true;
+        let (mut good, mut stated) = (true, false);
         for (name, n) in list.members() {
             let species =
                 own.iter().find(|s| s.name() == name).cloned().or_else(|| find_species(name).cloned());
@@ -274,7 +274,9 @@ impl<'t> Reader<'t> {
                 good = false;
                 continue;
             };
-            match n.quantity(Dimension::Fraction, &mut self.faults) {
+            let fraction = n.quantity(Dimension::Fraction, &mut self.faults);
+            stated |= fraction.as_ref().is_some_and(|q| q.u().is_some());
+            match fraction {
                 Some(q) if q.value >= 0.0 => parts.push((species, q.value)),
                 Some(q) => {
                     self.process.remarks.push(Remark {
@@ -290,6 +292,12 @@ impl<'t> Reader<'t> {
         }
         if !good {
             return None;
+        }
+        if stated {
+            self.assume(
+                list.pointer(),
+                "the composition is taken as exact; its stated uncertainty is left out",
+            );
         }
         let sum: f64 = parts.iter().map(|p| p.1).sum();
         if (sum - 1.0).abs() > SUM_TOLERANCE {
