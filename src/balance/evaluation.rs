@@ -1,7 +1,8 @@
 //! One evaluation of a process: solved unknowns and the balances that rules and report share.
 
-use super::{Balance, Bracket, Equations, Region, region};
+use super::{Balance, Bracket, Equations, Exergies, Region, region};
 use crate::model::{Blocked, Dual, Plan, Scope, View};
+use std::rc::Rc;
 
 /// Energy and entropy over one region.
 #[derive(Clone, Debug)]
@@ -56,6 +57,8 @@ pub struct Evaluation<'a> {
     pub plant: RegionBalances,
     /// Mismatch and throughput of each exergy balance, once they are derived.
     pub exergy_mismatch: Option<Vec<(Scope, f64, f64)>>,
+    /// The exergy view, once it is derived.
+    pub exergies: Option<Rc<Exergies>>,
 }
 
 impl<'a> Evaluation<'a> {
@@ -69,6 +72,7 @@ impl<'a> Evaluation<'a> {
             groups: equations.groups.iter().map(|r| RegionBalances::of(view, r)).collect(),
             plant: RegionBalances::of(view, &equations.plant),
             exergy_mismatch: None,
+            exergies: None,
         }
     }
 

@@ -10,7 +10,6 @@ mod machine;
 mod measure;
 pub mod phrase;
 mod remark;
-mod reservoir;
 mod saturation;
 mod terminal;
 #[cfg(test)]
