@@ -61,6 +61,10 @@ pub fn by_name(name: &str) -> Result<(Substance, Arc<dyn Engine>), Vec<String>> 
     if let Some(medium) = incompressible::Incompressible::listed(name) {
         return Ok((Substance::Inert, Arc::new(medium)));
     }
-    let known = BUILT_IN.iter().copied().chain(incompressible::LISTED.iter().map(|m| m.name));
-    Err(nearest(name, known).into_iter().map(str::to_owned).collect())
+    Err(nearest(name, names()).into_iter().map(str::to_owned).collect())
+}
+
+/// Every name that [`by_name`] knows by heart, for the catalogue.
+pub fn names() -> impl Iterator<Item = &'static str> {
+    BUILT_IN.into_iter().chain(incompressible::LISTED.iter().map(|medium| medium.name))
 }

@@ -1,0 +1,7 @@
+//! The service over real HTTP on loopback.
+
+mod batch;
+mod command_line;
+mod documents;
+mod limits;
+mod problems;
