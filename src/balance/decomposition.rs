@@ -149,8 +149,7 @@ fn steps(view: View<'_>, from: StateId, p2: &Dual, h2: &Dual) -> Result<(Dual, D
 
 /// Pressure and specific enthalpy to which the streams of a side come together.
 fn outlet_of(view: View<'_>, side: &Side) -> Result<(Dual, Dual), Blocked> {
-    let states: Vec<StateId> =
-        side.outlets.iter().map(|&f| state_of(view, f)).collect::<Result<_, _>>()?;
+    let states: Vec<StateId> = side.outlets.iter().map(|&f| state_of(view, f)).collect::<Result<_, _>>()?;
     match states[..] {
         [only] => Ok((view.property(only, Property::Pressure)?, view.property(only, Property::Enthalpy)?)),
         _ => Err(Blocked::Missing("one outlet")),

@@ -14,6 +14,6 @@ pub mod region;
 pub mod reservoir;
 
 pub use equations::{Equations, Row, by_pressure, isentropic_enthalpy, side_flows, side_mass, transfers};
-pub use exergies::Exergies;
 pub use evaluation::{Evaluation, RegionBalances};
+pub use exergies::Exergies;
 pub use region::{Balance, Bracket, Region};

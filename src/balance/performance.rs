@@ -55,7 +55,7 @@ pub fn heating_values(substance: &Substance) -> Option<HeatingValue> {
 }
 
 /// The heating values of what a flow carries, W or J; `None` for what does not burn.
-pub(super) fn fuel_energy(view: View<'_>, f: FlowId) -> Option<(Dual, Dual)> {
+pub fn fuel_energy(view: View<'_>, f: FlowId) -> Option<(Dual, Dual)> {
     let process = &view.model.process;
     let m = process.flows[f].material()?;
     let values = heating_values(&process.fluids[process.states[m.state].fluid].substance)?;
@@ -288,7 +288,8 @@ fn duties(view: View<'_>, k: ComponentId, out: &mut Vec<Metric>) {
         Basis::Rate => Dimension::Power,
         Basis::Amount => Dimension::Energy,
     };
-    let sides = || component.sides.iter().filter(|s| !s.pool && !s.inlets.is_empty() && !s.outlets.is_empty());
+    let sides =
+        || component.sides.iter().filter(|s| !s.pool && !s.inlets.is_empty() && !s.outlets.is_empty());
     let several = sides().count() > 1;
     for side in sides() {
         let mut duty = Dual::default();

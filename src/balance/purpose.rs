@@ -218,7 +218,8 @@ impl<'a, 's> Book<'a, 's> {
             return Ok(());
         }
         let part = s.parts.thermal.as_ref();
-        let part = part.ok_or(Blocked::Missing("the state at ambient temperature and the flow's own pressure"))?;
+        let part =
+            part.ok_or(Blocked::Missing("the state at ambient temperature and the flow's own pressure"))?;
         let e = s.mass.times(part).scaled(share);
         let physical = share * s.mass.value * (s.parts.physical.value - part.value);
         self.account.note(thermal, s.sign, fluid, e.value, s.relative);
@@ -478,8 +479,10 @@ impl<'a, 's> Book<'a, 's> {
             let inlets = self.streams(&side.inlets, 1.0)?;
             // A vent is thrown away; what is left is what the inlets became.
             let vents = side.outlets.len() > 1;
-            let (lost, kept): (Vec<FlowId>, Vec<FlowId>) =
-                side.outlets.iter().partition(|&&f| vents && self.process().flows[f].role == Some(Role::Loss));
+            let (lost, kept): (Vec<FlowId>, Vec<FlowId>) = side
+                .outlets
+                .iter()
+                .partition(|&&f| vents && self.process().flows[f].role == Some(Role::Loss));
             let lost = self.streams(&lost, -1.0)?;
             self.enter_all(&lost, Entry::Loss)?;
             let outlets = self.streams(&kept, -1.0)?;
@@ -529,9 +532,10 @@ impl<'a, 's> Book<'a, 's> {
             let state = self.process().flows[f].material().map(|m| m.state)?;
             self.view.property(state, Property::Pressure).ok().map(|p| p.value)
         };
-        let motive = inlets.iter().copied().max_by(|&a, &b| {
-            pressure(a).unwrap_or_default().total_cmp(&pressure(b).unwrap_or_default())
-        });
+        let motive = inlets
+            .iter()
+            .copied()
+            .max_by(|&a, &b| pressure(a).unwrap_or_default().total_cmp(&pressure(b).unwrap_or_default()));
         let suction: Vec<FlowId> = inlets.into_iter().filter(|&f| Some(f) != motive).collect();
         self.joining(Some(&suction))
     }

@@ -89,11 +89,7 @@ impl Assembler<'_, '_> {
             omitted: performance
                 .omitted
                 .iter()
-                .map(|o| Omitted {
-                    what: o.what,
-                    detail: o.detail.clone(),
-                    would_need: o.would_need.clone(),
-                })
+                .map(|o| Omitted { what: o.what, detail: o.detail.clone(), would_need: o.would_need.clone() })
                 .collect(),
         }
     }

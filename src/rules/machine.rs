@@ -1,8 +1,8 @@
 //! What the rules about adiabatic machines share: entropy over each section, and claims.
 
 use super::{Explanation, Figure, measure, phrase};
-use crate::balance::passage::sections;
 use crate::balance::Evaluation;
+use crate::balance::passage::sections;
 use crate::balance::performance::isentropic_efficiency;
 use crate::model::{Decision, Dual, Margin, Scope};
 use crate::process::kinds::Kind;
@@ -70,11 +70,7 @@ pub(super) fn margins(machine: Machine, me: usize, evaluation: &Evaluation<'_>, 
 }
 
 /// The explanation with the isentropic efficiency of the section or the claim.
-pub(super) fn explain(
-    evaluation: &Evaluation<'_>,
-    margin: &Margin,
-    decision: &Decision,
-) -> Explanation {
+pub(super) fn explain(evaluation: &Evaluation<'_>, margin: &Margin, decision: &Decision) -> Explanation {
     let Scope::Component(k) = margin.scope else { return Explanation::default() };
     let process = &evaluation.view.model.process;
     let component = &process.components[k];

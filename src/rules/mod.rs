@@ -9,6 +9,7 @@ mod carnot;
 mod machine;
 mod measure;
 pub mod phrase;
+mod practice;
 mod remark;
 mod saturation;
 mod terminal;
@@ -202,6 +203,10 @@ rules! {
     expander_beats_isentropic::ExpanderBeatsIsentropic,
     compressor_beats_isentropic::CompressorBeatsIsentropic,
     throttle_against_entropy::ThrottleAgainstEntropy,
+    work_beats_reversible::WorkBeatsReversible,
+    compressor_beats_isothermal::CompressorBeatsIsothermal,
+    negative_exergy_destruction::NegativeExergyDestruction,
+    exergy_efficiency_above_one::ExergyEfficiencyAboveOne,
     terminal_temperature_cross::TerminalTemperatureCross,
     parallel_flow_outlet_cross::ParallelFlowOutletCross,
     mass_imbalance::MassImbalance,
@@ -216,7 +221,13 @@ rules! {
     quality_out_of_range::QualityOutOfRange,
     wetness_unknown::WetnessUnknown,
     reversed_flow::ReversedFlow,
+    negative_exergy::NegativeExergy,
     unusual_dead_state::UnusualDeadState,
+    unusual_turbine_efficiency::UnusualTurbineEfficiency,
+    unusual_gas_turbine_efficiency::UnusualGasTurbineEfficiency,
+    unusual_machine_efficiency::UnusualMachineEfficiency,
+    unusual_exergy_efficiency::UnusualExergyEfficiency,
+    unusual_stack_loss::UnusualStackLoss,
     gouy_stodola_mismatch::GouyStodolaMismatch,
 }
 

@@ -26,14 +26,10 @@ fn f(v: &Value) -> f64 {
 /// The book's species as own species of a description.
 fn species(data: &Value) -> String {
     let mut out = String::new();
-    let molar_masses = [("N2", 28.0134), ("O2", 31.9988), ("CO2", 44.0095), ("H2O", 18.01528), ("CH4", 16.04246)];
-    let elements = [
-        r#"{"N": 2}"#,
-        r#"{"O": 2}"#,
-        r#"{"C": 1, "O": 2}"#,
-        r#"{"H": 2, "O": 1}"#,
-        r#"{"C": 1, "H": 4}"#,
-    ];
+    let molar_masses =
+        [("N2", 28.0134), ("O2", 31.9988), ("CO2", 44.0095), ("H2O", 18.01528), ("CH4", 16.04246)];
+    let elements =
+        [r#"{"N": 2}"#, r#"{"O": 2}"#, r#"{"C": 1, "O": 2}"#, r#"{"H": 2, "O": 1}"#, r#"{"C": 1, "H": 4}"#];
     for ((name, molar_mass), elements) in molar_masses.into_iter().zip(elements) {
         let k: Vec<f64> = data["coefficients"][name].as_array().unwrap().iter().map(f).collect();
         let [h0, s0, a, b, c, d] = k[..] else { panic!() };
@@ -133,9 +129,13 @@ fn check(column: &str) -> Value {
     }
     near("E11", value(&report, "/flows/11/power/value") * 1e-3, f(&c["compressor_MW"]), 0.03);
     near("E12", value(&report, "/flows/12/power/value") * 1e-3, 30.0, 0.03);
-    for (name, key) in
-        [("compressor", "AC"), ("preheater", "APH"), ("combustor", "CC"), ("turbine", "GT"), ("boiler", "HRSG")]
-    {
+    for (name, key) in [
+        ("compressor", "AC"),
+        ("preheater", "APH"),
+        ("combustor", "CC"),
+        ("turbine", "GT"),
+        ("boiler", "HRSG"),
+    ] {
         let at = format!("/components/{name}/exergy_balance");
         let tolerance = if key == "CC" { 0.05 } else { 0.03 };
         let want = &c["components"][key];
@@ -143,15 +143,26 @@ fn check(column: &str) -> Value {
         near(&format!("E_D {key}"), destroyed, f(&want["ED"]), tolerance);
         let efficiency = value(&report, &format!("{at}/efficiency/value")) * 100.0;
         near(&format!("efficiency {key}"), efficiency, f(&want["eps_pct"]), 0.2);
-        let line = report["plant"]["ranking"].as_array().unwrap().iter().find(|r| r["component"] == name).unwrap();
-        near(&format!("y_D {key}"), 100.0 * f(&line["share_of_fuel"]), f(&c["components"]["PLANT"]["yD_pct"][key]), 0.1);
+        let line =
+            report["plant"]["ranking"].as_array().unwrap().iter().find(|r| r["component"] == name).unwrap();
+        near(
+            &format!("y_D {key}"),
+            100.0 * f(&line["share_of_fuel"]),
+            f(&c["components"]["PLANT"]["yD_pct"][key]),
+            0.1,
+        );
     }
     let want = &c["components"]["PLANT"];
     let at = "/plant/exergy_balance";
     near("E_D plant", value(&report, &format!("{at}/destruction/value")) * 1e-3, f(&want["ED"]), 0.05);
     near("E_L plant", value(&report, &format!("{at}/loss/value")) * 1e-3, f(&want["EL"]), 0.03);
     near("E_F plant", value(&report, &format!("{at}/fuel/value")) * 1e-3, f(&want["F"]), 0.03);
-    near("efficiency plant", value(&report, &format!("{at}/efficiency/value")) * 100.0, f(&want["eps_pct_book"]), 0.2);
+    near(
+        "efficiency plant",
+        value(&report, &format!("{at}/efficiency/value")) * 100.0,
+        f(&want["eps_pct_book"]),
+        0.2,
+    );
     report
 }
 
@@ -160,9 +171,13 @@ fn the_book_s_plant_with_its_own_polynomials() {
     let report = check("book");
     // The printed tables, to the level at which they are reproduced.
     let printed = &data()["printed"];
-    for (name, key) in
-        [("compressor", "AC"), ("preheater", "APH"), ("combustor", "CC"), ("turbine", "GT"), ("boiler", "HRSG")]
-    {
+    for (name, key) in [
+        ("compressor", "AC"),
+        ("preheater", "APH"),
+        ("combustor", "CC"),
+        ("turbine", "GT"),
+        ("boiler", "HRSG"),
+    ] {
         let destroyed = value(&report, &format!("/components/{name}/exergy_balance/destruction/value"));
         near(&format!("printed E_D {key}"), destroyed * 1e-3, f(&printed["destruction_MW"][key]), 0.05);
     }
