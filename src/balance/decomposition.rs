@@ -9,14 +9,12 @@
 use super::Evaluation;
 use super::purpose::enthalpy_rise;
 use super::region::{self, Bracket};
+use crate::fluid::heat_capacity::GAS_CONSTANT;
 use crate::fluid::ideal_gas::IdealGas;
 use crate::fluid::{Engine, Pair, Property, Substance};
 use crate::model::{Blocked, Dual, View};
 use crate::process::kinds::{Kind, Purposeful};
 use crate::process::{Carried, Component, ComponentId, FlowId, Side, StateId};
-
-/// Molar gas constant, J/(mol K) (CODATA 2018, exact).
-const GAS_CONSTANT: f64 = 8.314_462_618;
 
 /// A cause of entropy generation.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -328,6 +326,12 @@ fn burning(evaluation: &Evaluation<'_>, k: ComponentId) -> Result<Causes, Blocke
             causes.parts.push((Cause::Reaction, change));
         }
         None => causes.parts.push((Cause::MixingAndReaction, change)),
+    }
+    // Heat that leaves was given off by the reaction at the temperature of the products, too.
+    for (f, _, sign) in evaluation.equations.components[k].crossings() {
+        if let Carried::Heat(q, _) = process.flows[f].carried {
+            thermal.add_scaled(sign, &view.var(q)?.times(&warm_up));
+        }
     }
     with_loss(&mut causes, thermal, heats(evaluation, k)?, Some(t2));
     Ok(causes)

@@ -7,6 +7,7 @@ use super::region::flow_energy;
 use super::reservoir::{Cycle, Reservoirs};
 use super::{isentropic_enthalpy, transfers};
 use crate::fluid::chemistry::{HeatingValue, mixture_heating_value};
+use crate::fluid::heat_capacity::GAS_CONSTANT;
 use crate::fluid::{Property, Substance};
 use crate::model::{Dual, View};
 use crate::process::kinds::{Kind, Purposeful, Sorting};
@@ -17,9 +18,6 @@ use crate::quantity::Dimension;
 /// below that of the leanest furnace gases, above that of flue gas with traces of carbon monoxide
 /// (common practice).
 pub const COMBUSTIBLE: f64 = 0.5e6;
-
-/// Molar gas constant, J/(mol K) (CODATA 2018, exact).
-const GAS_CONSTANT: f64 = 8.314_462_618;
 
 /// One figure of merit.
 #[derive(Clone, Debug)]
@@ -103,12 +101,15 @@ pub fn polytropic_efficiency(view: View<'_>, before: FlowId, after: FlowId) -> O
         return None;
     }
     let engine = &process.fluids[fluid].engine;
-    let r = GAS_CONSTANT / engine.molar_mass(view.state(first).ok()?.composition)?;
-    for state in [first, second] {
+    // An ideal gas has p v / T = R / M everywhere, whichever figure its formulation takes for R.
+    let constant = |state: usize| {
         let s = &view.state(state).ok()?.state;
-        if (s.pressure * s.volume / (r * s.temperature) - 1.0).abs() > 1e-6 {
-            return None;
-        }
+        Some(s.pressure * s.volume / s.temperature)
+    };
+    let r = constant(first)?;
+    let molar = engine.molar_mass(view.state(first).ok()?.composition)?;
+    if (constant(second)? / r - 1.0).abs() > 1e-9 || (r * molar / GAS_CONSTANT - 1.0).abs() > 1e-4 {
+        return None;
     }
     let (p1, p2) =
         (view.property(first, Property::Pressure).ok()?, view.property(second, Property::Pressure).ok()?);

@@ -14,7 +14,7 @@ use super::region::{self, Region};
 use crate::fluid::{Property, Substance};
 use crate::model::{Blocked, Dual, View};
 use crate::process::kinds::{Kind, Purposeful};
-use crate::process::{Carried, Component, ComponentId, FlowId, FluidId, Process, Role, Side};
+use crate::process::{Boundary, Carried, Component, ComponentId, FlowId, FluidId, Process, Role, Side};
 
 /// Fuel below this many of its standard uncertainties makes no efficiency.
 const CLEAR_OF_ZERO: f64 = 5.0;
@@ -251,16 +251,19 @@ impl<'a, 's> Book<'a, 's> {
         flow.to.is_none() && flow.role != Some(Role::Product)
     }
 
-    /// Enters work as given, and heat and radiation that nobody asked for: what enters is spent,
-    /// what leaves is lost or, inside the plant, given back.
+    /// Enters work as given, and heat and radiation: what enters is spent, what leaves is lost or,
+    /// inside the plant, given back. Where heat can be useful, it is wanted inside the plant, and
+    /// outside where its temperature is named and it is not said to be lost.
     fn transfers_with(&mut self, work: Entry, useful_heat: bool) -> Result<(), Blocked> {
         for (f, sign) in self.transfers() {
             let e = self.transfer(f, sign)?;
             let flow = &self.process().flows[f];
+            let named = !matches!(flow.carried, Carried::Heat(_, Boundary::Unknown));
             let entry = match flow.carried {
                 Carried::Work(..) => work,
                 _ if sign > 0.0 => Entry::Fuel,
                 _ if flow.role == Some(Role::Product) => Entry::Product,
+                _ if useful_heat && named && flow.role.is_none() => Entry::Product,
                 _ if self.is_lost(f) => Entry::Loss,
                 _ if useful_heat => Entry::Product,
                 _ => Entry::Fuel,

@@ -228,7 +228,7 @@ fn only_the_primary_tests_are_listed_when_blocked_and_count_in_the_entropy_famil
                     let mut margins = Vec::new();
                     rule.margins(me, evaluation, &mut margins);
                     let info = rule.info();
-                    let primary = info.name.starts_with("negative-");
+                    let primary = info.name.ends_with("-entropy-generation");
                     for m in margins {
                         assert!(primary || m.form.is_ok(), "{} is blocked", info.name);
                         let counts = primary || info.aspect == Aspect::Interior;

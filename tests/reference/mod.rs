@@ -2,6 +2,7 @@
 
 mod chemistry;
 mod cogeneration;
+mod exergy;
 mod gas;
 mod humid_air;
 mod solution;
