@@ -7,7 +7,7 @@
 //! no care and the pressure part is exactly −∫ v dp/T at constant enthalpy.
 
 use super::Evaluation;
-use super::purpose::enthalpy_rise;
+use super::passage::{enthalpy_rise, is_empty};
 use super::region::{self, Bracket};
 use crate::fluid::heat_capacity::GAS_CONSTANT;
 use crate::fluid::ideal_gas::IdealGas;
@@ -208,7 +208,7 @@ fn passing(evaluation: &Evaluation<'_>, k: ComponentId) -> Result<Causes, Blocke
     let mut thermal = Dual::default();
     // Heat and entropy that cooled sides give off, for their mean temperature.
     let (mut cooled_heat, mut cooled_entropy) = (Dual::default(), Dual::default());
-    for side in component.sides.iter().filter(|s| !(s.inlets.is_empty() && s.outlets.is_empty())) {
+    for side in component.sides.iter().filter(|s| !is_empty(s)) {
         let ([inlet], [outlet]) = (&side.inlets[..], &side.outlets[..]) else {
             return Err(Blocked::Missing("one inlet and one outlet a side"));
         };

@@ -79,7 +79,8 @@ impl Equations {
                 // A temperature at saturation must not settle the quality; of stated figures, none
                 // follows from the others.
                 let stated = matches!(process.fluids[spec.fluid].substance, Substance::Stated);
-                if !stated && !(spec.wet_ambiguous && surplus.property == Property::Temperature) {
+                let ambiguous = spec.wet_ambiguous && surplus.property == Property::Temperature;
+                if !(stated || ambiguous) {
                     out.push(model, Row::Surplus(s, i));
                 }
             }

@@ -1,8 +1,7 @@
 //! Figures of merit of components: isentropic and polytropic efficiencies, energy efficiencies,
 //! coefficients of performance, duties and pressure losses.
 
-use super::passage::{is_adiabatic, sections};
-use super::purpose::{enthalpy_rise, is_fuel};
+use super::passage::{enthalpy_rise, is_adiabatic, is_fuel, sections};
 use super::region::flow_energy;
 use super::reservoir::{Cycle, Reservoirs};
 use super::{isentropic_enthalpy, transfers};

@@ -10,8 +10,9 @@
 //! stream above T0 takes from it below.
 
 use super::exergy::{Parts, Surroundings};
+use super::passage::{compressed_side, enthalpy_rise, is_empty, is_fuel, mean_level};
 use super::region::{self, Region};
-use crate::fluid::{Property, Substance};
+use crate::fluid::Property;
 use crate::model::{Blocked, Dual, View};
 use crate::process::kinds::{Kind, Purposeful};
 use crate::process::{Boundary, Carried, Component, ComponentId, FlowId, FluidId, Process, Role, Side};
@@ -327,7 +328,7 @@ impl<'a, 's> Book<'a, 's> {
     /// P = E2 − E1, F = W; below T0 the thermal parts are spent instead.
     fn compression(&mut self) -> Result<(), Blocked> {
         let component = self.component;
-        let main = self.compressed_side();
+        let main = compressed_side(self.view, component);
         for (i, side) in component.sides.iter().enumerate() {
             let streams = self.side(side)?;
             if Some(i) != main {
@@ -340,11 +341,6 @@ impl<'a, 's> Book<'a, 's> {
             }
         }
         self.transfers_with(Entry::Fuel, false)
-    }
-
-    /// The side whose pressure rises most.
-    fn compressed_side(&self) -> Option<usize> {
-        compressed_side(self.view, self.component)
     }
 
     /// P = W, F = E1 − ΣE2; below T0 the thermal parts are gained instead.
@@ -645,66 +641,5 @@ impl<'a, 's> Book<'a, 's> {
         }
         let work = if gain > 0.0 { Entry::Fuel } else { Entry::Product };
         self.transfers_with(work, gain <= 0.0)
-    }
-}
-
-fn is_empty(side: &Side) -> bool {
-    side.inlets.is_empty() && side.outlets.is_empty()
-}
-
-/// Mass-weighted mean of the specific enthalpy (one fluid) or of the temperature.
-fn mean_level(view: View<'_>, flows: &[FlowId], by_enthalpy: bool) -> Result<f64, Blocked> {
-    let (mut sum, mut mass) = (0.0, 0.0);
-    for &f in flows {
-        let m = view.model.process.flows[f].material().ok_or(Blocked::Missing("material"))?;
-        let level = if by_enthalpy {
-            view.enthalpy(m.state)?.value
-        } else {
-            view.property(m.state, Property::Temperature)?.value
-        };
-        let kg = view.mass(f)?.value;
-        sum += kg * level;
-        mass += kg;
-    }
-    Ok(if mass == 0.0 { 0.0 } else { sum / mass })
-}
-
-/// Rise of the mean specific enthalpy along a side, J/kg.
-///
-/// # Errors
-/// `Blocked`.
-pub(super) fn enthalpy_rise(view: View<'_>, side: &Side) -> Result<f64, Blocked> {
-    Ok(mean_level(view, &side.outlets, true)? - mean_level(view, &side.inlets, true)?)
-}
-
-/// The side of a compressor, pump or fan whose pressure rises most.
-pub fn compressed_side(view: View<'_>, component: &Component) -> Option<usize> {
-    let pressure = |f: Option<&FlowId>| {
-        let state = view.model.process.flows[*f?].material()?.state;
-        view.property(state, Property::Pressure).ok().map(|p| p.value)
-    };
-    let ratio = |side: &Side| {
-        let (before, after) = (pressure(side.inlets.first())?, pressure(side.outlets.first())?);
-        Some(after / before)
-    };
-    let sides = component.sides.iter().enumerate().filter(|(_, s)| !is_empty(s));
-    sides
-        .map(|(i, s)| (i, ratio(s).unwrap_or(0.0)))
-        .max_by(|a, b| a.1.total_cmp(&b.1).then(b.0.cmp(&a.0)))
-        .map(|(i, _)| i)
-}
-
-/// Whether an inlet of a firing component is its fuel: it is said to be, or it can burn.
-pub(super) fn is_fuel(process: &Process, component: &Component, f: FlowId) -> bool {
-    let named: Vec<FlowId> = component.ports.iter().filter(|p| p.0 == "fuel").map(|p| p.1).collect();
-    if !named.is_empty() {
-        return named.contains(&f);
-    }
-    let Some(m) = process.flows[f].material() else { return false };
-    let fluid = &process.fluids[process.states[m.state].fluid];
-    match &fluid.substance {
-        Substance::Fuel(_) => true,
-        substance => super::performance::heating_values(substance)
-            .is_some_and(|v| v.lower > super::performance::COMBUSTIBLE),
     }
 }

@@ -2,7 +2,7 @@
 
 use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, measure, phrase};
 use crate::balance::Evaluation;
-use crate::balance::purpose::compressed_side;
+use crate::balance::passage::{compressed_side, is_empty};
 use crate::model::{Decision, Dual, Margin, Scope};
 use crate::process::Carried;
 use crate::process::kinds::Kind;
@@ -83,7 +83,7 @@ fn cooled(evaluation: &Evaluation<'_>, k: usize) -> Option<(Dual, Dual, f64)> {
     let view = evaluation.view;
     let process = &view.model.process;
     let component = process.components.get(k)?;
-    let sides = component.sides.iter().filter(|s| !(s.inlets.is_empty() && s.outlets.is_empty()));
+    let sides = component.sides.iter().filter(|s| !is_empty(s));
     if component.kind != Kind::Compressor
         || measure::is_adiabatic(process, component) && sides.count() < 2
     {
