@@ -2,6 +2,8 @@
 
 mod chemistry;
 mod exchanger;
+mod cogeneration;
+mod exergy;
 mod gas;
 mod humid_air;
 mod real_fluid;
