@@ -1,6 +1,7 @@
 //! Checks against published values, one file a topic.
 
 mod chemistry;
+mod claims;
 mod gas;
 mod humid_air;
 mod solution;
