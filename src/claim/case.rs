@@ -109,17 +109,21 @@ struct Known {
     half: f64,
 }
 
+fn beyond_computing() -> Diagnostic {
+    Diagnostic::new(
+        Code::BadClaim,
+        "/claim",
+        "the figures of the claim are too large or small to compute with",
+    )
+}
+
 /// Value and uncertainty by half differences over one standard uncertainty each
 /// (JCGM 100:2008, 5.1.3, note 2).
 fn propagate(inputs: &[Input], f: &dyn Fn(&[f64]) -> Computed<f64>) -> Computed<Known> {
     let mut x: Vec<f64> = inputs.iter().map(|i| i.value).collect();
     let value = f(&x)?;
     if value.is_nan() {
-        return Err(Diagnostic::new(
-            Code::BadClaim,
-            "/claim",
-            "the figures of the claim cannot be computed with",
-        ));
+        return Err(beyond_computing());
     }
     if value.is_infinite() {
         return Ok(Known { value, u: 0.0, half: 0.0 });
@@ -225,7 +229,10 @@ impl Case {
         let (factor, scale, metric) = self.speech(inputs, units)?;
         let main = |k: Known| Figure::in_unit(k.value * factor, k.u * factor, &scale);
         let spoken = |value: f64| in_words(value * factor, &metric);
-        let claimed = propagate(inputs, &self.claimed)?;
+        let finite = |k: Known| {
+            if k.value.is_finite() && k.u.is_finite() { Ok(k) } else { Err(beyond_computing()) }
+        };
+        let claimed = finite(propagate(inputs, &self.claimed)?)?;
         let mut limits = Named::default();
         let mut verdict = Standing::Possible;
         // The deciding limit: the worst standing among the laws, and of equals the first.
@@ -274,7 +281,7 @@ impl Case {
             let sign = if sense == Sense::AtMost { 1.0 } else { -1.0 };
             let margin = propagate(inputs, &|x| Ok(sign * (physics(x)? - (self.claimed)(x)?)))?;
             let inside = strict.value.is_infinite()
-                || matches!(stand(claimed, strict.value, margin, false_alarm).0, Standing::Possible);
+                || stand(claimed, strict.value, margin, false_alarm).0 <= Standing::AtLimit;
             if !inside && verdict == Standing::Possible {
                 verdict = Standing::Undecided;
             }
@@ -283,7 +290,7 @@ impl Case {
                 bracket = Some(ClaimBracket { strict: main(strict), lenient, assumes: assumes.clone() });
             }
         }
-        let sigma = propagate(inputs, &self.entropy.value)?;
+        let sigma = finite(propagate(inputs, &self.entropy.value)?)?;
         let z_sigma = deciding.map_or_else(
             || clamped(sigma.value / sigma.u.max(ROUNDING * sigma.value.abs()).max(f64::MIN_POSITIVE)),
             |d| d.3,
@@ -368,7 +375,9 @@ impl Case {
         if !self.not_included.is_empty() {
             say(&format!("Not included: {}.", self.not_included.join("; ")));
         }
-        let missing: Vec<&str> = desk.missing.iter().map(|m| m.statement.as_str()).collect();
+        // What is not included has been said.
+        let gaps = desk.missing.iter().filter(|m| m.r#where != super::words::AUXILIARIES);
+        let missing: Vec<&str> = gaps.map(|m| m.statement.as_str()).collect();
         if !missing.is_empty() {
             say(&format!("To decide better: {}.", missing.join("; ")));
         }
@@ -431,33 +440,33 @@ impl Case {
             out.push(' ');
             out.push_str(&text);
         };
-        let Some(first) = said.deciding else {
-            say(format!(
-                "The second law sets no limit to {} under these conditions; the claim is possible.",
-                self.figure.1
-            ));
-            return;
-        };
+        let name = self.figure.1;
+        if said.deciding.is_none() {
+            say(format!("Under these conditions the second law sets the {name} no limit."));
+        }
         for (i, limit, standing) in &said.sentences {
             let Some(l) = self.limits.get(*i) else { continue };
             let side = if l.sense == Sense::AtMost { "at most" } else { "at least" };
-            let of = l.of.as_ref().map_or(self.figure.1.to_owned(), |o| o.0.replace('_', " "));
+            let of = l.of.as_ref().map_or(name.to_owned(), |o| o.0.replace('_', " "));
+            let label = l.name.replace('_', " ");
             if l.law {
-                say(format!("The second law allows {of} to be {side} {limit} ({}).", l.assumes));
+                say(format!("By the second law the {of} is {side} {limit} ({label}: {}).", l.assumes));
             } else {
                 let where_it_is = match standing {
-                    Standing::Possible => "keeps within it",
-                    Standing::AtLimit => "is at it",
-                    Standing::Undecided => "cannot be told from it",
+                    Standing::Possible => "keeps within that",
+                    Standing::AtLimit => "is at that figure",
+                    Standing::Undecided => "cannot be told from that figure",
                     Standing::Impossible => "goes beyond it, which some designs can",
                 };
-                say(format!("For reference: {side} {limit} ({}); the claim {where_it_is}.", l.assumes));
+                say(format!(
+                    "For reference, {side} {limit} ({label}: {}); the claim {where_it_is}.",
+                    l.assumes
+                ));
             }
         }
         let figure = &said.figure;
         let rounding =
             said.width.as_ref().map(|w| format!(" (±{w} by its printed digits)")).unwrap_or_default();
-        let name = self.figure.1;
         say(match said.verdict {
             Standing::Possible => format!("The claimed {name} of {figure}{rounding} is possible."),
             Standing::AtLimit => format!(
@@ -465,17 +474,15 @@ impl Case {
                  or temperature difference would reach it."
             ),
             Standing::Impossible => {
-                let which = self.limits.get(first).and_then(|l| l.of.as_ref()).map_or("", |o| o.0);
-                let which = if which.is_empty() {
-                    String::new()
-                } else {
-                    format!(" by its {}", which.replace('_', " "))
-                };
-                format!("The claimed {name} of {figure}{rounding} is impossible{which} as stated.")
+                let of = said.deciding.and_then(|i| self.limits.get(i)?.of.as_ref());
+                let by = of.map(|o| format!(" for its {}", o.0.replace('_', " "))).unwrap_or_default();
+                format!("The claimed {name} of {figure}{rounding} is impossible as stated{by}.")
             }
-            Standing::Undecided if bracket.is_some() => format!(
-                "Whether the claimed {name} of {figure}{rounding} is possible depends on what is left open."
-            ),
+            Standing::Undecided if bracket.is_some() => {
+                format!(
+                    "Whether the claimed {name} of {figure}{rounding} is possible depends on what is left open."
+                )
+            }
             Standing::Undecided => format!(
                 "The claimed {name} of {figure}{rounding} cannot be told from the limit with these uncertainties."
             ),

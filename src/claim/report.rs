@@ -73,7 +73,8 @@ pub enum ClaimVerdictWord {
 pub struct ClaimedFigure {
     /// Which figure: `cop`, `efficiency`, `specific_work` and the like.
     pub name: &'static str,
-    /// Its value; the uncertainty is that of its printed digits and what was stated.
+    /// Its value, in the unit in which it was claimed where it has one; the uncertainty is that of
+    /// its printed digits and what was stated.
     pub figure: Figure,
     /// Half the interval that its printed digits stand for, in the figure's unit.
     pub half_width: f64,

@@ -184,6 +184,12 @@ pub fn machine(desk: &mut Desk<'_>, machine: Machine) -> Option<Case> {
     if machine == Machine::HeatPump {
         notes.push("A COP of 1 is that of an electric heater.".to_owned());
     }
+    let x: Vec<f64> = desk.inputs.iter().map(|i| i.value).collect();
+    if engine && claimed(&x).is_ok_and(|eta| eta > 1.0) {
+        notes.push(
+            "It would deliver more work than the heat it takes in, against the first law too.".to_owned(),
+        );
+    }
     let per_heat = entropy(None);
     let subject_figure = claimed.clone();
     Some(Case {
@@ -202,7 +208,11 @@ pub fn machine(desk: &mut Desk<'_>, machine: Machine) -> Option<Case> {
         figures,
         contradictions: Vec::new(),
         notes,
-        not_included: desk.auxiliaries("the power of pumps, fans, defrosting and controls"),
+        not_included: desk.auxiliaries(if engine {
+            "the power of feed pumps, cooling and controls"
+        } else {
+            "the power of pumps, fans, defrosting and controls"
+        }),
         cautions: cautions(machine),
     })
 }

@@ -18,13 +18,16 @@ pub const ELECTRIC: &str = "Cells and stacks stay under voltage when switched of
 /// Asphyxiating gases.
 pub const GASES: &str = "Separated gases can displace air, and enriched oxygen makes almost anything burn.";
 
+/// Pointer of the member that tells whether auxiliaries are included.
+pub const AUXILIARIES: &str = "/includes_auxiliaries";
+
 impl super::desk::Desk<'_> {
     /// What the figure leaves out, by what the claim says of auxiliaries.
     pub fn auxiliaries(&mut self, what: &'static str) -> Vec<&'static str> {
         if self.root.get("includes_auxiliaries").and_then(crate::document::Node::boolean) == Some(true) {
             return Vec::new();
         }
-        self.lacks("/includes_auxiliaries", format!("{what}; the figure with it can only be worse"));
+        self.lacks(AUXILIARIES, format!("{what}; the figure with it can only be worse"));
         vec![what]
     }
 }
