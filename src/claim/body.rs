@@ -33,7 +33,7 @@ pub enum View {
 #[derive(Clone, Debug)]
 enum Temperatures {
     Constant(Given),
-    Sliding(Given, Given, Option<(Medium, Given)>),
+    Sliding(Given, Given, Option<Box<(Medium, Given)>>),
     Inlet(Given),
     Outlet(Given),
 }
@@ -62,7 +62,8 @@ impl Body {
                 Ok(1.0 / t.at(x))
             }
             (Temperatures::Sliding(a, b, None), _) => Ok(inverse_log_mean(a.at(x), b.at(x))),
-            (Temperatures::Sliding(a, b, Some((medium, p))), _) => {
+            (Temperatures::Sliding(a, b, Some(real)), _) => {
+                let (medium, p) = real.as_ref();
                 let state = |t: f64| medium.state(Pair::PressureTemperature, p.at(x), t, &self.pointer);
                 let (one, two) = (state(a.at(x))?, state(b.at(x))?);
                 let dh = two.enthalpy - one.enthalpy;
@@ -201,7 +202,7 @@ impl Desk<'_> {
         }
         let temperatures = match (constant, inlet, outlet) {
             (Some(t), None, None) => Temperatures::Constant(t),
-            (None, Some(a), Some(b)) => Temperatures::Sliding(a, b, medium.zip(pressure)),
+            (None, Some(a), Some(b)) => Temperatures::Sliding(a, b, medium.zip(pressure).map(Box::new)),
             (None, Some(t), None) => Temperatures::Inlet(t),
             (None, None, Some(t)) => Temperatures::Outlet(t),
             (None, None, None) => {

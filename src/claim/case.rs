@@ -9,9 +9,13 @@ use crate::evidence::{normal_cdf, normal_quantile};
 use crate::quantity::{Dimension, Scale, UnitSystem, display};
 use crate::report::{Figure, Named};
 use crate::rules::phrase;
+use std::rc::Rc;
 
 /// A figure as function of the inputs.
 pub type Physics = Box<dyn Fn(&[f64]) -> Computed<f64>>;
+
+/// A figure that several closures use.
+pub type Shared = Rc<dyn Fn(&[f64]) -> Computed<f64>>;
 
 /// Relative rounding of a computed limit.
 const ROUNDING: f64 = 1e-9;

@@ -212,7 +212,7 @@ impl<'t> Desk<'t> {
     ) -> Option<Given> {
         let given = self.member(of, name, dimension, role)?;
         let value = self.inputs.get(given.index).map_or(f64::NAN, |i| i.value);
-        let bad = if !(value > 0.0) {
+        let bad = if value.is_nan() || value <= 0.0 {
             Some("must be above zero".to_owned())
         } else {
             most.filter(|m| value > *m).map(|m| format!("can be at most {m}"))
@@ -326,7 +326,7 @@ impl<'t> Desk<'t> {
         let claim = self.claim();
         let has = |name: &&str| claim.is_some_and(|c| c.get(name).is_some());
         let touched: Vec<usize> =
-            groups.iter().enumerate().filter(|(_, g)| g.iter().any(|n| has(&n))).map(|(i, _)| i).collect();
+            groups.iter().enumerate().filter(|(_, g)| g.iter().any(has)).map(|(i, _)| i).collect();
         let forms = || {
             let forms: Vec<String> = groups.iter().map(|g| format!("\"{}\"", g.join("\" with \""))).collect();
             format!("one of: {}", forms.join("; "))

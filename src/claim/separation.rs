@@ -1,7 +1,7 @@
 //! Separation: the least work by the Gibbs energy of mixing.
 
 use super::body::{Body, Side, View};
-use super::case::{Case, Entropy, Limit, Physics, Sense, Shown};
+use super::case::{Case, Entropy, Limit, Physics, Sense, Shared, Shown};
 use super::desk::{Computed, Desk, Given, Role, trouble};
 use super::words;
 use crate::diagnostic::{Code, Diagnostic, nearest};
@@ -23,7 +23,12 @@ const NEAR_ZERO: f64 = 1e-5;
 /// Atmospheric pressure, Pa: that of a salt solution.
 const ATMOSPHERE: f64 = 101_325.0;
 
-fn temperature(desk: &mut Desk<'_>) -> Option<Rc<dyn Fn(&[f64]) -> f64>> {
+/// A temperature of the inputs, K.
+type Kelvin = Rc<dyn Fn(&[f64]) -> f64>;
+/// Amount of product per volume, where the reference counts it.
+type PerVolume = Box<dyn Fn(&[f64], Reference) -> Computed<f64>>;
+
+fn temperature(desk: &mut Desk<'_>) -> Option<Kelvin> {
     let root = Some(desk.root);
     if desk.root.get("temperature").is_some() {
         let t = desk.member(root, "temperature", D::Temperature, Role::Condition)?;
@@ -181,14 +186,14 @@ struct Basis {
     subject: String,
     least: Physics,
     /// SI value of each claimable figure per SI value of the least work: by volume, mass, mole.
-    volume: Option<Box<dyn Fn(&[f64], Reference) -> Computed<f64>>>,
+    volume: Option<PerVolume>,
     mass: Option<Physics>,
     mole: Option<Physics>,
     entropy: (D, &'static str),
     dimension: D,
 }
 
-fn by_mixture(desk: &mut Desk<'_>, feed: Node<'_>, t: &Rc<dyn Fn(&[f64]) -> f64>) -> Option<Basis> {
+fn by_mixture(desk: &mut Desk<'_>, feed: Node<'_>, t: &Kelvin) -> Option<Basis> {
     let mixture = Rc::new(mixture(desk, feed)?);
     let product = desk.root.get("product").and_then(Node::text).unwrap_or_default();
     let subject = format!("A separation of {product} from a mixture is claimed.");
@@ -213,7 +218,7 @@ fn by_mixture(desk: &mut Desk<'_>, feed: Node<'_>, t: &Rc<dyn Fn(&[f64]) -> f64>
     })
 }
 
-fn by_solution(desk: &mut Desk<'_>, t: &Rc<dyn Fn(&[f64]) -> f64>) -> Option<Basis> {
+fn by_solution(desk: &mut Desk<'_>, t: &Kelvin) -> Option<Basis> {
     let root = Some(desk.root);
     let name = desk.root.get("solution").and_then(Node::text).unwrap_or("seawater");
     let solution = if name == "seawater" { Solution::seawater() } else { Solution::sodium_chloride() };
@@ -363,7 +368,7 @@ pub fn separation(desk: &mut Desk<'_>) -> Option<Case> {
     };
     let factor = Rc::new(factor);
     // Work that the driving heat could do at most, per heat.
-    let worth: Rc<dyn Fn(&[f64]) -> Computed<f64>> = if form == 3 {
+    let worth: Shared = if form == 3 {
         let source = heat_source(desk)?;
         let t = t.clone();
         Rc::new(move |x| {

@@ -16,7 +16,8 @@ const LAW: &str = "the energy and entropy balances of a steady adiabatic device 
 /// Where it has no value within, the part towards `low` is searched.
 fn pressure_at_zero(low: f64, high: f64, f: impl Fn(f64) -> Computed<f64>) -> Option<f64> {
     let (mut a, mut b) = (low.ln(), high.ln());
-    if !(f(low).ok()? >= 0.0) {
+    let start = f(low).ok()?;
+    if start.is_nan() || start < 0.0 {
         return None;
     }
     if let Ok(top) = f(high)
@@ -37,7 +38,7 @@ fn pressure_at_zero(low: f64, high: f64, f: impl Fn(f64) -> Computed<f64>) -> Op
     let found = (0.5 * (a + b)).exp();
     // An end of the formulation's range is no root.
     let here = f(a.exp()).ok()?;
-    let scale = f(low).ok()?.abs().max(1.0);
+    let scale = start.abs().max(1.0);
     (here.abs() <= 1e-6 * scale).then_some(found)
 }
 

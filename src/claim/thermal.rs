@@ -1,7 +1,7 @@
 //! Machines between two bodies: heat engine, refrigerator, heat pump, and plain heat transfer.
 
 use super::body::{Body, Side, View};
-use super::case::{Case, Entropy, Limit, Physics, Sense};
+use super::case::{Case, Entropy, Limit, Physics, Sense, Shared};
 use super::desk::{Computed, Desk, Given, Role};
 use crate::quantity::Dimension as D;
 use std::rc::Rc;
@@ -113,7 +113,7 @@ pub fn machine(desk: &mut Desk<'_>, machine: Machine) -> Option<Case> {
     source.refuse_unbounded(desk, &sink);
     sink.refuse_unbounded(desk, &source);
     let (claimed, total) = claimed?;
-    let claimed: Rc<dyn Fn(&[f64]) -> Computed<f64>> = Rc::from(claimed);
+    let claimed: Shared = Rc::from(claimed);
     source.note_missing(desk);
     sink.note_missing(desk);
     let (kind, article, words, per) = match machine {

@@ -36,6 +36,37 @@ fn query(kind: &str, text: &str) -> Result<Value, Vec<Diagnostic>> {
     }
 }
 
+/// Every reference of the published schema leads somewhere.
+#[test]
+fn the_schema_is_whole() {
+    let components = sigmadot::document::union_components(&CLAIM);
+    assert_eq!(components["Claim"]["oneOf"].as_array().unwrap().len(), CLAIM.variants.len());
+    let text = serde_json::to_string(&components).unwrap();
+    for reference in text.split("\"$ref\":\"").skip(1).map(|rest| rest.split('"').next().unwrap()) {
+        let name = reference.strip_prefix(sigmadot::document::REFERENCE_PREFIX).unwrap();
+        assert!(components.contains_key(name), "{name}");
+    }
+}
+
+/// Where heat flows by itself the law sets no limit to a COP; and an open glide that the claim hangs
+/// on leaves it undecided.
+#[test]
+fn no_limit_and_no_decision() {
+    let downhill =
+        judge(json!({"kind": "heat_pump", "source": "80 degC", "sink": "40 degC", "claim": {"cop": 50}}));
+    assert_eq!(downhill["verdict"], "possible");
+    assert!(downhill.get("limit").is_none() && downhill["limits"] == json!({}));
+    assert!(downhill["statement"].as_str().unwrap().contains("no limit"));
+    let open = judge(
+        json!({"kind": "heat_pump", "source": {"inlet": "7 degC"}, "sink": "35 degC", "claim": {"cop": 9}}),
+    );
+    assert_eq!(open["verdict"], "undecided");
+    near(&open, "/bracket/lenient/value", 308.15 / 28.0, 1e-9);
+    let report = judge(json!({"kind": "refrigerator", "source": {"inlet": "12 degC", "outlet": "7 degC"},
+        "sink": {"inlet": "30 degC"}, "claim": {"cop": 30}}));
+    assert_eq!(report["verdict"], "impossible");
+}
+
 #[test]
 fn every_example_is_judged() {
     assert_eq!(catalogue().count(), CLAIM.variants.len());
@@ -265,7 +296,7 @@ fn compressor_limits() {
     let density = 1e5 / (r * 300.0);
     let normal = 101_325.0 / (r * 273.15);
     for (text, want) in
-        [("6 kW/(m3/min)", isothermal * density / 60e3), ("0.1 kWh/Nm3", isothermal * normal / 3.6e6)]
+        [("6 kW/(m3/min)", isothermal * density / 60e3), ("0.12 kWh/Nm3", isothermal * normal / 3.6e6)]
     {
         let report = judge(
             json!({"kind": "compressor", "fluid": gas, "inlet": {"temperature": "300 K", "pressure": "1 bar"},
