@@ -101,6 +101,8 @@ pub struct Case {
     pub notes: Vec<String>,
     /// What the figure leaves out, for the statement.
     pub not_included: Vec<&'static str>,
+    /// What usually lies behind a claim beyond the limit.
+    pub causes: &'static [&'static str],
     /// Cautions.
     pub cautions: Vec<&'static str>,
 }
@@ -371,6 +373,9 @@ impl Case {
         for remark in contradictions.iter().chain(&practice) {
             say(&remark.statement);
         }
+        if verdict >= Standing::Undecided && !self.causes.is_empty() {
+            say(&format!("What usually lies behind such a figure: {}.", self.causes.join("; ")));
+        }
         say(&format!("The limit follows from: {}.", self.law));
         let assumed: Vec<&str> = desk.assumptions.iter().map(|a| a.statement.as_str()).collect();
         if !assumed.is_empty() {
@@ -409,6 +414,7 @@ impl Case {
             figures,
             contradictions,
             practice,
+            causes: if verdict >= Standing::Undecided { self.causes.to_vec() } else { Vec::new() },
             missing: desk.missing,
             assumptions: desk.assumptions,
             cautions: self.cautions,

@@ -213,6 +213,7 @@ pub fn cell(desk: &mut Desk<'_>, delivers: bool) -> Option<Case> {
         notes,
         not_included: desk
             .auxiliaries("rectifier or inverter, water treatment, compression, drying, pumps and cooling"),
+        causes: &["higher and lower heating value mixed up", "heat supplied from outside left out"],
         cautions: vec![words::JUDGES, words::HYDROGEN, words::ELECTRIC, words::PRESSURE],
     })
 }

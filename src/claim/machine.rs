@@ -291,6 +291,19 @@ pub fn machine(desk: &mut Desk<'_>, compresses: bool) -> Option<Case> {
         not_included: desk.auxiliaries(
             "losses of drive, gearbox, cooling and controls, and pressure losses of filters and dryers",
         ),
+        causes: if compresses {
+            &[
+                "a flow at normal conditions taken for the actual one",
+                "a gauge pressure taken for an absolute one",
+                "shaft power at part load or without losses",
+            ]
+        } else {
+            &[
+                "a wet outlet read as dry",
+                "a gauge pressure taken for an absolute one",
+                "heat or a second stream left out",
+            ]
+        },
         cautions: vec![words::JUDGES, words::PRESSURE, words::HOT],
     })
 }

@@ -41,6 +41,9 @@ pub struct ClaimReport {
     pub contradictions: Vec<ClaimRemark>,
     /// Where practice would ask for evidence.
     pub practice: Vec<ClaimRemark>,
+    /// What usually lies behind a claim that is impossible or cannot be told from its limit.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub causes: Vec<&'static str>,
     /// What would decide better.
     pub missing: Vec<ClaimMissing>,
     /// What was assumed because it was not given.

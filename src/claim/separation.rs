@@ -417,6 +417,10 @@ pub fn separation(desk: &mut Desk<'_>) -> Option<Case> {
         contradictions: Vec::new(),
         notes: Vec::new(),
         not_included: desk.auxiliaries("intake, pretreatment, compression, drying and controls"),
+        causes: &[
+            "pretreatment, recovered energy or driving heat left out",
+            "another purity or recovery than stated",
+        ],
         cautions: vec![words::JUDGES, words::PRESSURE, words::GASES],
     })
 }

@@ -126,6 +126,7 @@ pub fn ejector(desk: &mut Desk<'_>) -> Option<Case> {
         contradictions: Vec::new(),
         notes: Vec::new(),
         not_included: Vec::new(),
+        causes: &["a gauge pressure taken for an absolute one", "motive flow that was not counted"],
         cautions: vec![words::JUDGES, words::PRESSURE, words::HOT],
     })
 }
@@ -260,6 +261,7 @@ pub fn splitter(desk: &mut Desk<'_>) -> Option<Case> {
         )],
         notes: Vec::new(),
         not_included: Vec::new(),
+        causes: &["a gauge pressure taken for an absolute one", "temperatures at different shares of cold gas"],
         cautions: vec![words::JUDGES, words::PRESSURE],
     })
 }

@@ -11,7 +11,7 @@ const LAW: &str = "the entropy balance of a cyclic machine, sum of Q/T over its 
                    Thermodynamics, chapters 5 and 6)";
 
 const SLIDING: &str = "streams at their entropic mean temperatures: any number of stages";
-const CONSTANT: &str = "both bodies at constant temperature";
+const CONSTANT: &str = "bodies large enough to keep their temperature";
 const OPEN: &str = "open temperatures taken in favour of the claim";
 const ENDS: &str = "all heat taken and given at the outlet temperatures of the streams, as a single cycle with \
                     evaporation and condensation at constant temperature and no temperature difference would";
@@ -213,6 +213,18 @@ pub fn machine(desk: &mut Desk<'_>, machine: Machine) -> Option<Case> {
         } else {
             "the power of pumps, fans, defrosting and controls"
         }),
+        causes: match machine {
+            Machine::Engine => &[
+                "temperatures in degrees Celsius used as absolute ones",
+                "heat counted by another heating value than the work",
+                "a source temperature that is not that of the heat taken in",
+            ],
+            _ => &[
+                "temperatures of the working fluid instead of those of source and sink",
+                "power of fans and pumps left out",
+                "heat from a second source left out",
+            ],
+        },
         cautions: cautions(machine),
     })
 }
@@ -321,6 +333,7 @@ pub fn transfer(desk: &mut Desk<'_>) -> Option<Case> {
         contradictions: Vec::new(),
         notes: Vec::new(),
         not_included: Vec::new(),
+        causes: &["source and sink interchanged", "a thermometer off, or at another place"],
         cautions: vec![super::words::JUDGES, super::words::HOT],
     })
 }

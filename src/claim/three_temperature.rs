@@ -88,7 +88,7 @@ fn case(desk: &mut Desk<'_>, design: Design) -> Case {
         } else if sliding {
             "streams at their entropic mean temperatures: any number of stages"
         } else {
-            "the bodies at constant temperature"
+            "bodies large enough to keep their temperature"
         }
         .to_owned(),
         law: true,
@@ -129,6 +129,7 @@ fn case(desk: &mut Desk<'_>, design: Design) -> Case {
         contradictions: Vec::new(),
         notes: Vec::new(),
         not_included: desk.auxiliaries("the power of solution pumps, other pumps and fans"),
+        causes: &["a second source of heat or the pumping power left out", "a rejected stream left out"],
         cautions: vec![words::JUDGES, words::HOT, words::REFRIGERANT, words::PRESSURE],
     }
 }
