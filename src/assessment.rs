@@ -346,6 +346,7 @@ fn gather(
         Aspect::Claim => 4,
         Aspect::State => 5,
         Aspect::Practice => 6,
+        Aspect::Tool => 7,
     };
     // Component findings first, so that unions are covered by what happens inside them.
     let mut sequence: Vec<usize> = (0..margins.len()).filter(|&i| broken(i)).collect();

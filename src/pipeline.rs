@@ -8,7 +8,7 @@ use crate::evidence::Sensitivity;
 use crate::model::{Margin, Model, Plan, View, Workspace};
 use crate::process::{self, Inputs, ReadLimits};
 use crate::quantity::UnitSystem;
-use crate::report::Report;
+use crate::report::{Report, StateReport};
 use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, Ordering};
 
@@ -131,4 +131,24 @@ pub fn check_bytes(
     cancel.check()?;
     let hash = sha256_hex(canonical(std::str::from_utf8(body).unwrap_or_default()).as_bytes());
     Ok(Report::assemble(&evaluation, &judgement, &exergies, &mut room.sensitivity, units, hash))
+}
+
+/// From the bytes of a question to one state.
+///
+/// # Errors
+/// See [`Failure`]; a state outside the range of its formulation is rejected here.
+pub fn state_bytes(
+    body: &[u8],
+    limits: &ReadLimits,
+    units: UnitSystem,
+    cancel: &Cancel,
+) -> Result<StateReport, Failure> {
+    let (process, inputs) = process::read_state(body, limits).map_err(Failure::Rejected)?;
+    cancel.check()?;
+    let mut room = Room::default();
+    let bound = Bound::compile(process, inputs, &mut room);
+    let view = View { model: &bound.model, workspace: &room.workspace };
+    room.sensitivity.take(view, &bound.equations, &bound.plan);
+    cancel.check()?;
+    StateReport::assemble(view, &mut room.sensitivity, units).map_err(|fault| Failure::Rejected(vec![fault]))
 }

@@ -75,8 +75,11 @@ impl Equations {
             }
         }
         for (s, spec) in process.states.iter().enumerate() {
-            for i in 0..spec.surplus.len() {
-                out.push(model, Row::Surplus(s, i));
+            for (i, surplus) in spec.surplus.iter().enumerate() {
+                // A temperature at saturation must not settle the quality.
+                if !(spec.wet_ambiguous && surplus.property == Property::Temperature) {
+                    out.push(model, Row::Surplus(s, i));
+                }
             }
         }
         for (k, component) in process.components.iter().enumerate() {

@@ -3,6 +3,7 @@
 use crate::fluid::Property;
 use crate::model::{Blocked, Dual, View, dual::log_mean};
 use crate::process::{Boundary, Carried, ComponentId, Content, FlowId, Process, VarId};
+use smallvec::SmallVec;
 
 /// Standard acceleration of free fall, m/s² (ISO 80000-3, conventional value).
 pub const GRAVITY: f64 = 9.80665;
@@ -103,13 +104,6 @@ impl Balance {
         }
     }
 
-    fn add_formulation(&mut self, key: (ComponentId, usize), derivative: f64) {
-        match self.formulation.iter_mut().find(|(k, _)| *k == key) {
-            Some((_, d)) => *d += derivative,
-            None => self.formulation.push((key, derivative)),
-        }
-    }
-
     fn close(&mut self, inward: f64, outward: f64) {
         self.throughput = inward.max(outward);
     }
@@ -185,13 +179,11 @@ pub fn energy(view: View<'_>, region: &Region) -> Result<Balance, Blocked> {
             tally(sign, e.value.abs());
         }
     }
-    for (c, k, sign) in region.contents(process) {
+    for (c, _, sign) in region.contents(process) {
         let mass = view.mass_of(c.state, c.amount, c.form)?;
         out.add(sign, &mass.times(&view.internal_energy(c.state)?));
         let relative = relative_enthalpy(view, c.state)?;
         tally(sign, (mass.value * relative).abs());
-        let u = formulation_uncertainty(view, c.state);
-        out.add_formulation((k, process.states[c.state].fluid), sign * mass.value * relative * u);
     }
     add_formulations(view, region, &mut out, relative_enthalpy);
     for &k in &region.members {
@@ -334,13 +326,11 @@ pub fn entropy(view: View<'_>, region: &Region, bracket: Bracket) -> Result<Bala
             Carried::Work(..) => {}
         }
     }
-    for (c, k, sign) in region.contents(process) {
+    for (c, _, sign) in region.contents(process) {
         let mass = view.mass_of(c.state, c.amount, c.form)?;
         out.add(sign, &mass.times(&view.entropy(c.state)?));
         let relative = relative_entropy(view, c.state)?;
         tally(sign, (mass.value * relative).abs());
-        let u = formulation_uncertainty(view, c.state);
-        out.add_formulation((k, process.states[c.state].fluid), sign * mass.value * relative * u);
     }
     add_formulations(view, region, &mut out, relative_entropy);
     out.close(inward, outward);
@@ -349,6 +339,9 @@ pub fn entropy(view: View<'_>, region: &Region, bracket: Bracket) -> Result<Bala
 
 /// Adds what the property formulations leave uncertain at the flows of every member: the terms of
 /// a union are the sums of its members' terms, so that balances stay additive in every respect.
+///
+/// One relative error is common to all states of a fluid in a component, the largest of theirs, so
+/// that it cancels for equal states.
 fn add_formulations(
     view: View<'_>,
     region: &Region,
@@ -358,15 +351,39 @@ fn add_formulations(
     let process = &view.model.process;
     for &k in &region.members {
         let component = &process.components[k];
-        for (flows, sign) in [(&component.inlets, 1.0), (&component.outlets, -1.0)] {
-            for &f in flows {
-                if let Some(m) = process.flows[f].material()
-                    && let (Ok(mass), Ok(figure)) = (view.mass(f), relative(view, m.state))
-                {
-                    let u = formulation_uncertainty(view, m.state);
-                    out.add_formulation((k, process.states[m.state].fluid), sign * mass.value * figure * u);
+        let first = out.formulation.len();
+        let mut largest: SmallVec<[f64; 4]> = SmallVec::new();
+        let mut add = |state: usize, mass: Result<Dual, Blocked>, sign: f64| {
+            let (Ok(mass), Ok(figure)) = (mass, relative(view, state)) else { return };
+            let key = (k, process.states[state].fluid);
+            let u = formulation_uncertainty(view, state);
+            match out.formulation[first..].iter().position(|(other, _)| *other == key) {
+                Some(at) => {
+                    out.formulation[first + at].1 += sign * mass.value * figure;
+                    largest[at] = largest[at].max(u);
+                }
+                None => {
+                    out.formulation.push((key, sign * mass.value * figure));
+                    largest.push(u);
                 }
             }
+        };
+        for (flows, sign) in [(&component.inlets, 1.0), (&component.outlets, -1.0)] {
+            for &f in flows {
+                if let Some(m) = process.flows[f].material() {
+                    add(m.state, view.mass(f), sign);
+                }
+            }
+        }
+        if let Some(holdup) = &component.holdup {
+            for (contents, sign) in [(&holdup.initial, 1.0), (&holdup.r#final, -1.0)] {
+                for c in contents {
+                    add(c.state, view.mass_of(c.state, c.amount, c.form), sign);
+                }
+            }
+        }
+        for ((_, derivative), u) in out.formulation[first..].iter_mut().zip(&largest) {
+            *derivative *= u;
         }
     }
 }

@@ -2,7 +2,7 @@
 
 use super::{Dual, Model, Scale, Slot};
 use crate::fluid::{CompositionForm, Pair, Property, PropertyError, State, state::PROPERTIES};
-use crate::process::{AmountForm, FlowId, Inputs, StateForm, StateId, Var, VarId};
+use crate::process::{AmountForm, FlowId, Inputs, SourceId, StateForm, StateId, Var, VarId};
 use std::cell::OnceCell;
 
 /// Why a figure cannot be had.
@@ -32,6 +32,7 @@ pub struct StateValue {
 /// Reusable room for one evaluation.
 #[derive(Debug, Default)]
 pub struct Workspace {
+    sources: Vec<f64>,
     vars: Vec<f64>,
     known: Vec<bool>,
     states: Vec<OnceCell<Result<StateValue, PropertyError>>>,
@@ -41,6 +42,7 @@ impl Workspace {
     /// Takes new inputs: given variables get their values, unknown ones are forgotten.
     pub fn bind(&mut self, model: &Model, inputs: &Inputs) {
         let process = &model.process;
+        self.sources.clone_from(&inputs.values);
         self.vars.clear();
         self.known.clear();
         for var in &process.vars {
@@ -76,6 +78,11 @@ impl Workspace {
         for &s in &model.dependents[var] {
             self.states[s].take();
         }
+    }
+
+    /// The value of a source, as bound.
+    pub fn source(&self, source: SourceId) -> f64 {
+        self.sources.get(source).copied().unwrap_or(0.0)
     }
 
     /// Whether a variable has a value.

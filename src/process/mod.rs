@@ -6,7 +6,7 @@ pub mod kinds;
 mod read;
 pub mod shape;
 
-pub use read::{ReadLimits, read};
+pub use read::{ReadLimits, read, read_state};
 
 use crate::fluid::{CompositionForm, Engine, Pair, Property, Substance};
 use kinds::Kind;

@@ -39,6 +39,20 @@ pub static DESCRIPTION: ObjectShape = ObjectShape {
     ]],
 };
 
+/// A question for one state.
+pub static STATE_QUESTION: ObjectShape = ObjectShape {
+    name: "StateQuestion",
+    doc: "One state of a fluid, fixed by two properties.",
+    fields: &[
+        &[
+            required("fluid", FLUID, "The fluid."),
+            optional("environment", Shape::Object(&ENVIRONMENT), "The surroundings, for exergy."),
+            optional("fluids", FLUIDS, "Own fluids by name."),
+        ],
+        STATE_FIELDS,
+    ],
+};
+
 const BASES: &[(&str, &str)] = &[("rate", "Steady flow: kg/s and kW."), ("amount", "A batch: kg and kJ.")];
 
 static ENVIRONMENT: ObjectShape = ObjectShape {

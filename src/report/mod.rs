@@ -2,9 +2,11 @@
 
 mod assemble;
 mod figure;
+mod state;
 mod text;
 
 pub use figure::{Figure, Named};
+pub use state::StateReport;
 
 use serde::Serialize;
 #[cfg(feature = "server")]

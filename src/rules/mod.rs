@@ -5,7 +5,16 @@
 //! [`RuleInfo`] with a breaking and a keeping case, its margins, its explanation), and add it to
 //! the list below.
 
+mod carnot;
+mod machine;
+mod measure;
 pub mod phrase;
+mod remark;
+mod reservoir;
+mod saturation;
+mod terminal;
+#[cfg(test)]
+mod tests;
 
 use crate::balance::Evaluation;
 use crate::model::{Decision, Family, Margin};
@@ -94,6 +103,8 @@ pub enum Aspect {
     State,
     /// A habit of the trade.
     Practice,
+    /// The tool's own arithmetic.
+    Tool,
 }
 
 /// A case that breaks or keeps a rule.
@@ -181,6 +192,33 @@ macro_rules! rules {
 
 rules! {
     negative_entropy_generation::NegativeEntropyGeneration,
+    negative_group_entropy_generation::NegativeGroupEntropyGeneration,
+    negative_plant_entropy_generation::NegativePlantEntropyGeneration,
+    heat_flows_uphill::HeatFlowsUphill,
+    clausius_inequality_broken::ClausiusInequalityBroken,
+    work_from_one_reservoir::WorkFromOneReservoir,
+    engine_beats_carnot::EngineBeatsCarnot,
+    refrigerator_beats_carnot::RefrigeratorBeatsCarnot,
+    heat_pump_beats_carnot::HeatPumpBeatsCarnot,
+    expander_beats_isentropic::ExpanderBeatsIsentropic,
+    compressor_beats_isentropic::CompressorBeatsIsentropic,
+    throttle_against_entropy::ThrottleAgainstEntropy,
+    terminal_temperature_cross::TerminalTemperatureCross,
+    parallel_flow_outlet_cross::ParallelFlowOutletCross,
+    mass_imbalance::MassImbalance,
+    element_imbalance::ElementImbalance,
+    energy_imbalance::EnergyImbalance,
+    composition_sum::CompositionSum,
+    surplus_property_mismatch::SurplusPropertyMismatch,
+    redundant_readings_disagree::RedundantReadingsDisagree,
+    state_outside_formulation::StateOutsideFormulation,
+    vapour_below_saturation::VapourBelowSaturation,
+    liquid_above_saturation::LiquidAboveSaturation,
+    quality_out_of_range::QualityOutOfRange,
+    wetness_unknown::WetnessUnknown,
+    reversed_flow::ReversedFlow,
+    unusual_dead_state::UnusualDeadState,
+    gouy_stodola_mismatch::GouyStodolaMismatch,
 }
 
 /// The index of a rule by name.

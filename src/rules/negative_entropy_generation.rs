@@ -78,12 +78,12 @@ pub(super) fn explain_generation(
     };
     let verb = if decision.value < 0.0 { "destroys" } else { "generates" };
     Explanation {
-        statement: format!(
+        statement: phrase::sentence(format!(
             "{subject} {verb} entropy: σ = {}{spread} (z = {}; probability that σ < 0: {}).",
             phrase::figure(decision.value, dimension),
             phrase::number(decision.z),
             phrase::probability(decision.probability_negative),
-        ),
+        )),
         value: Some(Figure { value: decision.value, dimension }),
         limit: Some(Figure { value: 0.0, dimension }),
         ..Explanation::default()

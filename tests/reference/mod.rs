@@ -4,6 +4,7 @@ mod chemistry;
 mod claims;
 mod gas;
 mod humid_air;
+mod real_fluid;
 mod solution;
 mod steam;
 

@@ -5,7 +5,7 @@ mod fluids;
 mod states;
 mod values;
 
-use super::shape::DESCRIPTION;
+use super::shape::{DESCRIPTION, STATE_QUESTION};
 use super::*;
 use crate::diagnostic::{Code, Diagnostic, nearest};
 use crate::document::{self, Faults, Node, Tree};
@@ -62,6 +62,50 @@ pub fn read(body: &[u8], limits: &ReadLimits) -> Result<(Process, Inputs), Vec<D
     }
     let mut reader = Reader::new(root, limits, faults);
     reader.run();
+    if reader.faults.is_empty() { Ok((reader.process, reader.inputs)) } else { Err(reader.faults.into_vec()) }
+}
+
+/// Reads a question for one state: a process that holds this state only.
+///
+/// # Errors
+/// Every fault that was found, located.
+pub fn read_state(body: &[u8], limits: &ReadLimits) -> Result<(Process, Inputs), Vec<Diagnostic>> {
+    let mut faults = Faults::new();
+    let Some(tree) = Tree::read(body, &limits.tree, &mut faults) else {
+        return Err(faults.into_vec());
+    };
+    document::check(&tree, &STATE_QUESTION, &mut faults);
+    if !faults.is_empty() {
+        return Err(faults.into_vec());
+    }
+    let root = tree.root();
+    let mut reader = Reader::new(root, limits, faults);
+    reader.environment();
+    if let Some(n) = root.get("fluid")
+        && let Some(fluid) = reader.fluid(n)
+        && reader.state(root, fluid, "the state", false, None).is_some()
+    {
+        reader.mark_wetness();
+        let open = reader.process.vars.iter().find_map(|v| match v {
+            Var::Unknown { what, .. } => Some(what.clone()),
+            Var::Given(_) => None,
+        });
+        if reader.process.states[0].wet_ambiguous {
+            reader.fault(
+                Diagnostic::new(
+                    Code::Unsolvable,
+                    "",
+                    "pressure and temperature lie at saturation within their digits: the wetness is not known",
+                )
+                .hint("give \"quality\", or \"phase\": \"saturated-vapour\" or \"saturated-liquid\""),
+            );
+        } else if let Some(what) = open {
+            reader.fault(
+                Diagnostic::new(Code::Unsolvable, "", format!("the {what} is not given"))
+                    .hint("a state is fixed by two properties, for instance pressure and temperature"),
+            );
+        }
+    }
     if reader.faults.is_empty() { Ok((reader.process, reader.inputs)) } else { Err(reader.faults.into_vec()) }
 }
 
