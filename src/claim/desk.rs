@@ -7,6 +7,9 @@ use crate::fluid::perfect_gas::PerfectGas;
 use crate::fluid::{self, Engine, Pair, PropertyError, State};
 use crate::quantity::{Dimension, Reference, Scale};
 use crate::report::{AssumptionReport, Formulation, Named};
+use std::cell::RefCell;
+use std::collections::HashMap;
+use std::rc::Rc;
 use std::sync::Arc;
 
 /// Barometric pressure where it is not given, and its standard uncertainty: the spread of weather
@@ -65,12 +68,22 @@ pub struct Medium {
     pub engine: Arc<dyn Engine>,
     /// Name.
     pub name: String,
+    /// States found so far: a claim asks for the same ones again and again.
+    known: Known,
 }
+
+type Known = Rc<RefCell<HashMap<(Pair, u64, u64), State>>>;
 
 impl Medium {
     /// A state, with faults at `pointer`.
     pub fn state(&self, pair: Pair, a: f64, b: f64, pointer: &str) -> Computed<State> {
-        self.engine.state(pair, a, b, 0.0).map_err(|e| trouble(pointer, &self.name, &e))
+        let key = (pair, a.to_bits(), b.to_bits());
+        if let Some(state) = self.known.borrow().get(&key) {
+            return Ok(*state);
+        }
+        let state = self.engine.state(pair, a, b, 0.0).map_err(|e| trouble(pointer, &self.name, &e))?;
+        self.known.borrow_mut().insert(key, state);
+        Ok(state)
     }
 }
 
@@ -258,7 +271,7 @@ impl<'t> Desk<'t> {
         let node = of?.get(name)?;
         let medium = match node.text() {
             Some(text) => match fluid::by_name(text) {
-                Ok((_, engine)) => Medium { engine, name: text.to_owned() },
+                Ok((_, engine)) => Medium { engine, name: text.to_owned(), known: Known::default() },
                 Err(near) => {
                     let shown: String = text.chars().take(40).collect();
                     let fault = node.fault(Code::UnknownFluid, format!("\"{shown}\" is not a known fluid"));
@@ -278,7 +291,11 @@ impl<'t> Desk<'t> {
                 let heat = figure("specific_heat", Dimension::SpecificEntropy);
                 let gas = PerfectGas::with_constant(molar_mass?, heat?);
                 match gas {
-                    Ok(gas) => Medium { engine: Arc::new(gas), name: "perfect gas".to_owned() },
+                    Ok(gas) => Medium {
+                        engine: Arc::new(gas),
+                        name: "perfect gas".to_owned(),
+                        known: Known::default(),
+                    },
                     Err(e) => {
                         self.faults.push(trouble(&node.pointer(), "perfect gas", &e));
                         return None;

@@ -21,6 +21,17 @@ pub(super) enum Machine {
 }
 
 impl Machine {
+    /// Every machine.
+    pub(super) const ALL: [Machine; 3] = [Machine::Engine, Machine::Refrigerator, Machine::HeatPump];
+
+    /// The share of the limit that built machines rarely pass (common practice).
+    const fn usual_share(self) -> f64 {
+        match self {
+            Machine::Engine => 0.85,
+            Machine::Refrigerator | Machine::HeatPump => 0.75,
+        }
+    }
+
     const fn kind(self) -> Kind {
         match self {
             Machine::Engine => Kind::HeatEngine,
@@ -104,6 +115,62 @@ pub(super) fn margins(machine: Machine, me: usize, evaluation: &Evaluation<'_>, 
             });
         }
     }
+}
+
+/// One margin for each claim (its index + 1) that keeps its limit: the share of the limit from which
+/// practice asks for evidence, over the claim.
+pub(super) fn closeness(machine: Machine, me: usize, evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
+    let process = &evaluation.view.model.process;
+    for (k, component) in process.components.iter().enumerate() {
+        if component.kind != machine.kind() {
+            continue;
+        }
+        let Some(limit) = Reservoirs::of(evaluation, k).and_then(|r| machine.limit(&r)) else { continue };
+        for (i, stated) in component.stated.iter().enumerate() {
+            let Ok(claim) = evaluation.view.var(stated.var) else { continue };
+            // Beyond its limit a claim is a matter of law.
+            if stated.what != machine.claimed() || claim.value > limit.value {
+                continue;
+            }
+            let usual = limit.clone().scaled(machine.usual_share());
+            let throughput = claim.value.abs() + limit.value.abs();
+            out.push(Margin {
+                pointer: Some(stated.pointer.clone()),
+                detail: i + 1,
+                ..measure::lower_bound(me, Scope::Component(k), usual.minus(&claim), throughput)
+            });
+        }
+    }
+}
+
+/// The machine of a component's kind.
+pub(super) fn machine_of(kind: Kind) -> Option<Machine> {
+    Machine::ALL.into_iter().find(|m| m.kind() == kind)
+}
+
+/// The explanation with the share of the limit that is claimed.
+pub(super) fn explain_closeness(evaluation: &Evaluation<'_>, margin: &Margin) -> Option<Explanation> {
+    let Scope::Component(k) = margin.scope else { return None };
+    let component = evaluation.view.model.process.components.get(k)?;
+    let machine = machine_of(component.kind)?;
+    let limit = Reservoirs::of(evaluation, k).and_then(|r| machine.limit(&r))?.value;
+    let stated = component.stated.get(margin.detail.checked_sub(1)?)?;
+    let claim = evaluation.view.var(stated.var).ok()?.value;
+    Some(Explanation {
+        statement: format!(
+            "The claimed {} {} of {} is {} % of the limit {} of a reversible cycle; built machines rarely pass {} %, \
+             so ask for the test report, its temperatures and what it includes.",
+            machine.word(),
+            phrase::number(claim),
+            phrase::subject(evaluation, margin.scope),
+            phrase::number(100.0 * claim / limit),
+            phrase::number(limit),
+            phrase::number(100.0 * machine.usual_share()),
+        ),
+        value: Some(Figure { value: claim, dimension: Dimension::Fraction }),
+        limit: Some(Figure { value: machine.usual_share() * limit, dimension: Dimension::Fraction }),
+        ..Explanation::default()
+    })
 }
 
 /// The explanation with both figures and the temperatures behind the limit.

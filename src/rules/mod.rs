@@ -218,6 +218,7 @@ rules! {
     wetness_unknown::WetnessUnknown,
     reversed_flow::ReversedFlow,
     unusual_dead_state::UnusualDeadState,
+    claim_close_to_limit::ClaimCloseToLimit,
     gouy_stodola_mismatch::GouyStodolaMismatch,
 }
 
