@@ -236,6 +236,7 @@ rules! {
     unusual_machine_efficiency::UnusualMachineEfficiency,
     unusual_exergy_efficiency::UnusualExergyEfficiency,
     unusual_stack_loss::UnusualStackLoss,
+    claim_close_to_limit::ClaimCloseToLimit,
     gouy_stodola_mismatch::GouyStodolaMismatch,
 }
 

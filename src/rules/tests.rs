@@ -148,7 +148,8 @@ fn keeping_cases_keep_every_rule_but_advice() {
     for kept in ALL {
         let info = kept.info();
         let Case::Description(description) = info.keeping else { continue };
-        for rule in ALL {
+        let speaks = |r: &&&dyn Rule| r.info().severity != Severity::Advice || r.info().name == info.name;
+        for rule in ALL.iter().filter(speaks) {
             let found = violated(rule.info().name, description);
             assert!(found.is_empty(), "case of {} breaks {}: {:?}", info.name, rule.info().name, found);
         }

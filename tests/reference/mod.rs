@@ -4,6 +4,7 @@ mod chemistry;
 mod exchanger;
 mod cogeneration;
 mod exergy;
+mod claims;
 mod gas;
 mod humid_air;
 mod real_fluid;
