@@ -333,12 +333,15 @@ fn gather(
             let same_kind = other == info.aspect && margins[*j].pointer == margin.pointer
                 || matches!(
                     (other, info.aspect),
-                    (Aspect::Entropy, Aspect::Entropy | Aspect::Interior | Aspect::Closure)
-                        | (Aspect::Interior, Aspect::Interior)
+                    (
+                        Aspect::Entropy,
+                        Aspect::Entropy | Aspect::Interior | Aspect::Reaction | Aspect::Closure
+                    ) | (Aspect::Interior, Aspect::Interior)
+                        | (Aspect::Reaction, Aspect::Reaction)
                         | (Aspect::Closure, Aspect::Closure)
                 );
             match info.aspect {
-                Aspect::Entropy | Aspect::Interior | Aspect::Closure => {
+                Aspect::Entropy | Aspect::Interior | Aspect::Reaction | Aspect::Closure => {
                     same_kind && (same_place || contained && margin.scope != f.scope)
                 }
                 _ => same_place && same_kind && name(*j) == info.name && margin.pointer == f_pointer(f),

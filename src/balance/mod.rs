@@ -14,7 +14,7 @@ pub mod purpose;
 pub mod region;
 pub mod reservoir;
 
-pub use equations::{Equations, Row, by_pressure, isentropic_enthalpy, side_flows, side_mass, transfers};
+pub use equations::{Equations, Row, by_pressure, isentropic_enthalpy, transfers};
 pub use evaluation::{Evaluation, RegionBalances};
 pub use profile::Profile;
 pub use exergies::Exergies;

@@ -2,9 +2,10 @@
 
 use super::humid_air::HumidAir;
 use super::ideal_gas::IdealGas;
+use super::incompressible::{self, Incompressible};
 use super::solution::Solution;
 use super::steam::Steam;
-use super::{Engine, incompressible, real_fluid};
+use super::{Engine, real_fluid};
 use crate::diagnostic::nearest;
 use std::sync::{Arc, OnceLock};
 
@@ -30,7 +31,7 @@ pub enum Substance {
 }
 
 /// Names that are taken before any listed fluid.
-const BUILT_IN: [&str; 6] = ["water", "steam", "air", "humid air", "seawater", "sodium chloride"];
+const BUILT_IN: [&str; 7] = ["water", "steam", "air", "humid air", "seawater", "sodium chloride", "ash"];
 
 fn dry_air() -> Option<Arc<IdealGas>> {
     static AIR: OnceLock<Option<Arc<IdealGas>>> = OnceLock::new();
@@ -62,7 +63,12 @@ pub fn by_name(name: &str) -> Result<(Substance, Arc<dyn Engine>), Vec<String>> 
         Ok(fluid) => return Ok((Substance::Pure, fluid.clone())),
         Err(near) => near,
     };
-    if let Some(medium) = incompressible::Incompressible::listed(name) {
+    if name.eq_ignore_ascii_case("ash")
+        && let Ok(ash) = Incompressible::ash()
+    {
+        return Ok((Substance::Inert, Arc::new(ash)));
+    }
+    if let Some(medium) = Incompressible::listed(name).or_else(|| Incompressible::species(name)) {
         return Ok((Substance::Inert, Arc::new(medium)));
     }
     let mut known: Vec<&str> = near;

@@ -65,9 +65,10 @@ impl Assembler<'_, '_> {
                 decomposition.push("bejan_number", figure);
             }
         }
-        let kind = view.model.process.components[k].kind.name();
-        let profile = self.profile(k);
-        ComponentReport { kind, region, decomposition, profile }
+        let component = &view.model.process.components[k];
+        let (kind, implied) = (component.kind.name(), component.implied);
+        let (holdup, profile) = (self.holdup(k, exergies), self.profile(k));
+        ComponentReport { kind, implied, region, decomposition, holdup, profile }
     }
 
     pub(super) fn plant(&mut self, mut region: RegionReport, exergies: &Exergies) -> PlantReport {

@@ -7,6 +7,7 @@ mod exergy;
 mod claims;
 mod gas;
 mod humid_air;
+mod plants;
 mod real_fluid;
 mod solution;
 mod steam;
