@@ -3,7 +3,7 @@
 use axum::body::Body;
 use axum::http::{HeaderName, HeaderValue, Response};
 
-use super::route::{BASE, Call, Gives, JSON, Method, Outcome, Parameter, Route, TEXT, Takes, optional};
+use super::route::{Call, Gives, JSON, Method, Outcome, Parameter, Route, TEXT, Takes, optional};
 use crate::quantity::UnitSystem;
 use crate::report::Report;
 
@@ -55,7 +55,6 @@ pub const CHECK: Route = Route {
     answer: "The report.",
     refuses: &[406, 408, 413, 415, 422, 503],
     handler: |call| Box::pin(check(call)),
-    ..BASE
 };
 
 /// A report in one of the media types of [`CHECK`].

@@ -86,6 +86,7 @@ pub fn document() -> Value {
     if let Some(Value::Object(found)) = derived.pointer("/components/schemas").cloned() {
         schemas.extend(found);
     }
+    share_map_values(&mut schemas);
     let mut paths = Map::new();
     for route in ROUTES.iter().filter(|route| route.tag.is_some()) {
         let entry = paths.entry(route.path).or_insert_with(|| json!({}));
@@ -119,6 +120,22 @@ pub fn document_text() -> String {
     let mut text = serde_json::to_string_pretty(&document()).unwrap_or_default();
     text.push('\n');
     text
+}
+
+/// A derived map (`Named_X`) holds a copy of the schema of its values; it becomes a reference to `X`,
+/// so that generated clients know one type instead of many alike.
+fn share_map_values(schemas: &mut Map<String, Value>) {
+    let mut shared = Vec::new();
+    for (name, schema) in schemas.iter_mut() {
+        if let (Some(value), Some(held)) =
+            (name.strip_prefix("Named_"), schema.get_mut("additionalProperties"))
+        {
+            shared.push((value.to_owned(), std::mem::replace(held, schema_ref(value))));
+        }
+    }
+    for (name, schema) in shared {
+        schemas.entry(name).or_insert(schema);
+    }
 }
 
 const ABOUT: &str = "Takes a description of a process (components, and the flows of matter, heat and work between \

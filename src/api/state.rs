@@ -43,6 +43,7 @@ pub const GET_STATE: Route = Route {
         optional("humidity_ratio", "Mass of water vapour to mass of dry air.", "0.01"),
         optional("wet_bulb", "Wet-bulb temperature of humid air.", "18 degC"),
         optional("dew_point", "Dew point of humid air.", "12 degC"),
+        optional("salinity", "Mass fraction of the salt in a solution, 0 to 1.", "0.035"),
         optional("environment.temperature", "Temperature of the dead state.", "10 degC"),
         optional("environment.pressure", "Pressure of the dead state.", "1.013 bar"),
         optional("environment.relative_humidity", "Relative humidity of the dead state.", "0.6"),
@@ -76,7 +77,6 @@ pub const POST_STATE: Route = Route {
     answer: "The state.",
     refuses: &[406, 408, 413, 415, 422, 503],
     handler: |call| Box::pin(by_body(call)),
-    ..BASE
 };
 
 async fn by_body(call: Call) -> Outcome {

@@ -20,6 +20,8 @@ mod residual;
 mod saturation;
 mod wet;
 
+use super::heat_capacity::STANDARD_TEMPERATURE;
+use super::ideal_gas::find_species;
 use crate::fluid::{Datum, Element, Elements, Engine, Pair, PropertyError, Provenance, State};
 use equation::{Equation, SaturationData};
 use grid::{Grid, Target};
@@ -216,10 +218,20 @@ impl Engine for RealFluid {
         Some((self.elements, [0.0; Element::COUNT]))
     }
 
-    /// None: the equations know no formation enthalpy. [`RealFluid::ideal_part`] makes the bridge
-    /// for a species whose absolute ideal-gas function is at hand.
+    /// The bridge at 298.15 K and 1 bar from the equation's ideal part to the absolute function of
+    /// the same species; `None` where the species table has none (refrigerants, blends).
     fn datum(&self) -> Option<Datum> {
-        None
+        let species = self.names().iter().find_map(|name| find_species(name))?;
+        let molar_mass = self.molar_mass(0.0)?;
+        if (species.molar_mass() / molar_mass - 1.0).abs() > 1e-3 {
+            return None;
+        }
+        let absolute = species.standard(STANDARD_TEMPERATURE).ok()?;
+        let own = self.ideal_part(STANDARD_TEMPERATURE);
+        Some(Datum {
+            enthalpy: absolute.h / molar_mass - own.enthalpy,
+            entropy: absolute.s / molar_mass - own.entropy,
+        })
     }
 
     fn relative_uncertainty(&self, _state: &State) -> f64 {
