@@ -1,7 +1,9 @@
 //! Reports over one finished assessment: JSON, text, CSV and HTML are siblings.
 
 mod assemble;
+mod csv;
 mod figure;
+mod prose;
 mod state;
 mod text;
 
