@@ -3,6 +3,7 @@
 mod assemble;
 mod csv;
 mod figure;
+mod grid;
 mod prose;
 mod state;
 mod text;

@@ -1,6 +1,7 @@
 //! The report as text for people at a terminal.
 
-use super::{Finding, FlowReport, Report, prose};
+use super::grid::{self, Align, Grid};
+use super::{Finding, Report, prose};
 use std::fmt::Write;
 
 /// Widest line.
@@ -41,10 +42,11 @@ impl Report {
                 write_finding(out, n + 1, f)?;
             }
         }
-        self.write_components(out)?;
-        self.write_performance(out)?;
+        let grids = grid::all(self);
+        let (first, others): (Vec<Grid>, Vec<Grid>) = grids.into_iter().partition(|g| !g.is_of_flows());
+        first.into_iter().try_for_each(|g| g.write(out))?;
         self.write_unchecked(out)?;
-        self.write_flows(out)?;
+        others.into_iter().try_for_each(|g| g.write(out))?;
         if !self.cautions.is_empty() {
             heading(out, "Cautions")?;
             for c in &self.cautions {
@@ -67,81 +69,6 @@ impl Report {
         }
     }
 
-    fn write_components(&self, out: &mut String) -> std::fmt::Result {
-        let region = &self.plant.region;
-        let unit =
-            |code: Option<&'static str>| code.map_or(String::new(), |c| format!(" {}", prose::unit(c)));
-        let regions = || self.components.0.iter().map(|c| &c.1.region).chain([region]);
-        let entropy = regions().find_map(|r| r.entropy_balance.map(|e| e.generation.unit));
-        let exergy = regions().find_map(|r| r.exergy_balance.as_ref().map(|e| e.destruction.unit));
-        let mut table = Table::new(&[
-            ("Component", Align::Left),
-            ("Kind", Align::Left),
-            ("Verdict", Align::Left),
-            (&format!("σ{}", unit(entropy)), Align::Figure),
-            (&format!("T0σ{}", unit(exergy)), Align::Figure),
-            ("Share", Align::Right),
-        ]);
-        let mut row = |name: &str, kind: &str, region: &super::RegionReport, share: Option<f64>| {
-            let sigma =
-                region.entropy_balance.map(|e| prose::digits(e.generation.value, e.generation.u).text());
-            let destruction = region.exergy_balance.as_ref().map(|e| e.destruction);
-            let verdict = if region.at_limit {
-                "reversible".to_owned()
-            } else {
-                format!("{} {}", prose::sign(region.verdict), region.verdict)
-            };
-            table.row(vec![
-                prose::clean(name),
-                prose::words(kind),
-                verdict,
-                sigma.unwrap_or_else(|| "–".to_owned()),
-                destruction.map_or_else(|| "–".to_owned(), |d| prose::digits(d.value, d.u).text()),
-                share.map_or_else(String::new, prose::percent),
-            ]);
-        };
-        for k in prose::component_order(self) {
-            if let Some((name, c)) = self.components.0.get(k) {
-                let share = self.plant.ranking.iter().find(|r| r.component == *name).map(|r| r.share);
-                row(name, c.kind, &c.region, share);
-            }
-        }
-        for (name, group) in &self.groups.0 {
-            row(name, "group", group, None);
-        }
-        if self.components.0.len() > 1 {
-            row("whole plant", "", region, None);
-        }
-        heading(out, "Entropy generation and exergy destruction")?;
-        table.write(out)
-    }
-
-    fn write_performance(&self, out: &mut String) -> std::fmt::Result {
-        let mut table = Table::new(&[
-            ("Of", Align::Left),
-            ("Quantity", Align::Left),
-            ("", Align::Figure),
-            ("", Align::Left),
-        ]);
-        let components = self.components.0.iter().map(|(n, c)| (n.as_str(), &c.region));
-        let groups = self.groups.0.iter().map(|(n, g)| (n.as_str(), g));
-        for (name, region) in components.chain(groups).chain([("whole plant", &self.plant.region)]) {
-            for (quantity, f) in &region.performance.0 {
-                table.row(vec![
-                    prose::clean(name),
-                    prose::words(quantity),
-                    prose::digits(f.value, f.u).text(),
-                    prose::unit(f.unit),
-                ]);
-            }
-        }
-        if table.rows.is_empty() {
-            return Ok(());
-        }
-        heading(out, "Performance")?;
-        table.write(out)
-    }
-
     fn write_unchecked(&self, out: &mut String) -> std::fmt::Result {
         let groups = prose::group_unchecked(&self.unchecked);
         if !groups.is_empty() {
@@ -159,74 +86,6 @@ impl Report {
             writeln!(out, "{}", wrapped(&format!("{statement} – {}", listed(&places)), 2, 4))?;
         }
         Ok(())
-    }
-
-    fn write_flows(&self, out: &mut String) -> std::fmt::Result {
-        let material: Vec<&(String, FlowReport)> =
-            self.flows.0.iter().filter(|(_, f)| f.kind == "material").collect();
-        const COLUMNS: [(&str, &[&str]); 6] = [
-            ("m", &["mass_flow", "mass"]),
-            ("T", &["temperature"]),
-            ("p", &["pressure"]),
-            ("h", &["enthalpy"]),
-            ("s", &["entropy"]),
-            ("e", &[]),
-        ];
-        let find = |f: &FlowReport, keys: &[&str]| {
-            if keys.is_empty() {
-                f.exergy.get("total").copied()
-            } else {
-                keys.iter().find_map(|k| f.figures.get(k).copied())
-            }
-        };
-        if !material.is_empty() {
-            heading(out, "Flows of material (digits as the uncertainty warrants)")?;
-            let heads: Vec<(String, Align)> = COLUMNS
-                .iter()
-                .map(|(symbol, keys)| {
-                    let unit = material.iter().find_map(|(_, f)| find(f, keys)).map_or("", |f| f.unit);
-                    (format!("{symbol} {}", prose::unit(unit)).trim().to_owned(), Align::Right)
-                })
-                .collect();
-            let mut all = vec![("Flow", Align::Left), ("Fluid", Align::Left)];
-            all.extend(heads.iter().map(|(h, a)| (h.as_str(), *a)));
-            let mut table = Table::new(&all);
-            for (name, f) in &material {
-                let mut row = vec![prose::clean(name), prose::clean(f.fluid.as_deref().unwrap_or(""))];
-                row.extend(COLUMNS.iter().map(|(_, keys)| {
-                    find(f, keys).map_or_else(|| "–".to_owned(), |x| prose::digits(x.value, x.u).bare())
-                }));
-                table.row(row);
-            }
-            table.write(out)?;
-        }
-        let mut table = Table::new(&[
-            ("Flow", Align::Left),
-            ("Kind", Align::Left),
-            ("", Align::Figure),
-            ("", Align::Left),
-            ("At", Align::Right),
-            ("Origin", Align::Left),
-        ]);
-        for (name, f) in self.flows.0.iter().filter(|(_, f)| f.kind != "material") {
-            let rate = f.figures.get("power").or_else(|| f.figures.get("rate"));
-            let at = f.figures.get("temperature").or_else(|| f.figures.get("mean_temperature"));
-            let kind =
-                f.fluid.as_deref().map_or_else(|| f.kind.to_owned(), |form| format!("{form} {}", f.kind));
-            table.row(vec![
-                prose::clean(name),
-                prose::clean(&kind),
-                rate.map_or_else(|| "–".to_owned(), |r| prose::digits(r.value, r.u).text()),
-                rate.map_or_else(String::new, |r| prose::unit(r.unit)),
-                at.map_or_else(String::new, prose::bare_figure),
-                f.origin.to_owned(),
-            ]);
-        }
-        if table.rows.is_empty() {
-            return Ok(());
-        }
-        heading(out, "Heat and work")?;
-        table.write(out)
     }
 }
 
@@ -293,29 +152,7 @@ fn wrapped(text: &str, first: usize, others: usize) -> String {
     out
 }
 
-#[derive(Clone, Copy, PartialEq)]
-enum Align {
-    Left,
-    Right,
-    /// Aligned at ±.
-    Figure,
-}
-
-/// Columns as wide as what is in them.
-struct Table {
-    heads: Vec<(String, Align)>,
-    rows: Vec<Vec<String>>,
-}
-
-impl Table {
-    fn new(heads: &[(&str, Align)]) -> Table {
-        Table { heads: heads.iter().map(|(h, a)| ((*h).to_owned(), *a)).collect(), rows: Vec::new() }
-    }
-
-    fn row(&mut self, cells: Vec<String>) {
-        self.rows.push(cells);
-    }
-
+impl Grid {
     /// Brings the figures of a column to one shape, padded around their ±.
     fn align_figures(&mut self) {
         for (j, (_, align)) in self.heads.iter().enumerate() {
@@ -340,6 +177,7 @@ impl Table {
     }
 
     fn write(mut self, out: &mut String) -> std::fmt::Result {
+        heading(out, self.title)?;
         self.align_figures();
         let width = |text: &str| text.chars().count();
         let widths: Vec<usize> = self
