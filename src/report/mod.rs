@@ -1,9 +1,13 @@
 //! Reports over one finished assessment: JSON, text, CSV and HTML are siblings.
 
 mod assemble;
+mod charts;
 mod csv;
+mod diagram;
 mod figure;
 mod grid;
+mod html;
+mod markup;
 mod prose;
 mod state;
 mod text;
