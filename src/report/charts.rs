@@ -69,7 +69,7 @@ struct Bar<'a> {
     name: &'a str,
     verdict: &'a str,
     figure: Figure,
-    share: Option<f64>,
+    share: f64,
 }
 
 /// Exergy destruction by component, the largest first.
@@ -86,7 +86,7 @@ pub(super) fn destruction(report: &Report) -> Option<String> {
             name: &r.component,
             verdict: verdict(&r.component),
             figure: r.destruction,
-            share: Some(r.share),
+            share: r.share,
         })
         .collect();
     let rest = format!("{} others", others.len());
@@ -94,7 +94,7 @@ pub(super) fn destruction(report: &Report) -> Option<String> {
         let value = others.iter().map(|(_, r)| r.destruction.value).sum();
         let share = others.iter().map(|(_, r)| r.share).sum();
         let figure = Figure { value, unit, u: 0.0 };
-        bars.push(Bar { name: &rest, verdict: "holds", figure, share: Some(share) });
+        bars.push(Bar { name: &rest, verdict: "holds", figure, share });
     }
     let low = bars.iter().map(|b| b.figure.value - b.figure.u).fold(0.0, f64::min);
     let high = bars.iter().map(|b| b.figure.value + b.figure.u).fold(0.0, f64::max);
@@ -102,8 +102,8 @@ pub(super) fn destruction(report: &Report) -> Option<String> {
         return None;
     }
     const NAMES: f64 = 190.0;
-    const PLOT: f64 = 400.0;
-    const FIGURES: f64 = 190.0;
+    const PLOT: f64 = 440.0;
+    const FIGURES: f64 = 210.0;
     const PITCH: f64 = 24.0;
     let x = |v: f64| NAMES + PLOT * (v - low) / (high - low);
     let height = PITCH * bars.len() as f64 + 8.0;
@@ -124,9 +124,8 @@ pub(super) fn destruction(report: &Report) -> Option<String> {
         if u > 0.0 {
             d.line((x(value - u), y + 9.0), (x(value + u), y + 9.0), "whisker");
         }
-        let share = bar.share.map_or_else(String::new, |s| format!("  {}", prose::percent(s)));
-        let text = format!("{}{share}", prose::figure(&bar.figure));
-        d.text((NAMES + PLOT + 10.0, y + 13.0), "figures", "start", &text);
+        d.text((NAMES + PLOT + FIGURES - 56.0, y + 13.0), "figures", "end", &prose::figure(&bar.figure));
+        d.text((NAMES + PLOT + FIGURES, y + 13.0), "figures", "end", &prose::percent(bar.share));
         d.close();
     }
     d.line((x(0.0), 0.0), (x(0.0), height), "limit");

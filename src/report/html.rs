@@ -102,16 +102,17 @@ impl Report {
         if let Some(svg) = charts::destruction(self) {
             writeln!(
                 out,
-                "<section>\n<h2>Where exergy is destroyed</h2>\n<figure>{svg}</figure>\n\
+                "<section>\n<h2>Where exergy is destroyed</h2>\n<figure class=\"wide\">{svg}</figure>\n\
                  <p class=\"note small\">Bars: exergy destruction T0σ; lines: one standard uncertainty to each side. \
                  Left of zero is impossible.</p>\n</section>"
             )?;
         }
         match diagram::sheet(self) {
-            Some(svg) => {
+            Some((svg, tall)) => {
+                let class = if tall { "wide tall" } else { "wide sheet" };
                 writeln!(
                     out,
-                    "<section>\n<h2>Flow sheet</h2>\n<figure class=\"wide\">{svg}</figure>\n<p class=\"legend\">"
+                    "<section>\n<h2>Flow sheet</h2>\n<figure class=\"{class}\">{svg}</figure>\n<p class=\"legend\">"
                 )?;
                 for kind in ["material", "heat", "work", "radiation"] {
                     if self.flows.0.iter().any(|f| f.1.kind == kind) {

@@ -226,12 +226,56 @@ impl Layout {
                 self.settle(l);
             }
         }
+        for course in self.courses.clone() {
+            self.straighten(&course.items);
+        }
         let left = self.items.iter().map(|i| i.x - 0.5 * i.width).fold(f64::INFINITY, f64::min);
         if left.is_finite() {
             for item in &mut self.items {
                 item.x -= left;
             }
         }
+    }
+
+    /// Brings what lies between the ends of a long line to as few places as what stands beside
+    /// it allows.
+    fn straighten(&mut self, items: &[usize]) {
+        let inner = items.get(1..items.len().saturating_sub(1)).unwrap_or_default();
+        let mut rest = inner;
+        while !rest.is_empty() {
+            let mut room = (f64::NEG_INFINITY, f64::INFINITY);
+            let mut count = 0;
+            for (low, high) in rest.iter().map_while(|&i| self.room(i)) {
+                let narrower = (low.max(room.0), high.min(room.1));
+                if narrower.0 > narrower.1 && count > 0 {
+                    break;
+                }
+                room = narrower;
+                count += 1;
+            }
+            let (run, others) = rest.split_at(count.max(1));
+            rest = others;
+            let sum: f64 = run.iter().filter_map(|&i| self.items.get(i)).map(|i| i.x).sum();
+            // Rounding can leave one item without room; then it stays.
+            let x = (sum / run.len() as f64).min(room.1).max(room.0);
+            for &i in run {
+                if let Some(item) = self.items.get_mut(i) {
+                    item.x = x;
+                }
+            }
+        }
+    }
+
+    /// Between which places an item can move without touching those beside it.
+    fn room(&self, i: usize) -> Option<(f64, f64)> {
+        let item = self.items.get(i)?;
+        let layer = self.layers.get(item.layer)?;
+        let n = layer.iter().position(|&j| j == i)?;
+        let beside = |n: Option<usize>| n.and_then(|n| layer.get(n)).and_then(|&j| self.items.get(j));
+        let apart = |other: &Item| 0.5 * (item.width + other.width) + GAP;
+        let low = beside(n.checked_sub(1)).map_or(f64::NEG_INFINITY, |o| o.x + apart(o));
+        let high = beside(Some(n + 1)).map_or(f64::INFINITY, |o| o.x - apart(o));
+        Some((low, high))
     }
 
     /// Places one layer: least squares to the wanted places under the order, by pooling adjacent

@@ -21,8 +21,9 @@ const NAME: f64 = 30.0;
 const SPACE: f64 = 20.0;
 const MARGIN: f64 = 8.0;
 
-/// The flow sheet as an SVG element; `None` where it would be too large to read.
-pub(super) fn sheet(report: &Report) -> Option<String> {
+/// The flow sheet as an SVG element, and whether it is too tall for one page of paper; `None` where
+/// it would be too large to read.
+pub(super) fn sheet(report: &Report) -> Option<(String, bool)> {
     let (components, flows) = (&report.components.0, &report.flows.0);
     if components.is_empty() || components.len() > MOST_COMPONENTS || flows.len() > MOST_FLOWS {
         return None;
@@ -86,7 +87,7 @@ struct Sheet<'a> {
 }
 
 impl Sheet<'_> {
-    fn draw(self) -> String {
+    fn draw(self) -> (String, bool) {
         let (tops, height) = self.heights();
         let width = self.layout.items.iter().map(|i| i.x + 0.5 * i.width).fold(0.0, f64::max) + 2.0 * MARGIN;
         let mut drawing = Drawing::new("sheet", "Flow sheet", &self.description());
@@ -102,7 +103,8 @@ impl Sheet<'_> {
                 Kind::Bend => {}
             }
         }
-        drawing.finish((width, height))
+        // Printed at a height of 250 mm, smaller letters than these could not be read.
+        (drawing.finish((width, height)), height > 1600.0)
     }
 
     /// Upper edge of each layer, and the height of all.
