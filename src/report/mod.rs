@@ -391,3 +391,6 @@ impl Report {
         out
     }
 }
+
+#[cfg(test)]
+mod tests;

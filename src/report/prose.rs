@@ -62,7 +62,8 @@ fn rounded(x: f64, places: i32) -> f64 {
 
 /// A number to decimal places, without a minus before zeros.
 fn fixed(x: f64, places: i32) -> String {
-    let text = format!("{:.*}", places.clamp(0, 12) as usize, rounded(x, places));
+    let x = if x.is_finite() { rounded(x, places) } else { 0.0 };
+    let text = format!("{:.*}", places.clamp(0, 12) as usize, x);
     match text.strip_prefix('-') {
         Some(zeros) if !zeros.chars().any(|c| ('1'..='9').contains(&c)) => zeros.to_owned(),
         _ => text,
