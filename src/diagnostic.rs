@@ -38,7 +38,7 @@ codes! {
     UnknownField => "unknown-field": "The object has a member that its kind does not know.",
     MissingField => "missing-field": "A member that the object needs is absent.",
     UnknownChoice => "unknown-choice": "The text is not one of the words that the field takes.",
-    BadName => "bad-name": "A name does not match ^[A-Za-z0-9][A-Za-z0-9_.-]{0,63}$.",
+    BadName => "bad-name": "A name does not match `^[A-Za-z0-9][A-Za-z0-9_.-]{0,63}$`.",
     BareNumber => "bare-number": "A dimensional quantity was given without a unit.",
     UnknownUnit => "unknown-unit": "The unit is not known.",
     WrongDimension => "wrong-dimension": "The unit measures another quantity than the field takes.",

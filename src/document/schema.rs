@@ -182,6 +182,7 @@ impl Drawer {
         }
         json!({
             "description": union.doc,
+            "type": "object",
             "oneOf": alternatives,
             "discriminator": { "propertyName": union.member, "mapping": mapping },
         })

@@ -4,7 +4,7 @@ use super::humid_air::HumidAir;
 use super::ideal_gas::IdealGas;
 use super::solution::Solution;
 use super::steam::Steam;
-use super::{Engine, incompressible};
+use super::{Engine, incompressible, real_fluid};
 use crate::diagnostic::nearest;
 use std::sync::{Arc, OnceLock};
 
@@ -58,9 +58,20 @@ pub fn by_name(name: &str) -> Result<(Substance, Arc<dyn Engine>), Vec<String>> 
         }
         _ => {}
     }
+    let near = match real_fluid::by_name(name) {
+        Ok(fluid) => return Ok((Substance::Pure, fluid.clone())),
+        Err(near) => near,
+    };
     if let Some(medium) = incompressible::Incompressible::listed(name) {
         return Ok((Substance::Inert, Arc::new(medium)));
     }
-    let known = BUILT_IN.iter().copied().chain(incompressible::LISTED.iter().map(|m| m.name));
-    Err(nearest(name, known).into_iter().map(str::to_owned).collect())
+    let mut known: Vec<&str> = near;
+    known.extend(nearest(name, names()));
+    known.dedup();
+    Err(known.into_iter().map(str::to_owned).collect())
+}
+
+/// Every name that [`by_name`] knows by heart, for the catalogue.
+pub fn names() -> impl Iterator<Item = &'static str> {
+    BUILT_IN.into_iter().chain(incompressible::LISTED.iter().map(|medium| medium.name))
 }

@@ -22,7 +22,7 @@ pub mod state;
 pub mod stated;
 pub mod steam;
 
-pub use catalogue::{Substance, by_name};
+pub use catalogue::{Substance, by_name, names};
 pub use element::{Element, Elements};
 pub use error::PropertyError;
 pub use state::{CompositionForm, Pair, Phase, Property, State};

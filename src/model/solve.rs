@@ -369,7 +369,7 @@ pub fn invert(matrix: &[f64], n: usize) -> Option<Vec<f64>> {
     }
     let scales: Vec<f64> =
         (0..n).map(|i| a[i * n..(i + 1) * n].iter().fold(0.0, |m: f64, v| m.max(v.abs()))).collect();
-    if scales.iter().any(|s| !(*s > 0.0)) {
+    if scales.iter().any(|s| s.is_nan() || *s <= 0.0) {
         return None;
     }
     let mut order: Vec<usize> = (0..n).collect();
@@ -377,7 +377,7 @@ pub fn invert(matrix: &[f64], n: usize) -> Option<Vec<f64>> {
         let (best, size) = (col..n)
             .map(|i| (i, a[i * n + col].abs() / scales[order[i]]))
             .fold((col, 0.0), |m, c| if c.1 > m.1 { c } else { m });
-        if !(size > 1e-13) {
+        if size.is_nan() || size <= 1e-13 {
             return None;
         }
         if best != col {

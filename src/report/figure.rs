@@ -52,8 +52,10 @@ pub(super) fn plain(x: f64) -> f64 {
     significant(x, 6)
 }
 
-/// A map that keeps its order.
+/// Values by name, in a fixed order.
 #[derive(Clone, Debug, PartialEq)]
+#[cfg_attr(feature = "server", derive(utoipa::ToSchema))]
+#[cfg_attr(feature = "server", schema(value_type = std::collections::BTreeMap<String, T>))]
 pub struct Named<T>(pub Vec<(String, T)>);
 
 impl<T> Default for Named<T> {
@@ -86,25 +88,6 @@ impl<T: Serialize> Serialize for Named<T> {
             map.serialize_entry(name, value)?;
         }
         map.end()
-    }
-}
-
-#[cfg(feature = "server")]
-impl<T: utoipa::ToSchema> utoipa::PartialSchema for Named<T> {
-    fn schema() -> utoipa::openapi::RefOr<utoipa::openapi::schema::Schema> {
-        std::collections::BTreeMap::<String, T>::schema()
-    }
-}
-
-#[cfg(feature = "server")]
-impl<T: utoipa::ToSchema> utoipa::ToSchema for Named<T> {
-    fn name() -> std::borrow::Cow<'static, str> {
-        format!("Named{}", T::name()).into()
-    }
-
-    fn schemas(schemas: &mut Vec<(String, utoipa::openapi::RefOr<utoipa::openapi::schema::Schema>)>) {
-        schemas.push((T::name().into(), T::schema()));
-        T::schemas(schemas);
     }
 }
 

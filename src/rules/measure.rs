@@ -126,7 +126,8 @@ pub(super) fn entropy_rise(
     let reference = view.model.scales[fluid].reference.1;
     let (r1, r2) = (s1.value - reference, s2.value - reference);
     let mut rise = s2.minus(&s1);
-    let derivative = r2 * formulation(view, second) - r1 * formulation(view, first);
+    // One relative error is common to both, as in the balances, so that it cancels for equal states.
+    let derivative = formulation(view, first).max(formulation(view, second)) * (r2 - r1);
     if let Some(&source) = view.model.formulation.get(&(k, fluid)) {
         rise.terms.push((view.model.source_slot(source), derivative));
     }

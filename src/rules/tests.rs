@@ -375,6 +375,20 @@ fn an_impossible_section_shows_although_the_whole_machine_is_sound() {
 }
 
 #[test]
+fn a_view_from_another_side_is_as_sure_as_the_balance() {
+    for (name, mass) in [
+        ("expander-beats-isentropic", 5.0),
+        ("compressor-beats-isentropic", 12.0),
+        ("throttle-against-entropy", 1.5),
+    ] {
+        let primary = only("negative-entropy-generation", breaking(name)).1;
+        let other = only(name, breaking(name)).1;
+        near(other.value * mass, primary.value, 1e-9 * primary.value.abs());
+        near(other.u * mass, primary.u, 1e-9 * primary.u);
+    }
+}
+
+#[test]
 fn what_runs_backwards_is_judged_the_way_it_runs() {
     let backwards = breaking("reversed-flow");
     let (margin, _, explanation) = only("throttle-against-entropy", backwards);

@@ -3,6 +3,7 @@
 mod chemistry;
 mod gas;
 mod humid_air;
+mod real_fluid;
 mod solution;
 mod steam;
 

@@ -183,8 +183,8 @@ fn no_salt_is_pure_water() {
         assert!(osmotic.abs() < 1e-3, "{osmotic}");
         let (datum, _) = solution.datum_at(0.0).unwrap();
         let state = solution.state(PT, 1e5, 298.15, 0.0).unwrap();
-        assert!(((state.enthalpy + datum.enthalpy) * 0.018015 + 285_830.0).abs() < 1e-6);
-        assert!(((state.entropy + datum.entropy) * 0.018015 - 69.95).abs() < 1e-9);
+        assert!(((state.enthalpy + datum.enthalpy) * 0.01801528 + 285_830.0).abs() < 1e-6);
+        assert!(((state.entropy + datum.entropy) * 0.01801528 - 69.95).abs() < 1e-9);
     }
 }
 

@@ -17,12 +17,15 @@
 //!
 //! | quantity | W up to 0.06 | all, W up to 1.3 |
 //! |---|---|---|
-//! | humidity ratio from relative humidity, relative | 7e-6 | 7e-6 |
-//! | specific volume, relative | 9e-6 | 1.2e-5 |
+//! | humidity ratio from relative humidity, relative | 2.6e-5 | 2.6e-5 |
+//! | specific volume, relative | 1.9e-5 | 1.9e-5 |
 //! | enthalpy | 2.6 J/kg | 21 J/kg |
 //! | entropy | 0.5 J/(kg K) | 3.2 J/(kg K) |
-//! | dew and frost point | 0.0002 K | 0.0002 K |
-//! | wet bulb | 0.0003 K | 0.0003 K |
+//! | dew and frost point | 0.0005 K | 0.0005 K |
+//! | wet bulb | 0.0005 K | 0.0005 K |
+//!
+//! The humidity ratio's deviation is that of the molar masses: here they are sums of the atomic
+//! masses that the balances of elements use.
 //!
 //! The entropy of the reference adds a constant of 0.0237 J/(mol K) to the water too and takes its
 //! ideal parts at other volumes than its residual part, so that its saturated air is out of

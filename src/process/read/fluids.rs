@@ -118,7 +118,11 @@ impl<'t> Reader<'t> {
             "humid_air" => self.named_fluid(node, "humid air").map(|(_, s, e)| (s, e)),
             "pure" => {
                 let n = node.get("name")?;
-                self.named_fluid(n, n.text().unwrap_or_default()).map(|(_, s, e)| (s, e))
+                let name = n.text().unwrap_or_default();
+                match crate::fluid::real_fluid::by_name(name) {
+                    Ok(fluid) => Some((Substance::Pure, fluid.clone())),
+                    Err(_) => self.named_fluid(n, name).map(|(_, s, e)| (s, e)),
+                }
             }
             "ideal_gas" => {
                 let gas = Arc::new(self.ideal_gas(node)?);

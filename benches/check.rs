@@ -1,0 +1,125 @@
+//! What a check costs: evaluation on a bound model, bytes to report bytes, growth with size,
+//! memory over many checks. Prints a table; asserts nothing. Run with
+//! `cargo bench --bench check`.
+
+use sigmadot::pipeline::{Bound, Cancel, Room, check_bytes, evaluate_and_decide};
+use sigmadot::process::{ReadLimits, read};
+use sigmadot::quantity::UnitSystem;
+use std::hint::black_box;
+use std::time::Instant;
+
+const PLANT: &str = include_str!("data/gas-turbine.json");
+
+/// Best and median of repeated batches, µs a call.
+fn measure(batches: usize, calls: usize, mut f: impl FnMut()) -> (f64, f64) {
+    let mut times: Vec<f64> = (0..batches)
+        .map(|_| {
+            let start = Instant::now();
+            for _ in 0..calls {
+                f();
+            }
+            start.elapsed().as_secs_f64() * 1e6 / calls as f64
+        })
+        .collect();
+    times.sort_by(f64::total_cmp);
+    (times[0], times[times.len() / 2])
+}
+
+/// The plant without its two exchangers: what enters and leaves them crosses the boundary.
+fn without_exchangers() -> String {
+    let mut plant: serde_json::Value = serde_json::from_str(PLANT).expect("bench data");
+    let components = plant["components"].as_object_mut().expect("components");
+    components.remove("preheater");
+    components.remove("recovery");
+    let flows = plant["flows"].as_object_mut().expect("flows");
+    for flow in flows.values_mut() {
+        for end in ["from", "to"] {
+            if flow[end] == "preheater" || flow[end] == "recovery" {
+                flow.as_object_mut().expect("flow").remove(end);
+            }
+        }
+    }
+    flows.retain(|_, f| f.get("from").is_some() || f.get("to").is_some());
+    plant.to_string()
+}
+
+/// `n` copies of a small chain (compressor, combustor-free heater, turbine) with amounts given.
+fn replicated(n: usize) -> String {
+    let mut components = String::new();
+    let mut flows = String::new();
+    for i in 0..n {
+        let comma = if i == 0 { "" } else { "," };
+        components.push_str(&format!(r#"{comma}"t{i}":{{"kind":"turbine"}}"#));
+        flows.push_str(&format!(
+            r#"{comma}"a{i}":{{"kind":"material","to":"t{i}","fluid":"water","pressure":"40.0 bar","temperature":"400.0 degC","mass_flow":"2.0 kg/s"}},
+            "b{i}":{{"kind":"material","from":"t{i}","fluid":"water","pressure":"10.0 bar","temperature":"250.0 degC","mass_flow":"2.0 kg/s"}},
+            "w{i}":{{"kind":"work","from":"t{i}","power":"540 kW"}}"#
+        ));
+    }
+    format!(r#"{{"components":{{{components}}},"flows":{{{flows}}}}}"#)
+}
+
+fn resident_kib() -> Option<u64> {
+    let status = std::fs::read_to_string("/proc/self/status").ok()?;
+    status.lines().find(|l| l.starts_with("VmRSS:"))?.split_whitespace().nth(1)?.parse().ok()
+}
+
+fn main() {
+    let limits = ReadLimits { components: 5000, flows: 20_000, ..ReadLimits::default() };
+    println!("{:<58} {:>10} {:>10}", "", "best µs", "median µs");
+    let row = |name: &str, (best, median): (f64, f64)| println!("{name:<58} {best:>10.2} {median:>10.2}");
+
+    let (process, inputs) = read(PLANT.as_bytes(), &limits).expect("bench plant");
+    let mut room = Room::default();
+    let bound = Bound::compile(process, inputs, &mut room);
+    row(
+        "evaluate + decide, 5 components, 13 flows, bound model",
+        measure(30, 200, || {
+            black_box(evaluate_and_decide(&bound, &bound.inputs, &mut room));
+        }),
+    );
+
+    let check = |body: &str| {
+        let report = check_bytes(body.as_bytes(), &limits, UnitSystem::Metric, &Cancel::new());
+        black_box(report.expect("bench plant").to_json().len())
+    };
+    let small = without_exchangers();
+    println!("report bytes: {} (with two exchangers), {} (without)", check(PLANT), check(&small));
+    row(
+        "bytes to report bytes, without exchangers",
+        measure(30, 50, || {
+            check(&small);
+        }),
+    );
+    row(
+        "bytes to report bytes, with two exchangers",
+        measure(30, 50, || {
+            check(PLANT);
+        }),
+    );
+
+    println!("\ngrowth with replicated components, bytes to report bytes");
+    let mut points = Vec::new();
+    for n in [10usize, 30, 100, 300, 1000] {
+        let body = replicated(n);
+        let (best, median) = measure(5, (2000 / n).max(2), || {
+            check(&body);
+        });
+        row(&format!("{n} components"), (best, median));
+        points.push(((n as f64).ln(), best.ln()));
+    }
+    let slope = (points[points.len() - 1].1 - points[0].1) / (points[points.len() - 1].0 - points[0].0);
+    println!("exponent from 10 to 1000: {slope:.3}");
+
+    println!("\nmemory over 100,000 checks");
+    let mut seen = Vec::new();
+    for i in 0..=10 {
+        seen.push(resident_kib().unwrap_or(0));
+        if i < 10 {
+            for _ in 0..10_000 {
+                check(&small);
+            }
+        }
+    }
+    println!("resident KiB after each 10,000: {seen:?}");
+}

@@ -1,0 +1,8 @@
+//! The service over real HTTP on loopback.
+
+mod batch;
+mod cases;
+mod command_line;
+mod documents;
+mod limits;
+mod problems;
