@@ -1,10 +1,17 @@
 //! Reports over one finished assessment: JSON, text, CSV and HTML are siblings.
 
 mod assemble;
+mod charts;
+mod csv;
+mod diagram;
 mod figure;
+mod grid;
 mod holdup;
-mod profile;
+mod html;
+mod markup;
 mod merit;
+mod profile;
+mod prose;
 mod state;
 mod text;
 
@@ -485,3 +492,6 @@ impl Report {
         out
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -73,7 +73,9 @@ pub(super) fn closeness(machine: Machine, me: usize, evaluation: &Evaluation<'_>
         if Machine::of(component.kind) != Some(machine) {
             continue;
         }
-        let Some(limit) = Reservoirs::of(evaluation.view, k).and_then(|r| machine.limit(&r)) else { continue };
+        let Some(limit) = Reservoirs::of(evaluation.view, k).and_then(|r| machine.limit(&r)) else {
+            continue;
+        };
         for (i, stated) in component.stated.iter().enumerate() {
             let Ok(claim) = evaluation.view.var(stated.var) else { continue };
             // Beyond its limit a claim is a matter of law.

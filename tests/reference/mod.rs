@@ -1,10 +1,10 @@
 //! Checks against published values, one file a topic.
 
 mod chemistry;
-mod exchanger;
-mod cogeneration;
-mod exergy;
 mod claims;
+mod cogeneration;
+mod exchanger;
+mod exergy;
 mod gas;
 mod humid_air;
 mod plants;
