@@ -317,6 +317,19 @@ fn compressor_limits() {
     );
 }
 
+/// B32: R134a, saturated at −10 degC, to 9 bar at 80 %: 3.122985 kW for 0.08 kg/s, and 0.587066 kW of
+/// exergy destroyed at 299 K (Moran and Shapiro, 5th ed., ex. 10.3, recomputed).
+#[test]
+fn compressor_of_a_refrigerant() {
+    let report = judge(
+        json!({"kind": "compressor", "fluid": "R134a", "inlet": {"temperature": "-10 degC", "quality": 1},
+        "outlet": {"pressure": "9 bar"}, "heat_exchange": "adiabatic", "claim": {"isentropic_efficiency": 0.80}}),
+    );
+    near(&report, "/limit/value", 0.8 * 3_122.985 / 0.08, 5.0);
+    near(&report, "/entropy_generation/figure/value", 587.066 / (0.08 * 299.0), 0.05);
+    assert_eq!(report["verdict"], "possible");
+}
+
 /// Steam from 40 bar and 400 degC to 0.1 bar, isentropic drop 1019.1 kJ/kg by IAPWS-IF97 (h1 3214.5,
 /// s1 6.7714; at 0.1 bar s' 0.6492, s'' 8.1489, h' 191.81, h'' 2583.89).
 #[test]
