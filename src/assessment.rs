@@ -1,6 +1,6 @@
 //! What the library returns: a finished assessment, in SI units, from which every report is drawn.
 
-use crate::balance::exergy::{ExergyBalance, Surroundings};
+pub use crate::balance::Exergies;
 use crate::balance::{Evaluation, Row};
 use crate::evidence::{Families, Sensitivity, decide};
 use crate::model::{Blocked, Decision, Family, Margin, Model, Scope, Verdict};
@@ -146,50 +146,6 @@ pub struct Judgement {
     pub plant: (Overall, bool),
 }
 
-/// The exergy balances of components, groups and plant.
-#[derive(Debug)]
-pub struct Exergies {
-    /// The surroundings.
-    pub surroundings: Surroundings,
-    /// One entry a component.
-    pub components: Vec<Result<ExergyBalance, Blocked>>,
-    /// One entry a group.
-    pub groups: Vec<Result<ExergyBalance, Blocked>>,
-    /// The plant.
-    pub plant: Result<ExergyBalance, Blocked>,
-}
-
-impl Exergies {
-    /// Derives the exergy balances of an evaluation.
-    pub fn derive(evaluation: &Evaluation<'_>) -> Exergies {
-        let surroundings = Surroundings::new(&evaluation.view.model.process);
-        let balance =
-            |region, balances| crate::balance::exergy::balance(evaluation, &surroundings, region, balances);
-        let components = evaluation
-            .equations
-            .components
-            .iter()
-            .zip(&evaluation.components)
-            .map(|(r, b)| balance(r, b))
-            .collect();
-        let groups =
-            evaluation.equations.groups.iter().zip(&evaluation.groups).map(|(r, b)| balance(r, b)).collect();
-        let plant = balance(&evaluation.equations.plant, &evaluation.plant);
-        Exergies { components, groups, plant, surroundings }
-    }
-
-    /// Mismatch and throughput of every balance that could be made.
-    pub fn mismatches(&self) -> Vec<(Scope, f64, f64)> {
-        let components = self.components.iter().enumerate().map(|(k, b)| (Scope::Component(k), b));
-        let groups = self.groups.iter().enumerate().map(|(g, b)| (Scope::Group(g), b));
-        components
-            .chain(groups)
-            .chain(std::iter::once((Scope::Plant, &self.plant)))
-            .filter_map(|(s, b)| b.as_ref().ok().map(|b| (s, b.mismatch, b.throughput)))
-            .collect()
-    }
-}
-
 /// Collects the margins of every rule that is switched on.
 pub fn margins(evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
     let disabled = &evaluation.view.model.process.policy.disable;
@@ -281,10 +237,12 @@ pub fn judge(evaluation: &Evaluation<'_>, margins: &[Margin], sensitivity: &mut 
     out
 }
 
-/// Whether a margin sees the same defect as its component's entropy balance from another side.
+/// Whether a margin sees the same defect as its component's entropy balance, or as its smallest
+/// temperature difference, from another side.
 fn secondary(margin: &Margin) -> bool {
-    let info = rules::ALL[margin.rule].info();
-    info.aspect == Aspect::Entropy && margin.family == Family::None && margin.detail == 0
+    let aspect = rules::ALL[margin.rule].info().aspect;
+    margin.family == Family::None
+        && (aspect == Aspect::Interior || aspect == Aspect::Entropy && margin.detail == 0)
 }
 
 /// A secondary view never says more than the test it follows from: the probability of a false
@@ -297,7 +255,7 @@ fn follow_primary(margins: &[Margin], decisions: &mut [Option<Decision>]) {
         let primary = (0..margins.len()).find(|&j| {
             margins[j].scope == margins[i].scope
                 && margins[j].family == Family::Entropy
-                && rules::ALL[margins[j].rule].info().aspect == Aspect::Entropy
+                && rules::ALL[margins[j].rule].info().aspect == rules::ALL[margins[i].rule].info().aspect
         });
         if let Some(Some(first)) = primary.map(|j| decisions[j])
             && let Some(own) = &mut decisions[i]

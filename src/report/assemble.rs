@@ -13,9 +13,9 @@ use crate::quantity::{Dimension, UnitSystem};
 use crate::rules;
 
 /// Everything that assembling needs at hand.
-struct Assembler<'a, 'e> {
-    evaluation: &'e Evaluation<'a>,
-    sensitivity: &'e mut Sensitivity,
+pub(super) struct Assembler<'a, 'e> {
+    pub(super) evaluation: &'e Evaluation<'a>,
+    pub(super) sensitivity: &'e mut Sensitivity,
     units: UnitSystem,
 }
 
@@ -41,7 +41,8 @@ impl Report {
                 judgement.components[k],
                 Some(k),
             );
-            components.push(component.name.clone(), ComponentReport { kind: component.kind.name(), region });
+            let report = a.component(k, region, exergies);
+            components.push(component.name.clone(), report);
         }
         let mut groups = Named::default();
         for (g, group) in process.groups.iter().enumerate() {
@@ -58,7 +59,7 @@ impl Report {
         let plant_verdict = if single { judgement.components[0] } else { judgement.plant };
         let region =
             a.region(&equations.plant, &evaluation.plant, exergies.plant.as_ref().ok(), plant_verdict, None);
-        let ranking = a.ranking(exergies);
+        let plant = a.plant(region, exergies);
         let mut flows = Named::default();
         for f in 0..process.flows.len() {
             let flow = a.flow(f, exergies);
@@ -110,7 +111,7 @@ impl Report {
                     would_need: u.would_need.clone(),
                 })
                 .collect(),
-            plant: PlantReport { region, ranking },
+            plant,
             components,
             groups,
             flows,
@@ -151,16 +152,20 @@ impl Assembler<'_, '_> {
         self.evaluation.view
     }
 
-    fn figure(&mut self, form: &Dual, dimension: Dimension) -> Figure {
+    pub(super) fn figure(&mut self, form: &Dual, dimension: Dimension) -> Figure {
         let u = self.sensitivity.uncertainty(self.evaluation.view.model, form);
         Figure::new(form.value, u, dimension, self.units)
     }
 
-    fn bare(&self, value: f64, dimension: Dimension) -> Figure {
+    pub(super) fn bare(&self, value: f64, dimension: Dimension) -> Figure {
         Figure::new(value, 0.0, dimension, self.units)
     }
 
-    fn dimensions(&self) -> (Dimension, Dimension, Dimension, Dimension) {
+    pub(super) fn units(&self) -> UnitSystem {
+        self.units
+    }
+
+    pub(super) fn dimensions(&self) -> (Dimension, Dimension, Dimension, Dimension) {
         match self.evaluation.view.model.process.basis {
             Basis::Rate => {
                 (Dimension::MassFlow, Dimension::MoleFlow, Dimension::Power, Dimension::EntropyRate)
@@ -225,6 +230,12 @@ impl Assembler<'_, '_> {
                 out: self.figure(&e.outflow, energy),
                 destruction: self.figure(&e.destruction, energy),
                 residual: self.figure(&residual, energy),
+                fuel: None,
+                product: None,
+                loss: None,
+                free: None,
+                efficiency: None,
+                no_efficiency: None,
             }
         });
         RegionReport {
@@ -237,26 +248,6 @@ impl Assembler<'_, '_> {
             exergy_balance,
             performance: Named::default(),
         }
-    }
-
-    fn ranking(&mut self, exergies: &Exergies) -> Vec<RankEntry> {
-        let (_, _, energy, _) = self.dimensions();
-        let total: f64 = exergies.components.iter().flatten().map(|b| b.destruction.value.max(0.0)).sum();
-        let mut out = Vec::new();
-        for (k, balance) in exergies.components.iter().enumerate() {
-            if let Ok(b) = balance {
-                out.push((
-                    b.destruction.value,
-                    RankEntry {
-                        component: self.view().model.process.components[k].name.clone(),
-                        destruction: self.figure(&b.destruction, energy),
-                        share: if total > 0.0 { plain(b.destruction.value / total) } else { 0.0 },
-                    },
-                ));
-            }
-        }
-        out.sort_by(|a, b| b.0.total_cmp(&a.0));
-        out.into_iter().map(|(_, e)| e).collect()
     }
 
     fn finding(&self, f: &assessment::Finding) -> Finding {

@@ -6,11 +6,12 @@
 //! the list below.
 
 mod carnot;
+mod interior;
 mod machine;
 mod measure;
 pub mod phrase;
+mod practice;
 mod remark;
-mod reservoir;
 mod saturation;
 mod terminal;
 #[cfg(test)]
@@ -203,13 +204,22 @@ rules! {
     expander_beats_isentropic::ExpanderBeatsIsentropic,
     compressor_beats_isentropic::CompressorBeatsIsentropic,
     throttle_against_entropy::ThrottleAgainstEntropy,
+    internal_temperature_cross::InternalTemperatureCross,
+    composite_curves_cross::CompositeCurvesCross,
+    work_beats_reversible::WorkBeatsReversible,
+    compressor_beats_isothermal::CompressorBeatsIsothermal,
+    negative_exergy_destruction::NegativeExergyDestruction,
+    exergy_efficiency_above_one::ExergyEfficiencyAboveOne,
     terminal_temperature_cross::TerminalTemperatureCross,
     parallel_flow_outlet_cross::ParallelFlowOutletCross,
+    exchanger_effectiveness_above_one::ExchangerEffectivenessAboveOne,
+    section_entropy_negative::SectionEntropyNegative,
     mass_imbalance::MassImbalance,
     element_imbalance::ElementImbalance,
     energy_imbalance::EnergyImbalance,
     composition_sum::CompositionSum,
     surplus_property_mismatch::SurplusPropertyMismatch,
+    saturation_mismatch::SaturationMismatch,
     redundant_readings_disagree::RedundantReadingsDisagree,
     state_outside_formulation::StateOutsideFormulation,
     vapour_below_saturation::VapourBelowSaturation,
@@ -217,7 +227,16 @@ rules! {
     quality_out_of_range::QualityOutOfRange,
     wetness_unknown::WetnessUnknown,
     reversed_flow::ReversedFlow,
+    unusual_approach::UnusualApproach,
+    unusual_pressure_drop::UnusualPressureDrop,
+    negative_exergy::NegativeExergy,
     unusual_dead_state::UnusualDeadState,
+    unusual_turbine_efficiency::UnusualTurbineEfficiency,
+    unusual_gas_turbine_efficiency::UnusualGasTurbineEfficiency,
+    unusual_machine_efficiency::UnusualMachineEfficiency,
+    unusual_exergy_efficiency::UnusualExergyEfficiency,
+    unusual_stack_loss::UnusualStackLoss,
+    claim_close_to_limit::ClaimCloseToLimit,
     gouy_stodola_mismatch::GouyStodolaMismatch,
 }
 

@@ -42,9 +42,11 @@ fn worked_cases_give_their_published_answers() {
             }
         }
         for rule in expect["covers"].as_array().into_iter().flatten() {
-            let seen = answer["violations"].as_array().unwrap().iter().any(|v| {
-                v["rule"] == *rule || v["covers"].as_array().unwrap().contains(rule)
-            });
+            let seen = answer["violations"]
+                .as_array()
+                .unwrap()
+                .iter()
+                .any(|v| v["rule"] == *rule || v["covers"].as_array().unwrap().contains(rule));
             if !seen {
                 wrong.push(format!("{name}: {rule} is not among the findings"));
             }

@@ -2,4 +2,5 @@
 //! must bring along.
 
 mod layers;
+mod properties;
 mod rules;

@@ -72,12 +72,7 @@ fn no_keeping_case_breaks_its_rule() {
         let report = check(text, info.name);
         assert!(!spoken(&report).contains(info.name), "{}: {}", info.name, report.to_text());
         if info.authority == Authority::Law {
-            assert!(
-                !matches!(report.verdict, "violated" | "suspect"),
-                "{}: {}",
-                info.name,
-                report.to_text()
-            );
+            assert!(!matches!(report.verdict, "violated" | "suspect"), "{}: {}", info.name, report.to_text());
         }
     }
 }

@@ -1,6 +1,10 @@
 //! Checks against published values, one file a topic.
 
 mod chemistry;
+mod exchanger;
+mod cogeneration;
+mod exergy;
+mod claims;
 mod gas;
 mod humid_air;
 mod real_fluid;
