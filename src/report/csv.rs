@@ -1,6 +1,8 @@
 //! The report as one table for spreadsheets and scripts: comma-separated values by RFC 4180.
 
-use super::{BalanceReport, ComponentReport, Figure, Finding, FlowReport, RegionReport, Report};
+use super::{
+    BalanceReport, ComponentReport, Figure, Finding, FlowReport, ProfileReport, RegionReport, Report,
+};
 
 /// Columns of the table, in their order.
 const HEADER: [&str; 8] = ["section", "name", "quantity", "value", "unit", "u", "verdict", "note"];
@@ -75,8 +77,11 @@ impl Report {
             sheet.region("group", name, "", group);
         }
         for (name, component) in &self.components.0 {
-            let ComponentReport { kind, region, .. } = component;
+            let ComponentReport { kind, region, profile, .. } = component;
             sheet.region("component", name, kind, region);
+            if let Some(profile) = profile {
+                sheet.profile(name, profile);
+            }
             if let Some(entry) = self.plant.ranking.iter().find(|r| r.component == *name) {
                 sheet.number("component", name, "exergy_balance.destruction_share", entry.share);
             }
@@ -240,6 +245,52 @@ impl Sheet {
         }
         for (quantity, f) in &region.performance.0 {
             self.figure(section, name, &format!("performance.{quantity}"), f, verdict, "");
+        }
+    }
+
+    fn profile(&mut self, name: &str, p: &ProfileReport) {
+        let section = "component";
+        self.note(section, name, "profile.arrangement", p.arrangement);
+        self.note(section, name, "profile.note", &p.note);
+        let crossed = p.crossed.as_ref();
+        for (word, f) in [
+            ("duty", Some(&p.duty)),
+            ("given_off", p.given_off.as_ref()),
+            ("pinch.difference", Some(&p.pinch.difference)),
+            ("pinch.duty", Some(&p.pinch.duty)),
+            ("pinch.hot", Some(&p.pinch.hot)),
+            ("pinch.cold", Some(&p.pinch.cold)),
+            ("crossed.from", crossed.map(|c| &c.from)),
+            ("crossed.to", crossed.map(|c| &c.to)),
+            ("crossed.generation", crossed.map(|c| &c.generation)),
+            ("conductance", p.conductance.as_ref()),
+            ("log_mean_difference", p.log_mean_difference.as_ref()),
+        ] {
+            if let Some(f) = f {
+                self.figure(section, name, &format!("profile.{word}"), f, "", "");
+            }
+        }
+        if let Some(effectiveness) = p.effectiveness {
+            self.number(section, name, "profile.effectiveness", effectiveness);
+        }
+        // A place has three figures, told apart by their number.
+        let (axis, temperature) = (p.pinch.duty.unit, p.pinch.hot.unit);
+        for (n, point) in p.points.iter().enumerate() {
+            for (word, x, unit) in [
+                ("duty", point.duty, axis),
+                ("hot", point.hot, temperature),
+                ("cold", point.cold, temperature),
+            ] {
+                let quantity = format!("profile.points.{n}.{word}");
+                self.line(Line {
+                    section,
+                    name,
+                    quantity: &quantity,
+                    value: Some(x),
+                    unit,
+                    ..Line::default()
+                });
+            }
         }
     }
 

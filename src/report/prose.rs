@@ -1,6 +1,6 @@
 //! Words and numbers as people read them: shared by the report as text and as a page.
 
-use super::{Figure, Finding, Report, Unchecked};
+use super::{Figure, Finding, ProfileReport, Report, Unchecked};
 
 /// A number and its standard uncertainty, both with the digits that the uncertainty warrants:
 /// two significant digits of the uncertainty, and the value to the same place
@@ -323,6 +323,38 @@ pub(super) fn group_assumptions(report: &Report) -> Vec<(String, Vec<String>)> {
         }
     }
     groups
+}
+
+/// The interior of an exchanger in sentences.
+pub(super) fn profile(p: &ProfileReport) -> String {
+    let place = |f: &Figure| {
+        if f.unit == "1" { format!("{} of the duty", percent(f.value)) } else { bare_figure(f) }
+    };
+    let mut out = format!(
+        "Duty {}; smallest difference {}, where {} meets {}.",
+        figure(&p.duty),
+        figure(&p.pinch.difference),
+        bare_figure(&p.pinch.hot),
+        bare_figure(&p.pinch.cold)
+    );
+    if let Some(given) = &p.given_off {
+        out.push_str(&format!(" The hot side gives off {}.", figure(given)));
+    }
+    if let Some(c) = &p.crossed {
+        out.push_str(&format!(
+            " Heat would run uphill from {} to {}, with σ = {}.",
+            place(&c.from),
+            place(&c.to),
+            figure(&c.generation)
+        ));
+    }
+    if let Some(ua) = &p.conductance {
+        out.push_str(&format!(" U A = {}.", bare_figure(ua)));
+    }
+    if let Some(effectiveness) = p.effectiveness {
+        out.push_str(&format!(" Effectiveness {}.", percent(effectiveness)));
+    }
+    format!("{out} {}", clean(&p.note))
 }
 
 /// Components as they are worth looking at: violations first, then by exergy destruction.
