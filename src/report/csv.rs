@@ -84,7 +84,19 @@ impl Report {
             }
             if let Some(entry) = self.plant.ranking.iter().find(|r| r.component == *name) {
                 sheet.number("component", name, "exergy_balance.destruction_share", entry.share);
+                if let Some(share) = entry.share_of_fuel {
+                    sheet.number("component", name, "exergy_balance.destruction_share_of_fuel", share);
+                }
             }
+        }
+        for (name, component) in &self.components.0 {
+            for (cause, f) in &component.decomposition.0 {
+                sheet.figure("component", name, &format!("decomposition.{cause}"), f, "", "");
+            }
+        }
+        for o in &self.plant.omitted {
+            let note = format!("{}; would need {}", o.detail, o.would_need);
+            sheet.note("plant", &self.name, &format!("omitted.{}", o.what), &note);
         }
         for (name, flow) in &self.flows.0 {
             sheet.flow(name, flow);
@@ -237,10 +249,23 @@ impl Sheet {
             self.number(section, name, "entropy_balance.z", e.z);
         }
         if let Some(e) = &region.exergy_balance {
-            for (part, f) in
-                [("in", &e.r#in), ("out", &e.out), ("destruction", &e.destruction), ("residual", &e.residual)]
-            {
-                self.figure(section, name, &format!("exergy_balance.{part}"), f, verdict, "");
+            for (part, f) in [
+                ("in", Some(&e.r#in)),
+                ("out", Some(&e.out)),
+                ("destruction", Some(&e.destruction)),
+                ("residual", Some(&e.residual)),
+                ("fuel", e.fuel.as_ref()),
+                ("product", e.product.as_ref()),
+                ("loss", e.loss.as_ref()),
+                ("free", e.free.as_ref()),
+                ("efficiency", e.efficiency.as_ref()),
+            ] {
+                if let Some(f) = f {
+                    self.figure(section, name, &format!("exergy_balance.{part}"), f, verdict, "");
+                }
+            }
+            if let Some(reason) = e.no_efficiency {
+                self.note(section, name, "exergy_balance.no_efficiency", reason);
             }
         }
         for (quantity, f) in &region.performance.0 {

@@ -195,9 +195,14 @@ impl Report {
     }
 
     fn set_unchecked(&self, out: &mut String) -> Result {
-        let groups = prose::group_unchecked(&self.unchecked);
-        if !groups.is_empty() {
-            out.push_str("<section>\n<h2>Not checked</h2>\n<ul class=\"plain small\">\n");
+        for (title, groups) in [
+            ("Not checked", prose::group_unchecked(&self.unchecked)),
+            ("Left out", prose::group_omitted(self)),
+        ] {
+            if groups.is_empty() {
+                continue;
+            }
+            writeln!(out, "<section>\n<h2>{title}</h2>\n<ul class=\"plain small\">")?;
             for g in groups {
                 writeln!(
                     out,

@@ -165,7 +165,15 @@ pub(super) fn words(code: &str) -> String {
     code.replace(['_', '-'], " ")
 }
 
-/// The same with a capital.
+/// A word of the interface that may be followed by the name of a flow (`duty.flue-gas`).
+pub(super) fn qualified(code: &str) -> String {
+    match code.split_once('.') {
+        Some((word, name)) => format!("{}, {}", words(word), clean(name)),
+        None => words(code),
+    }
+}
+
+/// A word of the interface with a capital.
 pub(super) fn title(code: &str) -> String {
     let text = words(code);
     let mut chars = text.chars();
@@ -303,6 +311,24 @@ pub(super) fn group_unchecked(unchecked: &[Unchecked]) -> Vec<UncheckedGroup> {
         match groups.iter_mut().find(|g| g.heading == heading) {
             Some(g) => g.places.push(place),
             None => groups.push(UncheckedGroup { heading, places: vec![place] }),
+        }
+    }
+    groups
+}
+
+/// Figures of merit that were left out, and why: by the reason, each with what it is about.
+pub(super) fn group_omitted(report: &Report) -> Vec<UncheckedGroup> {
+    let mut groups: Vec<UncheckedGroup> = Vec::new();
+    let mut add = |heading: String, place: String| match groups.iter_mut().find(|g| g.heading == heading) {
+        Some(g) => g.places.push(place),
+        None => groups.push(UncheckedGroup { heading, places: vec![place] }),
+    };
+    for o in &report.plant.omitted {
+        add(clean(&o.detail), words(o.what));
+    }
+    for (name, c) in &report.components.0 {
+        if let Some(reason) = c.region.exergy_balance.as_ref().and_then(|e| e.no_efficiency) {
+            add(format!("No exergetic efficiency: {reason}"), clean(name));
         }
     }
     groups

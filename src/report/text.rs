@@ -89,13 +89,17 @@ impl Report {
     }
 
     fn write_unchecked(&self, out: &mut String) -> std::fmt::Result {
-        let groups = prose::group_unchecked(&self.unchecked);
-        if !groups.is_empty() {
-            heading(out, "Not checked")?;
-        }
-        for g in groups {
-            writeln!(out, "{}", wrapped(&format!("{}:", g.heading), 2, 4))?;
-            writeln!(out, "{}", wrapped(&listed(&g.places), 4, 4))?;
+        for (title, groups) in [
+            ("Not checked", prose::group_unchecked(&self.unchecked)),
+            ("Left out", prose::group_omitted(self)),
+        ] {
+            if !groups.is_empty() {
+                heading(out, title)?;
+            }
+            for g in groups {
+                writeln!(out, "{}", wrapped(&format!("{}:", g.heading), 2, 4))?;
+                writeln!(out, "{}", wrapped(&listed(&g.places), 4, 4))?;
+            }
         }
         let groups = prose::group_assumptions(self);
         if !groups.is_empty() {
