@@ -1,7 +1,7 @@
 //! Drawings of figures with their uncertainty.
 
-use super::markup::{Drawing, shortened};
-use super::{Figure, Finding, Report, prose};
+use super::markup::{Drawing, at, shortened};
+use super::{Figure, Finding, ProfileReport, Report, prose};
 
 /// Most bars; the others are summed up in one.
 const MOST_BARS: usize = 30;
@@ -130,4 +130,100 @@ pub(super) fn destruction(report: &Report) -> Option<String> {
     }
     d.line((x(0.0), 0.0), (x(0.0), height), "limit");
     Some(d.finish((NAMES + PLOT + FIGURES, height)))
+}
+
+/// Temperatures over the duty of an exchanger: what gives heat above what takes it. `None` where
+/// there is no line to draw.
+pub(super) fn profile(id: &str, name: &str, p: &ProfileReport) -> Option<String> {
+    const LEFT: f64 = 56.0;
+    const TOP: f64 = 26.0;
+    const PLOT: (f64, f64) = (520.0, 230.0);
+    let fold = |pick: &dyn Fn(&super::ProfilePoint) -> [f64; 2]| {
+        let all = || p.points.iter().flat_map(pick).filter(|x| x.is_finite());
+        (all().fold(f64::INFINITY, f64::min), all().fold(f64::NEG_INFINITY, f64::max))
+    };
+    let (left, right) = fold(&|q| [q.duty, q.duty]);
+    let (cold, hot) = fold(&|q| [q.hot, q.cold]);
+    let (across, up) = (ticks(left, right)?, ticks(cold, hot)?);
+    let (low, high) = (up.first()?.min(cold), up.last()?.max(hot));
+    let x = |duty: f64| LEFT + PLOT.0 * (duty - left) / (right - left);
+    let y = |t: f64| TOP + PLOT.1 * (high - t) / (high - low);
+    let unit = prose::unit(p.pinch.hot.unit);
+    let description = format!(
+        "Smallest difference {} where {} meets {}. {}",
+        prose::figure(&p.pinch.difference),
+        prose::bare_figure(&p.pinch.hot),
+        prose::bare_figure(&p.pinch.cold),
+        p.note
+    );
+    let mut d = Drawing::new(id, &format!("Temperatures inside {name}"), &description);
+    if let Some(c) = &p.crossed {
+        let (a, b) = (x(c.from.value), x(c.to.value));
+        d.rectangle((a.min(b), TOP), ((b - a).abs(), PLOT.1), 0.0, "forbidden");
+    }
+    for t in up.iter().filter(|t| (low..=high).contains(*t)) {
+        d.line((LEFT, y(*t)), (LEFT + PLOT.0, y(*t)), "grid");
+        d.text((LEFT - 8.0, y(*t) + 4.0), "note", "end", &prose::digits(*t, 0.0).text());
+    }
+    for q in across.iter().filter(|q| (left..=right).contains(*q)) {
+        d.line((x(*q), TOP + PLOT.1), (x(*q), TOP + PLOT.1 + 5.0), "axis");
+        d.text((x(*q), TOP + PLOT.1 + 18.0), "note", "middle", &prose::digits(*q, 0.0).text());
+    }
+    d.line((LEFT, TOP + PLOT.1), (LEFT + PLOT.0, TOP + PLOT.1), "axis");
+    let axis = if p.axis == "duty" {
+        format!("duty, {}", prose::unit(p.duty.unit))
+    } else {
+        "share of the duty of each side".to_owned()
+    };
+    d.text((LEFT + PLOT.0, TOP + PLOT.1 + 34.0), "note", "end", &axis);
+    d.text((LEFT - 8.0, TOP - 14.0), "note", "end", &unit);
+    let curve = |pick: &dyn Fn(&super::ProfilePoint) -> f64| {
+        let points: Vec<String> =
+            p.points.iter().map(|q| format!("{} {}", at(x(q.duty)), at(y(pick(q))))).collect();
+        format!("M{}", points.join("L"))
+    };
+    d.path(&curve(&|q| q.hot), "curve hot");
+    d.path(&curve(&|q| q.cold), "curve cold");
+    let named = left + 0.85 * (right - left);
+    let (hot, cold) = (between(p, named, &|q| q.hot)?, between(p, named, &|q| q.cold)?);
+    let (over, under) = (-7.0, 16.0);
+    let lifts = if hot >= cold { (over, under) } else { (under, over) };
+    for (t, word, lift) in [(hot, "hot", lifts.0), (cold, "cold", lifts.1)] {
+        d.text((x(named), y(t) + lift), "strong", "middle", word);
+    }
+    let pinch = x(p.pinch.duty.value);
+    d.line((pinch, y(p.pinch.hot.value)), (pinch, y(p.pinch.cold.value)), "limit");
+    let anchor = if pinch < LEFT + 0.5 * PLOT.0 { "start" } else { "end" };
+    let aside = if anchor == "start" { 8.0 } else { -8.0 };
+    let (a, b) = (y(p.pinch.hot.value), y(p.pinch.cold.value));
+    // Where there is no room between the curves, the figure stands under them.
+    let height = if (a - b).abs() > 40.0 { 0.5 * (a + b) + 4.0 } else { a.max(b) + 17.0 };
+    d.text((pinch + aside, height), "strong", anchor, &prose::figure(&p.pinch.difference));
+    Some(d.finish((LEFT + PLOT.0 + 24.0, TOP + PLOT.1 + 42.0)))
+}
+
+/// A temperature of a profile at a duty.
+fn between(p: &ProfileReport, duty: f64, pick: &dyn Fn(&super::ProfilePoint) -> f64) -> Option<f64> {
+    p.points.windows(2).find_map(|pair| match pair {
+        [a, b] if a.duty <= duty && duty <= b.duty && a.duty < b.duty => {
+            Some(pick(a) + (pick(b) - pick(a)) * (duty - a.duty) / (b.duty - a.duty))
+        }
+        _ => None,
+    })
+}
+
+/// Round numbers from below the lowest to above the highest, about five; `None` without a span.
+fn ticks(low: f64, high: f64) -> Option<Vec<f64>> {
+    let span = high - low;
+    if !span.is_finite() || span <= 0.0 {
+        return None;
+    }
+    let power = 10f64.powf((span / 5.0).log10().floor());
+    let step = [1.0, 2.0, 5.0, 10.0].map(|m| m * power).into_iter().find(|s| span / s <= 6.0)?;
+    let (first, last) = ((low / step).floor(), (high / step).ceil());
+    // A span far below the magnitude has no steps that could be told apart.
+    if step <= 0.0 || last - first > 12.0 {
+        return None;
+    }
+    Some((0..=(last - first) as usize).map(|n| (first + n as f64) * step).collect())
 }

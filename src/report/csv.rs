@@ -1,6 +1,8 @@
 //! The report as one table for spreadsheets and scripts: comma-separated values by RFC 4180.
 
-use super::{BalanceReport, ComponentReport, Figure, Finding, FlowReport, RegionReport, Report};
+use super::{
+    BalanceReport, ComponentReport, Figure, Finding, FlowReport, ProfileReport, RegionReport, Report,
+};
 
 /// Columns of the table, in their order.
 const HEADER: [&str; 8] = ["section", "name", "quantity", "value", "unit", "u", "verdict", "note"];
@@ -75,11 +77,26 @@ impl Report {
             sheet.region("group", name, "", group);
         }
         for (name, component) in &self.components.0 {
-            let ComponentReport { kind, region, .. } = component;
+            let ComponentReport { kind, region, profile, .. } = component;
             sheet.region("component", name, kind, region);
+            if let Some(profile) = profile {
+                sheet.profile(name, profile);
+            }
             if let Some(entry) = self.plant.ranking.iter().find(|r| r.component == *name) {
                 sheet.number("component", name, "exergy_balance.destruction_share", entry.share);
+                if let Some(share) = entry.share_of_fuel {
+                    sheet.number("component", name, "exergy_balance.destruction_share_of_fuel", share);
+                }
             }
+        }
+        for (name, component) in &self.components.0 {
+            for (cause, f) in &component.decomposition.0 {
+                sheet.figure("component", name, &format!("decomposition.{cause}"), f, "", "");
+            }
+        }
+        for o in &self.plant.omitted {
+            let note = format!("{}; would need {}", o.detail, o.would_need);
+            sheet.note("plant", &self.name, &format!("omitted.{}", o.what), &note);
         }
         for (name, flow) in &self.flows.0 {
             sheet.flow(name, flow);
@@ -232,14 +249,73 @@ impl Sheet {
             self.number(section, name, "entropy_balance.z", e.z);
         }
         if let Some(e) = &region.exergy_balance {
-            for (part, f) in
-                [("in", &e.r#in), ("out", &e.out), ("destruction", &e.destruction), ("residual", &e.residual)]
-            {
-                self.figure(section, name, &format!("exergy_balance.{part}"), f, verdict, "");
+            for (part, f) in [
+                ("in", Some(&e.r#in)),
+                ("out", Some(&e.out)),
+                ("destruction", Some(&e.destruction)),
+                ("residual", Some(&e.residual)),
+                ("fuel", e.fuel.as_ref()),
+                ("product", e.product.as_ref()),
+                ("loss", e.loss.as_ref()),
+                ("free", e.free.as_ref()),
+                ("efficiency", e.efficiency.as_ref()),
+            ] {
+                if let Some(f) = f {
+                    self.figure(section, name, &format!("exergy_balance.{part}"), f, verdict, "");
+                }
+            }
+            if let Some(reason) = e.no_efficiency {
+                self.note(section, name, "exergy_balance.no_efficiency", reason);
             }
         }
         for (quantity, f) in &region.performance.0 {
             self.figure(section, name, &format!("performance.{quantity}"), f, verdict, "");
+        }
+    }
+
+    fn profile(&mut self, name: &str, p: &ProfileReport) {
+        let section = "component";
+        self.note(section, name, "profile.arrangement", p.arrangement);
+        self.note(section, name, "profile.note", &p.note);
+        let crossed = p.crossed.as_ref();
+        for (word, f) in [
+            ("duty", Some(&p.duty)),
+            ("given_off", p.given_off.as_ref()),
+            ("pinch.difference", Some(&p.pinch.difference)),
+            ("pinch.duty", Some(&p.pinch.duty)),
+            ("pinch.hot", Some(&p.pinch.hot)),
+            ("pinch.cold", Some(&p.pinch.cold)),
+            ("crossed.from", crossed.map(|c| &c.from)),
+            ("crossed.to", crossed.map(|c| &c.to)),
+            ("crossed.generation", crossed.map(|c| &c.generation)),
+            ("conductance", p.conductance.as_ref()),
+            ("log_mean_difference", p.log_mean_difference.as_ref()),
+        ] {
+            if let Some(f) = f {
+                self.figure(section, name, &format!("profile.{word}"), f, "", "");
+            }
+        }
+        if let Some(effectiveness) = p.effectiveness {
+            self.number(section, name, "profile.effectiveness", effectiveness);
+        }
+        // A place has three figures, told apart by their number.
+        let (axis, temperature) = (p.pinch.duty.unit, p.pinch.hot.unit);
+        for (n, point) in p.points.iter().enumerate() {
+            for (word, x, unit) in [
+                ("duty", point.duty, axis),
+                ("hot", point.hot, temperature),
+                ("cold", point.cold, temperature),
+            ] {
+                let quantity = format!("profile.points.{n}.{word}");
+                self.line(Line {
+                    section,
+                    name,
+                    quantity: &quantity,
+                    value: Some(x),
+                    unit,
+                    ..Line::default()
+                });
+            }
         }
     }
 

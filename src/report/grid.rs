@@ -50,7 +50,14 @@ fn pair(f: Option<Figure>) -> String {
 
 /// Every table, those without rows left out.
 pub(super) fn all(report: &Report) -> Vec<Grid> {
-    let mut grids = vec![components(report), performance(report), material(report), transfers(report)];
+    let mut grids = vec![
+        components(report),
+        purposes(report),
+        performance(report),
+        causes(report),
+        material(report),
+        transfers(report),
+    ];
     grids.retain(|g| !g.rows.is_empty());
     grids
 }
@@ -106,13 +113,78 @@ fn components(report: &Report) -> Grid {
     }
 }
 
-fn performance(report: &Report) -> Grid {
+/// Every region by its name, the plant last.
+fn regions(report: &Report) -> impl Iterator<Item = (&str, &RegionReport)> {
     let components = report.components.0.iter().map(|(n, c)| (n.as_str(), &c.region));
     let groups = report.groups.0.iter().map(|(n, g)| (n.as_str(), g));
+    components.chain(groups).chain([("whole plant", &report.plant.region)])
+}
+
+/// What exergy is spent on what.
+fn purposes(report: &Report) -> Grid {
+    let balances = || regions(report).filter_map(|(n, r)| r.exergy_balance.as_ref().map(|e| (n, e)));
+    let unit = balances().find_map(|(_, e)| e.fuel.or(e.loss)).map(|f| f.unit);
+    let rows: Vec<Vec<String>> = balances()
+        .filter(|(_, e)| e.fuel.is_some() || e.efficiency.is_some())
+        .map(|(name, e)| {
+            let efficiency =
+                e.efficiency.map(|f| Figure { value: 100.0 * f.value, u: 100.0 * f.u, unit: f.unit });
+            vec![prose::clean(name), pair(e.fuel), pair(e.product), pair(e.loss), pair(efficiency)]
+        })
+        .collect();
+    let sums = usize::from(
+        rows.len() > 1 && report.plant.region.exergy_balance.as_ref().is_some_and(|e| e.fuel.is_some()),
+    );
+    Grid {
+        title: "Exergy spent and gained",
+        heads: heads(&[
+            ("Component", Align::Left),
+            (&with_unit("Fuel", unit), Align::Figure),
+            (&with_unit("Product", unit), Align::Figure),
+            (&with_unit("Loss", unit), Align::Figure),
+            ("Efficiency %", Align::Figure),
+        ]),
+        rows,
+        sums,
+    }
+}
+
+/// A cause that is less than this of the largest is rounding, or as good as none.
+const LEAST_CAUSE: f64 = 1e-4;
+
+/// Entropy generation by its causes.
+fn causes(report: &Report) -> Grid {
+    let rows = report.components.0.iter().flat_map(|(name, c)| {
+        let parts = &c.decomposition.0;
+        let largest = parts.iter().filter(|p| p.1.unit != "1").map(|p| p.1.value.abs()).fold(0.0, f64::max);
+        let counts = move |f: &Figure| f.value.abs().max(f.u) >= LEAST_CAUSE * largest;
+        parts.iter().filter(move |(_, f)| counts(f)).map(move |(cause, f)| {
+            vec![prose::clean(name), prose::qualified(cause), pair(Some(*f)), prose::unit(f.unit)]
+        })
+    });
+    Grid {
+        title: "Causes of entropy generation",
+        heads: heads(&[
+            ("Component", Align::Left),
+            ("Cause", Align::Left),
+            ("σ", Align::Figure),
+            ("Unit", Align::Left),
+        ]),
+        rows: rows.collect(),
+        sums: 0,
+    }
+}
+
+fn performance(report: &Report) -> Grid {
     let mut rows = Vec::new();
-    for (name, region) in components.chain(groups).chain([("whole plant", &report.plant.region)]) {
+    for (name, region) in regions(report) {
         for (quantity, f) in &region.performance.0 {
-            rows.push(vec![prose::clean(name), prose::words(quantity), pair(Some(*f)), prose::unit(f.unit)]);
+            rows.push(vec![
+                prose::clean(name),
+                prose::qualified(quantity),
+                pair(Some(*f)),
+                prose::unit(f.unit),
+            ]);
         }
     }
     Grid {

@@ -107,6 +107,7 @@ impl Report {
                  Left of zero is impossible.</p>\n</section>"
             )?;
         }
+        self.set_profiles(out)?;
         match diagram::sheet(self) {
             Some((svg, tall)) => {
                 let class = if tall { "wide tall" } else { "wide sheet" };
@@ -133,6 +134,24 @@ impl Report {
             }
             None => {}
         }
+        Ok(())
+    }
+
+    /// The interiors of exchangers.
+    fn set_profiles(&self, out: &mut String) -> Result {
+        let profiles = || self.components.0.iter().filter_map(|(n, c)| c.profile.as_ref().map(|p| (n, p)));
+        if profiles().next().is_none() {
+            return Ok(());
+        }
+        out.push_str("<section>\n<h2>Temperatures inside exchangers</h2>\n");
+        for (n, (name, p)) in profiles().enumerate() {
+            writeln!(out, "<article class=\"profile\">\n<h3>{}</h3>", escaped(name))?;
+            if let Some(svg) = charts::profile(&format!("profile-{n}"), name, p) {
+                writeln!(out, "<figure class=\"wide\">{svg}</figure>")?;
+            }
+            writeln!(out, "<p class=\"small\">{}</p>\n</article>", escaped(&prose::profile(p)))?;
+        }
+        out.push_str("</section>\n");
         Ok(())
     }
 
@@ -176,9 +195,14 @@ impl Report {
     }
 
     fn set_unchecked(&self, out: &mut String) -> Result {
-        let groups = prose::group_unchecked(&self.unchecked);
-        if !groups.is_empty() {
-            out.push_str("<section>\n<h2>Not checked</h2>\n<ul class=\"plain small\">\n");
+        for (title, groups) in [
+            ("Not checked", prose::group_unchecked(&self.unchecked)),
+            ("Left out", prose::group_omitted(self)),
+        ] {
+            if groups.is_empty() {
+                continue;
+            }
+            writeln!(out, "<section>\n<h2>{title}</h2>\n<ul class=\"plain small\">")?;
             for g in groups {
                 writeln!(
                     out,

@@ -1,6 +1,6 @@
 //! Words and numbers as people read them: shared by the report as text and as a page.
 
-use super::{Figure, Finding, Report, Unchecked};
+use super::{Figure, Finding, ProfileReport, Report, Unchecked};
 
 /// A number and its standard uncertainty, both with the digits that the uncertainty warrants:
 /// two significant digits of the uncertainty, and the value to the same place
@@ -165,7 +165,15 @@ pub(super) fn words(code: &str) -> String {
     code.replace(['_', '-'], " ")
 }
 
-/// The same with a capital.
+/// A word of the interface that may be followed by the name of a flow (`duty.flue-gas`).
+pub(super) fn qualified(code: &str) -> String {
+    match code.split_once('.') {
+        Some((word, name)) => format!("{}, {}", words(word), clean(name)),
+        None => words(code),
+    }
+}
+
+/// A word of the interface with a capital.
 pub(super) fn title(code: &str) -> String {
     let text = words(code);
     let mut chars = text.chars();
@@ -308,6 +316,24 @@ pub(super) fn group_unchecked(unchecked: &[Unchecked]) -> Vec<UncheckedGroup> {
     groups
 }
 
+/// Figures of merit that were left out, and why: by the reason, each with what it is about.
+pub(super) fn group_omitted(report: &Report) -> Vec<UncheckedGroup> {
+    let mut groups: Vec<UncheckedGroup> = Vec::new();
+    let mut add = |heading: String, place: String| match groups.iter_mut().find(|g| g.heading == heading) {
+        Some(g) => g.places.push(place),
+        None => groups.push(UncheckedGroup { heading, places: vec![place] }),
+    };
+    for o in &report.plant.omitted {
+        add(clean(&o.detail), words(o.what));
+    }
+    for (name, c) in &report.components.0 {
+        if let Some(reason) = c.region.exergy_balance.as_ref().and_then(|e| e.no_efficiency) {
+            add(format!("No exergetic efficiency: {reason}"), clean(name));
+        }
+    }
+    groups
+}
+
 /// Assumptions by statement, each with its places.
 pub(super) fn group_assumptions(report: &Report) -> Vec<(String, Vec<String>)> {
     let mut groups: Vec<(String, Vec<String>)> = Vec::new();
@@ -323,6 +349,38 @@ pub(super) fn group_assumptions(report: &Report) -> Vec<(String, Vec<String>)> {
         }
     }
     groups
+}
+
+/// The interior of an exchanger in sentences.
+pub(super) fn profile(p: &ProfileReport) -> String {
+    let place = |f: &Figure| {
+        if f.unit == "1" { format!("{} of the duty", percent(f.value)) } else { bare_figure(f) }
+    };
+    let mut out = format!(
+        "Duty {}; smallest difference {}, where {} meets {}.",
+        figure(&p.duty),
+        figure(&p.pinch.difference),
+        bare_figure(&p.pinch.hot),
+        bare_figure(&p.pinch.cold)
+    );
+    if let Some(given) = &p.given_off {
+        out.push_str(&format!(" The hot side gives off {}.", figure(given)));
+    }
+    if let Some(c) = &p.crossed {
+        out.push_str(&format!(
+            " Heat would run uphill from {} to {}, with σ = {}.",
+            place(&c.from),
+            place(&c.to),
+            figure(&c.generation)
+        ));
+    }
+    if let Some(ua) = &p.conductance {
+        out.push_str(&format!(" U A = {}.", bare_figure(ua)));
+    }
+    if let Some(effectiveness) = p.effectiveness {
+        out.push_str(&format!(" Effectiveness {}.", percent(effectiveness)));
+    }
+    format!("{out} {}", clean(&p.note))
 }
 
 /// Components as they are worth looking at: violations first, then by exergy destruction.

@@ -169,6 +169,7 @@ fn the_page_of_an_ordinary_plant_holds_everything() {
         let page = report.to_html();
         check_page(&page);
         assert!(page.contains("✕ Impossible"));
+        assert!(page.contains("Temperatures inside economiser") && page.contains("class=\"curve hot\""));
         for (name, _) in report.components.0.iter() {
             assert!(page.contains(&format!("<th scope=\"row\">{name}</th>")), "{name}");
         }
@@ -314,6 +315,12 @@ fn far_figures_stay_finite() {
         for f in report.violations.iter_mut().chain(&mut report.undecided) {
             f.value = f.value.map(|v| Figure { value: x(0), u: x(3), ..v });
             (f.z, f.p_adjusted, f.detectable) = (x(1), x(2), Some(x(4)));
+        }
+        for p in report.components.0.iter_mut().filter_map(|c| c.1.profile.as_mut()) {
+            for (n, point) in p.points.iter_mut().enumerate() {
+                (point.hot, point.cold) = (x(n), x(n + 3));
+            }
+            (p.pinch.hot.value, p.duty.value, p.effectiveness) = (x(5), x(6), Some(x(7)));
         }
         check_page(&report.to_html());
         let text = report.to_text();

@@ -45,6 +45,7 @@ impl Report {
         let grids = grid::all(self);
         let (first, others): (Vec<Grid>, Vec<Grid>) = grids.into_iter().partition(|g| !g.is_of_flows());
         first.into_iter().try_for_each(|g| g.write(out))?;
+        self.write_profiles(out)?;
         self.write_unchecked(out)?;
         others.into_iter().try_for_each(|g| g.write(out))?;
         if !self.cautions.is_empty() {
@@ -69,14 +70,36 @@ impl Report {
         }
     }
 
-    fn write_unchecked(&self, out: &mut String) -> std::fmt::Result {
-        let groups = prose::group_unchecked(&self.unchecked);
-        if !groups.is_empty() {
-            heading(out, "Not checked")?;
+    fn write_profiles(&self, out: &mut String) -> std::fmt::Result {
+        let mut begun = false;
+        for (name, c) in &self.components.0 {
+            if let Some(p) = &c.profile {
+                if !begun {
+                    heading(out, "Inside exchangers")?;
+                    begun = true;
+                }
+                writeln!(
+                    out,
+                    "{}",
+                    wrapped(&format!("{}: {}", prose::clean(name), prose::profile(p)), 2, 4)
+                )?;
+            }
         }
-        for g in groups {
-            writeln!(out, "{}", wrapped(&format!("{}:", g.heading), 2, 4))?;
-            writeln!(out, "{}", wrapped(&listed(&g.places), 4, 4))?;
+        Ok(())
+    }
+
+    fn write_unchecked(&self, out: &mut String) -> std::fmt::Result {
+        for (title, groups) in [
+            ("Not checked", prose::group_unchecked(&self.unchecked)),
+            ("Left out", prose::group_omitted(self)),
+        ] {
+            if !groups.is_empty() {
+                heading(out, title)?;
+            }
+            for g in groups {
+                writeln!(out, "{}", wrapped(&format!("{}:", g.heading), 2, 4))?;
+                writeln!(out, "{}", wrapped(&listed(&g.places), 4, 4))?;
+            }
         }
         let groups = prose::group_assumptions(self);
         if !groups.is_empty() {
