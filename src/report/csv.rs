@@ -101,6 +101,25 @@ impl Report {
         for (name, flow) in &self.flows.0 {
             sheet.flow(name, flow);
         }
+        for (name, holdup) in self.components.0.iter().filter_map(|(n, c)| c.holdup.as_ref().map(|h| (n, h)))
+        {
+            for (when, held) in [("initial", &holdup.initial), ("final", &holdup.r#final)] {
+                for (quantity, f) in &held.totals.0 {
+                    sheet.figure("component", name, &format!("holdup.{when}.{quantity}"), f, "", "");
+                }
+                for (n, content) in held.contents.iter().enumerate() {
+                    let words = [Some(content.fluid.as_str()), content.phase];
+                    let words = words.into_iter().flatten().collect::<Vec<_>>().join("; ");
+                    for (quantity, f) in &content.figures.0 {
+                        let quantity = format!("holdup.{when}.contents.{n}.{quantity}");
+                        sheet.figure("component", name, &quantity, f, "", &words);
+                    }
+                }
+            }
+            if let Some(work) = &holdup.boundary_work {
+                sheet.figure("component", name, "holdup.boundary_work", work, "", "");
+            }
+        }
         for a in &self.assumptions {
             sheet.note("assumption", &a.r#where, "", &a.statement);
         }

@@ -57,6 +57,7 @@ pub(super) fn all(report: &Report) -> Vec<Grid> {
         causes(report),
         material(report),
         transfers(report),
+        contents(report),
     ];
     grids.retain(|g| !g.rows.is_empty());
     grids
@@ -271,4 +272,37 @@ fn transfers(report: &Report) -> Grid {
 /// How much a flow carries: its mass, heat or work.
 pub(super) fn main_figure(f: &FlowReport) -> Option<Figure> {
     ["mass_flow", "mass", "power", "rate"].iter().find_map(|k| f.figures.get(k).copied())
+}
+
+/// What components hold before and after a batch.
+fn contents(report: &Report) -> Grid {
+    let held = report.components.0.iter().filter_map(|(n, c)| c.holdup.as_ref().map(|h| (n, h)));
+    let rows = held.flat_map(|(name, h)| {
+        let line = move |when: &str, quantity: &str, f: Figure| {
+            vec![
+                prose::clean(name),
+                when.to_owned(),
+                prose::words(quantity),
+                pair(Some(f)),
+                prose::unit(f.unit),
+            ]
+        };
+        let totals =
+            [("before", &h.initial), ("after", &h.r#final)].into_iter().flat_map(move |(when, held)| {
+                held.totals.0.iter().map(move |(quantity, f)| line(when, quantity, *f))
+            });
+        totals.chain(h.boundary_work.map(|w| line("during", "boundary work", w)))
+    });
+    Grid {
+        title: "Contents before and after",
+        heads: heads(&[
+            ("Component", Align::Left),
+            ("When", Align::Left),
+            ("Quantity", Align::Left),
+            ("Value", Align::Figure),
+            ("Unit", Align::Left),
+        ]),
+        rows: rows.collect(),
+        sums: 0,
+    }
 }
