@@ -1,12 +1,14 @@
-//! The exergy view of one evaluation: balances, accounts and the plant's performance.
+//! What is derived from an evaluation beyond its verdicts: exergy balances, accounts and figures of
+//! merit. Repeated checks of one process do without.
 
 use super::Evaluation;
 use super::exergy::{self, ExergyBalance, Surroundings};
+use super::performance::{self, Metric};
 use super::plant::{self, PlantPerformance};
 use super::purpose::{self, Account};
 use crate::model::{Blocked, Scope};
 
-/// The exergy balances of components, groups and plant.
+/// The exergy balances of components, groups and plant, and their figures of merit.
 #[derive(Debug)]
 pub struct Exergies {
     /// The surroundings.
@@ -19,6 +21,8 @@ pub struct Exergies {
     pub plant: Result<ExergyBalance, Blocked>,
     /// Fuel, product and loss of each component.
     pub accounts: Vec<Result<Account, Blocked>>,
+    /// Figures of merit of each component.
+    pub metrics: Vec<Vec<Metric>>,
     /// Figures of merit of the plant.
     pub performance: PlantPerformance,
 }
@@ -36,8 +40,9 @@ impl Exergies {
         let plant = balance(&equations.plant, &evaluation.plant);
         let regions = equations.components.iter().enumerate();
         let accounts = regions.map(|(k, r)| purpose::account(view, &surroundings, r, k)).collect();
+        let metrics = (0..equations.components.len()).map(|k| performance::component(view, k)).collect();
         let performance = plant::performance(view, &surroundings, &equations.plant);
-        Exergies { components, groups, plant, accounts, performance, surroundings }
+        Exergies { components, groups, plant, accounts, metrics, performance, surroundings }
     }
 
     /// Mismatch and throughput of every balance that could be made.

@@ -278,10 +278,13 @@ impl<'a, 's> Book<'a, 's> {
     fn every(&mut self, entering: Entry, leaving: Entry) -> Result<(), Blocked> {
         for (f, _, sign) in self.region.crossings() {
             let flow = &self.process().flows[f];
-            let heat = matches!(flow.carried, Carried::Heat(..) | Carried::Radiation(..));
+            let lost = match flow.carried {
+                Carried::Heat(..) | Carried::Radiation(..) => self.is_lost(f),
+                Carried::Material(_) | Carried::Work(..) => flow.role == Some(Role::Loss),
+            };
             let entry = if sign > 0.0 {
                 entering
-            } else if self.is_lost(f) && (heat || leaving == Entry::Fuel) {
+            } else if lost {
                 Entry::Loss
             } else {
                 leaving
@@ -297,7 +300,7 @@ impl<'a, 's> Book<'a, 's> {
         Ok(())
     }
 
-    /// No product: what leaves the plant is lost, the rest is spent.
+    /// No product: what is thrown away is lost, the rest is spent.
     fn without(&mut self, reason: &'static str) -> Result<(), Blocked> {
         self.account.reason = Some(reason);
         self.every(Entry::Fuel, Entry::Fuel)

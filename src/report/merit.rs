@@ -6,7 +6,7 @@ use super::figure::{Figure, Named, plain};
 use super::{ComponentReport, ExergyReport, Omitted, PlantReport, RankEntry, RegionReport};
 use crate::assessment::Exergies;
 use crate::balance::decomposition::{self, Cause};
-use crate::balance::performance::{self, Metric};
+use crate::balance::performance::Metric;
 use crate::balance::purpose::Account;
 use crate::quantity::Dimension;
 
@@ -41,7 +41,8 @@ impl Assembler<'_, '_> {
         exergies: &Exergies,
     ) -> ComponentReport {
         let view = self.evaluation.view;
-        self.metrics(&performance::component(view, k), &mut region.performance);
+        let metrics = exergies.metrics.get(k).map(Vec::as_slice).unwrap_or_default();
+        self.metrics(metrics, &mut region.performance);
         if let (Some(report), Some(Ok(account))) = (&mut region.exergy_balance, exergies.accounts.get(k)) {
             self.account(account, report);
         }

@@ -2,7 +2,6 @@
 
 use super::{Explanation, Figure, measure, phrase};
 use crate::balance::Evaluation;
-use crate::balance::performance::{Metric, component};
 use crate::fluid::Substance;
 use crate::model::{Decision, Dual, Margin, Scope};
 use crate::process::ComponentId;
@@ -68,9 +67,10 @@ pub(super) fn explain(
     }
 }
 
-/// A figure of merit of a component by name.
+/// A figure of merit of a component by name, where they are derived.
 pub(super) fn metric(evaluation: &Evaluation<'_>, k: ComponentId, name: &str) -> Option<Dual> {
-    component(evaluation.view, k).into_iter().find(|m: &Metric| m.name == name).map(|m| m.value)
+    let metrics = evaluation.exergies.as_ref()?.metrics.get(k)?;
+    metrics.iter().find(|m| m.name == name).map(|m| m.value.clone())
 }
 
 /// The substance of the first material flow into a component.

@@ -461,6 +461,96 @@ fn streams_that_meet_gain_and_give() {
     assert!(f(causes, "/remainder/value").abs() < 1e-9);
 }
 
+fn cyclic(kind: &str, flows: &str) -> serde_json::Value {
+    let report = report(&format!(
+        r#"{{"environment": {{"temperature": "300 K", "pressure": "1 bar"}},
+            "components": {{"unit": {{"kind": "{kind}"}}}}, "flows": {{{flows}}}}}"#
+    ));
+    report["components"]["unit"].clone()
+}
+
+#[test]
+fn cyclic_machines_are_accounted_for_by_their_heats() {
+    let factor = |t: f64| 1.0 - 300.0 / t;
+    let flows = |useful: &str, hot: f64, cold: f64| {
+        format!(
+            r#""cold": {{"kind": "heat", "to": "unit", "rate": "10.000 kW", "temperature": "{cold:.2} K"}},
+               "hot": {{"kind": "heat", "from": "unit", "rate": "14.000 kW", "temperature": "{hot:.2} K"{useful}}},
+               "drive": {{"kind": "work", "to": "unit", "form": "electric", "power": "4.000 kW"}}"#
+        )
+    };
+    // A refrigerator's product is the exergy that flows into what it cools.
+    let unit = cyclic("refrigerator", &flows("", 310.0, 260.0));
+    let balance = &unit["exergy_balance"];
+    assert!((f(balance, "/product/value") + 10.0 * factor(260.0)).abs() < 1e-6, "{balance}");
+    assert!((f(balance, "/fuel/value") - 4.0).abs() < 1e-6);
+    assert!((f(balance, "/loss/value") - 14.0 * factor(310.0)).abs() < 1e-6);
+    assert!((f(&unit, "/performance/cop/value") - 2.5).abs() < 1e-9);
+    assert!((f(&unit, "/performance/reversible_limit/value") - 5.2).abs() < 1e-9);
+    // A heat pump's is that of the heat it delivers; a source below ambient costs.
+    let unit = cyclic("heat_pump", &flows(r#", "role": "product""#, 330.0, 280.0));
+    let balance = &unit["exergy_balance"];
+    assert!((f(balance, "/product/value") - 14.0 * factor(330.0)).abs() < 1e-6, "{balance}");
+    assert!((f(balance, "/fuel/value") - (4.0 + 10.0 * factor(280.0))).abs() < 1e-6);
+    assert!((f(&unit, "/performance/share_of_reversible_limit/value") - 3.5 / 6.6).abs() < 1e-9);
+    // An engine's is its work.
+    let unit = cyclic(
+        "heat_engine",
+        r#""hot": {"kind": "heat", "to": "unit", "rate": "100.00 kW", "temperature": "800.0 K"},
+           "cold": {"kind": "heat", "from": "unit", "rate": "65.00 kW", "temperature": "320.0 K"},
+           "shaft": {"kind": "work", "from": "unit", "form": "shaft", "power": "35.00 kW"}"#,
+    );
+    let balance = &unit["exergy_balance"];
+    assert!((f(balance, "/efficiency/value") - 35.0 / (100.0 * factor(800.0))).abs() < 1e-9, "{balance}");
+    assert!((f(balance, "/loss/value") - 65.0 * factor(320.0)).abs() < 1e-6);
+    assert!((f(&unit, "/performance/efficiency/value") - 0.35).abs() < 1e-9);
+}
+
+#[test]
+fn an_own_purpose_counts_and_a_wrong_sign_is_refused() {
+    let description = |fuel: &str| {
+        format!(
+            r#"{{"environment": {{"temperature": "300 K", "pressure": "1 bar"}},
+                "fluids": {{"gas": {{"kind": "perfect_gas", "molar_mass": "29 g/mol", "specific_heat": "1.0 kJ/(kg K)"}}}},
+                "components": {{"unit": {{"kind": "control_volume", "purpose": {{"fuel": {fuel}, "product": ["w"]}}}}}},
+                "flows": {{
+                  "a": {{"kind": "material", "to": "unit", "fluid": "gas", "temperature": "600.0 K", "pressure": "3.000 bar", "mass_flow": "1.000 kg/s"}},
+                  "b": {{"kind": "material", "from": "unit", "fluid": "gas", "temperature": "500.0 K", "pressure": "1.000 bar", "mass_flow": "1.000 kg/s"}},
+                  "w": {{"kind": "work", "from": "unit", "form": "shaft", "power": "100.0 kW"}}}}}}"#
+        )
+    };
+    let report = report(&description(r#"["a", "-b"]"#));
+    let balance = &report["components"]["unit"]["exergy_balance"];
+    account(balance, thermal(600.0) + mechanical(3.0) - thermal(500.0), 100.0);
+    let faults = read(description(r#"["a", "b"]"#).as_bytes(), &ReadLimits::default()).unwrap_err();
+    assert_eq!(faults.len(), 1, "{faults:?}");
+    assert_eq!(faults[0].pointer, "/components/unit/purpose/fuel/1");
+    assert!(faults[0].hint.as_deref().unwrap().contains("\"-b\""), "{faults:?}");
+}
+
+/// Fuel that is not clear of zero makes no efficiency: water from 12 to 7 degC at an ambient of
+/// 10 degC has next to no exergy.
+#[test]
+fn an_efficiency_needs_a_fuel_that_is_clear_of_zero() {
+    let chilled = |t0: &str| {
+        let report = report(&format!(
+            r#"{{"environment": {{"temperature": "{t0} degC", "pressure": "1 bar"}},
+                "components": {{"unit": {{"kind": "heat_exchanger", "sides": [{{"in": ["a"], "out": ["b"]}}, {{"in": ["c"], "out": ["d"]}}]}}}},
+                "flows": {{
+                  "a": {{"kind": "material", "to": "unit", "fluid": "water", "temperature": {{"value": 12, "unit": "degC", "uncertainty": "0.5 K"}}, "pressure": "2.00 bar", "mass_flow": "1 kg/s"}},
+                  "b": {{"kind": "material", "from": "unit", "fluid": "water", "temperature": {{"value": 11, "unit": "degC", "uncertainty": "0.5 K"}}, "pressure": "2.00 bar"}},
+                  "c": {{"kind": "material", "to": "unit", "fluid": "water", "temperature": {{"value": 7, "unit": "degC", "uncertainty": "0.5 K"}}, "pressure": "2.00 bar"}},
+                  "d": {{"kind": "material", "from": "unit", "fluid": "water", "temperature": {{"value": 9, "unit": "degC", "uncertainty": "0.5 K"}}, "pressure": "2.00 bar"}}}}}}"#
+        ));
+        report["components"]["unit"]["exergy_balance"].clone()
+    };
+    let near_ambient = chilled("10");
+    assert!(near_ambient.get("efficiency").is_none(), "{near_ambient}");
+    assert!(near_ambient["no_efficiency"].as_str().unwrap().contains("zero"), "{near_ambient}");
+    let far = chilled("40");
+    assert!(f(&far, "/efficiency/value") > 0.5, "{far}");
+}
+
 /// −dp and dT parts by hand: m cp ln(T2/T1) and m R ln(p1/p2) of a perfect gas.
 #[test]
 fn entropy_generation_of_an_exchanger_by_its_causes() {
