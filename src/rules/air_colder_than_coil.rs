@@ -1,6 +1,6 @@
 //! air-colder-than-coil
 
-use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, family, measure, phrase, physics};
+use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, measure, phrase, physics};
 use crate::balance::Evaluation;
 use crate::model::{Decision, Dual, Margin, Scope, View};
 use crate::process::kinds::Kind;
@@ -17,7 +17,7 @@ static INFO: RuleInfo = RuleInfo {
     title: "Air against its coolant",
     authority: Authority::Law,
     severity: Severity::Critical,
-    aspect: Aspect::Interior,
+    aspect: Aspect::Entropy,
     inequality: "T_air,out ≥ coldest coolant",
     applies_to: "cooling coils without other heat",
     needs: "temperatures of air and coolant",
@@ -54,7 +54,7 @@ impl Rule for AirColderThanCoil {
             if let Some((air, coolant)) = temperatures(view, component) {
                 let throughput = air.value + coolant.value;
                 out.push(Margin {
-                    family: family(&INFO),
+                    detail: 1,
                     ..measure::lower_bound(me, Scope::Component(k), air.minus(&coolant), throughput)
                 });
             }

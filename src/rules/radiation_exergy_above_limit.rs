@@ -3,6 +3,7 @@
 use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, measure, phrase};
 use crate::balance::Evaluation;
 use crate::model::{Decision, Dual, Margin, Scope, View};
+use crate::process::kinds::Kind;
 use crate::process::{Carried, Component, StatedFigure};
 use crate::quantity::Dimension;
 
@@ -24,14 +25,14 @@ static INFO: RuleInfo = RuleInfo {
     typical_cause: "1 − T0/T used for radiation",
     source: "Petela, R.: J. Heat Transfer 86 (1964) 187-192",
     breaking: Case::Description(
-        r#"{"components": {"receiver": {"kind": "heat_engine", "stated_performance": {"efficiency": 0.945}}},
+        r#"{"components": {"receiver": {"kind": "control_volume", "stated_performance": {"efficiency": 0.945}}},
             "flows": {
               "sun": {"kind": "radiation", "to": "receiver", "rate": "10 kW", "temperature": "5770 K"},
               "shaft": {"kind": "work", "from": "receiver"},
               "cold": {"kind": "heat", "from": "receiver", "temperature": "30.0 degC"}}}"#,
     ),
     keeping: Case::Description(
-        r#"{"components": {"receiver": {"kind": "heat_engine", "stated_performance": {"efficiency": 0.400}}},
+        r#"{"components": {"receiver": {"kind": "control_volume", "stated_performance": {"efficiency": 0.400}}},
             "flows": {
               "sun": {"kind": "radiation", "to": "receiver", "rate": "10 kW", "temperature": "5770 K"},
               "shaft": {"kind": "work", "from": "receiver"},
@@ -90,6 +91,10 @@ impl Rule for RadiationExergyAboveLimit {
 /// Petela's factor of the hottest source, where radiation is all that drives the component.
 fn limit(view: View<'_>, component: &Component) -> Option<Dual> {
     let process = &view.model.process;
+    if component.kind == Kind::HeatEngine {
+        // Its claims are held against its own sink.
+        return None;
+    }
     let t0 = process.environment.temperature;
     let mut hottest: Option<Dual> = None;
     for &f in &component.inlets {
