@@ -1,6 +1,6 @@
 //! What the library returns: a finished assessment, in SI units, from which every report is drawn.
 
-use crate::balance::exergy::{ExergyBalance, Surroundings};
+pub use crate::balance::Exergies;
 use crate::balance::{Evaluation, Row};
 use crate::evidence::{Families, Sensitivity, decide};
 use crate::model::{Blocked, Decision, Family, Margin, Model, Scope, Verdict};
@@ -144,50 +144,6 @@ pub struct Judgement {
     pub groups: Vec<(Overall, bool)>,
     /// Verdict of the plant.
     pub plant: (Overall, bool),
-}
-
-/// The exergy balances of components, groups and plant.
-#[derive(Debug)]
-pub struct Exergies {
-    /// The surroundings.
-    pub surroundings: Surroundings,
-    /// One entry a component.
-    pub components: Vec<Result<ExergyBalance, Blocked>>,
-    /// One entry a group.
-    pub groups: Vec<Result<ExergyBalance, Blocked>>,
-    /// The plant.
-    pub plant: Result<ExergyBalance, Blocked>,
-}
-
-impl Exergies {
-    /// Derives the exergy balances of an evaluation.
-    pub fn derive(evaluation: &Evaluation<'_>) -> Exergies {
-        let surroundings = Surroundings::new(&evaluation.view.model.process);
-        let balance =
-            |region, balances| crate::balance::exergy::balance(evaluation, &surroundings, region, balances);
-        let components = evaluation
-            .equations
-            .components
-            .iter()
-            .zip(&evaluation.components)
-            .map(|(r, b)| balance(r, b))
-            .collect();
-        let groups =
-            evaluation.equations.groups.iter().zip(&evaluation.groups).map(|(r, b)| balance(r, b)).collect();
-        let plant = balance(&evaluation.equations.plant, &evaluation.plant);
-        Exergies { components, groups, plant, surroundings }
-    }
-
-    /// Mismatch and throughput of every balance that could be made.
-    pub fn mismatches(&self) -> Vec<(Scope, f64, f64)> {
-        let components = self.components.iter().enumerate().map(|(k, b)| (Scope::Component(k), b));
-        let groups = self.groups.iter().enumerate().map(|(g, b)| (Scope::Group(g), b));
-        components
-            .chain(groups)
-            .chain(std::iter::once((Scope::Plant, &self.plant)))
-            .filter_map(|(s, b)| b.as_ref().ok().map(|b| (s, b.mismatch, b.throughput)))
-            .collect()
-    }
 }
 
 /// Collects the margins of every rule that is switched on.

@@ -9,6 +9,7 @@ use crate::model::{Margin, Model, Plan, View, Workspace};
 use crate::process::{self, Inputs, ReadLimits};
 use crate::quantity::UnitSystem;
 use crate::report::{Report, StateReport};
+use std::rc::Rc;
 use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, Ordering};
 
@@ -121,8 +122,9 @@ pub fn check_bytes(
     let view = View { model: &bound.model, workspace: &room.workspace };
     let mut evaluation = Evaluation::new(view, &bound.equations, &bound.plan);
     room.sensitivity.take(view, &bound.equations, &bound.plan);
-    let exergies = Exergies::derive(&evaluation);
+    let exergies = Rc::new(Exergies::derive(&evaluation));
     evaluation.exergy_mismatch = Some(exergies.mismatches());
+    evaluation.exergies = Some(Rc::clone(&exergies));
     cancel.check()?;
     let mut all = Vec::new();
     margins(&evaluation, &mut all);

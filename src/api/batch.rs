@@ -14,7 +14,7 @@ use tokio::sync::mpsc;
 use super::body::Incoming;
 use super::check::{DEADLINE, UNITS};
 use super::problem::Problem;
-use super::route::{Call, Gives, JSON, Method, NDJSON, Outcome, Route, Takes};
+use super::route::{BASE, Call, Gives, JSON, Method, NDJSON, Outcome, Route, Takes};
 use super::service::{Service, Ticket};
 use crate::diagnostic::Code;
 use crate::quantity::UnitSystem;
@@ -42,6 +42,7 @@ pub const BATCH: Route = Route {
     answer: "One answer a line.",
     refuses: &[406, 415],
     handler: |call| Box::pin(batch(call)),
+    ..BASE
 };
 
 /// What is known about a line when it is handed to the writer.

@@ -9,7 +9,7 @@ use super::check::{DEADLINE, UNITS};
 use super::route::{BASE, Call, Gives, JSON, Method, Outcome, Parameter, Route, Takes, optional};
 
 /// Parameters of the call itself, which are no members of the question.
-const OF_THE_CALL: &[&str] = &["units", "deadline"];
+pub(super) const OF_THE_CALL: &[&str] = &["units", "deadline"];
 
 const STATE: &[Gives] = &[Gives { media: JSON, schema: Some("StateReport") }];
 
@@ -77,6 +77,7 @@ pub const POST_STATE: Route = Route {
     answer: "The state.",
     refuses: &[406, 408, 413, 415, 422, 503],
     handler: |call| Box::pin(by_body(call)),
+    ..BASE
 };
 
 async fn by_body(call: Call) -> Outcome {

@@ -1,7 +1,7 @@
 //! The equations of a process as rows that should be zero.
 
 use super::region::{self, Region};
-use crate::fluid::{Element, Pair, Property};
+use crate::fluid::{Element, Pair, Property, Substance};
 use crate::model::{Blocked, Dual, Model, Rows, View, Workspace, fluids_of, sample_composition};
 use crate::process::kinds::{Kind, Purposeful};
 use crate::process::{
@@ -76,8 +76,11 @@ impl Equations {
         }
         for (s, spec) in process.states.iter().enumerate() {
             for (i, surplus) in spec.surplus.iter().enumerate() {
-                // A temperature at saturation must not settle the quality.
-                if !(spec.wet_ambiguous && surplus.property == Property::Temperature) {
+                // A temperature at saturation must not settle the quality; of stated figures, none
+                // follows from the others.
+                let stated = matches!(process.fluids[spec.fluid].substance, Substance::Stated);
+                let ambiguous = spec.wet_ambiguous && surplus.property == Property::Temperature;
+                if !(stated || ambiguous) {
                     out.push(model, Row::Surplus(s, i));
                 }
             }

@@ -1,9 +1,10 @@
 //! One evaluation of a process: solved unknowns and the balances that rules and report share.
 
-use super::{Balance, Bracket, Equations, Profile, Region, region};
+use super::{Balance, Bracket, Equations, Exergies, Profile, Region, region};
 use crate::model::{Blocked, Dual, Plan, Scope, View};
 use crate::process::ComponentId;
 use std::cell::OnceCell;
+use std::rc::Rc;
 
 /// Energy and entropy over one region.
 #[derive(Clone, Debug)]
@@ -60,6 +61,8 @@ pub struct Evaluation<'a> {
     pub exergy_mismatch: Option<Vec<(Scope, f64, f64)>>,
     /// Interiors of exchangers, computed when first asked for; empty where there are none.
     profiles: Vec<OnceCell<Result<Option<Profile>, Blocked>>>,
+    /// The exergy view, once it is derived.
+    pub exergies: Option<Rc<Exergies>>,
 }
 
 impl<'a> Evaluation<'a> {
@@ -73,6 +76,7 @@ impl<'a> Evaluation<'a> {
             groups: equations.groups.iter().map(|r| RegionBalances::of(view, r)).collect(),
             plant: RegionBalances::of(view, &equations.plant),
             exergy_mismatch: None,
+            exergies: None,
             profiles: if view.model.process.components.iter().any(|c| c.kind.is_exchanger()) {
                 vec![OnceCell::new(); equations.components.len()]
             } else {

@@ -11,8 +11,9 @@ use super::region::{self, Bracket, Region};
 use crate::fluid::chemistry::{Environment, ReferenceState};
 use crate::fluid::steam::Steam;
 use crate::fluid::{CompositionForm, Engine, Pair, PropertyError, Substance};
-use crate::model::{Blocked, Dual, Scale, Scope, View};
+use crate::model::{Blocked, Dual, Scale, View};
 use crate::process::{Boundary, Carried, Content, FlowId, Process, StateId};
+use std::cell::OnceCell;
 
 /// Specific exergy by its parts, J/kg, each with its gradient.
 #[derive(Clone, Debug, Default)]
@@ -42,7 +43,8 @@ struct Dead {
     chemical: Option<f64>,
 }
 
-/// The surroundings as seen by every fluid of a process.
+/// The surroundings as seen by every fluid of a process, at one set of values: what they say of a
+/// flow is kept.
 #[derive(Debug)]
 pub struct Surroundings {
     /// Chemical potentials of the elements; the error if the environment is out of their range.
@@ -50,6 +52,7 @@ pub struct Surroundings {
     t0: f64,
     p0: f64,
     dead: Vec<Option<Dead>>,
+    flows: Vec<OnceCell<Result<Parts, Blocked>>>,
 }
 
 /// Saturation pressure of water at T0, continued below the triple point over supercooled liquid by
@@ -84,7 +87,8 @@ impl Surroundings {
             },
             saturation_pressure(t0),
         );
-        let mut out = Surroundings { reference, t0, p0, dead: Vec::new() };
+        let mut out = Surroundings { reference, t0, p0, dead: Vec::new(), flows: Vec::new() };
+        out.flows.resize_with(process.flows.len(), OnceCell::new);
         out.dead = process.fluids.iter().map(|f| out.dead_state(f)).collect();
         out
     }
@@ -208,7 +212,12 @@ impl Surroundings {
     ///
     /// # Errors
     /// `Blocked`; `Missing` for a flow that carries no material.
-    pub fn flow_parts(&self, view: View<'_>, f: FlowId) -> Result<Parts, Blocked> {
+    pub fn flow_parts(&self, view: View<'_>, f: FlowId) -> Result<&Parts, Blocked> {
+        let kept = self.flows[f].get_or_init(|| self.compute_flow_parts(view, f));
+        kept.as_ref().map_err(Clone::clone)
+    }
+
+    fn compute_flow_parts(&self, view: View<'_>, f: FlowId) -> Result<Parts, Blocked> {
         let m = view.model.process.flows[f].material().ok_or(Blocked::Missing("material"))?;
         if let Some(e) = m.stated_exergy {
             return Ok(Parts { physical: Dual::constant(e), total: Dual::constant(e), ..Parts::default() });
@@ -384,16 +393,4 @@ pub fn leans_on_ambient(process: &Process, region: &Region) -> bool {
     region.crossings().any(|(f, _, sign)| {
         sign < 0.0 && matches!(process.flows[f].carried, Carried::Heat(_, Boundary::Unknown))
     })
-}
-
-/// The mismatches of every exergy balance that can be made, for the tool's check of itself.
-pub fn mismatches(
-    evaluation: &Evaluation<'_>,
-    balances: &[(Scope, Result<ExergyBalance, Blocked>)],
-) -> Vec<(Scope, f64, f64)> {
-    let _ = evaluation;
-    balances
-        .iter()
-        .filter_map(|(scope, b)| b.as_ref().ok().map(|b| (*scope, b.mismatch, b.throughput)))
-        .collect()
 }

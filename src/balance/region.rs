@@ -272,7 +272,7 @@ fn relative_enthalpy(view: View<'_>, state: usize) -> Result<f64, Blocked> {
 }
 
 /// Relative standard uncertainty of the formulation at a state (zero where it cannot be had).
-fn formulation_uncertainty(view: View<'_>, state: usize) -> f64 {
+pub fn formulation_uncertainty(view: View<'_>, state: usize) -> f64 {
     let fluid = view.model.process.states[state].fluid;
     view.state(state).map_or(0.0, |s| view.model.process.fluids[fluid].engine.relative_uncertainty(&s.state))
 }

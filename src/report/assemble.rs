@@ -15,7 +15,7 @@ use crate::rules;
 /// Everything that assembling needs at hand.
 pub(super) struct Assembler<'a, 'e> {
     pub(super) evaluation: &'e Evaluation<'a>,
-    sensitivity: &'e mut Sensitivity,
+    pub(super) sensitivity: &'e mut Sensitivity,
     units: UnitSystem,
 }
 
@@ -41,10 +41,8 @@ impl Report {
                 judgement.components[k],
                 Some(k),
             );
-            let (holdup, profile) = (a.holdup(k, exergies), a.profile(k));
-            let (kind, implied) = (component.kind.name(), component.implied);
-            components
-                .push(component.name.clone(), ComponentReport { kind, implied, region, holdup, profile });
+            let report = a.component(k, region, exergies);
+            components.push(component.name.clone(), report);
         }
         let mut groups = Named::default();
         for (g, group) in process.groups.iter().enumerate() {
@@ -61,7 +59,7 @@ impl Report {
         let plant_verdict = if single { judgement.components[0] } else { judgement.plant };
         let region =
             a.region(&equations.plant, &evaluation.plant, exergies.plant.as_ref().ok(), plant_verdict, None);
-        let ranking = a.ranking(exergies);
+        let plant = a.plant(region, exergies);
         let mut flows = Named::default();
         for f in 0..process.flows.len() {
             let flow = a.flow(f, exergies);
@@ -113,7 +111,7 @@ impl Report {
                     would_need: u.would_need.clone(),
                 })
                 .collect(),
-            plant: PlantReport { region, ranking },
+            plant,
             components,
             groups,
             flows,
@@ -232,6 +230,12 @@ impl Assembler<'_, '_> {
                 out: self.figure(&e.outflow, energy),
                 destruction: self.figure(&e.destruction, energy),
                 residual: self.figure(&residual, energy),
+                fuel: None,
+                product: None,
+                loss: None,
+                free: None,
+                efficiency: None,
+                no_efficiency: None,
             }
         });
         RegionReport {
@@ -244,26 +248,6 @@ impl Assembler<'_, '_> {
             exergy_balance,
             performance: Named::default(),
         }
-    }
-
-    fn ranking(&mut self, exergies: &Exergies) -> Vec<RankEntry> {
-        let (_, _, energy, _) = self.dimensions();
-        let total: f64 = exergies.components.iter().flatten().map(|b| b.destruction.value.max(0.0)).sum();
-        let mut out = Vec::new();
-        for (k, balance) in exergies.components.iter().enumerate() {
-            if let Ok(b) = balance {
-                out.push((
-                    b.destruction.value,
-                    RankEntry {
-                        component: self.view().model.process.components[k].name.clone(),
-                        destruction: self.figure(&b.destruction, energy),
-                        share: if total > 0.0 { plain(b.destruction.value / total) } else { 0.0 },
-                    },
-                ));
-            }
-        }
-        out.sort_by(|a, b| b.0.total_cmp(&a.0));
-        out.into_iter().map(|(_, e)| e).collect()
     }
 
     fn finding(&self, f: &assessment::Finding) -> Finding {

@@ -1,9 +1,17 @@
 //! Reports over one finished assessment: JSON, text, CSV and HTML are siblings.
 
 mod assemble;
+mod charts;
+mod csv;
+mod diagram;
 mod figure;
+mod grid;
 mod holdup;
+mod html;
+mod markup;
+mod merit;
 mod profile;
+mod prose;
 mod state;
 mod text;
 
@@ -229,6 +237,30 @@ pub struct ExergyReport {
     pub destruction: Figure,
     /// In minus out minus destruction: what open balances of energy and matter carry.
     pub residual: Figure,
+    /// Exergy spent, for what serves a purpose.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub fuel: Option<Figure>,
+    /// Exergy wanted: fuel is product, loss, destruction and residual together.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub product: Option<Figure>,
+    /// Exergy thrown away across the plant boundary.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub loss: Option<Figure>,
+    /// Exergy taken from the surroundings at no cost.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub free: Option<Figure>,
+    /// Product over fuel.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub efficiency: Option<Figure>,
+    /// Why there is no efficiency.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub no_efficiency: Option<&'static str>,
 }
 
 /// The balances of a region.
@@ -273,6 +305,20 @@ pub struct PlantReport {
     pub region: RegionReport,
     /// Components by exergy destruction, largest first.
     pub ranking: Vec<RankEntry>,
+    /// Figures of merit that were left out, and why.
+    pub omitted: Vec<Omitted>,
+}
+
+/// A figure of merit that was left out.
+#[derive(Clone, Debug, PartialEq, Eq, Serialize)]
+#[cfg_attr(feature = "server", derive(ToSchema))]
+pub struct Omitted {
+    /// Its name.
+    pub what: &'static str,
+    /// Why, in a sentence.
+    pub detail: String,
+    /// What would make it possible.
+    pub would_need: String,
 }
 
 /// One line of the ranking.
@@ -285,6 +331,10 @@ pub struct RankEntry {
     pub destruction: Figure,
     /// Share of the destruction of all components.
     pub share: f64,
+    /// Share of the plant's exergy fuel, where that is known.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub share_of_fuel: Option<f64>,
 }
 
 /// A component.
@@ -307,6 +357,9 @@ pub struct ComponentReport {
     #[serde(skip_serializing_if = "Option::is_none")]
     #[cfg_attr(feature = "server", schema(nullable = false))]
     pub profile: Option<ProfileReport>,
+    /// Entropy generation by its causes.
+    #[serde(skip_serializing_if = "Named::is_empty")]
+    pub decomposition: Named<Figure>,
 }
 
 /// What a component holds before and after a batch.
@@ -439,3 +492,6 @@ impl Report {
         out
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -1,75 +1,34 @@
 //! What the three rules about reversible cycles share: an efficiency or coefficient of performance
 //! against its limit between entropic mean temperatures.
 
-use super::reservoir::Reservoirs;
 use super::{Explanation, Figure, measure, phrase};
 use crate::balance::Evaluation;
+use crate::balance::reservoir::Reservoirs;
 use crate::model::{Decision, Dual, Margin, Scope};
-use crate::process::kinds::Kind;
-use crate::process::{ComponentId, StatedFigure};
+use crate::process::StatedFigure;
 use crate::quantity::Dimension;
 
-/// A cyclic machine between two reservoirs.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub(super) enum Machine {
-    /// η = W / Qin ≤ 1 − Tc/Th.
-    Engine,
-    /// COP = Qin / W ≤ Tc / (Th − Tc).
-    Refrigerator,
-    /// COP = Qout / W ≤ Th / (Th − Tc).
-    HeatPump,
+pub(super) use crate::balance::reservoir::Cycle as Machine;
+
+const fn claimed(machine: Machine) -> StatedFigure {
+    match machine {
+        Machine::Engine => StatedFigure::Efficiency,
+        Machine::Refrigerator | Machine::HeatPump => StatedFigure::Cop,
+    }
 }
 
-impl Machine {
-    const fn kind(self) -> Kind {
-        match self {
-            Machine::Engine => Kind::HeatEngine,
-            Machine::Refrigerator => Kind::Refrigerator,
-            Machine::HeatPump => Kind::HeatPump,
-        }
+const fn word(machine: Machine) -> &'static str {
+    match machine {
+        Machine::Engine => "efficiency",
+        Machine::Refrigerator | Machine::HeatPump => "coefficient of performance",
     }
+}
 
-    const fn claimed(self) -> StatedFigure {
-        match self {
-            Machine::Engine => StatedFigure::Efficiency,
-            Machine::Refrigerator | Machine::HeatPump => StatedFigure::Cop,
-        }
-    }
-
-    const fn word(self) -> &'static str {
-        match self {
-            Machine::Engine => "efficiency",
-            Machine::Refrigerator | Machine::HeatPump => "coefficient of performance",
-        }
-    }
-
-    /// The reversible limit; `None` where the temperatures set none.
-    fn limit(self, reservoirs: &Reservoirs) -> Option<Dual> {
-        let source = reservoirs.source_temperature()?;
-        let sink = reservoirs.sink_temperature()?;
-        if self == Machine::Engine {
-            // Below zero when heat is rejected hotter than it is taken in: any work is too much.
-            return Some(Dual::constant(1.0).minus(&sink.times(&source.reciprocal())));
-        }
-        let lift = sink.clone().minus(&source);
-        if lift.value <= 0.0 {
-            return None;
-        }
-        let useful = if self == Machine::Refrigerator { source } else { sink };
-        Some(useful.times(&lift.reciprocal()))
-    }
-
-    /// What the machine achieves by its own flows; `None` where it is not known or it does not run
-    /// as what it is.
-    fn actual(self, evaluation: &Evaluation<'_>, k: ComponentId, reservoirs: &Reservoirs) -> Option<Dual> {
-        let component = &evaluation.view.model.process.components[k];
-        let (work, _) = measure::net_work_out(evaluation.view, component).ok()?;
-        let (benefit, cost) = match self {
-            Machine::Engine => (work, reservoirs.heat_in()?),
-            Machine::Refrigerator => (reservoirs.heat_in()?, work.scaled(-1.0)),
-            Machine::HeatPump => (reservoirs.heat_out()?, work.scaled(-1.0)),
-        };
-        (benefit.value > 0.0 && cost.value > 0.0).then(|| benefit.times(&cost.reciprocal()))
+/// The share of the limit that built machines rarely pass (common practice).
+const fn usual_share(machine: Machine) -> f64 {
+    match machine {
+        Machine::Engine => 0.85,
+        Machine::Refrigerator | Machine::HeatPump => 0.75,
     }
 }
 
@@ -77,18 +36,18 @@ impl Machine {
 pub(super) fn margins(machine: Machine, me: usize, evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
     let process = &evaluation.view.model.process;
     for (k, component) in process.components.iter().enumerate() {
-        if component.kind != machine.kind() {
+        if Machine::of(component.kind) != Some(machine) {
             continue;
         }
-        let Some(reservoirs) = Reservoirs::of(evaluation, k) else { continue };
+        let Some(reservoirs) = Reservoirs::of(evaluation.view, k) else { continue };
         let Some(limit) = machine.limit(&reservoirs) else { continue };
         let scale = |figure: f64| figure.abs() + limit.value.abs();
-        if let Some(actual) = machine.actual(evaluation, k, &reservoirs) {
+        if let Some(actual) = machine.actual(evaluation.view, k, &reservoirs) {
             let throughput = scale(actual.value);
             out.push(measure::lower_bound(me, Scope::Component(k), limit.clone().minus(&actual), throughput));
         }
         for (i, stated) in component.stated.iter().enumerate() {
-            if stated.what != machine.claimed() {
+            if stated.what != claimed(machine) {
                 continue;
             }
             let Ok(claim) = evaluation.view.var(stated.var) else { continue };
@@ -106,6 +65,59 @@ pub(super) fn margins(machine: Machine, me: usize, evaluation: &Evaluation<'_>, 
     }
 }
 
+/// One margin for each claim (its index + 1) that keeps its limit: the share of the limit from which
+/// practice asks for evidence, over the claim.
+pub(super) fn closeness(machine: Machine, me: usize, evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
+    let process = &evaluation.view.model.process;
+    for (k, component) in process.components.iter().enumerate() {
+        if Machine::of(component.kind) != Some(machine) {
+            continue;
+        }
+        let Some(limit) = Reservoirs::of(evaluation.view, k).and_then(|r| machine.limit(&r)) else {
+            continue;
+        };
+        for (i, stated) in component.stated.iter().enumerate() {
+            let Ok(claim) = evaluation.view.var(stated.var) else { continue };
+            // Beyond its limit a claim is a matter of law.
+            if stated.what != claimed(machine) || claim.value > limit.value {
+                continue;
+            }
+            let usual = limit.clone().scaled(usual_share(machine));
+            let throughput = claim.value.abs() + limit.value.abs();
+            out.push(Margin {
+                pointer: Some(stated.pointer.clone()),
+                detail: i + 1,
+                ..measure::lower_bound(me, Scope::Component(k), usual.minus(&claim), throughput)
+            });
+        }
+    }
+}
+
+/// The explanation with the share of the limit that is claimed.
+pub(super) fn explain_closeness(evaluation: &Evaluation<'_>, margin: &Margin) -> Option<Explanation> {
+    let Scope::Component(k) = margin.scope else { return None };
+    let component = evaluation.view.model.process.components.get(k)?;
+    let machine = Machine::of(component.kind)?;
+    let limit = Reservoirs::of(evaluation.view, k).and_then(|r| machine.limit(&r))?.value;
+    let stated = component.stated.get(margin.detail.checked_sub(1)?)?;
+    let claim = evaluation.view.var(stated.var).ok()?.value;
+    Some(Explanation {
+        statement: format!(
+            "The claimed {} {} of {} is {} % of the limit {} of a reversible cycle; built machines rarely pass {} %, \
+             so ask for the test report, its temperatures and what it includes.",
+            word(machine),
+            phrase::number(claim),
+            phrase::subject(evaluation, margin.scope),
+            phrase::number(100.0 * claim / limit),
+            phrase::number(limit),
+            phrase::number(100.0 * usual_share(machine)),
+        ),
+        value: Some(Figure { value: claim, dimension: Dimension::Fraction }),
+        limit: Some(Figure { value: usual_share(machine) * limit, dimension: Dimension::Fraction }),
+        ..Explanation::default()
+    })
+}
+
 /// The explanation with both figures and the temperatures behind the limit.
 pub(super) fn explain(
     machine: Machine,
@@ -115,11 +127,11 @@ pub(super) fn explain(
 ) -> Explanation {
     let Scope::Component(k) = margin.scope else { return Explanation::default() };
     let process = &evaluation.view.model.process;
-    let Some(reservoirs) = Reservoirs::of(evaluation, k) else { return Explanation::default() };
+    let Some(reservoirs) = Reservoirs::of(evaluation.view, k) else { return Explanation::default() };
     let claim = margin.detail.checked_sub(1).and_then(|i| process.components[k].stated.get(i));
     let figure = match claim {
         Some(stated) => evaluation.view.var(stated.var).ok(),
-        None => machine.actual(evaluation, k, &reservoirs),
+        None => machine.actual(evaluation.view, k, &reservoirs),
     };
     let (Some(figure), Some(limit), Some(source), Some(sink)) =
         (figure, machine.limit(&reservoirs), reservoirs.source_temperature(), reservoirs.sink_temperature())
@@ -138,7 +150,7 @@ pub(super) fn explain(
             "The {}{} {} of {} {relation} the limit {} of a reversible cycle that takes heat in at {} and \
              gives it off at {} (entropic means){}.",
             if claim.is_some() { "claimed " } else { "" },
-            machine.word(),
+            word(machine),
             phrase::number(figure.value),
             phrase::subject(evaluation, margin.scope),
             phrase::number(limit.value),

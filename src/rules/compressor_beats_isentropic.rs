@@ -49,6 +49,6 @@ impl Rule for CompressorBeatsIsentropic {
     }
 
     fn explain(&self, evaluation: &Evaluation<'_>, margin: &Margin, decision: &Decision) -> Explanation {
-        machine::explain(Machine::Compressor, evaluation, margin, decision)
+        machine::explain(evaluation, margin, decision)
     }
 }

@@ -2,7 +2,7 @@
 
 use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, measure, phrase};
 use crate::balance::Evaluation;
-use super::reservoir::Reservoirs;
+use crate::balance::reservoir::Reservoirs;
 use crate::model::{Decision, Dual, Margin, Scope};
 use crate::process::kinds::Kind;
 use crate::process::{ComponentId, StatedFigure};
@@ -117,7 +117,7 @@ impl Machine {
         if component.kind != Kind::AbsorptionMachine {
             return None;
         }
-        let reservoirs = Reservoirs::of(evaluation, k)?;
+        let reservoirs = Reservoirs::of(evaluation.view, k)?;
         let [first, second] = &reservoirs.sources[..] else { return None };
         let (drive, cold) =
             if first.temperature.value > second.temperature.value { (first, second) } else { (second, first) };

@@ -1,6 +1,7 @@
 //! heat-flows-uphill
 
-use super::reservoir::{Reservoirs, is_passive};
+use super::measure::is_passive;
+use crate::balance::reservoir::Reservoirs;
 use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, measure, phrase};
 use crate::balance::Evaluation;
 use crate::model::{Decision, Margin, Scope};
@@ -50,7 +51,7 @@ impl Rule for HeatFlowsUphill {
             if component.kind == Kind::AbsorptionMachine || !is_passive(evaluation, k) {
                 continue;
             }
-            let Some(reservoirs) = Reservoirs::of(evaluation, k) else { continue };
+            let Some(reservoirs) = Reservoirs::of(evaluation.view, k) else { continue };
             if let (Some(source), Some(sink)) = (reservoirs.source_temperature(), reservoirs.sink_temperature()) {
                 let throughput = source.value + sink.value;
                 out.push(measure::lower_bound(me, Scope::Component(k), source.minus(&sink), throughput));
@@ -60,7 +61,7 @@ impl Rule for HeatFlowsUphill {
 
     fn explain(&self, evaluation: &Evaluation<'_>, margin: &Margin, decision: &Decision) -> Explanation {
         let Scope::Component(k) = margin.scope else { return Explanation::default() };
-        let ends = Reservoirs::of(evaluation, k)
+        let ends = Reservoirs::of(evaluation.view, k)
             .and_then(|r| Some((r.source_temperature()?.value, r.sink_temperature()?.value)));
         let Some((source, sink)) = ends else { return Explanation::default() };
         let comparison = if decision.at_limit {

@@ -1,11 +1,12 @@
 //! What the rules about adiabatic machines share: entropy over each section, and claims.
 
 use super::{Explanation, Figure, measure, phrase};
-use crate::balance::{Evaluation, by_pressure, isentropic_enthalpy};
-use crate::fluid::Property;
+use crate::balance::Evaluation;
+use crate::balance::passage::sections;
+use crate::balance::performance::isentropic_efficiency;
 use crate::model::{Decision, Dual, Margin, Scope};
 use crate::process::kinds::Kind;
-use crate::process::{Component, FlowId, Stated, StatedFigure};
+use crate::process::{Component, Stated, StatedFigure};
 use crate::quantity::Dimension;
 
 /// A machine in which a fluid exchanges work and no heat.
@@ -26,21 +27,6 @@ impl Machine {
     }
 }
 
-/// The sections of a machine with one inlet, in the order in which the fluid passes them; none
-/// where other streams pass through beside it, or a flow runs against its declared direction.
-fn sections(evaluation: &Evaluation<'_>, component: &Component) -> Vec<(FlowId, FlowId)> {
-    let mut sides = component.sides.iter().filter(|s| !(s.inlets.is_empty() && s.outlets.is_empty()));
-    let (Some(side), None) = (sides.next(), sides.next()) else { return Vec::new() };
-    let [inlet] = side.inlets[..] else { return Vec::new() };
-    let view = evaluation.view;
-    if side.inlets.iter().chain(&side.outlets).any(|&f| measure::is_reversed(view, f)) {
-        return Vec::new();
-    }
-    let outlets = by_pressure(view.model, view.workspace, &side.outlets, component.kind);
-    let mut before = inlet;
-    outlets.into_iter().map(|after| (std::mem::replace(&mut before, after), after)).collect()
-}
-
 fn claims(component: &Component) -> impl Iterator<Item = (usize, &Stated)> {
     let claims = component.stated.iter().enumerate();
     claims.filter(|(_, s)| s.what == StatedFigure::IsentropicEfficiency)
@@ -58,7 +44,7 @@ pub(super) fn margins(machine: Machine, me: usize, evaluation: &Evaluation<'_>, 
         if !machine.takes(component.kind) || !measure::is_adiabatic(process, component) {
             continue;
         }
-        let sections = sections(evaluation, component);
+        let sections = sections(evaluation.view, component);
         for (i, &(before, after)) in sections.iter().enumerate() {
             if let Some((rise, throughput)) = measure::entropy_rise(view, k, before, after) {
                 out.push(Margin {
@@ -84,17 +70,12 @@ pub(super) fn margins(machine: Machine, me: usize, evaluation: &Evaluation<'_>, 
 }
 
 /// The explanation with the isentropic efficiency of the section or the claim.
-pub(super) fn explain(
-    machine: Machine,
-    evaluation: &Evaluation<'_>,
-    margin: &Margin,
-    decision: &Decision,
-) -> Explanation {
+pub(super) fn explain(evaluation: &Evaluation<'_>, margin: &Margin, decision: &Decision) -> Explanation {
     let Scope::Component(k) = margin.scope else { return Explanation::default() };
     let process = &evaluation.view.model.process;
     let component = &process.components[k];
     let subject = phrase::subject(evaluation, margin.scope);
-    let sections = sections(evaluation, component);
+    let sections = sections(evaluation.view, component);
     let Some(&(before, after)) = sections.get(margin.detail.saturating_sub(1)) else {
         let stated = margin.detail.checked_sub(sections.len() + 1).and_then(|i| component.stated.get(i));
         let Some(claim) = stated.and_then(|s| evaluation.view.var(s.var).ok()) else {
@@ -119,8 +100,8 @@ pub(super) fn explain(
             ..Explanation::default()
         };
     };
-    let efficiency = match efficiency(machine, evaluation, before, after) {
-        Some(e) => format!(", an isentropic efficiency of {}", phrase::number(e)),
+    let efficiency = match isentropic_efficiency(evaluation.view, before, after) {
+        Some(e) => format!(", an isentropic efficiency of {}", phrase::number(e.value)),
         None => String::new(),
     };
     Explanation {
@@ -136,23 +117,5 @@ pub(super) fn explain(
         value: Some(Figure { value: decision.value, dimension: Dimension::SpecificEntropy }),
         limit: Some(Figure { value: 0.0, dimension: Dimension::SpecificEntropy }),
         ..Explanation::default()
-    }
-}
-
-/// Isentropic efficiency of a section; `None` where it is not defined, because the enthalpy does
-/// not move the way of the machine.
-fn efficiency(machine: Machine, evaluation: &Evaluation<'_>, before: FlowId, after: FlowId) -> Option<f64> {
-    let view = evaluation.view;
-    let process = &view.model.process;
-    let enthalpy = |f: FlowId| {
-        let state = process.flows[f].material()?.state;
-        Some(view.property(state, Property::Enthalpy).ok()?.value)
-    };
-    let h1 = enthalpy(before)?;
-    let actual = enthalpy(after)? - h1;
-    let ideal = isentropic_enthalpy(view, before, after).ok()?.value - h1;
-    match machine {
-        Machine::Expander => (actual < 0.0 && ideal < 0.0).then(|| actual / ideal),
-        Machine::Compressor => (actual > 0.0 && ideal > 0.0).then(|| ideal / actual),
     }
 }

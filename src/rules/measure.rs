@@ -2,12 +2,16 @@
 
 use crate::balance::{Evaluation, Row};
 use crate::fluid::{CompositionForm, Property};
-use crate::model::{Blocked, Dual, Family, Margin, Scope, Slot, Test, View};
+use crate::model::{Dual, Family, Margin, Scope, Slot, Test, View};
 use crate::process::{
     AmountForm, Basis, Boundary, Carried, Component, ComponentId, FlowId, Literals, Process, StateForm,
     StateId, Var, VarId,
 };
 use crate::quantity::Dimension;
+
+pub(super) use crate::balance::passage::{is_adiabatic, is_reversed};
+pub(super) use crate::balance::region::formulation_uncertainty as formulation;
+pub(super) use crate::balance::reservoir::net_work_out;
 
 /// A margin that must not be negative, outside every family.
 pub(super) fn lower_bound(me: usize, scope: Scope, form: Dual, throughput: f64) -> Margin {
@@ -42,41 +46,22 @@ pub(super) fn unspent(evaluation: &Evaluation<'_>) -> impl Iterator<Item = (usiz
     rows.filter(|&(i, _)| evaluation.spent_on(i).is_none())
 }
 
-/// Whether no heat crosses the boundary of the fluid in a component: a loss in bearings, which
-/// the reader makes of a given mechanical loss, leaves the fluid adiabatic.
-pub(super) fn is_adiabatic(process: &Process, component: &Component) -> bool {
-    component.inlets.iter().chain(&component.outlets).all(|&f| {
-        let flow = &process.flows[f];
-        match flow.carried {
-            Carried::Heat(..) => flow.implied && !component.given.heat_loss,
-            Carried::Radiation(..) => false,
-            Carried::Material(_) | Carried::Work(..) => true,
-        }
-    })
+/// Whether a component can be passive: no work, no material, no contents.
+pub(super) fn is_passive(evaluation: &Evaluation<'_>, k: ComponentId) -> bool {
+    let process = &evaluation.view.model.process;
+    let component = &process.components[k];
+    !has_material(process, component)
+        && !component
+            .inlets
+            .iter()
+            .chain(&component.outlets)
+            .any(|&f| matches!(process.flows[f].carried, Carried::Work(..)))
 }
 
 /// Whether a component has a flow of material, or contents.
 pub(super) fn has_material(process: &Process, component: &Component) -> bool {
     component.holdup.is_some()
         || component.inlets.iter().chain(&component.outlets).any(|&f| process.flows[f].material().is_some())
-}
-
-/// Net work out of a component, and whether it has any flow of work.
-///
-/// # Errors
-/// `Blocked` by a power that is not known.
-pub(super) fn net_work_out(view: View<'_>, component: &Component) -> Result<(Dual, bool), Blocked> {
-    let mut out = Dual::default();
-    let mut any = false;
-    for (flows, sign) in [(&component.inlets, -1.0), (&component.outlets, 1.0)] {
-        for &f in flows {
-            if let Carried::Work(power, _) = view.model.process.flows[f].carried {
-                out.add_scaled(sign, &view.var(power)?);
-                any = true;
-            }
-        }
-    }
-    Ok((out, any))
 }
 
 /// The only inlet and the only outlet of the only side that carries material, in the order in
@@ -91,12 +76,6 @@ pub(super) fn single_passage(view: View<'_>, component: &Component) -> Option<(F
         ([inlet], [outlet]) => Some((*inlet, *outlet)),
         _ => None,
     }
-}
-
-/// Whether the amount of a flow is known and negative.
-pub(super) fn is_reversed(view: View<'_>, flow: FlowId) -> bool {
-    let (var, _, _) = extent(&view.model.process, flow);
-    view.var(var).is_ok_and(|x| x.value < 0.0)
 }
 
 /// Specific entropy after minus before a passage through component `k`, J/(kg K), with the
@@ -132,12 +111,6 @@ pub(super) fn entropy_rise(
         rise.terms.push((view.model.source_slot(source), derivative));
     }
     Some((rise, r1.abs() + r2.abs()))
-}
-
-/// Relative standard uncertainty of the formulation at a state; zero where it cannot be had.
-pub(super) fn formulation(view: View<'_>, state: StateId) -> f64 {
-    let fluid = view.model.process.states[state].fluid;
-    view.state(state).map_or(0.0, |s| view.model.process.fluids[fluid].engine.relative_uncertainty(&s.state))
 }
 
 /// The first flow that has a state.

@@ -11,8 +11,8 @@ mod machine;
 mod measure;
 pub mod phrase;
 mod physics;
+mod practice;
 mod remark;
-mod reservoir;
 mod saturation;
 mod terminal;
 #[cfg(test)]
@@ -220,6 +220,10 @@ rules! {
     equilibrium_overshot::EquilibriumOvershot,
     internal_temperature_cross::InternalTemperatureCross,
     composite_curves_cross::CompositeCurvesCross,
+    work_beats_reversible::WorkBeatsReversible,
+    compressor_beats_isothermal::CompressorBeatsIsothermal,
+    negative_exergy_destruction::NegativeExergyDestruction,
+    exergy_efficiency_above_one::ExergyEfficiencyAboveOne,
     terminal_temperature_cross::TerminalTemperatureCross,
     parallel_flow_outlet_cross::ParallelFlowOutletCross,
     exchanger_effectiveness_above_one::ExchangerEffectivenessAboveOne,
@@ -249,7 +253,14 @@ rules! {
     reversed_flow::ReversedFlow,
     unusual_approach::UnusualApproach,
     unusual_pressure_drop::UnusualPressureDrop,
+    negative_exergy::NegativeExergy,
     unusual_dead_state::UnusualDeadState,
+    unusual_turbine_efficiency::UnusualTurbineEfficiency,
+    unusual_gas_turbine_efficiency::UnusualGasTurbineEfficiency,
+    unusual_machine_efficiency::UnusualMachineEfficiency,
+    unusual_exergy_efficiency::UnusualExergyEfficiency,
+    unusual_stack_loss::UnusualStackLoss,
+    claim_close_to_limit::ClaimCloseToLimit,
     below_acid_dew_point::BelowAcidDewPoint,
     gouy_stodola_mismatch::GouyStodolaMismatch,
 }

@@ -1,6 +1,6 @@
 //! work-from-one-reservoir
 
-use super::reservoir::Reservoirs;
+use crate::balance::reservoir::Reservoirs;
 use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, measure, phrase};
 use crate::balance::Evaluation;
 use crate::model::{Decision, Margin, Scope};
@@ -58,7 +58,7 @@ impl Rule for WorkFromOneReservoir {
                 continue;
             }
             let Ok((work, true)) = measure::net_work_out(evaluation.view, component) else { continue };
-            let Some(reservoirs) = Reservoirs::of(evaluation, k) else { continue };
+            let Some(reservoirs) = Reservoirs::of(evaluation.view, k) else { continue };
             let has_sources = reservoirs.source_temperature().is_some();
             if work.value > 0.0 && !has_sources {
                 // Work from nothing is a matter of the energy balance.
@@ -75,7 +75,7 @@ impl Rule for WorkFromOneReservoir {
     fn explain(&self, evaluation: &Evaluation<'_>, margin: &Margin, decision: &Decision) -> Explanation {
         let Scope::Component(k) = margin.scope else { return Explanation::default() };
         let dimension = phrase::energy_dimension(evaluation);
-        let reservoirs = Reservoirs::of(evaluation, k);
+        let reservoirs = Reservoirs::of(evaluation.view, k);
         let place = match reservoirs.and_then(|r| r.single_temperature()) {
             Some(t) => {
                 format!("exchanges heat at {} only", phrase::figure(t, Dimension::Temperature))

@@ -14,10 +14,10 @@ const ORDER: &[&str] = &[
     "balance",
     "rules",
     "evidence",
-    "claim",
     "assessment",
     "report",
     "pipeline",
+    "claim",
     "api",
 ];
 

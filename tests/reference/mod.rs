@@ -1,7 +1,10 @@
 //! Checks against published values, one file a topic.
 
 mod chemistry;
+mod claims;
+mod cogeneration;
 mod exchanger;
+mod exergy;
 mod gas;
 mod humid_air;
 mod kinds;

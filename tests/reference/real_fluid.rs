@@ -1,7 +1,7 @@
 //! Real fluids against states from an independent implementation of the same equations.
 
 use sigmadot::fluid::real_fluid::{RealFluid, by_name, catalogue};
-use sigmadot::fluid::{Engine, Pair, PropertyError, State};
+use sigmadot::fluid::{Engine, Pair, Phase, PropertyError, State};
 
 const STATES: &str = include_str!("../data/real_fluid/states.csv");
 
@@ -340,6 +340,80 @@ fn derivatives_agree_with_differences() {
         }
     }
     assert!(failures.is_empty(), "{}\n{}", failures.len(), failures.join("\n"));
+}
+
+/// What lies outside is refused with the limit that was broken.
+#[test]
+fn ranges_are_kept() {
+    let nitrogen = by_name("nitrogen").unwrap();
+    let limit = |pair: Pair, a: f64, b: f64| match nitrogen.state(pair, a, b, 0.0) {
+        Err(PropertyError::OutOfRange { quantity, value, min, max, .. }) => {
+            assert!(value < min || value > max, "{quantity} {value} in {min} {max}");
+            assert!(min.is_finite() && max.is_finite());
+            quantity
+        }
+        other => panic!("{pair} {a} {b}: {other:?}"),
+    };
+    assert_eq!(limit(Pair::PressureTemperature, 1e5, 60.0), "temperature");
+    assert_eq!(limit(Pair::PressureTemperature, 1e5, 2001.0), "temperature");
+    assert_eq!(limit(Pair::PressureTemperature, -1.0, 300.0), "pressure");
+    assert_eq!(limit(Pair::PressureTemperature, 2.3e9, 300.0), "pressure");
+    // Solid nitrogen.
+    assert_eq!(limit(Pair::PressureTemperature, 1e9, 100.0), "pressure, above the melting line,");
+    assert_eq!(limit(Pair::PressureQuality, 4e6, 0.5), "saturation pressure");
+    assert_eq!(limit(Pair::TemperatureQuality, 127.0, 0.5), "saturation temperature");
+    assert_eq!(limit(Pair::PressureQuality, 1e5, 1.5), "quality");
+    assert_eq!(limit(Pair::PressureEnthalpy, 1e5, 1e7), "enthalpy");
+    assert_eq!(limit(Pair::PressureEntropy, 1e5, -1e5), "entropy");
+    assert_eq!(limit(Pair::EnthalpyEntropy, 1e9, 5e3), "enthalpy at this entropy");
+    assert_eq!(
+        nitrogen.state(Pair::PressureTemperature, f64::NAN, 300.0, 0.0),
+        Err(PropertyError::NotFinite)
+    );
+    assert_eq!(nitrogen.saturation_temperature(4e6, 0.0), Err(PropertyError::NoSaturation));
+}
+
+/// Below the triple pressure every state in range is gas.
+#[test]
+fn below_the_triple_pressure_there_is_gas() {
+    for fluid in catalogue() {
+        let (t, p) = fluid.triple().unwrap();
+        let p = 0.1 * p;
+        for t in [t, 1.2 * t] {
+            let state = fluid.state(Pair::PressureTemperature, p, t, 0.0).unwrap();
+            assert_eq!(state.phase, Phase::Vapour, "{} {t}", fluid.name());
+            let z = p * state.volume * fluid.molar_mass(0.0).unwrap() / (fluid.gas_constant() * t);
+            assert!(z > 0.93 && z < 1.001, "{} {t}: Z {z}", fluid.name());
+            for pair in [Pair::PressureEnthalpy, Pair::PressureEntropy] {
+                let back = fluid.state(pair, p, state.get(pair.properties().1), 0.0).unwrap();
+                assert!((back.temperature - t).abs() < 1e-6, "{} {pair} {t}", fluid.name());
+            }
+        }
+    }
+}
+
+/// A blend between its bubble and dew temperatures is wet, and all pairs tell the same state.
+#[test]
+fn blends_glide() {
+    let blend = by_name("R407C").unwrap();
+    let p = 1e6;
+    let (bubble, _) = blend.saturation_temperature(p, 0.0).unwrap();
+    let (dew, _) = blend.saturation_temperature(p, 1.0).unwrap();
+    assert!(dew - bubble > 3.0 && dew - bubble < 8.0, "glide {}", dew - bubble);
+    let t = bubble + 0.3 * (dew - bubble);
+    let wet = blend.state(Pair::PressureTemperature, p, t, 0.0).unwrap();
+    assert!((wet.quality.unwrap() - 0.3).abs() < 1e-9);
+    for (pair, a, b) in [
+        (Pair::PressureQuality, p, 0.3),
+        (Pair::TemperatureQuality, t, 0.3),
+        (Pair::PressureEnthalpy, p, wet.enthalpy),
+        (Pair::PressureEntropy, p, wet.entropy),
+    ] {
+        let other = blend.state(pair, a, b, 0.0).unwrap();
+        assert!((other.temperature - t).abs() < 1e-7, "{pair}");
+        assert!((other.enthalpy - wet.enthalpy).abs() < 1e-3, "{pair}");
+        assert!((other.quality.unwrap() - 0.3).abs() < 1e-7, "{pair}");
+    }
 }
 
 /// Splitmix64.

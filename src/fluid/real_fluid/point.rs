@@ -142,7 +142,7 @@ impl Helmholtz {
                 } else {
                     0.5 * (low + high)
                 };
-                if high - low <= 4.0 * f64::EPSILON * high {
+                if high.is_finite() && high - low <= 4.0 * f64::EPSILON * high {
                     break;
                 }
             }

@@ -234,9 +234,15 @@ impl Tracer<'_> {
     /// Densities expected at `x` from the two nearest known nodes.
     fn guess(&self, x: f64) -> Option<(f64, f64)> {
         let z = self.abscissa(x);
-        let mut near: Vec<&Node> = self.known.iter().collect();
-        near.sort_by(|a, b| (a.x - x).abs().total_cmp(&(b.x - x).abs()));
-        let (a, b) = (near.first()?, near.get(1).or(near.first())?);
+        let (mut a, mut b) = (self.known.first()?, self.known.first()?);
+        let distance = |node: &Node| (node.x - x).abs();
+        for node in self.known.iter().skip(1) {
+            if distance(node) < distance(a) {
+                (a, b) = (node, a);
+            } else if std::ptr::eq(a, b) || distance(node) < distance(b) {
+                b = node;
+            }
+        }
         let (za, zb) = (self.abscissa(a.x), self.abscissa(b.x));
         let w = if za == zb { 0.0 } else { (z - za) / (zb - za) };
         let liquid = a.liquid + w * (b.liquid - a.liquid);

@@ -533,7 +533,26 @@ impl<'t> Reader<'t> {
                 };
                 let found = self.flow_ids.get(name).copied().and_then(|f| self.end_at(k, f));
                 match found {
-                    Some(f) => list.push((f, sign)),
+                    Some(f) => {
+                        // Fuel counts what enters, product what leaves; the rest is taken off.
+                        let enters = component.inlets.contains(&f);
+                        let counts = if enters == (member == "fuel") { 1.0 } else { -1.0 };
+                        if sign == counts {
+                            list.push((f, sign));
+                        } else {
+                            let direction = if enters { "enters" } else { "leaves" };
+                            let written = if counts < 0.0 { "-" } else { "" };
+                            self.fault(
+                                item.fault(
+                                    Code::Conflict,
+                                    format!(
+                                        "\"{name}\" {direction}, and {member} counts it the other way round"
+                                    ),
+                                )
+                                .hint(format!("write \"{written}{name}\"")),
+                            );
+                        }
+                    }
                     None => self.fault(item.fault(
                         Code::DanglingReference,
                         format!("there is no flow \"{name}\" at this component"),

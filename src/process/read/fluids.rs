@@ -401,7 +401,7 @@ impl<'t> Reader<'t> {
                 molar_mass,
                 elements,
                 heat_capacity,
-                temperature_range: Some((200.0, 6000.0)),
+                temperature_range: None,
                 formation_enthalpy,
                 standard_entropy,
                 chemical_exergy,

@@ -234,13 +234,19 @@ impl<'t> Reader<'t> {
                 ));
                 return None;
             };
+            // The pressure tells whether a negative exergy can be that of a vacuum.
+            let pressure = figures.pressure.map(|var| Surplus {
+                property: Property::Pressure,
+                var,
+                pointer: node.pointer_to("pressure"),
+            });
             return Some(self.push_state(
                 node,
                 fluid,
                 StateForm::Pair(Pair::EnthalpyEntropy),
                 (h, s),
                 None,
-                Vec::new(),
+                pressure.into_iter().collect(),
                 None,
                 false,
             ));

@@ -4,32 +4,33 @@
 //! A stream that passes through counts with Δ(m h) / Δ(m s): the temperature of the reservoir
 //! that would take or give the same heat with the same entropy.
 
-use super::measure;
-use crate::balance::{Evaluation, region::RADIATION_ENTROPY};
+use super::region::RADIATION_ENTROPY;
 use crate::model::{Blocked, Dual, View, dual::log_mean};
-use crate::process::{Boundary, Carried, ComponentId, Side};
+use crate::process::kinds::Kind;
+use crate::process::{Boundary, Carried, Component, ComponentId, Side};
 
 /// One thing that heat is exchanged with.
 #[derive(Clone, Debug)]
-pub(super) struct Exchange {
+pub struct Exchange {
     /// The magnitude of the heat, W or J, where it is known.
-    pub(super) heat: Option<Dual>,
+    pub heat: Option<Dual>,
     /// Entropic mean temperature, K.
-    pub(super) temperature: Dual,
+    pub temperature: Dual,
 }
 
 /// What a device exchanges heat with.
 #[derive(Clone, Debug, Default)]
-pub(super) struct Reservoirs {
-    pub(super) sources: Vec<Exchange>,
-    pub(super) sinks: Vec<Exchange>,
+pub struct Reservoirs {
+    /// Where it takes heat in.
+    pub sources: Vec<Exchange>,
+    /// Where it gives heat off.
+    pub sinks: Vec<Exchange>,
 }
 
 impl Reservoirs {
     /// The reservoirs of a component. `None` where a temperature that bounds its performance is
     /// not known.
-    pub(super) fn of(evaluation: &Evaluation<'_>, k: ComponentId) -> Option<Reservoirs> {
-        let view = evaluation.view;
+    pub fn of(view: View<'_>, k: ComponentId) -> Option<Reservoirs> {
         let process = &view.model.process;
         let component = &process.components[k];
         if component.holdup.is_some() {
@@ -80,34 +81,34 @@ impl Reservoirs {
     }
 
     /// Heat taken in, W or J, where it is known and there is any.
-    pub(super) fn heat_in(&self) -> Option<Dual> {
+    pub fn heat_in(&self) -> Option<Dual> {
         total(&self.sources)
     }
 
     /// Heat given off, W or J, where it is known and there is any.
-    pub(super) fn heat_out(&self) -> Option<Dual> {
+    pub fn heat_out(&self) -> Option<Dual> {
         total(&self.sinks)
     }
 
     /// Entropic mean temperature of the heat taken in; the hottest where the shares are not known.
-    pub(super) fn source_temperature(&self) -> Option<Dual> {
+    pub fn source_temperature(&self) -> Option<Dual> {
         mean(&self.sources, |a, b| a > b)
     }
 
     /// Entropic mean temperature of the heat given off; the coldest where the shares are not known.
-    pub(super) fn sink_temperature(&self) -> Option<Dual> {
+    pub fn sink_temperature(&self) -> Option<Dual> {
         mean(&self.sinks, |a, b| a < b)
     }
 
     /// Whether all heat is exchanged at one temperature.
-    pub(super) fn single_temperature(&self) -> Option<f64> {
+    pub fn single_temperature(&self) -> Option<f64> {
         let mut all = self.sources.iter().chain(&self.sinks).map(|e| e.temperature.value);
         let first = all.next()?;
         all.all(|t| (t - first).abs() <= 1e-9 * first).then_some(first)
     }
 
     /// Whether there is anything that heat is given off to.
-    pub(super) fn has_sinks(&self) -> bool {
+    pub fn has_sinks(&self) -> bool {
         !self.sinks.is_empty()
     }
 }
@@ -196,14 +197,71 @@ fn mean(list: &[Exchange], kinder: fn(f64, f64) -> bool) -> Option<Dual> {
         .cloned()
 }
 
-/// Whether a component can be passive: no work, no material, no contents.
-pub(super) fn is_passive(evaluation: &Evaluation<'_>, k: ComponentId) -> bool {
-    let process = &evaluation.view.model.process;
-    let component = &process.components[k];
-    !measure::has_material(process, component)
-        && !component
-            .inlets
-            .iter()
-            .chain(&component.outlets)
-            .any(|&f| matches!(process.flows[f].carried, Carried::Work(..)))
+/// A cyclic machine between two reservoirs.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Cycle {
+    /// η = W / Qin ≤ 1 − Tc/Th.
+    Engine,
+    /// COP = Qin / W ≤ Tc / (Th − Tc).
+    Refrigerator,
+    /// COP = Qout / W ≤ Th / (Th − Tc).
+    HeatPump,
+}
+
+impl Cycle {
+    /// The cycle of a kind, if it is one.
+    pub const fn of(kind: Kind) -> Option<Cycle> {
+        match kind {
+            Kind::HeatEngine => Some(Cycle::Engine),
+            Kind::Refrigerator => Some(Cycle::Refrigerator),
+            Kind::HeatPump => Some(Cycle::HeatPump),
+            _ => None,
+        }
+    }
+
+    /// The reversible limit; `None` where the temperatures set none.
+    pub fn limit(self, reservoirs: &Reservoirs) -> Option<Dual> {
+        let source = reservoirs.source_temperature()?;
+        let sink = reservoirs.sink_temperature()?;
+        if self == Cycle::Engine {
+            // Below zero when heat is rejected hotter than it is taken in: any work is too much.
+            return Some(Dual::constant(1.0).minus(&sink.times(&source.reciprocal())));
+        }
+        let lift = sink.clone().minus(&source);
+        if lift.value <= 0.0 {
+            return None;
+        }
+        let useful = if self == Cycle::Refrigerator { source } else { sink };
+        Some(useful.times(&lift.reciprocal()))
+    }
+
+    /// What the machine achieves by its own flows; `None` where it is not known or it does not run
+    /// as what it is.
+    pub fn actual(self, view: View<'_>, k: ComponentId, reservoirs: &Reservoirs) -> Option<Dual> {
+        let (work, _) = net_work_out(view, &view.model.process.components[k]).ok()?;
+        let (benefit, cost) = match self {
+            Cycle::Engine => (work, reservoirs.heat_in()?),
+            Cycle::Refrigerator => (reservoirs.heat_in()?, work.scaled(-1.0)),
+            Cycle::HeatPump => (reservoirs.heat_out()?, work.scaled(-1.0)),
+        };
+        (benefit.value > 0.0 && cost.value > 0.0).then(|| benefit.times(&cost.reciprocal()))
+    }
+}
+
+/// Net work out of a component, and whether it has any flow of work.
+///
+/// # Errors
+/// `Blocked` by a power that is not known.
+pub fn net_work_out(view: View<'_>, component: &Component) -> Result<(Dual, bool), Blocked> {
+    let mut out = Dual::default();
+    let mut any = false;
+    for (flows, sign) in [(&component.inlets, -1.0), (&component.outlets, 1.0)] {
+        for &f in flows {
+            if let Carried::Work(power, _) = view.model.process.flows[f].carried {
+                out.add_scaled(sign, &view.var(power)?);
+                any = true;
+            }
+        }
+    }
+    Ok((out, any))
 }
