@@ -237,10 +237,12 @@ pub fn judge(evaluation: &Evaluation<'_>, margins: &[Margin], sensitivity: &mut 
     out
 }
 
-/// Whether a margin sees the same defect as its component's entropy balance from another side.
+/// Whether a margin sees the same defect as its component's entropy balance, or as its smallest
+/// temperature difference, from another side.
 fn secondary(margin: &Margin) -> bool {
-    let info = rules::ALL[margin.rule].info();
-    info.aspect == Aspect::Entropy && margin.family == Family::None && margin.detail == 0
+    let aspect = rules::ALL[margin.rule].info().aspect;
+    margin.family == Family::None
+        && (aspect == Aspect::Interior || aspect == Aspect::Entropy && margin.detail == 0)
 }
 
 /// A secondary view never says more than the test it follows from: the probability of a false
@@ -253,7 +255,7 @@ fn follow_primary(margins: &[Margin], decisions: &mut [Option<Decision>]) {
         let primary = (0..margins.len()).find(|&j| {
             margins[j].scope == margins[i].scope
                 && margins[j].family == Family::Entropy
-                && rules::ALL[margins[j].rule].info().aspect == Aspect::Entropy
+                && rules::ALL[margins[j].rule].info().aspect == rules::ALL[margins[i].rule].info().aspect
         });
         if let Some(Some(first)) = primary.map(|j| decisions[j])
             && let Some(own) = &mut decisions[i]
@@ -331,12 +333,15 @@ fn gather(
             let same_kind = other == info.aspect && margins[*j].pointer == margin.pointer
                 || matches!(
                     (other, info.aspect),
-                    (Aspect::Entropy, Aspect::Entropy | Aspect::Interior | Aspect::Closure)
-                        | (Aspect::Interior, Aspect::Interior)
+                    (
+                        Aspect::Entropy,
+                        Aspect::Entropy | Aspect::Interior | Aspect::Reaction | Aspect::Closure
+                    ) | (Aspect::Interior, Aspect::Interior)
+                        | (Aspect::Reaction, Aspect::Reaction)
                         | (Aspect::Closure, Aspect::Closure)
                 );
             match info.aspect {
-                Aspect::Entropy | Aspect::Interior | Aspect::Closure => {
+                Aspect::Entropy | Aspect::Interior | Aspect::Reaction | Aspect::Closure => {
                     same_kind && (same_place || contained && margin.scope != f.scope)
                 }
                 _ => same_place && same_kind && name(*j) == info.name && margin.pointer == f_pointer(f),

@@ -12,6 +12,7 @@
 pub mod api;
 pub mod assessment;
 pub mod balance;
+pub mod claim;
 pub mod diagnostic;
 pub mod document;
 pub mod evidence;

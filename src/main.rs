@@ -107,6 +107,8 @@ struct Demo {
 enum Format {
     Json,
     Text,
+    Html,
+    Csv,
 }
 
 #[derive(Clone, Copy, ValueEnum)]
@@ -120,6 +122,8 @@ impl Format {
         match self {
             Format::Json => route::JSON,
             Format::Text => route::TEXT,
+            Format::Html => route::HTML,
+            Format::Csv => route::CSV,
         }
     }
 }

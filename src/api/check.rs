@@ -1,14 +1,20 @@
 //! `POST /v1/checks`: one description in, one report out.
 
 use axum::body::Body;
+use axum::http::header::CONTENT_SECURITY_POLICY;
 use axum::http::{HeaderName, HeaderValue, Response};
 
-use super::route::{BASE, Call, Gives, JSON, Method, Outcome, Parameter, Route, TEXT, Takes, optional};
+use super::route::{
+    BASE, CSV, Call, Gives, HTML, JSON, Method, Outcome, Parameter, Route, TEXT, Takes, optional,
+};
 use crate::quantity::UnitSystem;
 use crate::report::Report;
 
 /// The verdict beside the body, for users who read headers only.
 const VERDICT: HeaderName = HeaderName::from_static("verdict");
+
+/// A report as a page needs its own style and nothing else.
+const PAGE_POLICY: &str = "default-src 'none'; style-src 'unsafe-inline'; base-uri 'none'; form-action 'none'; frame-ancestors 'none'";
 
 /// `?units=`.
 pub const UNITS: Parameter = Parameter {
@@ -51,7 +57,12 @@ pub const CHECK: Route = Route {
         examples: true,
         streamed: false,
     }),
-    gives: &[Gives { media: JSON, schema: Some("Report") }, Gives { media: TEXT, schema: None }],
+    gives: &[
+        Gives { media: JSON, schema: Some("Report") },
+        Gives { media: HTML, schema: None },
+        Gives { media: CSV, schema: None },
+        Gives { media: TEXT, schema: None },
+    ],
     answer: "The report.",
     refuses: &[406, 408, 413, 415, 422, 503],
     handler: |call| Box::pin(check(call)),
@@ -60,7 +71,12 @@ pub const CHECK: Route = Route {
 
 /// A report in one of the media types of [`CHECK`].
 pub fn render(report: &Report, media: &str) -> Vec<u8> {
-    if media == TEXT { report.to_text().into_bytes() } else { report.to_json() }
+    match media {
+        TEXT => report.to_text().into_bytes(),
+        CSV => report.to_csv().into_bytes(),
+        HTML => report.to_html().into_bytes(),
+        _ => report.to_json(),
+    }
 }
 
 async fn check(call: Call) -> Outcome {
@@ -72,5 +88,8 @@ async fn check(call: Call) -> Outcome {
     let (verdict, bytes) = work.await?;
     let mut response = Response::new(Body::from(bytes));
     response.headers_mut().insert(VERDICT, HeaderValue::from_static(verdict));
+    if media == HTML {
+        response.headers_mut().insert(CONTENT_SECURITY_POLICY, HeaderValue::from_static(PAGE_POLICY));
+    }
     Ok(response)
 }

@@ -1,6 +1,7 @@
 //! The seam between HTTP and thermodynamics: calls that take bytes and give an answer. Tests put a
 //! slow or a broken engine in its place.
 
+use crate::claim::{self, ClaimReport};
 use crate::pipeline::{self, Cancel, Failure};
 use crate::process::ReadLimits;
 use crate::quantity::UnitSystem;
@@ -25,6 +26,25 @@ pub trait Engine: Send + Sync + 'static {
         units: UnitSystem,
         cancel: &Cancel,
     ) -> Result<StateReport, Failure>;
+
+    /// Judges a claim, from a JSON body.
+    fn claim(
+        &self,
+        body: &[u8],
+        limits: &ReadLimits,
+        units: UnitSystem,
+        cancel: &Cancel,
+    ) -> Result<ClaimReport, Failure>;
+
+    /// Judges a claim, from a kind and flat parameters.
+    fn claim_query(
+        &self,
+        kind: &str,
+        parameters: &[(String, String)],
+        limits: &ReadLimits,
+        units: UnitSystem,
+        cancel: &Cancel,
+    ) -> Result<ClaimReport, Failure>;
 }
 
 /// The library itself.
@@ -50,5 +70,26 @@ impl Engine for Core {
         cancel: &Cancel,
     ) -> Result<StateReport, Failure> {
         pipeline::state_bytes(body, limits, units, cancel)
+    }
+
+    fn claim(
+        &self,
+        body: &[u8],
+        limits: &ReadLimits,
+        units: UnitSystem,
+        cancel: &Cancel,
+    ) -> Result<ClaimReport, Failure> {
+        claim::judge_bytes(body, &limits.tree, units, cancel)
+    }
+
+    fn claim_query(
+        &self,
+        kind: &str,
+        parameters: &[(String, String)],
+        limits: &ReadLimits,
+        units: UnitSystem,
+        cancel: &Cancel,
+    ) -> Result<ClaimReport, Failure> {
+        claim::judge_query(kind, parameters, &limits.tree, units, cancel)
     }
 }

@@ -36,6 +36,15 @@ examples! {
     "laundry-back-pressure-turbine": "A steam turbine whose exhaust is colder than any turbine could make it.",
     "laundry-let-down": "A let-down valve and a desuperheater that hold.",
     "harbour-heat-engine": "A heat engine that promises more than its two temperatures allow.",
+    "quay-waste-heat-boiler": "A waste-heat boiler whose balances hold while its inside is impossible.",
+    "power-house-heat-recovery": "A two-pressure heat-recovery steam plant with condenser and generator.",
+    "laundry-gas-boiler": "A gas-fired steam boiler whose air ratio follows from an oxygen reading.",
+    "forge-quench": "A batch: hot steel quenched in oil, the final temperature solved.",
+    "boatyard-air-receiver": "A batch: an air receiver filled from a line.",
+    "cold-store-chiller": "An ammonia chiller with its four components.",
+    "district-heat-pump": "A river heat pump with sliding source and sink.",
+    "power-house-cooling-tower": "A cooling tower: dry air and make-up are solved.",
+    "brewery-organic-cycle": "An organic Rankine cycle on hot water.",
 }
 
 /// The example of this name.

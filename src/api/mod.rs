@@ -11,6 +11,7 @@ pub mod batch;
 pub mod body;
 pub mod catalogue;
 pub mod check;
+pub mod claim;
 pub mod client;
 pub mod edge;
 pub mod engine;

@@ -7,6 +7,7 @@ use super::catalogue::{
     CodeEntry, CodeList, FluidEntry, FluidList, KindEntry, KindList, PortEntry, QuantityEntry, RuleEntry,
     RuleList, UnitEntry, UnitList,
 };
+use super::claim::{ClaimKindEntry, ClaimKindList, ClaimParameter};
 use super::edge::REQUEST_ID;
 use super::examples::{EXAMPLES, ExampleEntry, ExampleList};
 use super::limits::{DescriptionLimits, PublishedLimits, ServiceLimits};
@@ -14,7 +15,8 @@ use super::operation::Health;
 use super::problem::{MEDIA_TYPE, Problem, ProblemFault};
 use super::route::{Gives, Parameter, Route, Takes};
 use super::routes::ROUTES;
-use crate::document::{ObjectShape, components};
+use crate::claim::{CLAIM, ClaimReport};
+use crate::document::{ObjectShape, components, union_components};
 use crate::process::shape::{DESCRIPTION, STATE_QUESTION};
 use crate::report::{Report, StateReport};
 
@@ -23,6 +25,10 @@ use crate::report::{Report, StateReport};
 #[openapi(components(schemas(
     Report,
     StateReport,
+    ClaimReport,
+    ClaimKindList,
+    ClaimKindEntry,
+    ClaimParameter,
     Problem,
     ProblemFault,
     PublishedLimits,
@@ -50,6 +56,7 @@ struct Derived;
 const TAGS: &[(&str, &str)] = &[
     ("checks", "One description of a process in, one report out."),
     ("states", "One state of a fluid."),
+    ("claims", "A figure of a brochure against its limit."),
     ("catalogues", "What the service knows and grants."),
     ("operation", "Health and documentation."),
 ];
@@ -78,6 +85,7 @@ const SENT: &[&ObjectShape] = &[&DESCRIPTION, &STATE_QUESTION];
 pub fn document() -> Value {
     let derived = serde_json::to_value(Derived::openapi()).unwrap_or_default();
     let mut schemas = components(SENT);
+    schemas.extend(union_components(&CLAIM));
     schemas.insert("BatchAnswer".into(), batch_answer());
     schemas.insert(
         "OpenApiDocument".into(),
@@ -86,6 +94,7 @@ pub fn document() -> Value {
     if let Some(Value::Object(found)) = derived.pointer("/components/schemas").cloned() {
         schemas.extend(found);
     }
+    share_map_values(&mut schemas);
     let mut paths = Map::new();
     for route in ROUTES.iter().filter(|route| route.tag.is_some()) {
         let entry = paths.entry(route.path).or_insert_with(|| json!({}));
@@ -119,6 +128,22 @@ pub fn document_text() -> String {
     let mut text = serde_json::to_string_pretty(&document()).unwrap_or_default();
     text.push('\n');
     text
+}
+
+/// A derived map (`Named_X`) holds a copy of the schema of its values; it becomes a reference to `X`,
+/// so that generated clients know one type instead of many alike.
+fn share_map_values(schemas: &mut Map<String, Value>) {
+    let mut shared = Vec::new();
+    for (name, schema) in schemas.iter_mut() {
+        if let (Some(value), Some(held)) =
+            (name.strip_prefix("Named_"), schema.get_mut("additionalProperties"))
+        {
+            shared.push((value.to_owned(), std::mem::replace(held, schema_ref(value))));
+        }
+    }
+    for (name, schema) in shared {
+        schemas.entry(name).or_insert(schema);
+    }
 }
 
 const ABOUT: &str = "Takes a description of a process (components, and the flows of matter, heat and work between \
@@ -176,7 +201,7 @@ fn operation(route: &Route) -> Value {
     let mut responses = Map::new();
     let mut headers = Map::new();
     headers.insert(REQUEST_ID.to_string(), header_ref("RequestId"));
-    if route.gives.iter().any(|g| g.schema == Some("Report")) {
+    if route.gives.iter().any(|g| matches!(g.schema, Some("Report" | "ClaimReport"))) {
         headers.insert("verdict".into(), header_ref("Verdict"));
     }
     let content: Map<String, Value> = route.gives.iter().map(|g| (g.media.into(), given(g))).collect();
@@ -187,7 +212,8 @@ fn operation(route: &Route) -> Value {
             responses.insert(status.to_string(), json!({"$ref": format!("#/components/responses/{name}")}));
         }
     }
-    let parameters: Vec<Value> = route.parameters.iter().map(parameter).collect();
+    let mut parameters: Vec<Value> = route.parameters.iter().map(parameter).collect();
+    parameters.extend(route.further.map(further));
     let mut operation = json!({
         "tags": [route.tag],
         "summary": route.summary,
@@ -221,6 +247,19 @@ fn parameter(parameter: &Parameter) -> Value {
         "description": parameter.description,
         "schema": schema,
         "example": parameter.example,
+    })
+}
+
+/// Parameters that a declaration elsewhere names: an open object, spread over the query.
+fn further(about: &str) -> Value {
+    json!({
+        "name": "further",
+        "in": "query",
+        "required": false,
+        "description": about,
+        "style": "form",
+        "explode": true,
+        "schema": {"type": "object", "additionalProperties": {"type": "string"}},
     })
 }
 

@@ -25,6 +25,7 @@ impl Query {
             let known = || route.parameters.iter().filter(|p| !p.in_path).map(|p| p.name);
             match route.parameters.iter().find(|p| !p.in_path && p.name == name) {
                 Some(parameter) => parameter.check(&value)?,
+                None if route.further.is_some() => {}
                 None => {
                     let hint = match nearest(&name, known()).first() {
                         Some(close) => format!("did you mean {close:?}?"),
@@ -51,6 +52,11 @@ impl Query {
 
     fn get(&self, name: &str) -> Option<&str> {
         self.0.iter().find(|(n, _)| n == name).map(|(_, v)| v.as_str())
+    }
+
+    /// Names and values but for those of the call itself.
+    pub fn further(&self, skip: &[&str]) -> Vec<(String, String)> {
+        self.0.iter().filter(|(n, _)| !skip.contains(&n.as_str())).cloned().collect()
     }
 
     /// The units that `?units=` asks for.

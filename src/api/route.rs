@@ -29,6 +29,8 @@ pub const NDJSON: &str = "application/x-ndjson";
 pub const HTML: &str = "text/html";
 /// Plain text.
 pub const TEXT: &str = "text/plain";
+/// Media type of a table.
+pub const CSV: &str = "text/csv";
 
 /// What a handler gives.
 pub type Outcome = Result<Response<Body>, Problem>;
@@ -126,6 +128,9 @@ pub struct Route {
     pub description: &'static str,
     /// Parameters in path and query.
     pub parameters: &'static [Parameter],
+    /// Further parameters that follow from a declaration elsewhere, read as text: a sentence on them
+    /// where there are such.
+    pub further: Option<&'static str>,
     /// The body it takes.
     pub takes: Option<Takes>,
     /// The media types it gives, the preferred first.
@@ -147,6 +152,7 @@ pub const BASE: Route = Route {
     summary: "",
     description: "",
     parameters: &[],
+    further: None,
     takes: None,
     gives: &[],
     answer: "",
@@ -232,6 +238,7 @@ impl Route {
             let value = match media {
                 HTML => "text/html; charset=utf-8",
                 TEXT => "text/plain; charset=utf-8",
+                CSV => "text/csv; charset=utf-8; header=present",
                 other => other,
             };
             headers.insert(CONTENT_TYPE, HeaderValue::from_static(value));

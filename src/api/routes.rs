@@ -9,7 +9,7 @@ use axum::routing::MethodRouter;
 use super::problem::Problem;
 use super::route::Route;
 use super::service::Service;
-use super::{batch, catalogue, check, examples, operation, pages, state};
+use super::{batch, catalogue, check, claim, examples, operation, pages, state};
 use crate::diagnostic::Code;
 
 /// Every route.
@@ -18,6 +18,9 @@ pub const ROUTES: &[Route] = &[
     batch::BATCH,
     state::GET_STATE,
     state::POST_STATE,
+    claim::LIST,
+    claim::POST_CLAIM,
+    claim::GET_CLAIM,
     catalogue::FLUIDS,
     catalogue::RULES,
     catalogue::UNITS,

@@ -9,7 +9,7 @@ use super::check::{DEADLINE, UNITS};
 use super::route::{BASE, Call, Gives, JSON, Method, Outcome, Parameter, Route, Takes, optional};
 
 /// Parameters of the call itself, which are no members of the question.
-const OF_THE_CALL: &[&str] = &["units", "deadline"];
+pub(super) const OF_THE_CALL: &[&str] = &["units", "deadline"];
 
 const STATE: &[Gives] = &[Gives { media: JSON, schema: Some("StateReport") }];
 
@@ -43,6 +43,7 @@ pub const GET_STATE: Route = Route {
         optional("humidity_ratio", "Mass of water vapour to mass of dry air.", "0.01"),
         optional("wet_bulb", "Wet-bulb temperature of humid air.", "18 degC"),
         optional("dew_point", "Dew point of humid air.", "12 degC"),
+        optional("salinity", "Mass fraction of the salt in a solution, 0 to 1.", "0.035"),
         optional("environment.temperature", "Temperature of the dead state.", "10 degC"),
         optional("environment.pressure", "Pressure of the dead state.", "1.013 bar"),
         optional("environment.relative_humidity", "Relative humidity of the dead state.", "0.6"),

@@ -2,7 +2,7 @@
 
 use super::region::{self, Region};
 use crate::fluid::{Element, Pair, Property, Substance};
-use crate::model::{Blocked, Dual, Model, Rows, View, Workspace, fluids_of};
+use crate::model::{Blocked, Dual, Model, Rows, View, Workspace, fluids_of, sample_composition};
 use crate::process::kinds::Kind;
 use crate::process::{
     AmountForm, Carried, ComponentId, FlowId, PressureLoss, StateForm, StateId, Var, VarId,
@@ -86,8 +86,8 @@ impl Equations {
             }
         }
         for (k, component) in process.components.iter().enumerate() {
-            for i in 0..component.sides.len() {
-                if !component.sides[i].inlets.is_empty() || !component.sides[i].outlets.is_empty() {
+            for (i, side) in component.sides.iter().enumerate() {
+                if !(side.inlets.is_empty() && side.outlets.is_empty() && side.contents.is_empty()) {
                     out.push(model, Row::Mass(k, i));
                 }
             }
@@ -100,8 +100,11 @@ impl Equations {
                 }
                 for &element in Element::ALL {
                     let present = fluids.iter().any(|&f| {
-                        let engine = &process.fluids[f].engine;
-                        engine.elements(0.1).is_some_and(|(e, _)| e[element as usize] != 0.0)
+                        let fluid = &process.fluids[f];
+                        fluid
+                            .engine
+                            .elements(sample_composition(fluid))
+                            .is_some_and(|(e, _)| e[element as usize] != 0.0)
                     });
                     if present {
                         out.push(model, Row::Element(k, i, element));
@@ -172,6 +175,13 @@ impl Rows for Equations {
         }
     }
 
+    fn weight(&self, row: usize) -> Option<f64> {
+        match self.rows[row] {
+            Row::Element(_, _, element) => Some(element.molar_mass()),
+            _ => None,
+        }
+    }
+
     fn unknowns(&self, row: usize) -> &[VarId] {
         &self.unknowns[row]
     }
@@ -224,13 +234,8 @@ impl Rows for Equations {
                 let surplus = &process.states[s].surplus[i];
                 Ok(view.property(s, surplus.property)?.minus(&view.var(surplus.var)?))
             }
-            Row::Mass(k, i) => {
-                let balance = side_mass(view, k, i)?;
-                Ok(balance.residual(view))
-            }
-            Row::Element(k, i, element) => {
-                Ok(region::element(view, side_flows(view, k, i), element as usize)?.residual(view))
-            }
+            Row::Mass(k, i) => Ok(region::set_mass(view, k, i)?.residual(view)),
+            Row::Element(k, i, element) => Ok(region::element(view, k, i, element as usize)?.residual(view)),
             Row::Energy(k) => Ok(region::energy(view, &self.components[k])?.residual(view)),
         }
     }
@@ -238,31 +243,6 @@ impl Rows for Equations {
 
 fn given(var: Option<VarId>) -> Result<VarId, Blocked> {
     var.ok_or(Blocked::Missing("a given figure"))
-}
-
-/// Flows of a side with their sign.
-pub fn side_flows<'a>(
-    view: View<'a>,
-    k: ComponentId,
-    side: usize,
-) -> impl Iterator<Item = (FlowId, f64)> + 'a {
-    let side = &view.model.process.components[k].sides[side];
-    side.inlets.iter().map(|&f| (f, 1.0)).chain(side.outlets.iter().map(|&f| (f, -1.0)))
-}
-
-/// Mass of one side; contents of a vessel are counted with its first side.
-///
-/// # Errors
-/// `Blocked`.
-pub fn side_mass(view: View<'_>, k: ComponentId, side: usize) -> Result<region::Balance, Blocked> {
-    let flows: Vec<_> = side_flows(view, k, side).collect();
-    let with_contents = side == 0;
-    let region = Region {
-        inlets: flows.iter().filter(|f| f.1 > 0.0).map(|f| (f.0, k)).collect(),
-        outlets: flows.iter().filter(|f| f.1 < 0.0).map(|f| (f.0, k)).collect(),
-        members: if with_contents { vec![k] } else { Vec::new() },
-    };
-    region::mass(view, &region)
 }
 
 /// Work in, work out, heat in and heat out of a component.
@@ -363,13 +343,21 @@ fn unknowns_of(model: &Model, row: Row) -> Vec<VarId> {
             }
         }
     };
-    let contents = |k: ComponentId, var: &mut dyn FnMut(VarId), whole: bool| {
-        for c in process.components[k].holdup.iter().flat_map(|h| h.initial.iter().chain(&h.r#final)) {
+    // Contents of one set, or of all: their amounts, and what these and the composition depend on.
+    let contents = |k: ComponentId, set: Option<usize>, composition: bool, var: &mut dyn FnMut(VarId)| {
+        let component = &process.components[k];
+        for c in component.holdup.iter().flat_map(|h| h.initial.iter().chain(&h.r#final)) {
+            if set.is_some_and(|i| !component.sides[i].contents.contains(&c.state)) {
+                continue;
+            }
             var(c.amount);
-            if whole || c.form != AmountForm::Mass {
-                for v in process.states[c.state].vars() {
+            let spec = &process.states[c.state];
+            if set.is_none() || c.form != AmountForm::Mass {
+                for v in spec.vars() {
                     var(v);
                 }
+            } else if composition && let Some((_, v)) = spec.c {
+                var(v);
             }
         }
     };
@@ -422,9 +410,7 @@ fn unknowns_of(model: &Model, row: Row) -> Vec<VarId> {
             for &f in side.inlets.iter().chain(&side.outlets) {
                 mass(f, &mut var);
             }
-            if i == 0 {
-                contents(k, &mut var, false);
-            }
+            contents(k, Some(i), false, &mut var);
         }
         Row::Element(k, i, _) => {
             let side = &process.components[k].sides[i];
@@ -436,6 +422,7 @@ fn unknowns_of(model: &Model, row: Row) -> Vec<VarId> {
                     var(v);
                 }
             }
+            contents(k, Some(i), true, &mut var);
         }
         Row::Energy(k) => {
             let component = &process.components[k];
@@ -454,7 +441,7 @@ fn unknowns_of(model: &Model, row: Row) -> Vec<VarId> {
                     Carried::Work(v, _) | Carried::Heat(v, _) | Carried::Radiation(v, _) => var(*v),
                 }
             }
-            contents(k, &mut var, true);
+            contents(k, None, true, &mut var);
             if let Some(v) = component.holdup.as_ref().and_then(|h| h.boundary_pressure) {
                 var(v);
             }

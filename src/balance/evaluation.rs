@@ -1,7 +1,9 @@
 //! One evaluation of a process: solved unknowns and the balances that rules and report share.
 
-use super::{Balance, Bracket, Equations, Exergies, Region, region};
+use super::{Balance, Bracket, Equations, Exergies, Profile, Region, region};
 use crate::model::{Blocked, Dual, Plan, Scope, View};
+use crate::process::ComponentId;
+use std::cell::OnceCell;
 use std::rc::Rc;
 
 /// Energy and entropy over one region.
@@ -57,6 +59,8 @@ pub struct Evaluation<'a> {
     pub plant: RegionBalances,
     /// Mismatch and throughput of each exergy balance, once they are derived.
     pub exergy_mismatch: Option<Vec<(Scope, f64, f64)>>,
+    /// Interiors of exchangers, computed when first asked for; empty where there are none.
+    profiles: Vec<OnceCell<Result<Option<Profile>, Blocked>>>,
     /// The exergy view, once it is derived.
     pub exergies: Option<Rc<Exergies>>,
 }
@@ -73,6 +77,22 @@ impl<'a> Evaluation<'a> {
             plant: RegionBalances::of(view, &equations.plant),
             exergy_mismatch: None,
             exergies: None,
+            profiles: if view.model.process.components.iter().any(|c| c.kind.is_exchanger()) {
+                vec![OnceCell::new(); equations.components.len()]
+            } else {
+                Vec::new()
+            },
+        }
+    }
+
+    /// The interior of a component; `None` where it has none.
+    ///
+    /// # Errors
+    /// What blocks it.
+    pub fn profile(&self, k: ComponentId) -> Result<Option<&Profile>, &Blocked> {
+        match self.profiles.get(k) {
+            Some(cell) => cell.get_or_init(|| Profile::of(self.view, k)).as_ref().map(Option::as_ref),
+            None => Ok(None),
         }
     }
 

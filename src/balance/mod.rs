@@ -9,11 +9,13 @@ pub mod exergy;
 pub mod passage;
 pub mod performance;
 pub mod plant;
+pub mod profile;
 pub mod purpose;
 pub mod region;
 pub mod reservoir;
 
-pub use equations::{Equations, Row, by_pressure, isentropic_enthalpy, side_flows, side_mass, transfers};
+pub use equations::{Equations, Row, by_pressure, isentropic_enthalpy, transfers};
 pub use evaluation::{Evaluation, RegionBalances};
 pub use exergies::Exergies;
+pub use profile::Profile;
 pub use region::{Balance, Bracket, Region};

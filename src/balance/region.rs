@@ -2,7 +2,7 @@
 
 use crate::fluid::Property;
 use crate::model::{Blocked, Dual, View, dual::log_mean};
-use crate::process::{Boundary, Carried, ComponentId, Content, FlowId, Process, VarId};
+use crate::process::{Boundary, Carried, ComponentId, Content, FlowId, Process, StateId, VarId};
 use smallvec::SmallVec;
 
 /// Standard acceleration of free fall, m/s² (ISO 80000-3, conventional value).
@@ -129,6 +129,54 @@ pub fn mass(view: View<'_>, region: &Region) -> Result<Balance, Blocked> {
     Ok(out)
 }
 
+/// Blocked where a member turns a substance without formation data into another one.
+fn grounded(view: View<'_>, region: &Region) -> Result<(), Blocked> {
+    if region.members.iter().any(|&k| view.model.groundless[k]) {
+        return Err(Blocked::Missing(
+            "formation data of a substance that meets others and does not leave again as it came",
+        ));
+    }
+    Ok(())
+}
+
+/// Mass of one set of a component, kg/s or kg: its flows and contents.
+///
+/// # Errors
+/// The first thing that blocks it.
+pub fn set_mass(view: View<'_>, k: ComponentId, side: usize) -> Result<Balance, Blocked> {
+    let mut out = Balance::default();
+    for (_, mass, sign) in set_masses(view, k, side) {
+        out.add(sign, &mass?);
+    }
+    let (i, o) = (out.inflow.value.abs(), out.outflow.value.abs());
+    out.close(i, o);
+    Ok(out)
+}
+
+/// State, mass and sign of everything that enters (+1, contents before a batch included) or
+/// leaves (−1) one set of a component.
+fn set_masses<'a>(
+    view: View<'a>,
+    k: ComponentId,
+    side: usize,
+) -> impl Iterator<Item = (StateId, Result<Dual, Blocked>, f64)> + 'a {
+    let process = &view.model.process;
+    let component = &process.components[k];
+    let side = &component.sides[side];
+    let inward = side.inlets.iter().map(|&f| (f, 1.0));
+    let outward = side.outlets.iter().map(|&f| (f, -1.0));
+    let flows = inward
+        .chain(outward)
+        .filter_map(move |(f, sign)| process.flows[f].material().map(|m| (m.state, view.mass(f), sign)));
+    let before = component.holdup.iter().flat_map(|h| &h.initial).map(|c| (c, 1.0));
+    let after = component.holdup.iter().flat_map(|h| &h.r#final).map(|c| (c, -1.0));
+    let contents = before
+        .chain(after)
+        .filter(move |(c, _)| side.contents.contains(&c.state))
+        .map(move |(c, sign)| (c.state, view.mass_of(c.state, c.amount, c.form), sign));
+    flows.chain(contents)
+}
+
 /// What a flow carries of energy on the datum of the balances, W or J.
 ///
 /// # Errors
@@ -166,6 +214,7 @@ fn specific_energy(
 /// The first thing that blocks it.
 pub fn energy(view: View<'_>, region: &Region) -> Result<Balance, Blocked> {
     let process = &view.model.process;
+    grounded(view, region)?;
     let mut out = Balance::default();
     let (mut inward, mut outward) = (0.0, 0.0);
     let mut tally = |sign: f64, size: f64| if sign > 0.0 { inward += size } else { outward += size };
@@ -301,6 +350,7 @@ pub const RADIATION_ENTROPY: f64 = 4.0 / 3.0;
 /// The first thing that blocks it.
 pub fn entropy(view: View<'_>, region: &Region, bracket: Bracket) -> Result<Balance, Blocked> {
     let process = &view.model.process;
+    grounded(view, region)?;
     let mut out = Balance::default();
     let (mut inward, mut outward) = (0.0, 0.0);
     let mut tally = |sign: f64, size: f64| if sign > 0.0 { inward += size } else { outward += size };
@@ -401,32 +451,25 @@ pub fn has_open_boundary(process: &Process, region: &Region) -> bool {
         .any(|(f, _, _)| matches!(process.flows[f].carried, Carried::Heat(_, Boundary::Unknown)))
 }
 
-/// The material flows of a region that come from or go to different substances, element by
-/// element: moles in and out of one element.
+/// Moles of one element in and out of one set of a component: its flows and contents.
 ///
 /// # Errors
 /// `Blocked`; `Missing` where a fluid's make-up is not known.
-pub fn element(
-    view: View<'_>,
-    flows: impl Iterator<Item = (FlowId, f64)>,
-    index: usize,
-) -> Result<Balance, Blocked> {
+pub fn element(view: View<'_>, k: ComponentId, side: usize, index: usize) -> Result<Balance, Blocked> {
     let process = &view.model.process;
     let mut out = Balance::default();
-    for (f, sign) in flows {
-        let Some(m) = process.flows[f].material() else { continue };
-        let spec = &process.states[m.state];
-        let engine = &process.fluids[spec.fluid].engine;
+    for (state, mass, sign) in set_masses(view, k, side) {
+        let engine = &process.fluids[process.states[state].fluid].engine;
         let missing = Blocked::Missing("the elements that the fluid consists of");
         let share = if engine.elements_vary() {
-            let c = view.composition(m.state)?;
+            let c = view.composition(state)?;
             let (elements, slopes) = engine.elements(c.value).ok_or(missing)?;
             c.map(elements[index], slopes[index])
         } else {
             let (elements, _) = engine.elements(0.0).ok_or(missing)?;
             Dual::constant(elements[index])
         };
-        out.add(sign, &view.mass(f)?.times(&share));
+        out.add(sign, &mass?.times(&share));
     }
     let (i, o) = (out.inflow.value.abs(), out.outflow.value.abs());
     out.close(i, o);

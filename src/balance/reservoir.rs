@@ -11,18 +11,20 @@ use crate::process::{Boundary, Carried, Component, ComponentId, Side};
 
 /// One thing that heat is exchanged with.
 #[derive(Clone, Debug)]
-struct Exchange {
+pub struct Exchange {
     /// The magnitude of the heat, W or J, where it is known.
-    heat: Option<Dual>,
+    pub heat: Option<Dual>,
     /// Entropic mean temperature, K.
-    temperature: Dual,
+    pub temperature: Dual,
 }
 
 /// What a device exchanges heat with.
 #[derive(Clone, Debug, Default)]
 pub struct Reservoirs {
-    sources: Vec<Exchange>,
-    sinks: Vec<Exchange>,
+    /// Where it takes heat in.
+    pub sources: Vec<Exchange>,
+    /// Where it gives heat off.
+    pub sinks: Vec<Exchange>,
 }
 
 impl Reservoirs {

@@ -21,6 +21,6 @@ pub use check::{check, check_shape};
 pub use faults::{FAULT_LIMIT, Faults};
 pub use node::{JsonType, Node};
 pub use quantity::Reading;
-pub use schema::{REFERENCE_PREFIX, clashing_names, components, json_schema};
+pub use schema::{REFERENCE_PREFIX, clashing_names, components, json_schema, union_components};
 pub use shape::{Field, Key, ObjectShape, Shape, Union, Variant, is_name};
 pub use tree::{Limits, Tree};

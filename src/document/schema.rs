@@ -20,21 +20,27 @@ pub fn json_schema(shape: &'static ObjectShape) -> Value {
 
 /// The components that some objects need, themselves included, by name.
 pub fn components(roots: &[&'static ObjectShape]) -> Map<String, Value> {
-    gather(roots).0.into_iter().collect()
+    gather(objects(roots)).0.into_iter().collect()
 }
 
 /// Names under which two different components were declared; there must be none.
 pub fn clashing_names(roots: &[&'static ObjectShape]) -> Vec<String> {
-    gather(roots).1.into_iter().collect()
+    gather(objects(roots)).1.into_iter().collect()
 }
 
-fn gather(roots: &[&'static ObjectShape]) -> (BTreeMap<String, Value>, BTreeSet<String>) {
-    let mut drawer = Drawer { waiting: Vec::new() };
+/// The components that a union needs, itself included, by name.
+pub fn union_components(union: &'static Union) -> Map<String, Value> {
+    gather(vec![Component::Union(union)]).0.into_iter().collect()
+}
+
+fn objects(roots: &[&'static ObjectShape]) -> Vec<Component> {
+    roots.iter().map(|root| Component::Object(root)).collect()
+}
+
+fn gather(waiting: Vec<Component>) -> (BTreeMap<String, Value>, BTreeSet<String>) {
+    let mut drawer = Drawer { waiting };
     let mut done = BTreeMap::new();
     let mut clashes = BTreeSet::new();
-    for root in roots {
-        drawer.waiting.push(Component::Object(root));
-    }
     while let Some(component) = drawer.waiting.pop() {
         let name = component.name();
         let known = done.contains_key(&name);

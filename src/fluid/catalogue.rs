@@ -1,10 +1,11 @@
 //! Fluids by name.
 
 use super::humid_air::HumidAir;
-use super::ideal_gas::IdealGas;
+use super::ideal_gas::{IdealGas, SpeciesPhase, all_species};
+use super::incompressible::{self, Incompressible};
 use super::solution::Solution;
 use super::steam::Steam;
-use super::{Engine, incompressible};
+use super::{Engine, real_fluid};
 use crate::diagnostic::nearest;
 use std::sync::{Arc, OnceLock};
 
@@ -30,7 +31,7 @@ pub enum Substance {
 }
 
 /// Names that are taken before any listed fluid.
-const BUILT_IN: [&str; 6] = ["water", "steam", "air", "humid air", "seawater", "sodium chloride"];
+const BUILT_IN: [&str; 7] = ["water", "steam", "air", "humid air", "seawater", "sodium chloride", "ash"];
 
 fn dry_air() -> Option<Arc<IdealGas>> {
     static AIR: OnceLock<Option<Arc<IdealGas>>> = OnceLock::new();
@@ -58,13 +59,120 @@ pub fn by_name(name: &str) -> Result<(Substance, Arc<dyn Engine>), Vec<String>> 
         }
         _ => {}
     }
-    if let Some(medium) = incompressible::Incompressible::listed(name) {
+    let near = match real_fluid::by_name(name) {
+        Ok(fluid) => return Ok((Substance::Pure, fluid.clone())),
+        Err(near) => near,
+    };
+    if name.eq_ignore_ascii_case("ash")
+        && let Ok(ash) = Incompressible::ash()
+    {
+        return Ok((Substance::Inert, Arc::new(ash)));
+    }
+    if let Some(medium) = Incompressible::listed(name).or_else(|| Incompressible::species(name)) {
         return Ok((Substance::Inert, Arc::new(medium)));
     }
-    Err(nearest(name, names()).into_iter().map(str::to_owned).collect())
+    let mut known: Vec<&str> = near;
+    known.extend(nearest(name, names()));
+    known.dedup();
+    Err(known.into_iter().map(str::to_owned).collect())
 }
 
 /// Every name that [`by_name`] knows by heart, for the catalogue.
 pub fn names() -> impl Iterator<Item = &'static str> {
     BUILT_IN.into_iter().chain(incompressible::LISTED.iter().map(|medium| medium.name))
+}
+
+/// A fluid that can be named, for the catalogue.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Listed {
+    /// The name as a description gives it.
+    pub name: String,
+    /// Other spellings that are taken.
+    pub aliases: Vec<String>,
+    /// The kind of fluid object that it stands for.
+    pub kind: &'static str,
+    /// Formulation, source and range.
+    pub provenance: super::Provenance,
+}
+
+/// Every fluid that [`by_name`] knows.
+pub fn listing() -> Vec<Listed> {
+    let mut out = Vec::new();
+    let mut list = |name: &str, aliases: Vec<String>, kind: &'static str| {
+        if let Ok((_, engine)) = by_name(name) {
+            out.push(Listed { name: name.to_owned(), aliases, kind, provenance: engine.provenance() });
+        }
+    };
+    let spellings = |words: &[&str]| words.iter().map(|w| (*w).to_owned()).collect::<Vec<_>>();
+    list("water", spellings(&["steam"]), "water");
+    list("air", Vec::new(), "ideal_gas");
+    list("humid air", spellings(&["humid_air", "moist air"]), "humid_air");
+    list("seawater", Vec::new(), "solution");
+    list("sodium chloride", spellings(&["brine"]), "solution");
+    for fluid in real_fluid::catalogue() {
+        // A name that is taken by a formulation above is left to it.
+        if !BUILT_IN.contains(&fluid.name()) {
+            let others = fluid.names().iter().filter(|n| n.as_str() != fluid.name()).cloned().collect();
+            list(fluid.name(), others, "pure");
+        }
+    }
+    list("ash", Vec::new(), "incompressible");
+    for medium in incompressible::LISTED.iter().filter(|m| !BUILT_IN.contains(&m.name)) {
+        list(medium.name, Vec::new(), "incompressible");
+    }
+    for species in all_species().iter().filter(|s| s.phase() != SpeciesPhase::Gas) {
+        list(species.name(), species.aliases().to_vec(), "incompressible");
+    }
+    out
+}
+
+/// A chemical species that mixtures can be made of, for the catalogue.
+#[derive(Clone, Debug, PartialEq)]
+pub struct ListedSpecies {
+    /// The name as a description gives it.
+    pub name: &'static str,
+    /// Other spellings that are taken.
+    pub aliases: &'static [String],
+    /// Gas, liquid or solid.
+    pub phase: SpeciesPhase,
+    /// kg/mol
+    pub molar_mass: f64,
+    /// K
+    pub temperature_range: (f64, f64),
+    /// Where its coefficients come from.
+    pub source: &'static str,
+}
+
+/// Every species of the table.
+pub fn species() -> impl Iterator<Item = ListedSpecies> {
+    all_species().iter().map(|s| ListedSpecies {
+        name: s.name(),
+        aliases: s.aliases(),
+        phase: s.phase(),
+        molar_mass: s.molar_mass(),
+        temperature_range: s.temperature_range(),
+        source: s.source(),
+    })
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn every_listed_name_gives_the_fluid_that_it_is_listed_with() {
+        let all = listing();
+        assert!(all.len() > 60, "{}", all.len());
+        let mut seen = std::collections::BTreeSet::new();
+        for fluid in &all {
+            assert!(seen.insert(&fluid.name), "{} twice", fluid.name);
+            for name in fluid.aliases.iter().chain([&fluid.name]) {
+                let (substance, engine) = by_name(name).unwrap_or_else(|near| panic!("{name}: {near:?}"));
+                assert_eq!(engine.provenance(), fluid.provenance, "{name}");
+                let pure = matches!(substance, Substance::Pure);
+                assert_eq!(pure, fluid.kind == "pure", "{name}");
+            }
+        }
+        assert!(species().any(|s| s.name == "CO2") && species().count() >= 26);
+    }
 }

@@ -13,9 +13,13 @@ const LISTED_UNCERTAINTY: f64 = 0.02;
 /// Relative standard uncertainty (k = 1) of a species of the table; common practice.
 const SPECIES_UNCERTAINTY: f64 = 5e-4;
 
+/// Relative standard uncertainty (k = 1) of ash; common practice.
+const ASH_UNCERTAINTY: f64 = 0.1;
+
 /// An incompressible medium.
 ///
-/// Datum: h = 0 and s = 0 at 298.15 K and 1 bar; a species of the table is on the absolute datum.
+/// Datum: h = 0 and s = 0 at 298.15 K and 1 bar; a species of the table is on the absolute datum, on
+/// which ash, whatever it consists of, starts from zero.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Incompressible {
     name: String,
@@ -27,10 +31,10 @@ pub struct Incompressible {
     makeup: Option<Makeup>,
 }
 
-/// What is known of a medium that is a species with formation data.
+/// What is known of a medium on the absolute datum.
 #[derive(Clone, Debug, PartialEq)]
 struct Makeup {
-    molar_mass: f64,
+    molar_mass: Option<f64>,
     elements: Elements,
 }
 
@@ -146,6 +150,24 @@ impl Incompressible {
         Some(Incompressible { source: row.source.to_owned(), uncertainty: LISTED_UNCERTAINTY, ..medium })
     }
 
+    /// Ash as the fuels by ultimate analysis hold it: inert, with no elements that are counted and
+    /// no enthalpy and entropy at 298.15 K, so that what enters in a fuel can leave as ash.
+    /// Specific heat and density: common practice.
+    ///
+    /// # Errors
+    /// None in practice; the signature is that of [`Incompressible::new`].
+    pub fn ash() -> Result<Incompressible, PropertyError> {
+        let terms = [Term { coefficient: 840.0, exponent: 0.0 }];
+        let medium = Incompressible::new("ash", Phase::Solid, 2500.0, &terms, Some((200.0, 2000.0)))?;
+        let makeup = Makeup { molar_mass: None, elements: [0.0; Element::COUNT] };
+        Ok(Incompressible {
+            source: PRACTICE.to_owned(),
+            uncertainty: ASH_UNCERTAINTY,
+            makeup: Some(makeup),
+            ..medium
+        })
+    }
+
     /// A pure condensed species of the ideal-gas table (`C(gr)`, `S(a)`, `H2O(L)`) on the absolute
     /// datum, for instance unburnt carbon; `None` where it is not one of these.
     pub fn species(name: &str) -> Option<Incompressible> {
@@ -165,7 +187,10 @@ impl Incompressible {
             volume: 1.0 / density,
             curve: Curve::weighted(&[(species.curve(), 1.0 / molar_mass)])?,
             uncertainty: SPECIES_UNCERTAINTY,
-            makeup: Some(Makeup { molar_mass, elements: species.elements()?.map(|n| n / molar_mass) }),
+            makeup: Some(Makeup {
+                molar_mass: Some(molar_mass),
+                elements: species.elements()?.map(|n| n / molar_mass),
+            }),
         })
     }
 
@@ -226,7 +251,7 @@ impl Engine for Incompressible {
     }
 
     fn molar_mass(&self, _c: f64) -> Option<f64> {
-        self.makeup.as_ref().map(|m| m.molar_mass)
+        self.makeup.as_ref().and_then(|m| m.molar_mass)
     }
 
     fn elements(&self, _c: f64) -> Option<(Elements, Elements)> {

@@ -55,6 +55,9 @@ pub struct Model {
     pub scales: Vec<FluidScale>,
     /// Sources of formulation uncertainty by component and fluid.
     pub formulation: BTreeMap<(usize, FluidId), SourceId>,
+    /// Whether a component turns a substance without formation data into another one, so that its
+    /// energy and entropy have no common datum.
+    pub groundless: Vec<bool>,
     /// Variables to be solved for.
     pub unknowns: Vec<VarId>,
     /// The states that depend on each variable.
@@ -70,23 +73,19 @@ impl Model {
         let scales = scales(&process);
         let mut formulation = BTreeMap::new();
         for (k, component) in process.components.iter().enumerate() {
-            for flow in component.inlets.iter().chain(&component.outlets) {
-                if let Some(m) = process.flows[*flow].material() {
-                    let fluid = process.states[m.state].fluid;
-                    formulation.entry((k, fluid)).or_insert_with(|| {
-                        process.sources.push(crate::process::Source {
-                            pointer: component.pointer.clone(),
-                            kind: crate::process::SourceKind::Formulation,
-                            // The relative figure is part of the gradient.
-                            u: 1.0,
-                            half_digit: 0.0,
-                        });
-                        inputs.values.push(0.0);
-                        process.sources.len() - 1
-                    });
-                }
+            for fluid in fluids_in(&process, component) {
+                process.sources.push(crate::process::Source {
+                    pointer: component.pointer.clone(),
+                    kind: crate::process::SourceKind::Formulation,
+                    // The relative figure is part of the gradient.
+                    u: 1.0,
+                    half_digit: 0.0,
+                });
+                inputs.values.push(0.0);
+                formulation.insert((k, fluid), process.sources.len() - 1);
             }
         }
+        let groundless = process.components.iter().map(|c| is_groundless(&process, &scales, c)).collect();
         let unknowns = process
             .vars
             .iter()
@@ -102,7 +101,7 @@ impl Model {
                 }
             }
         }
-        (Model { process, scales, formulation, unknowns, dependents }, inputs)
+        (Model { process, scales, formulation, groundless, unknowns, dependents }, inputs)
     }
 
     /// The gradient slot of a source.
@@ -125,15 +124,15 @@ impl Affine {
     }
 }
 
-/// Distinct fluids of a side.
+/// Distinct fluids of a side, its contents included.
 pub fn fluids_of<'a>(process: &'a Process, side: &'a Side) -> Vec<FluidId> {
     let mut out = Vec::new();
-    for f in side.inlets.iter().chain(&side.outlets) {
-        if let Some(m) = process.flows[*f].material() {
-            let fluid = process.states[m.state].fluid;
-            if !out.contains(&fluid) {
-                out.push(fluid);
-            }
+    let flows = side.inlets.iter().chain(&side.outlets);
+    let states = flows.filter_map(|f| process.flows[*f].material().map(|m| m.state));
+    for state in states.chain(side.contents.iter().copied()) {
+        let fluid = process.states[state].fluid;
+        if !out.contains(&fluid) {
+            out.push(fluid);
         }
     }
     out
@@ -148,6 +147,37 @@ pub fn fluids_in(process: &Process, component: &Component) -> Vec<FluidId> {
     out.sort_unstable();
     out.dedup();
     out
+}
+
+/// Whether a substance without formation data enters a pool and does not leave it, or the other
+/// way round. Figures that are taken at their word are taken to be on the absolute datum.
+fn is_groundless(process: &Process, scales: &[FluidScale], component: &Component) -> bool {
+    component.sides.iter().filter(|s| s.pool).any(|side| {
+        let fluid_at = |f: &usize| process.flows[*f].material().map(|m| process.states[m.state].fluid);
+        let holdup = component.holdup.as_ref();
+        let held = |contents: Option<&Vec<crate::process::Content>>, fluid: FluidId| {
+            contents.is_some_and(|all| {
+                all.iter().any(|c| side.contents.contains(&c.state) && process.states[c.state].fluid == fluid)
+            })
+        };
+        fluids_of(process, side).into_iter().any(|fluid| {
+            let before = side.inlets.iter().any(|f| fluid_at(f) == Some(fluid))
+                || held(holdup.map(|h| &h.initial), fluid);
+            let after = side.outlets.iter().any(|f| fluid_at(f) == Some(fluid))
+                || held(holdup.map(|h| &h.r#final), fluid);
+            scales[fluid].scale == Scale::Own
+                && !matches!(process.fluids[fluid].substance, crate::fluid::Substance::Stated)
+                && before != after
+        })
+    })
+}
+
+/// A composition at which a fluid of variable composition surely exists.
+pub fn sample_composition(fluid: &crate::process::Fluid) -> f64 {
+    match &fluid.substance {
+        crate::fluid::Substance::CombustionGas(gas) => gas.air_ratio(),
+        _ => 0.01,
+    }
 }
 
 fn scales(process: &Process) -> Vec<FluidScale> {
@@ -171,12 +201,16 @@ fn scales(process: &Process) -> Vec<FluidScale> {
             let reference = if matches!(fluid.substance, crate::fluid::Substance::Stated) {
                 (0.0, 0.0)
             } else {
+                let c = match fluid.substance {
+                    crate::fluid::Substance::CombustionGas(_) => sample_composition(fluid),
+                    _ => 0.0,
+                };
                 fluid
                     .engine
-                    .state(Pair::PressureTemperature, REFERENCE_PRESSURE, REFERENCE_TEMPERATURE, 0.0)
+                    .state(Pair::PressureTemperature, REFERENCE_PRESSURE, REFERENCE_TEMPERATURE, c)
                     .map_or((0.0, 0.0), |s| (s.enthalpy, s.entropy))
             };
-            match fluid.engine.datum().or_else(|| Some(fluid.engine.datum_at(0.01)?.0)) {
+            match fluid.engine.datum().or_else(|| Some(fluid.engine.datum_at(sample_composition(fluid))?.0)) {
                 Some(datum) if absolute => {
                     FluidScale { scale: Scale::Absolute, offset: datum, reference, variable }
                 }

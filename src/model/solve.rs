@@ -19,6 +19,12 @@ pub trait Rows {
     }
     /// Priority class of a row; lower classes are spent first.
     fn class(&self, row: usize) -> u8;
+    /// What a unit of the row weighs against others of its class, for rows that are alike but for
+    /// their importance (an element: its molar mass); rows without one weigh alike.
+    fn weight(&self, row: usize) -> Option<f64> {
+        let _ = row;
+        None
+    }
     /// The unknown variables that a row depends on.
     fn unknowns(&self, row: usize) -> &[VarId];
     /// The residual and its gradient.
@@ -130,15 +136,25 @@ fn settle(
     }
 }
 
-fn scale(nature: Nature) -> f64 {
-    match nature {
+/// The size that an unknown usually has.
+fn scale(model: &Model, var: VarId) -> f64 {
+    match nature(model, var) {
         Nature::Mass => 1.0,
         Nature::Energy => 1e5,
         Nature::Enthalpy => 1e5,
         Nature::Pressure => 1e5,
         Nature::Temperature => 300.0,
-        Nature::Composition => 0.01,
+        Nature::Composition => composition_guess(model, var),
     }
+}
+
+/// A composition that the fluid of a variable surely takes.
+fn composition_guess(model: &Model, var: VarId) -> f64 {
+    let state = model.dependents[var].first();
+    state.map_or(0.01, |&s| {
+        let process = &model.process;
+        super::sample_composition(&process.fluids[process.states[s].fluid])
+    })
 }
 
 fn nature(model: &Model, var: VarId) -> Nature {
@@ -148,13 +164,34 @@ fn nature(model: &Model, var: VarId) -> Nature {
     }
 }
 
+/// For a property of what a vessel holds in the end: its value in the beginning.
+fn earlier(model: &Model, workspace: &Workspace, var: VarId) -> Option<f64> {
+    let property = match nature(model, var) {
+        Nature::Enthalpy => Property::Enthalpy,
+        Nature::Pressure => Property::Pressure,
+        Nature::Temperature => Property::Temperature,
+        Nature::Mass | Nature::Energy | Nature::Composition => return None,
+    };
+    let process = &model.process;
+    let view = View { model, workspace };
+    process.components.iter().filter_map(|c| c.holdup.as_ref()).find_map(|h| {
+        let last = h.r#final.iter().find(|c| model.dependents[var].contains(&c.state))?;
+        let fluid = process.states[last.state].fluid;
+        let first = h.initial.iter().find(|c| process.states[c.state].fluid == fluid)?;
+        view.state(first.state).ok().map(|s| s.state.get(property))
+    })
+}
+
 /// A starting value: near a like state of the same component's neighbourhood where there is one.
 fn guess(model: &Model, workspace: &Workspace, var: VarId) -> f64 {
+    if let Some(value) = earlier(model, workspace, var) {
+        return value;
+    }
     match nature(model, var) {
         Nature::Mass => 1.0,
         Nature::Energy => 1e5,
         Nature::Temperature => 350.0,
-        Nature::Composition => 0.01,
+        Nature::Composition => composition_guess(model, var),
         Nature::Pressure => 2e5,
         Nature::Enthalpy => {
             for &s in &model.dependents[var] {
@@ -250,7 +287,7 @@ fn newton(
             .iter()
             .zip(&x)
             .zip(unknowns)
-            .all(|((d, x), &v)| d.abs() <= 1e-12 * (x.abs() + scale(nature(model, v))));
+            .all(|((d, x), &v)| d.abs() <= 1e-12 * (x.abs() + scale(model, v)));
         let mut damping = 1.0;
         // Keep pressures and temperatures positive, and steps into refused states short.
         for ((d, x), &v) in step.iter().zip(&x).zip(unknowns) {
@@ -369,7 +406,7 @@ pub fn invert(matrix: &[f64], n: usize) -> Option<Vec<f64>> {
     }
     let scales: Vec<f64> =
         (0..n).map(|i| a[i * n..(i + 1) * n].iter().fold(0.0, |m: f64, v| m.max(v.abs()))).collect();
-    if scales.iter().any(|s| !(*s > 0.0)) {
+    if scales.iter().any(|s| s.is_nan() || *s <= 0.0) {
         return None;
     }
     let mut order: Vec<usize> = (0..n).collect();
@@ -377,7 +414,7 @@ pub fn invert(matrix: &[f64], n: usize) -> Option<Vec<f64>> {
         let (best, size) = (col..n)
             .map(|i| (i, a[i * n + col].abs() / scales[order[i]]))
             .fold((col, 0.0), |m, c| if c.1 > m.1 { c } else { m });
-        if !(size > 1e-13) {
+        if size.is_nan() || size <= 1e-13 {
             return None;
         }
         if best != col {
@@ -452,9 +489,10 @@ fn solve_block(
                 matrix.push(j);
             }
         }
-        let natures: Vec<f64> = unknowns.iter().map(|&v| scale(nature(model, v))).collect();
-        let classes: Vec<u8> = usable.iter().map(|&r| rows.class(r)).collect();
-        let (picked, determined) = reduce(&mut matrix, &classes, &natures);
+        let natures: Vec<f64> = unknowns.iter().map(|&v| scale(model, v)).collect();
+        let ranks: Vec<Rank> =
+            usable.iter().map(|&r| Rank { class: rows.class(r), weight: rows.weight(r) }).collect();
+        let (picked, determined) = reduce(&mut matrix, &ranks, &natures);
         let chosen_unknowns: Vec<VarId> = determined.iter().map(|&(_, j)| unknowns[j]).collect();
         let chosen_rows: Vec<usize> = determined.iter().map(|&(i, _)| usable[picked[i]]).collect();
         for &v in &unknowns {
@@ -479,14 +517,28 @@ fn solve_block(
     None
 }
 
+/// How a row stands to the others in the choice of pivots.
+#[derive(Clone, Copy)]
+struct Rank {
+    class: u8,
+    weight: Option<f64>,
+}
+
+/// What must be left of a row after elimination, as share of its largest entry.
+const INDEPENDENT: f64 = 1e-9;
+/// The same for weighted rows: what is left of an element balance of which less remains is the
+/// rounding of a stated composition, not an equation.
+const INDEPENDENT_WEIGHTED: f64 = 1e-3;
+
 /// Gauss-Jordan elimination with rows accepted in order of class (within a class, the largest
 /// pivot first). Returns the accepted rows, and for each unknown that is determined by rows that
 /// involve determined unknowns only, the pair (index of its accepted row, unknown).
-fn reduce(matrix: &mut [Vec<f64>], classes: &[u8], scales: &[f64]) -> (Vec<usize>, Vec<(usize, usize)>) {
+fn reduce(matrix: &mut [Vec<f64>], ranks: &[Rank], scales: &[f64]) -> (Vec<usize>, Vec<(usize, usize)>) {
     let n = scales.len();
     let originals: Vec<Vec<bool>> =
         matrix.iter().map(|row| row.iter().map(|v| *v != 0.0).collect()).collect();
-    for row in matrix.iter_mut() {
+    let mut weights = vec![1.0; matrix.len()];
+    for ((row, rank), weight) in matrix.iter_mut().zip(ranks).zip(&mut weights) {
         for (v, s) in row.iter_mut().zip(scales) {
             *v *= s;
         }
@@ -494,22 +546,27 @@ fn reduce(matrix: &mut [Vec<f64>], classes: &[u8], scales: &[f64]) -> (Vec<usize
         if size > 0.0 {
             row.iter_mut().for_each(|v| *v /= size);
         }
+        if let Some(unit) = rank.weight {
+            *weight = unit * size;
+        }
     }
+    let floor = |i: usize| if ranks[i].weight.is_some() { INDEPENDENT_WEIGHTED } else { INDEPENDENT };
     let mut left: Vec<usize> = (0..matrix.len()).collect();
     let mut picked = Vec::new();
     let mut pivots = Vec::new();
-    while let Some(class) = left.iter().map(|&i| classes[i]).min() {
+    while let Some(class) = left.iter().map(|&i| ranks[i].class).min() {
         // The best pivot among the rows of the lowest class.
         let mut best: Option<(usize, usize, f64)> = None;
-        for &i in left.iter().filter(|&&i| classes[i] == class) {
+        for &i in left.iter().filter(|&&i| ranks[i].class == class) {
             for (j, v) in matrix[i].iter().enumerate() {
-                if !pivots.contains(&j) && v.abs() > best.map_or(1e-9, |b| b.2) {
-                    best = Some((i, j, v.abs()));
+                let size = weights[i] * v.abs();
+                if !pivots.contains(&j) && v.abs() > floor(i) && size > best.map_or(0.0, |b| b.2) {
+                    best = Some((i, j, size));
                 }
             }
         }
         let Some((i, j, _)) = best else {
-            left.retain(|&i| classes[i] != class);
+            left.retain(|&i| ranks[i].class != class);
             continue;
         };
         left.retain(|&r| r != i);

@@ -301,11 +301,14 @@ impl<'a> View<'a> {
         Ok(self.dual(id, s.state.get(property), &s.jacobian[property as usize]))
     }
 
-    /// The composition coordinate of a state.
+    /// The composition coordinate of a state; given directly, it needs no state.
     ///
     /// # Errors
     /// `Blocked`.
     pub fn composition(&self, id: StateId) -> Result<Dual, Blocked> {
+        if let Some((CompositionForm::Direct, c)) = self.model.process.states[id].c {
+            return self.var(c);
+        }
         let s = self.state(id)?;
         Ok(self.dual(id, s.composition, &s.composition_gradient))
     }
@@ -318,14 +321,10 @@ impl<'a> View<'a> {
         let spec = &self.model.process.states[id];
         let scale = &self.model.scales[spec.fluid];
         if scale.variable && scale.scale == Scale::Absolute {
-            let s = self.state(id)?;
+            let c = self.composition(id)?;
             let engine = &self.model.process.fluids[spec.fluid].engine;
-            if let Some((datum, slope)) = engine.datum_at(s.composition) {
-                let g = s.composition_gradient;
-                return Ok((
-                    self.dual(id, datum.enthalpy, &g.map(|d| d * slope.enthalpy)),
-                    self.dual(id, datum.entropy, &g.map(|d| d * slope.entropy)),
-                ));
+            if let Some((datum, slope)) = engine.datum_at(c.value) {
+                return Ok((c.map(datum.enthalpy, slope.enthalpy), c.map(datum.entropy, slope.entropy)));
             }
         }
         Ok((Dual::constant(scale.offset.enthalpy), Dual::constant(scale.offset.entropy)))

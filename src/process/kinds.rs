@@ -300,7 +300,7 @@ kinds! {
         ports: [material_in(1, ANY), material_out(1, ANY), work_in(0, ANY), work_out(0, ANY), heat_in(0, ANY), heat_out(0, ANY)],
         sorting: Pool, purpose: Chemistry, given: ["heat_loss"], roles: [],
     }
-    Dryer "dryer" "Moisture passes from a solid into air or vapour." {
+    Dryer "dryer" "Moisture passes from a solid into air or vapour; the dry solid and its water are flows of their own." {
         ports: [material_in(1, ANY), material_out(1, ANY), work_in(0, ANY), heat_in(0, ANY), heat_out(0, ANY)],
         sorting: Pool, purpose: Dissipation, given: ["heat_loss"], roles: [],
     }

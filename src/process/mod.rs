@@ -283,6 +283,8 @@ pub struct Side {
     pub outlets: Vec<FlowId>,
     /// Whether different substances meet here, so that elements are balanced on one datum.
     pub pool: bool,
+    /// States of the contents, before or after a batch, that belong to the set.
+    pub contents: Vec<StateId>,
 }
 
 /// Flow arrangement of an exchanger.
@@ -401,6 +403,8 @@ pub struct Component {
     pub ports: Vec<(&'static str, FlowId)>,
     /// Own fuel and product lists.
     pub purpose: Option<Purpose>,
+    /// Smallest cross-section that the flow passes, m².
+    pub throat_area: Option<VarId>,
     /// Whether it was made by the reader (the pipe of a flow with two ends).
     pub implied: bool,
 }
@@ -515,10 +519,25 @@ pub struct Process {
     pub groups: Vec<Group>,
     /// Redundant readings of one variable: the variable, the reading, where it stands.
     pub redundant: Vec<(VarId, Affine, String)>,
+    /// Two readings of one combustion gas, which must lie on the line of its fuel.
+    pub flue_gas: Vec<FlueGas>,
     /// Data remarks made while reading (negative magnitudes and the like): rule, pointer, text.
     pub remarks: Vec<Remark>,
     /// What was assumed.
     pub assumptions: Vec<Assumption>,
+}
+
+/// Oxygen and carbon dioxide read in the same dry gas.
+#[derive(Clone, Debug)]
+pub struct FlueGas {
+    /// The combustion gas; its air ratio follows from the oxygen.
+    pub fluid: FluidId,
+    /// O2 in the dry gas, mole fraction.
+    pub oxygen: VarId,
+    /// CO2 in the dry gas, mole fraction.
+    pub carbon_dioxide: VarId,
+    /// Where the carbon dioxide stands.
+    pub pointer: String,
 }
 
 /// A remark made while reading, reported under its rule.

@@ -388,7 +388,18 @@ static COMPONENT: ObjectShape = ObjectShape {
         ),
         optional("holdup", Shape::Object(&HOLDUP), "What it holds before and after a batch."),
         optional("purpose", Shape::Object(&PURPOSE), "Own definition of fuel and product."),
+        optional("geometry", Shape::Object(&GEOMETRY), "Dimensions that bound what can pass."),
     ]],
+};
+
+static GEOMETRY: ObjectShape = ObjectShape {
+    name: "Geometry",
+    doc: "Dimensions of a component.",
+    fields: &[&[optional(
+        "throat_area",
+        Shape::Quantity(D::Area),
+        "Smallest cross-section that the flow passes.",
+    )]],
 };
 
 const ARRANGEMENTS: &[(&str, &str)] = &[

@@ -274,6 +274,7 @@ const OTHERS: &[Unit] = &[
     at(Reference::Actual, unit(&[EnergyPerVolume], &["kJ/m3"], 1e3, DEFINITION)),
     at(Reference::Actual, unit(&[EnergyPerVolume], &["MJ/m3"], 1e6, DEFINITION)),
     at(Reference::Actual, unit(&[EnergyPerVolume], &["kWh/m3"], 1e3 * H, DEFINITION)),
+    at(Reference::Actual, unit(&[EnergyPerVolume], &["kW/(m3/min)"], 1e3 * MIN, DEFINITION)),
     at(Reference::Actual, unit(&[EnergyPerVolume], &["MJ/L", "MJ/l"], 1e9, DEFINITION)),
     at(Reference::Normal, unit(&[EnergyPerVolume], &["kJ/Nm3", "kJ/m3(N)"], 1e3, NORMAL)),
     at(Reference::Normal, unit(&[EnergyPerVolume], &["MJ/Nm3", "MJ/m3(N)"], 1e6, NORMAL)),

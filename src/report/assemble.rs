@@ -4,7 +4,7 @@ use super::figure::{Figure, Named, plain};
 use super::*;
 use crate::assessment::{self, Exergies, Judgement, Overall};
 use crate::balance::region::{self, Balance, Bracket, Region};
-use crate::balance::{Equations, Evaluation, RegionBalances, Row, exergy::ExergyBalance, side_flows};
+use crate::balance::{Equations, Evaluation, RegionBalances, Row, exergy::ExergyBalance};
 use crate::evidence::Sensitivity;
 use crate::fluid::{Element, Property};
 use crate::model::{Dual, Scope, View};
@@ -148,7 +148,7 @@ fn statement(judgement: &Judgement, violations: &[Finding]) -> String {
 }
 
 impl Assembler<'_, '_> {
-    fn view(&self) -> View<'_> {
+    pub(super) fn view(&self) -> View<'_> {
         self.evaluation.view
     }
 
@@ -157,8 +157,12 @@ impl Assembler<'_, '_> {
         Figure::new(form.value, u, dimension, self.units)
     }
 
-    fn bare(&self, value: f64, dimension: Dimension) -> Figure {
+    pub(super) fn bare(&self, value: f64, dimension: Dimension) -> Figure {
         Figure::new(value, 0.0, dimension, self.units)
+    }
+
+    pub(super) fn units(&self) -> UnitSystem {
+        self.units
     }
 
     pub(super) fn dimensions(&self) -> (Dimension, Dimension, Dimension, Dimension) {
@@ -195,7 +199,7 @@ impl Assembler<'_, '_> {
         let mut element_balance = Named::default();
         if let Some(k) = component {
             for (side, element) in elements_of(self.evaluation.equations, k) {
-                if let Ok(b) = region::element(view, side_flows(view, k, side), element as usize) {
+                if let Ok(b) = region::element(view, k, side, element as usize) {
                     let report = self.balance(&b, moles);
                     element_balance.push(element.symbol(), report);
                 }

@@ -1,6 +1,6 @@
 //! Figures with their units, and ordered maps.
 
-use crate::quantity::{Dimension, UnitSystem, display};
+use crate::quantity::{Dimension, Scale, UnitSystem, display};
 use serde::ser::SerializeMap;
 use serde::{Serialize, Serializer};
 
@@ -38,7 +38,11 @@ impl Figure {
     /// A figure from SI value and uncertainty. The value is rounded to ten significant digits, the
     /// uncertainty to three.
     pub fn new(value: f64, u: f64, dimension: Dimension, units: UnitSystem) -> Figure {
-        let scale = display(dimension, units);
+        Figure::in_unit(value, u, &display(dimension, units))
+    }
+
+    /// The same in a unit of the caller's choice.
+    pub fn in_unit(value: f64, u: f64, scale: &Scale) -> Figure {
         Figure {
             value: significant(scale.from_si(value), 10),
             unit: scale.code,

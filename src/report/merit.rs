@@ -66,8 +66,10 @@ impl Assembler<'_, '_> {
                 decomposition.push("bejan_number", figure);
             }
         }
-        let kind = view.model.process.components[k].kind.name();
-        ComponentReport { kind, region, decomposition }
+        let component = &view.model.process.components[k];
+        let (kind, implied) = (component.kind.name(), component.implied);
+        let (holdup, profile) = (self.holdup(k, exergies), self.profile(k));
+        ComponentReport { kind, implied, region, decomposition, holdup, profile }
     }
 
     pub(super) fn plant(&mut self, mut region: RegionReport, exergies: &Exergies) -> PlantReport {

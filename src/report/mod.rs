@@ -1,12 +1,22 @@
 //! Reports over one finished assessment: JSON, text, CSV and HTML are siblings.
 
 mod assemble;
+mod charts;
+mod csv;
+mod diagram;
 mod figure;
+mod grid;
+mod holdup;
+mod html;
+mod markup;
 mod merit;
+mod profile;
+mod prose;
 mod state;
 mod text;
 
 pub use figure::{Figure, Named};
+pub use profile::{CrossedReport, PinchReport, ProfilePoint, ProfileReport};
 pub use state::StateReport;
 
 use serde::Serialize;
@@ -333,12 +343,64 @@ pub struct RankEntry {
 pub struct ComponentReport {
     /// Its kind.
     pub kind: &'static str,
+    /// Whether the description implies it: the pipe of a flow with two ends.
+    #[serde(skip_serializing_if = "std::ops::Not::not")]
+    pub implied: bool,
     /// Its balances.
     #[serde(flatten)]
     pub region: RegionReport,
+    /// What it holds before and after a batch.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub holdup: Option<HoldupReport>,
+    /// Temperatures inside an exchanger.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub profile: Option<ProfileReport>,
     /// Entropy generation by its causes.
     #[serde(skip_serializing_if = "Named::is_empty")]
     pub decomposition: Named<Figure>,
+}
+
+/// What a component holds before and after a batch.
+#[derive(Clone, Debug, Default, PartialEq, Serialize)]
+#[cfg_attr(feature = "server", derive(ToSchema))]
+pub struct HoldupReport {
+    /// Before.
+    pub initial: HeldReport,
+    /// After.
+    pub r#final: HeldReport,
+    /// Work done at the moving boundary.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub boundary_work: Option<Figure>,
+}
+
+/// The contents of a component at one time.
+#[derive(Clone, Debug, Default, PartialEq, Serialize)]
+#[cfg_attr(feature = "server", derive(ToSchema))]
+pub struct HeldReport {
+    /// Mass, volume, internal energy and entropy on the datum of the balances, exergy, and the
+    /// chemical part of the latter: totals, each only where every content has it.
+    #[serde(flatten)]
+    pub totals: Named<Figure>,
+    /// Each content.
+    pub contents: Vec<ContentReport>,
+}
+
+/// One content.
+#[derive(Clone, Debug, Default, PartialEq, Serialize)]
+#[cfg_attr(feature = "server", derive(ToSchema))]
+pub struct ContentReport {
+    /// Fluid.
+    pub fluid: String,
+    /// Phase.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub phase: Option<&'static str>,
+    /// Mass, temperature, pressure, specific volume, internal energy, entropy, exergy.
+    #[serde(flatten)]
+    pub figures: Named<Figure>,
 }
 
 /// A flow.
@@ -430,3 +492,6 @@ impl Report {
         out
     }
 }
+
+#[cfg(test)]
+mod tests;

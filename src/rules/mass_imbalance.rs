@@ -1,7 +1,7 @@
 //! mass-imbalance
 
 use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, family, measure, phrase};
-use crate::balance::{Evaluation, Row, side_mass};
+use crate::balance::{Evaluation, Row, region};
 use crate::model::{Decision, Margin, Scope, Test};
 
 /// More mass enters than leaves, or less.
@@ -47,7 +47,7 @@ impl Rule for MassImbalance {
         let view = evaluation.view;
         for (index, row) in measure::unspent(evaluation) {
             let Row::Mass(k, side) = row else { continue };
-            let Ok(balance) = side_mass(view, k, side) else { continue };
+            let Ok(balance) = region::set_mass(view, k, side) else { continue };
             out.push(Margin {
                 family: family(&INFO),
                 test: Test::Zero {
@@ -64,7 +64,7 @@ impl Rule for MassImbalance {
         let Some(Row::Mass(k, side)) = evaluation.equations.rows().get(margin.detail).copied() else {
             return Explanation::default();
         };
-        let Ok(balance) = side_mass(view, k, side) else { return Explanation::default() };
+        let Ok(balance) = region::set_mass(view, k, side) else { return Explanation::default() };
         let dimension = phrase::mass_dimension(evaluation);
         let sums = (balance.inflow.value, balance.outflow.value, balance.throughput);
         let mut statement =

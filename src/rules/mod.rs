@@ -6,9 +6,11 @@
 //! the list below.
 
 mod carnot;
+mod interior;
 mod machine;
 mod measure;
 pub mod phrase;
+mod physics;
 mod practice;
 mod remark;
 mod saturation;
@@ -203,24 +205,54 @@ rules! {
     expander_beats_isentropic::ExpanderBeatsIsentropic,
     compressor_beats_isentropic::CompressorBeatsIsentropic,
     throttle_against_entropy::ThrottleAgainstEntropy,
+    pipe_against_entropy::PipeAgainstEntropy,
+    passive_pressure_rise::PassivePressureRise,
+    mixer_pressure_above_inlets::MixerPressureAboveInlets,
+    boundary_temperature_out_of_bounds::BoundaryTemperatureOutOfBounds,
+    batch_entropy_negative::BatchEntropyNegative,
+    heat_driven_chiller_beats_limit::HeatDrivenChillerBeatsLimit,
+    heat_transformer_beats_limit::HeatTransformerBeatsLimit,
+    separation_below_minimum_work::SeparationBelowMinimumWork,
+    electrochemical_limit_broken::ElectrochemicalLimitBroken,
+    flow_above_choked::FlowAboveChoked,
+    shock_in_reverse::ShockInReverse,
+    reaction_against_affinity::ReactionAgainstAffinity,
+    equilibrium_overshot::EquilibriumOvershot,
+    internal_temperature_cross::InternalTemperatureCross,
+    composite_curves_cross::CompositeCurvesCross,
     work_beats_reversible::WorkBeatsReversible,
     compressor_beats_isothermal::CompressorBeatsIsothermal,
     negative_exergy_destruction::NegativeExergyDestruction,
     exergy_efficiency_above_one::ExergyEfficiencyAboveOne,
     terminal_temperature_cross::TerminalTemperatureCross,
     parallel_flow_outlet_cross::ParallelFlowOutletCross,
+    exchanger_effectiveness_above_one::ExchangerEffectivenessAboveOne,
+    section_entropy_negative::SectionEntropyNegative,
+    air_colder_than_coil::AirColderThanCoil,
+    radiation_exergy_above_limit::RadiationExergyAboveLimit,
+    flame_hotter_than_adiabatic::FlameHotterThanAdiabatic,
+    filling_hotter_than_limit::FillingHotterThanLimit,
+    mixed_temperature_out_of_bounds::MixedTemperatureOutOfBounds,
     mass_imbalance::MassImbalance,
     element_imbalance::ElementImbalance,
     energy_imbalance::EnergyImbalance,
     composition_sum::CompositionSum,
     surplus_property_mismatch::SurplusPropertyMismatch,
+    saturation_mismatch::SaturationMismatch,
     redundant_readings_disagree::RedundantReadingsDisagree,
     state_outside_formulation::StateOutsideFormulation,
     vapour_below_saturation::VapourBelowSaturation,
     liquid_above_saturation::LiquidAboveSaturation,
     quality_out_of_range::QualityOutOfRange,
+    humidity_above_saturation::HumidityAboveSaturation,
+    humidity_ratio_above_saturation::HumidityRatioAboveSaturation,
+    water_below_wet_bulb::WaterBelowWetBulb,
+    flue_gas_line_mismatch::FlueGasLineMismatch,
+    ideal_gas_far_from_ideal::IdealGasFarFromIdeal,
     wetness_unknown::WetnessUnknown,
     reversed_flow::ReversedFlow,
+    unusual_approach::UnusualApproach,
+    unusual_pressure_drop::UnusualPressureDrop,
     negative_exergy::NegativeExergy,
     unusual_dead_state::UnusualDeadState,
     unusual_turbine_efficiency::UnusualTurbineEfficiency,
@@ -228,6 +260,8 @@ rules! {
     unusual_machine_efficiency::UnusualMachineEfficiency,
     unusual_exergy_efficiency::UnusualExergyEfficiency,
     unusual_stack_loss::UnusualStackLoss,
+    claim_close_to_limit::ClaimCloseToLimit,
+    below_acid_dew_point::BelowAcidDewPoint,
     gouy_stodola_mismatch::GouyStodolaMismatch,
 }
 

@@ -52,7 +52,9 @@ impl Rule for ReversedFlow {
             let (var, dimension, _) = measure::extent(process, f);
             let Some(extent) = negative(evaluation, f) else { continue };
             // Flows that share an amount are one finding.
-            if seen.contains(&var) || remark::covers(INFO.name, evaluation, &flow.pointer) {
+            // What the reader made and the balances solved for has no declared direction.
+            let free = flow.implied && matches!(process.vars[var], Var::Unknown { .. });
+            if free || seen.contains(&var) || remark::covers(INFO.name, evaluation, &flow.pointer) {
                 continue;
             }
             seen.push(var);

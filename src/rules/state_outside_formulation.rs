@@ -1,6 +1,6 @@
 //! state-outside-formulation
 
-use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, measure, phrase, quality_out_of_range};
+use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, humidity_above_saturation, humidity_ratio_above_saturation, measure, phrase, quality_out_of_range};
 use crate::balance::Evaluation;
 use crate::fluid::PropertyError;
 use crate::model::{Blocked, Decision, Margin};
@@ -46,7 +46,11 @@ impl Rule for StateOutsideFormulation {
     fn margins(&self, me: usize, evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
         let view = evaluation.view;
         for (s, spec) in view.model.process.states.iter().enumerate() {
-            if !matches!(view.state(s), Err(Blocked::State(_))) || quality_out_of_range::is_broken(view, s) {
+            // What another rule names better is left to it.
+            let named = quality_out_of_range::is_broken(view, s)
+                || humidity_above_saturation::is_broken(view, s)
+                || humidity_ratio_above_saturation::is_broken(view, s);
+            if named || !matches!(view.state(s), Err(Blocked::State(_))) {
                 continue;
             }
             if matches!(view.workspace.state_error(s), None | Some(PropertyError::Unstated(_))) {

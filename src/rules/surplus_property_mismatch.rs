@@ -2,7 +2,7 @@
 
 use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, measure, phrase};
 use crate::balance::{Evaluation, Row};
-use crate::fluid::Property;
+use crate::fluid::{Phase, Property};
 use crate::model::{Decision, Dual, Family, Margin, Test};
 use crate::process::StateId;
 
@@ -44,12 +44,37 @@ impl Rule for SurplusPropertyMismatch {
     }
 
     fn margins(&self, me: usize, evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
+        margins_where(false, me, evaluation, out);
+    }
+
+    fn explain(&self, evaluation: &Evaluation<'_>, margin: &Margin, decision: &Decision) -> Explanation {
+        explain_surplus(evaluation, margin, decision)
+    }
+}
+
+/// Whether a surplus property of a state says again what saturation says: a temperature or
+/// pressure in two phases.
+fn repeats_saturation(evaluation: &Evaluation<'_>, s: StateId, property: Property) -> bool {
+    matches!(property, Property::Temperature | Property::Pressure)
+        && evaluation.view.state(s).is_ok_and(|v| v.state.phase == Phase::TwoPhase)
+}
+
+/// The margins of the surplus properties that repeat saturation, or of all others.
+pub(super) fn margins_where(
+    saturation: bool,
+    me: usize,
+    evaluation: &Evaluation<'_>,
+    out: &mut Vec<Margin>,
+) {
         let view = evaluation.view;
         let process = &view.model.process;
         for (s, spec) in process.states.iter().enumerate() {
             for (i, surplus) in spec.surplus.iter().enumerate() {
                 let row = evaluation.equations.find(Row::Surplus(s, i));
                 if row.is_some_and(|row| evaluation.spent_on(row).is_some()) {
+                    continue;
+                }
+                if repeats_saturation(evaluation, s, surplus.property) != saturation {
                     continue;
                 }
                 if let (Some(own), Ok(given)) = (own(evaluation, s, surplus.property), view.var(surplus.var)) {
@@ -70,7 +95,13 @@ impl Rule for SurplusPropertyMismatch {
         }
     }
 
-    fn explain(&self, evaluation: &Evaluation<'_>, margin: &Margin, decision: &Decision) -> Explanation {
+
+/// What a surplus property says and what the state says of it.
+pub(super) fn explain_surplus(
+    evaluation: &Evaluation<'_>,
+    margin: &Margin,
+    decision: &Decision,
+) -> Explanation {
         let view = evaluation.view;
         let found = view.model.process.states.iter().enumerate().find_map(|(s, spec)| {
             let surplus = spec.surplus.iter().find(|x| Some(&x.pointer) == margin.pointer.as_ref())?;
@@ -96,7 +127,6 @@ impl Rule for SurplusPropertyMismatch {
             limit: Some(Figure { value: own.value, dimension }),
             ..Explanation::default()
         }
-    }
 }
 
 /// A property of a state on the engine's datum; enthalpy and entropy with the uncertainty of the

@@ -73,6 +73,11 @@ pub(super) fn margins(
             && let Some(ends) = ends(view, component)
             && let (Some(a), Some(b)) = (approach(view, ends[0]), approach(view, ends[1]))
         {
+            // Where the interior is known, its smallest difference includes the ends.
+            let family = match evaluation.profile(k) {
+                Ok(Some(_)) => Family::None,
+                _ => family,
+            };
             let (detail, (form, throughput)) = if b.0.value < a.0.value { (1, b) } else { (0, a) };
             out.push(Margin {
                 family,

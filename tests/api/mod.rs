@@ -1,6 +1,7 @@
 //! The service over real HTTP on loopback.
 
 mod batch;
+mod cases;
 mod command_line;
 mod documents;
 mod limits;

@@ -1,10 +1,14 @@
 //! Checks against published values, one file a topic.
 
 mod chemistry;
+mod claims;
 mod cogeneration;
+mod exchanger;
 mod exergy;
 mod gas;
 mod humid_air;
+mod plants;
+mod real_fluid;
 mod solution;
 mod steam;
 

@@ -253,8 +253,9 @@ impl Solution {
         w[Element::O as usize] = 1.0 / water_mass;
         match self.salt {
             Salt::SodiumChloride => {
-                s[Element::Na as usize] = 1.0 / sodium_chloride::MOLAR_MASS;
-                s[Element::Cl as usize] = 1.0 / sodium_chloride::MOLAR_MASS;
+                let mass = Element::Na.molar_mass() + Element::Cl.molar_mass();
+                s[Element::Na as usize] = 1.0 / mass;
+                s[Element::Cl as usize] = 1.0 / mass;
             }
             Salt::Sea => {
                 // Normalised to one kg, which the left-out traces would miss.

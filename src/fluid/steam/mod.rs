@@ -260,9 +260,11 @@ impl Engine for Steam {
     }
 
     fn elements(&self, _c: f64) -> Option<(Elements, Elements)> {
+        // From the atomic masses, so that mass and elements agree.
+        let molar_mass = 2.0 * Element::H.molar_mass() + Element::O.molar_mass();
         let mut elements = [0.0; Element::COUNT];
-        elements[Element::H as usize] = 2.0 / MOLAR_MASS;
-        elements[Element::O as usize] = 1.0 / MOLAR_MASS;
+        elements[Element::H as usize] = 2.0 / molar_mass;
+        elements[Element::O as usize] = 1.0 / molar_mass;
         Some((elements, [0.0; Element::COUNT]))
     }
 

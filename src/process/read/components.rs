@@ -11,13 +11,18 @@ impl<'t> Reader<'t> {
         for (name, node) in root.members() {
             let Some(&k) = self.component_ids.get(name) else { continue };
             self.losses(k, node);
+            self.ash(k, node);
             self.check_ports(k, node);
             self.ports(k, node);
+            self.holdup(k, node);
             self.sides(k, node);
             self.given(k, node);
             self.stated(k, node);
-            self.holdup(k, node);
             self.purpose(k, node);
+            if let Some(geometry) = node.get("geometry") {
+                let area = self.var(geometry, "throat_area", Dimension::Area, Class::State, 1.0);
+                self.process.components[k].throat_area = area;
+            }
         }
     }
 
@@ -116,12 +121,20 @@ impl<'t> Reader<'t> {
         }
     }
 
+    /// The flow, or the half of it that arrives, if it touches the component.
+    fn end_at(&self, k: ComponentId, f: FlowId) -> Option<FlowId> {
+        let component = &self.process.components[k];
+        let far = self.two_ended.iter().find(|t| t.flow == f).and_then(|t| t.far);
+        let touches = |f: &FlowId| component.inlets.contains(f) || component.outlets.contains(f);
+        [Some(f), far].into_iter().flatten().find(touches)
+    }
+
     /// A flow of this component by the name that stands at a place.
     fn own_flow(&mut self, k: ComponentId, node: Node<'t>) -> Option<FlowId> {
         let name = node.text().unwrap_or_default();
         let component = &self.process.components[k];
         match self.flow_ids.get(name).copied() {
-            Some(f) if component.inlets.contains(&f) || component.outlets.contains(&f) => Some(f),
+            Some(f) if self.end_at(k, f).is_some() => self.end_at(k, f),
             Some(_) => {
                 let message = format!("flow \"{name}\" does not touch \"{}\"", component.name);
                 self.fault(node.fault(Code::DanglingReference, message));
@@ -173,11 +186,92 @@ impl<'t> Reader<'t> {
             component.inlets.iter().chain(&component.outlets).any(|&f| {
                 matches!(self.process.flows[f].carried, Carried::Heat(..) | Carried::Radiation(..))
             });
+        let converts = component.kind.info().purpose == kinds::Purposeful::Conversion;
         self.process.components[k].given.heat_loss = described;
-        if !described && !has_heat {
+        if converts && !has_heat && given.is_some_and(|g| g.get("efficiency").is_some()) {
+            // What a converter does not pass on it gives off as heat.
+            let name = self.process.components[k].name.clone();
+            let loss = self.unknown(format!("heat loss of \"{name}\""), Nature::Energy, node.pointer());
+            let flow = self.process.flows.len();
+            self.process.flows.push(Flow {
+                name: format!("{name}.heat_loss"),
+                pointer: node.pointer(),
+                from: Some(k),
+                to: None,
+                carried: Carried::Heat(loss, Boundary::Unknown),
+                role: Some(Role::Loss),
+                implied: true,
+            });
+            self.process.components[k].outlets.push(flow);
+            self.process.components[k].given.heat_loss = true;
+        } else if !described && !has_heat {
             let pointer = node.pointer_to("heat_loss");
             self.assume(pointer, "heat loss not given: adiabatic");
         }
+    }
+
+    /// Ash that a fuel brings along and no flow takes away, as a flow of its own.
+    fn ash(&mut self, k: ComponentId, node: Node<'t>) {
+        let component = &self.process.components[k];
+        if component.kind.info().sorting != Sorting::Pool {
+            return;
+        }
+        let substance = |f: &FlowId| self.fluid_of(*f).map(|x| self.process.fluids[x].substance.clone());
+        let brings = component
+            .inlets
+            .iter()
+            .any(|f| matches!(substance(f), Some(Substance::Fuel(fuel)) if fuel.ash() > 0.0));
+        let entering: Vec<Option<FluidId>> = component.inlets.iter().map(|&f| self.fluid_of(f)).collect();
+        let takes = component.outlets.iter().any(|f| {
+            matches!(substance(f), Some(Substance::Inert | Substance::Stated | Substance::Fuel(_)))
+                && !entering.contains(&self.fluid_of(*f))
+        });
+        if !brings || takes {
+            return;
+        }
+        let Ok(ash) = crate::fluid::incompressible::Incompressible::ash() else { return };
+        let name = format!("{}.ash", component.name);
+        let fluid = self.process.fluids.len();
+        self.process.fluids.push(Fluid {
+            name: "ash".to_owned(),
+            engine: Arc::new(ash),
+            substance: Substance::Inert,
+        });
+        // The state in which the ash of a fuel has neither enthalpy nor entropy.
+        let (p, t) = (self.constant(1e5), self.constant(298.15));
+        let amount = self.unknown(format!("mass flow of \"{name}\""), Nature::Mass, node.pointer());
+        self.process.states.push(StateSpec {
+            fluid,
+            form: StateForm::Pair(Pair::PressureTemperature),
+            a: p,
+            b: t,
+            c: None,
+            surplus: Vec::new(),
+            phase: None,
+            pointer: node.pointer(),
+            ambient: false,
+            wet_ambiguous: false,
+        });
+        let state = self.process.states.len() - 1;
+        self.assume(node.pointer(), "the ash of the fuel leaves at 25 degC");
+        let flow = self.process.flows.len();
+        self.process.flows.push(Flow {
+            name,
+            pointer: node.pointer(),
+            from: Some(k),
+            to: None,
+            carried: Carried::Material(Material {
+                state,
+                amount,
+                form: AmountForm::Mass,
+                velocity: None,
+                elevation: None,
+                stated_exergy: None,
+            }),
+            role: Some(Role::Loss),
+            implied: true,
+        });
+        self.process.components[k].outlets.push(flow);
     }
 
     fn material_flows(&self, k: ComponentId) -> (Vec<FlowId>, Vec<FlowId>) {
@@ -188,7 +282,7 @@ impl<'t> Reader<'t> {
         (pick(&component.inlets), pick(&component.outlets))
     }
 
-    fn fluid_of(&self, f: FlowId) -> Option<FluidId> {
+    pub(super) fn fluid_of(&self, f: FlowId) -> Option<FluidId> {
         self.process.flows[f].material().map(|m| self.process.states[m.state].fluid)
     }
 
@@ -239,19 +333,17 @@ impl<'t> Reader<'t> {
         match kind.info().sorting {
             Sorting::Single => {
                 if !inlets.is_empty() || !outlets.is_empty() {
-                    sides.push(Side { inlets, outlets, pool: false });
+                    sides.push(Side { inlets, outlets, ..Side::default() });
                 }
             }
             Sorting::Sides => self.infer_sides(k, node, &mut sides, inlets, outlets, own_sides),
             Sorting::Pool => self.infer_pool(kind, &mut sides, inlets, outlets),
         }
-        let holds = node.get("holdup").is_some();
-        if sides.is_empty() && holds {
-            sides.push(Side::default());
-        }
+        self.place_contents(k, &mut sides);
         for side in &mut sides {
-            let mut fluids: Vec<FluidId> =
-                side.inlets.iter().chain(&side.outlets).filter_map(|&f| self.fluid_of(f)).collect();
+            let flows = side.inlets.iter().chain(&side.outlets).filter_map(|&f| self.fluid_of(f));
+            let contents = side.contents.iter().map(|&s| self.process.states[s].fluid);
+            let mut fluids: Vec<FluidId> = flows.chain(contents).collect();
             fluids.sort_unstable();
             fluids.dedup();
             side.pool =
@@ -282,7 +374,7 @@ impl<'t> Reader<'t> {
             let of = |flows: &[FlowId]| -> Vec<FlowId> {
                 flows.iter().copied().filter(|&f| self.fluid_of(f) == Some(fluid)).collect()
             };
-            let side = Side { inlets: of(&inlets), outlets: of(&outlets), pool: false };
+            let side = Side { inlets: of(&inlets), outlets: of(&outlets), ..Side::default() };
             let name = self.process.components[k].name.clone();
             let quoted = |flows: &[FlowId]| -> String {
                 let names: Vec<&str> = flows.iter().map(|&f| self.process.flows[f].name.as_str()).collect();
@@ -321,7 +413,10 @@ impl<'t> Reader<'t> {
         );
         let varies =
             |f: FlowId| self.fluid_of(f).is_some_and(|x| self.process.fluids[x].engine.elements_vary());
-        let any_varies = inlets.iter().chain(&outlets).any(|&f| varies(f));
+        let humid = |f: FlowId| {
+            self.fluid_of(f).is_some_and(|x| matches!(self.process.fluids[x].substance, Substance::HumidAir))
+        };
+        let any_air = inlets.iter().chain(&outlets).any(|&f| humid(f));
         let mut done: Vec<FluidId> = Vec::new();
         for &f in inlets.iter().chain(&outlets) {
             let Some(fluid) = self.fluid_of(f) else { continue };
@@ -333,9 +428,13 @@ impl<'t> Reader<'t> {
                 flows.iter().copied().filter(|&x| self.fluid_of(x) == Some(fluid)).collect()
             };
             let (i, o) = (of(&inlets), of(&outlets));
-            let meets_air = any_varies && matches!(self.process.fluids[fluid].substance, Substance::Water);
-            if through && !i.is_empty() && !o.is_empty() && !varies(f) && !meets_air {
-                sides.push(Side { inlets: i, outlets: o, pool: false });
+            let meets_air = any_air && matches!(self.process.fluids[fluid].substance, Substance::Water);
+            // A substance without formation data can only pass.
+            let inert = matches!(self.process.fluids[fluid].substance, Substance::Inert)
+                && self.process.fluids[fluid].engine.elements(0.0).is_none();
+            let passes = !i.is_empty() && !o.is_empty() && !varies(f) && !meets_air;
+            if passes && (through || inert) {
+                sides.push(Side { inlets: i, outlets: o, ..Side::default() });
             } else {
                 pool.inlets.extend(i);
                 pool.outlets.extend(o);
@@ -422,80 +521,6 @@ impl<'t> Reader<'t> {
         }
     }
 
-    fn holdup(&mut self, k: ComponentId, node: Node<'t>) {
-        let Some(holdup) = node.get("holdup") else { return };
-        if self.process.basis == Basis::Rate {
-            self.fault(
-                holdup
-                    .fault(Code::Conflict, "a holdup needs \"basis\": \"amount\"")
-                    .hint("before and after belong to a batch"),
-            );
-            return;
-        }
-        let boundary_pressure = self.var(holdup, "boundary_pressure", Dimension::Pressure, Class::State, 1.0);
-        let name = self.process.components[k].name.clone();
-        // Contents that end in equilibrium share one unknown temperature.
-        let mut shared = None;
-        let mut read = |reader: &mut Self, member: &str| -> Vec<Content> {
-            let mut out = Vec::new();
-            for (i, n) in holdup.get(member).into_iter().flat_map(Node::items).enumerate() {
-                let Some(fluid) = n.get("fluid").and_then(|f| reader.fluid(f)) else { continue };
-                let what = format!("\"{name}\" {member} content {}", i + 1);
-                let Some(state) = reader.content_state(n, fluid, &what, &mut shared) else { continue };
-                let (amount, form) = reader.amount(n, &name, "mass held in");
-                out.push(Content { state, amount, form });
-            }
-            out
-        };
-        let initial = read(self, "initial");
-        let r#final = read(self, "final");
-        self.process.components[k].holdup = Some(Holdup { initial, r#final, boundary_pressure });
-    }
-
-    /// The state of a content. A content that gives neither temperature nor another second
-    /// property takes the one unknown temperature that all such contents share.
-    fn content_state(
-        &mut self,
-        node: Node<'t>,
-        fluid: FluidId,
-        what: &str,
-        shared: &mut Option<VarId>,
-    ) -> Option<StateId> {
-        let second = ["temperature", "enthalpy", "entropy", "quality", "superheat", "subcooling", "phase"];
-        let dense = matches!(self.process.fluids[fluid].substance, Substance::Inert | Substance::Water);
-        if second.iter().any(|m| node.get(m).is_some()) || !dense {
-            return self.state(node, fluid, what, false, None);
-        }
-        let p = match self.var(node, "pressure", Dimension::Pressure, Class::State, 1.0) {
-            Some(p) => p,
-            None => {
-                self.assume(node.pointer(), "pressure of a content not given: ambient pressure");
-                self.ambient().1
-            }
-        };
-        let t = match *shared {
-            Some(t) => t,
-            None => {
-                let t = self.unknown(format!("temperature of {what}"), Nature::Temperature, node.pointer());
-                *shared = Some(t);
-                t
-            }
-        };
-        self.process.states.push(StateSpec {
-            fluid,
-            form: StateForm::Pair(Pair::PressureTemperature),
-            a: p,
-            b: t,
-            c: None,
-            surplus: Vec::new(),
-            phase: None,
-            pointer: node.pointer(),
-            ambient: false,
-            wet_ambiguous: false,
-        });
-        Some(self.process.states.len() - 1)
-    }
-
     fn purpose(&mut self, k: ComponentId, node: Node<'t>) {
         let Some(purpose) = node.get("purpose") else { return };
         let mut lists = [Vec::new(), Vec::new()];
@@ -506,12 +531,7 @@ impl<'t> Reader<'t> {
                     Some(rest) => (-1.0, rest.trim()),
                     None => (1.0, text),
                 };
-                let component = &self.process.components[k];
-                let found = self
-                    .flow_ids
-                    .get(name)
-                    .copied()
-                    .filter(|f| component.inlets.contains(f) || component.outlets.contains(f));
+                let found = self.flow_ids.get(name).copied().and_then(|f| self.end_at(k, f));
                 match found {
                     Some(f) => {
                         // Fuel counts what enters, product what leaves; the rest is taken off.

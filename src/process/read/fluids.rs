@@ -13,6 +13,10 @@ use crate::fluid::{Element, Phase, PropertyError};
 /// reported.
 const SUM_TOLERANCE: f64 = 5e-4;
 
+/// A fluid as read: what it is, its engine, and the composition coordinate that all its states
+/// share, where there is one.
+pub(super) type Medium = (Substance, Arc<dyn Engine>, Option<VarId>);
+
 impl<'t> Reader<'t> {
     /// The fluid of a material flow: its own, or that of its only possible neighbour.
     pub(super) fn flow_fluid(&mut self, f: FlowId) -> Option<FluidId> {
@@ -64,7 +68,21 @@ impl<'t> Reader<'t> {
         if let Some(&id) = self.fluid_ids.get(&key) {
             return Some(id);
         }
-        let (name, substance, engine) = match node.text() {
+        if self.open_fluids.contains(&key) {
+            self.fault(node.fault(Code::CircularReference, "the fluid refers back to itself"));
+            return None;
+        }
+        self.open_fluids.push(key.clone());
+        let id = self.fluid_unread(node);
+        self.open_fluids.pop();
+        if let Some(id) = id {
+            self.fluid_ids.insert(key, id);
+        }
+        id
+    }
+
+    fn fluid_unread(&mut self, node: Node<'t>) -> Option<FluidId> {
+        let (name, (substance, engine, coordinate)) = match node.text() {
             Some(text) => {
                 let own = self.root.get("fluids").and_then(|fluids| fluids.get(text));
                 match own {
@@ -74,7 +92,6 @@ impl<'t> Reader<'t> {
                         if self.process.fluids[id].name.starts_with('/') {
                             text.clone_into(&mut self.process.fluids[id].name);
                         }
-                        self.fluid_ids.insert(key, id);
                         return Some(id);
                     }
                     None => self.named_fluid(node, text)?,
@@ -82,19 +99,20 @@ impl<'t> Reader<'t> {
             }
             None => {
                 let kind = node.get("kind").and_then(Node::text).unwrap_or_default();
-                let (substance, engine) = self.fluid_object(node, kind)?;
-                (node.pointer(), substance, engine)
+                (node.pointer(), self.fluid_object(node, kind)?)
             }
         };
         let id = self.process.fluids.len();
         self.process.fluids.push(Fluid { name, engine, substance });
-        self.fluid_ids.insert(key, id);
+        if let Some(var) = coordinate {
+            self.shared_composition.insert(id, var);
+        }
         Some(id)
     }
 
-    fn named_fluid(&mut self, node: Node<'t>, text: &str) -> Option<(String, Substance, Arc<dyn Engine>)> {
+    fn named_fluid(&mut self, node: Node<'t>, text: &str) -> Option<(String, Medium)> {
         match crate::fluid::by_name(text) {
-            Ok((substance, engine)) => Some((text.to_owned(), substance, engine)),
+            Ok((substance, engine)) => Some((text.to_owned(), (substance, engine, None))),
             Err(mut near) => {
                 if let Some(fluids) = self.root.get("fluids") {
                     let own = nearest(text, fluids.members().map(|(name, _)| name));
@@ -112,28 +130,35 @@ impl<'t> Reader<'t> {
         }
     }
 
-    fn fluid_object(&mut self, node: Node<'t>, kind: &str) -> Option<(Substance, Arc<dyn Engine>)> {
+    fn fluid_object(&mut self, node: Node<'t>, kind: &str) -> Option<Medium> {
         match kind {
-            "water" => Some((Substance::Water, Arc::new(Steam))),
-            "humid_air" => self.named_fluid(node, "humid air").map(|(_, s, e)| (s, e)),
+            "water" => Some((Substance::Water, Arc::new(Steam), None)),
+            "humid_air" => self.named_fluid(node, "humid air").map(|named| named.1),
             "pure" => {
                 let n = node.get("name")?;
-                self.named_fluid(n, n.text().unwrap_or_default()).map(|(_, s, e)| (s, e))
+                let name = n.text().unwrap_or_default();
+                match crate::fluid::real_fluid::by_name(name) {
+                    Ok(fluid) => Some((Substance::Pure, fluid.clone(), None)),
+                    Err(_) => self.named_fluid(n, name).map(|named| named.1),
+                }
             }
             "ideal_gas" => {
                 let gas = Arc::new(self.ideal_gas(node)?);
-                Some((Substance::Gas(gas.clone()), gas))
+                Some((Substance::Gas(gas.clone()), gas, None))
             }
+            "combustion_gas" => self.combustion_gas(node),
+            "fuel" => self.fuel(node),
+            "solution" => self.solution(node),
             "perfect_gas" => {
                 let molar_mass =
                     node.get("molar_mass")?.quantity(Dimension::MolarMass, &mut self.faults)?.value;
                 let terms = self.heat_capacity(node.get("specific_heat")?)?;
                 let gas = PerfectGas::new(molar_mass, &terms, Some((50.0, 6000.0)));
                 let gas = self.engine(node, gas)?;
-                Some((Substance::Inert, Arc::new(gas)))
+                Some((Substance::Inert, Arc::new(gas), None))
             }
             "incompressible" => self.incompressible(node),
-            "stated" => Some((Substance::Stated, Arc::new(Stated::default()))),
+            "stated" => Some((Substance::Stated, Arc::new(Stated::default()), None)),
             _ => {
                 self.fault(
                     node.fault(Code::UnknownFluid, format!("a fluid of kind \"{kind}\" cannot be used here")),
@@ -143,7 +168,7 @@ impl<'t> Reader<'t> {
         }
     }
 
-    fn engine<T>(&mut self, node: Node<'t>, result: Result<T, PropertyError>) -> Option<T> {
+    pub(super) fn engine<T>(&mut self, node: Node<'t>, result: Result<T, PropertyError>) -> Option<T> {
         match result {
             Ok(engine) => Some(engine),
             Err(error) => {
@@ -171,12 +196,13 @@ impl<'t> Reader<'t> {
         Some(vec![Term { coefficient: q.value, exponent: 0.0 }])
     }
 
-    fn incompressible(&mut self, node: Node<'t>) -> Option<(Substance, Arc<dyn Engine>)> {
+    fn incompressible(&mut self, node: Node<'t>) -> Option<Medium> {
         if let Some(n) = node.get("name")
             && node.get("specific_heat").is_none()
         {
             let name = n.text().unwrap_or_default();
-            let Some(medium) = Incompressible::listed(name) else {
+            let listed = Incompressible::listed(name).or_else(|| Incompressible::species(name));
+            let Some(medium) = listed else {
                 let known = crate::fluid::incompressible::LISTED.iter().map(|m| m.name);
                 let near = nearest(name, known);
                 let mut fault = n.fault(Code::UnknownFluid, format!("there is no listed medium \"{name}\""));
@@ -186,7 +212,7 @@ impl<'t> Reader<'t> {
                 self.fault(fault);
                 return None;
             };
-            return Some((Substance::Inert, Arc::new(medium)));
+            return Some((Substance::Inert, Arc::new(medium), None));
         }
         let Some(heat) = node.get("specific_heat") else {
             self.fault(
@@ -209,7 +235,7 @@ impl<'t> Reader<'t> {
         };
         let name = node.get("name").and_then(Node::text).unwrap_or("incompressible");
         let medium = Incompressible::new(name, phase, density, &terms, Some((50.0, 3000.0)));
-        Some((Substance::Inert, Arc::new(self.engine(node, medium)?)))
+        Some((Substance::Inert, Arc::new(self.engine(node, medium)?), None))
     }
 
     fn ideal_gas(&mut self, node: Node<'t>) -> Option<IdealGas> {

@@ -1,7 +1,10 @@
 //! From a checked document to a process. Structural faults are collected, each at its place.
 
 mod components;
+mod ends;
 mod fluids;
+mod holdup;
+mod media;
 mod states;
 mod values;
 
@@ -121,9 +124,24 @@ struct Reader<'t> {
     flow_nodes: Vec<(&'t str, Node<'t>)>,
     calibrations: HashMap<&'t str, SourceId>,
     fluid_ids: HashMap<String, FluidId>,
+    /// Fluids that are being read, innermost last.
+    open_fluids: Vec<String>,
+    /// Composition coordinates that every state of a fluid shares.
+    shared_composition: HashMap<FluidId, VarId>,
+    /// Flows that are described by two ends: the flow and its state at the far one.
+    two_ended: Vec<TwoEnded>,
     flow_fluids: Vec<Option<FluidId>>,
     flow_states: Vec<Progress>,
     ambient: Option<(VarId, VarId)>,
+}
+
+/// A flow that is described by its two ends.
+struct TwoEnded {
+    flow: FlowId,
+    /// The state where it leaves.
+    near: StateId,
+    /// The half that arrives, once it has been made.
+    far: Option<FlowId>,
 }
 
 /// How far the state of a flow has been read.
@@ -171,6 +189,7 @@ impl<'t> Reader<'t> {
             sources: Vec::new(),
             groups: Vec::new(),
             redundant: Vec::new(),
+            flue_gas: Vec::new(),
             remarks: Vec::new(),
             assumptions: Vec::new(),
         };
@@ -185,6 +204,9 @@ impl<'t> Reader<'t> {
             flow_nodes: Vec::new(),
             calibrations: HashMap::new(),
             fluid_ids: HashMap::new(),
+            open_fluids: Vec::new(),
+            shared_composition: HashMap::new(),
+            two_ended: Vec::new(),
             flow_fluids: Vec::new(),
             flow_states: Vec::new(),
             ambient: None,
@@ -209,6 +231,7 @@ impl<'t> Reader<'t> {
         for f in 0..self.flow_nodes.len() {
             self.carried(f);
         }
+        self.pipes();
         self.components_rest();
         self.groups();
         self.mark_wetness();
@@ -365,6 +388,7 @@ impl<'t> Reader<'t> {
                     holdup: None,
                     ports: Vec::new(),
                     purpose: None,
+                    throat_area: None,
                     implied: false,
                 });
             }

@@ -78,7 +78,7 @@ impl<'t> Reader<'t> {
     }
 
     /// The state of a material flow, read once; flows may share it.
-    fn flow_state(&mut self, f: FlowId) -> Option<StateId> {
+    pub(super) fn flow_state(&mut self, f: FlowId) -> Option<StateId> {
         match self.flow_states[f] {
             Progress::Done(state) => return state,
             Progress::Reading => {
@@ -145,6 +145,9 @@ impl<'t> Reader<'t> {
             }
         }
         let fluid = self.flow_fluid(f)?;
+        if let Some(ends) = node.get("ends") {
+            return self.two_ends(f, node, ends, fluid);
+        }
         let ambient = node.get("state").is_some();
         self.state(node, fluid, &format!("\"{name}\""), ambient, Some(f))
     }
@@ -436,11 +439,12 @@ impl<'t> Reader<'t> {
             ("salinity", CompositionForm::Direct, Dimension::Fraction),
         ];
         let variable = self.process.fluids[fluid].engine.elements_vary();
+        let shared = self.shared_composition.get(&fluid).copied();
         let humid = matches!(self.process.fluids[fluid].substance, Substance::HumidAir);
         let mut found = None;
         for (member, form, dimension) in MEMBERS {
             let Some(n) = node.get(member) else { continue };
-            if !variable || (humid == (member == "salinity")) {
+            if !variable || shared.is_some() || (humid == (member == "salinity")) {
                 let fluid_name = self.process.fluids[fluid].name.clone();
                 self.fault(n.fault(Code::Conflict, format!("\"{fluid_name}\" has no {member}")));
                 return None;
@@ -455,6 +459,9 @@ impl<'t> Reader<'t> {
         }
         if !variable {
             return Some(None);
+        }
+        if let Some(v) = shared {
+            return Some(Some((CompositionForm::Direct, v)));
         }
         if let Some(c) = found {
             return Some(Some(c));
@@ -513,8 +520,23 @@ impl<'t> Reader<'t> {
     }
 }
 
+/// Members that say something of a state.
+pub(super) const STATE_MEMBERS: &[&str] = &[
+    "temperature",
+    "pressure",
+    "enthalpy",
+    "entropy",
+    "quality",
+    "superheat",
+    "subcooling",
+    "phase",
+    "relative_humidity",
+    "humidity_ratio",
+    "wet_bulb",
+    "dew_point",
+    "salinity",
+];
+
 fn has_state(node: Node<'_>) -> bool {
-    ["temperature", "pressure", "enthalpy", "entropy", "quality", "superheat", "subcooling", "phase"]
-        .iter()
-        .any(|m| node.get(m).is_some())
+    node.get("ends").is_some() || STATE_MEMBERS[..8].iter().any(|m| node.get(m).is_some())
 }

@@ -1,0 +1,6 @@
+//! The invariants of the house: who may import whom, what the core must not name, what every rule
+//! must bring along.
+
+mod layers;
+mod properties;
+mod rules;
