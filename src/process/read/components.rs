@@ -535,7 +535,7 @@ impl<'t> Reader<'t> {
                 match found {
                     Some(f) => {
                         // Fuel counts what enters, product what leaves; the rest is taken off.
-                        let enters = component.inlets.contains(&f);
+                        let enters = self.process.components[k].inlets.contains(&f);
                         let counts = if enters == (member == "fuel") { 1.0 } else { -1.0 };
                         if sign == counts {
                             list.push((f, sign));
