@@ -8,6 +8,7 @@ use serde_json::Value;
 use sigmadot::api::engine::{Core, Engine};
 use sigmadot::api::examples::EXAMPLES;
 use sigmadot::api::log::Log;
+use sigmadot::claim::ClaimReport;
 use sigmadot::pipeline::{Cancel, Failure};
 use sigmadot::process::ReadLimits;
 use sigmadot::quantity::UnitSystem;
@@ -57,7 +58,8 @@ fn media_types_and_codings() {
     check(&server, &[("accept", "image/png")], body).assert_problem(406, "not-acceptable");
     for (accept, given) in [
         ("*/*", "application/json"),
-        ("text/html,*/*;q=0.8", "application/json"),
+        ("text/html,*/*;q=0.8", "text/html; charset=utf-8"),
+        ("text/csv", "text/csv; charset=utf-8; header=present"),
         ("text/plain", "text/plain; charset=utf-8"),
     ] {
         let answer = check(&server, &[("accept", accept)], body);
@@ -176,6 +178,21 @@ impl Engine for Obedient {
 
     fn state(&self, body: &[u8], l: &ReadLimits, u: UnitSystem, c: &Cancel) -> Result<StateReport, Failure> {
         Core.state(body, l, u, c)
+    }
+
+    fn claim(&self, body: &[u8], l: &ReadLimits, u: UnitSystem, c: &Cancel) -> Result<ClaimReport, Failure> {
+        Core.claim(body, l, u, c)
+    }
+
+    fn claim_query(
+        &self,
+        kind: &str,
+        parameters: &[(String, String)],
+        l: &ReadLimits,
+        u: UnitSystem,
+        c: &Cancel,
+    ) -> Result<ClaimReport, Failure> {
+        Core.claim_query(kind, parameters, l, u, c)
     }
 }
 

@@ -3,4 +3,5 @@
 
 mod layers;
 mod properties;
+mod readme;
 mod rules;

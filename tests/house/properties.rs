@@ -156,8 +156,8 @@ fn verdicts_are_monotone_in_uncertainty() {
             "flows": {
                 "in": {"kind": "material", "to": "turbine", "fluid": "water", "mass_flow": "3 kg/s",
                        "pressure": "40.00 bar", "temperature": {"value": 400, "unit": "degC", "uncertainty": u}},
-                "out": {"kind": "material", "from": "turbine", "fluid": "water",
-                        "pressure": "8.000 bar", "temperature": {"value": 178, "unit": "degC", "uncertainty": u}},
+                "out": {"kind": "material", "from": "turbine", "fluid": "water", "phase": "vapour",
+                        "pressure": "8.000 bar", "temperature": {"value": 180, "unit": "degC", "uncertainty": u}},
                 "work": {"kind": "work", "from": "turbine"}
             }
         }));
