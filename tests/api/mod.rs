@@ -4,5 +4,6 @@ mod batch;
 mod cases;
 mod command_line;
 mod documents;
+mod faults;
 mod limits;
 mod problems;

@@ -60,12 +60,33 @@ pub fn read(body: &[u8], limits: &ReadLimits) -> Result<(Process, Inputs), Vec<D
             );
         }
     }
-    if !faults.is_empty() {
+    if faults.as_slice().iter().any(|f| f.code == Code::LimitExceeded) {
         return Err(faults.into_vec());
     }
-    let mut reader = Reader::new(root, limits, faults);
+    let mut reader = Reader::new(root, limits, Faults::new());
     reader.run();
-    if reader.faults.is_empty() { Ok((reader.process, reader.inputs)) } else { Err(reader.faults.into_vec()) }
+    if faults.is_empty() && reader.faults.is_empty() {
+        return Ok((reader.process, reader.inputs));
+    }
+    let walked = faults.is_empty();
+    // Where the walk found faults, the second stage adds only what does not follow from them.
+    for fault in reader.faults.into_vec() {
+        let apart = |known: &Diagnostic| {
+            !known.pointer.starts_with(&fault.pointer) && !fault.pointer.starts_with(&known.pointer)
+        };
+        let own = matches!(
+            fault.code,
+            Code::DanglingReference
+                | Code::CircularReference
+                | Code::NotConnected
+                | Code::UnknownFluid
+                | Code::UnknownSpecies
+        );
+        if walked || own && faults.as_slice().iter().all(apart) {
+            faults.push(fault);
+        }
+    }
+    Err(faults.into_vec())
 }
 
 /// Reads a question for one state: a process that holds this state only.
@@ -373,7 +394,8 @@ impl<'t> Reader<'t> {
         if let Some(node) = self.root.get("components") {
             for (name, n) in node.members() {
                 let kind = n.get("kind").and_then(Node::text).and_then(Kind::from_name);
-                let Some(kind) = kind else { continue };
+                // An unknown kind has its fault; the name is known all the same.
+                let kind = kind.unwrap_or(Kind::ControlVolume);
                 self.component_ids.insert(name, self.process.components.len());
                 self.process.components.push(Component {
                     name: name.to_owned(),
