@@ -3,8 +3,8 @@
 pub use crate::balance::Exergies;
 use crate::balance::{Evaluation, Row};
 use crate::evidence::{Families, Sensitivity, decide};
-use crate::model::{Blocked, Decision, Family, Margin, Model, Scope, Verdict};
-use crate::process::{SourceKind, StateForm, Var};
+use crate::model::{Blocked, Decision, Family, Margin, Model, Scope, Verdict, View};
+use crate::process::{StateForm, Var};
 use crate::rules::{self, Aspect, Authority, Explanation, Severity};
 
 /// The verdict of a component, a group, the plant or the whole, over tests of law.
@@ -485,14 +485,15 @@ fn spent(evaluation: &Evaluation<'_>, out: &mut Judgement) {
     }
 }
 
-/// Whether a figure was given, solved for or assumed.
-pub fn origin(model: &Model, var: usize) -> &'static str {
-    match &model.process.vars[var] {
+/// Whether a figure was given, solved for or assumed; `unknown` where none of these could be done.
+/// A given figure whose uncertainty alone was assumed is given.
+pub fn origin(view: View<'_>, var: usize) -> &'static str {
+    if !view.workspace.is_known(var) {
+        return "unknown";
+    }
+    match &view.model.process.vars[var] {
         Var::Unknown { .. } => "solved",
-        Var::Given(affine) => {
-            let assumed = affine.terms.is_empty()
-                || affine.terms.iter().any(|t| model.process.sources[t.0].kind == SourceKind::Assumed);
-            if assumed { "assumed" } else { "given" }
-        }
+        Var::Given(affine) if affine.terms.is_empty() => "assumed",
+        Var::Given(_) => "given",
     }
 }
