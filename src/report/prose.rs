@@ -448,7 +448,7 @@ mod tests {
     }
 
     #[test]
-    fn steering_characters_are_replaced() {
+    fn control_characters_are_replaced() {
         assert_eq!(clean("a\u{1b}[31m\u{202e}b"), "a\u{fffd}[31m\u{fffd}b");
     }
 }
