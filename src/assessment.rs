@@ -6,6 +6,7 @@ use crate::evidence::{Families, Sensitivity, decide};
 use crate::model::{Blocked, Decision, Family, Margin, Model, Scope, Verdict, View};
 use crate::process::{StateForm, Var};
 use crate::rules::{self, Aspect, Authority, Explanation, Severity};
+use std::collections::HashMap;
 
 /// The verdict of a component, a group, the plant or the whole, over tests of law.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
@@ -150,7 +151,7 @@ pub struct Judgement {
 pub fn margins(evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
     let disabled = &evaluation.view.model.process.policy.disable;
     for (i, rule) in rules::ALL.iter().enumerate() {
-        if !disabled.iter().any(|d| d == rule.info().name) {
+        if !disabled.contains(&rule.info().name) {
             rule.margins(i, evaluation, out);
         }
     }
@@ -161,7 +162,14 @@ pub fn judge(evaluation: &Evaluation<'_>, margins: &[Margin], sensitivity: &mut 
     let model = evaluation.view.model;
     let process = &model.process;
     let (mut decisions, families) = decide(model, margins, sensitivity, process.policy.false_alarm);
-    follow_primary(margins, &mut decisions);
+    let primaries = primaries(margins, &decisions);
+    for (decision, primary) in decisions.iter_mut().zip(&primaries) {
+        // A view never says more than the test it follows from: the probability of a false alarm
+        // was shared out among the primary tests.
+        if let (Some(own), Some(primary)) = (decision, primary) {
+            own.verdict = own.verdict.min(primary.verdict);
+        }
+    }
     let mut out = Judgement {
         verdict: Overall::Unchecked,
         complete: true,
@@ -176,11 +184,11 @@ pub fn judge(evaluation: &Evaluation<'_>, margins: &[Margin], sensitivity: &mut 
         groups: vec![(Overall::Unchecked, false); process.groups.len()],
         plant: (Overall::Unchecked, false),
     };
-    for (margin, decision) in margins.iter().zip(&decisions) {
+    for (i, (margin, decision)) in margins.iter().zip(&decisions).enumerate() {
         let info = rules::ALL[margin.rule].info();
         match (&margin.form, decision) {
             (Ok(_), Some(d)) => {
-                if info.authority == Authority::Law && !secondary(margin) {
+                if info.authority == Authority::Law && primaries[i].is_none() {
                     let verdict = Overall::of(d.verdict);
                     out.verdict = out.verdict.max(verdict);
                     match d.verdict {
@@ -219,11 +227,12 @@ pub fn judge(evaluation: &Evaluation<'_>, margins: &[Margin], sensitivity: &mut 
             (Ok(_), None) => {}
         }
     }
-    gather(evaluation, margins, &decisions, &mut out);
+    gather(evaluation, margins, &decisions, &primaries, &mut out);
     for rule in &process.policy.disable {
         let info = rules::find(rule).map(|i| rules::ALL[i].info());
         if let Some(info) = info.filter(|i| i.authority == Authority::Law) {
             out.complete = false;
+            out.counts.unchecked += 1;
             out.unchecked.push(Unchecked {
                 pointer: "/policy/disable".to_owned(),
                 what: info.name,
@@ -233,36 +242,52 @@ pub fn judge(evaluation: &Evaluation<'_>, margins: &[Margin], sensitivity: &mut 
             });
         }
     }
+    untested(evaluation, margins, &mut out);
     spent(evaluation, &mut out);
     out
 }
 
-/// Whether a margin sees the same defect as its component's entropy balance, or as its smallest
-/// temperature difference, from another side.
-fn secondary(margin: &Margin) -> bool {
-    let aspect = rules::ALL[margin.rule].info().aspect;
-    margin.family == Family::None
-        && (aspect == Aspect::Interior || aspect == Aspect::Entropy && margin.detail == 0)
-}
-
-/// A secondary view never says more than the test it follows from: the probability of a false
-/// alarm was shared out among the primary tests.
-fn follow_primary(margins: &[Margin], decisions: &mut [Option<Decision>]) {
-    for i in 0..margins.len() {
-        if !secondary(&margins[i]) {
-            continue;
-        }
-        let primary = (0..margins.len()).find(|&j| {
-            margins[j].scope == margins[i].scope
-                && margins[j].family == Family::Entropy
-                && rules::ALL[margins[j].rule].info().aspect == rules::ALL[margins[i].rule].info().aspect
-        });
-        if let Some(Some(first)) = primary.map(|j| decisions[j])
-            && let Some(own) = &mut decisions[i]
-        {
-            own.verdict = own.verdict.min(first.verdict);
+/// Claims that no rule could test.
+fn untested(evaluation: &Evaluation<'_>, margins: &[Margin], out: &mut Judgement) {
+    for component in &evaluation.view.model.process.components {
+        for stated in &component.stated {
+            if margins.iter().all(|m| m.pointer.as_ref() != Some(&stated.pointer)) {
+                out.unchecked.push(Unchecked {
+                    pointer: stated.pointer.clone(),
+                    what: "stated_performance",
+                    reason: "missing",
+                    detail: format!(
+                        "no rule of law bounds this claim for a {} as it is described",
+                        component.kind.name().replace('_', " ")
+                    ),
+                    would_need:
+                        "the temperatures and streams that bound it, or a kind of machine that it is made for"
+                            .to_owned(),
+                });
+            }
         }
     }
+}
+
+/// For each margin that sees the same defect as its component's entropy balance, or as its
+/// smallest temperature difference, from another side: the decision on that primary test. A view
+/// whose primary test was not made stands for itself.
+fn primaries(margins: &[Margin], decisions: &[Option<Decision>]) -> Vec<Option<Decision>> {
+    let aspect = |i: usize| rules::ALL[margins[i].rule].info().aspect;
+    let mut first: HashMap<(Scope, bool), Decision> = HashMap::new();
+    for (i, margin) in margins.iter().enumerate() {
+        if margin.family == Family::Entropy
+            && let Some(decision) = decisions[i]
+        {
+            first.entry((margin.scope, aspect(i) == Aspect::Interior)).or_insert(decision);
+        }
+    }
+    let primary = |(i, margin): (usize, &Margin)| {
+        let view = margin.family == Family::None
+            && (aspect(i) == Aspect::Interior || aspect(i) == Aspect::Entropy && margin.detail == 0);
+        view.then(|| first.get(&(margin.scope, aspect(i) == Aspect::Interior)).copied()).flatten()
+    };
+    margins.iter().enumerate().map(primary).collect()
 }
 
 /// Where a scope is described.
@@ -281,6 +306,7 @@ fn gather(
     evaluation: &Evaluation<'_>,
     margins: &[Margin],
     decisions: &[Option<Decision>],
+    primaries: &[Option<Decision>],
     out: &mut Judgement,
 ) {
     let process = &evaluation.view.model.process;
@@ -317,13 +343,15 @@ fn gather(
     };
     sequence.sort_by_key(|&i| (rank(margins[i].scope), order(aspect(i)), margins[i].rule, i));
     let mut findings: Vec<(usize, Finding)> = Vec::new();
+    // Findings of entropy generation that a more specific rule has put into plain words.
+    let mut worded: Vec<usize> = Vec::new();
     for i in sequence {
         let Some(decision) = decisions[i] else { continue };
         let margin = &margins[i];
         let info = rules::ALL[margin.rule].info();
         let members = inside(margin.scope);
         // Is the defect already reported?
-        let known = findings.iter_mut().find(|(j, f)| {
+        let known = findings.iter_mut().enumerate().find(|(_, (j, f))| {
             let other = aspect(*j);
             let same_place = f.scope == margin.scope;
             let contained = match f.scope {
@@ -347,7 +375,19 @@ fn gather(
                 _ => same_place && same_kind && name(*j) == info.name && margin.pointer == f_pointer(f),
             }
         });
-        if let Some((_, finding)) = known {
+        if let Some((n, (_, finding))) = known {
+            if finding.scope == margin.scope
+                && rules::only_counts_entropy(rules::ALL[finding.rule].info().name)
+                && rules::names_the_defect(info)
+                && !worded.contains(&n)
+            {
+                let sentence = rules::ALL[margin.rule].explain(evaluation, margin, &decision).statement;
+                if !sentence.is_empty() {
+                    finding.explanation.statement.push(' ');
+                    finding.explanation.statement.push_str(&sentence);
+                    worded.push(n);
+                }
+            }
             if !finding.covers.contains(&info.name) && rules::ALL[finding.rule].info().name != info.name {
                 finding.covers.push(info.name);
             }
@@ -389,7 +429,7 @@ fn gather(
         if let Some(d) = decisions[i]
             && d.verdict == Verdict::Undecided
             && info.authority == Authority::Law
-            && margin.family != Family::None
+            && primaries[i].is_none()
         {
             let explanation = rules::ALL[margin.rule].explain(evaluation, margin, &d);
             out.undecided.push(Finding {

@@ -9,6 +9,7 @@ use crate::model::{Margin, Model, Plan, View, Workspace};
 use crate::process::{self, Inputs, ReadLimits};
 use crate::quantity::UnitSystem;
 use crate::report::{Report, StateReport};
+use crate::rules;
 use std::rc::Rc;
 use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, Ordering};
@@ -114,7 +115,7 @@ pub fn check_bytes(
     units: UnitSystem,
     cancel: &Cancel,
 ) -> Result<Report, Failure> {
-    let (process, inputs) = process::read(body, limits).map_err(Failure::Rejected)?;
+    let (process, inputs) = process::read(body, limits, &rules::names()).map_err(Failure::Rejected)?;
     cancel.check()?;
     let mut room = Room::default();
     let bound = Bound::compile(process, inputs, &mut room);

@@ -11,7 +11,9 @@ use utoipa::ToSchema;
 use super::problem;
 use super::route::{BASE, Call, Gives, JSON, Outcome, Route, json_response};
 use crate::diagnostic::Code;
-use crate::fluid::{self, Provenance};
+use crate::fluid::Provenance;
+use crate::fluid::catalogue::{self, Listed, ListedSpecies};
+use crate::fluid::ideal_gas::SpeciesPhase;
 use crate::process::kinds::{Direction, Kind, Port, Stuff};
 use crate::quantity::{self, Dimension};
 use crate::rules::{self, RuleInfo};
@@ -110,8 +112,12 @@ async fn limits(call: Call) -> Outcome {
 #[derive(Serialize, ToSchema)]
 pub struct FluidEntry {
     /// The name as a description gives it.
+    pub name: String,
+    /// Other spellings that are taken.
+    pub aliases: Vec<String>,
+    /// The kind of fluid object that the name stands for.
     #[schema(value_type = String)]
-    pub name: &'static str,
+    pub kind: &'static str,
     /// The equation that its states come from.
     pub formulation: String,
     /// Where that equation is published.
@@ -120,19 +126,60 @@ pub struct FluidEntry {
     pub range: String,
 }
 
+/// One chemical species.
+#[derive(Serialize, ToSchema)]
+pub struct SpeciesEntry {
+    /// The name as a description gives it.
+    #[schema(value_type = String)]
+    pub name: &'static str,
+    /// Other spellings that are taken.
+    pub aliases: &'static [String],
+    /// `gas`, `liquid` or `solid`.
+    #[schema(value_type = String)]
+    pub phase: &'static str,
+    /// Molar mass in kg/mol.
+    pub molar_mass: f64,
+    /// Lowest temperature of its data, K.
+    pub lowest_temperature: f64,
+    /// Highest temperature of its data, K.
+    pub highest_temperature: f64,
+    /// Where its coefficients are published.
+    #[schema(value_type = String)]
+    pub source: &'static str,
+}
+
 /// The answer of `GET /v1/fluids`.
 #[derive(Serialize, ToSchema)]
 pub struct FluidList {
     /// The fluids that can be named; further ones are described in `fluids` of a description.
     pub fluids: Vec<FluidEntry>,
+    /// The species that mixtures of ideal gases are made of, and those that stand alone as liquid or solid.
+    pub species: Vec<SpeciesEntry>,
 }
 
-/// The fluids.
+/// The fluids and species.
 pub fn fluids() -> FluidList {
-    let known = fluid::names().filter_map(|name| Some((name, fluid::by_name(name).ok()?.1.provenance())));
-    let entry =
-        |(name, Provenance { formulation, source, range })| FluidEntry { name, formulation, source, range };
-    FluidList { fluids: known.map(entry).collect() }
+    let fluid = |Listed { name, aliases, kind, provenance }: Listed| {
+        let Provenance { formulation, source, range } = provenance;
+        FluidEntry { name, aliases, kind, formulation, source, range }
+    };
+    let species = |s: ListedSpecies| SpeciesEntry {
+        name: s.name,
+        aliases: s.aliases,
+        phase: match s.phase {
+            SpeciesPhase::Gas => "gas",
+            SpeciesPhase::Liquid => "liquid",
+            SpeciesPhase::Solid => "solid",
+        },
+        molar_mass: s.molar_mass,
+        lowest_temperature: s.temperature_range.0,
+        highest_temperature: s.temperature_range.1,
+        source: s.source,
+    };
+    FluidList {
+        fluids: catalogue::listing().into_iter().map(fluid).collect(),
+        species: catalogue::species().map(species).collect(),
+    }
 }
 
 /// One rule.

@@ -31,8 +31,10 @@ pub(super) const UNCERTAINTY_FIELDS: &[(&str, &str)] = &[
 ];
 
 /// One measurement of a variable: its value, or the tag that will bring it.
-// Nearly every reading is a value, so boxing it would only add an allocation to each.
-#[allow(clippy::large_enum_variant)]
+#[allow(
+    clippy::large_enum_variant,
+    reason = "nearly every reading is a value; a box would cost each an allocation"
+)]
 #[derive(Clone, Debug, PartialEq)]
 pub enum Reading {
     /// A value.

@@ -348,10 +348,6 @@ pub enum StatedFigure {
     Cop,
     /// Exergy efficiency.
     ExergyEfficiency,
-    /// Power, W or J.
-    Power,
-    /// Heat duty, W or J.
-    Duty,
 }
 
 /// One content of a vessel before or after a batch.
@@ -478,7 +474,7 @@ pub struct Policy {
     /// Smallest temperature approach asked for by practice, K.
     pub minimum_approach: Option<f64>,
     /// Rules that are switched off, by name.
-    pub disable: Vec<String>,
+    pub disable: Vec<&'static str>,
 }
 
 /// Something that was assumed because it was not given.

@@ -33,7 +33,6 @@ pub static DESCRIPTION: ObjectShape = ObjectShape {
         optional("fluids", FLUIDS, "Own fluids by name."),
         optional("groups", GROUPS, "Unions of components that get balances of their own."),
         optional("calibrations", CALIBRATIONS, "Errors common to the members of a calibration group."),
-        optional("economics", Shape::Object(&ECONOMICS), "Prices and costs."),
         required("components", COMPONENTS, "Components by name."),
         required("flows", FLOWS, "Flows by name."),
     ]],
@@ -138,16 +137,6 @@ static CALIBRATION: ObjectShape = ObjectShape {
 
 const GROUPS: Shape =
     Shape::Map { key: Key::Name("group"), value: &Shape::List { item: &Shape::Name, max: MANY } };
-
-static ECONOMICS: ObjectShape = ObjectShape {
-    name: "Economics",
-    doc: "Prices; used to put a figure on the exergy that is destroyed.",
-    fields: &[&[
-        optional("currency", Shape::Text, "Three-letter code."),
-        optional("annual_hours", Shape::Number, "Hours of operation a year."),
-        optional("exergy_price", Shape::Quantity(D::PricePerEnergy), "What a unit of fuel exergy costs."),
-    ]],
-};
 
 // ---- Fluids
 
@@ -460,8 +449,6 @@ static STATED: ObjectShape = ObjectShape {
         optional("efficiency", Shape::Quantity(D::Fraction), "Energy efficiency."),
         optional("cop", Shape::Quantity(D::Fraction), "Coefficient of performance."),
         optional("exergy_efficiency", Shape::Quantity(D::Fraction), "Exergy efficiency."),
-        optional("power", Shape::Quantity(D::Power), "Power."),
-        optional("duty", Shape::Quantity(D::Power), "Heat duty."),
     ]],
 };
 

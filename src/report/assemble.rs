@@ -407,18 +407,14 @@ impl Assembler<'_, '_> {
             Carried::Work(w, form) => {
                 out.kind = "work";
                 out.origin = assessment::origin(view, *w);
-                out.phase = None;
                 if let Ok(w) = view.var(*w) {
                     let figure = self.figure(&w, energy);
                     out.figures.push("power", figure);
                 }
-                out.fluid = Some(
-                    match form {
-                        WorkForm::Shaft => "shaft",
-                        WorkForm::Electric => "electric",
-                    }
-                    .to_owned(),
-                );
+                out.form = Some(match form {
+                    WorkForm::Shaft => "shaft",
+                    WorkForm::Electric => "electric",
+                });
             }
             Carried::Radiation(q, t) => {
                 out.kind = "radiation";

@@ -340,7 +340,7 @@ impl Sheet {
 
     fn flow(&mut self, name: &str, flow: &FlowReport) {
         let outside = || "outside".to_owned();
-        let words = [Some(flow.kind), flow.fluid.as_deref(), flow.phase, Some(flow.origin)];
+        let words = [Some(flow.kind), flow.form, flow.fluid.as_deref(), flow.phase, Some(flow.origin)];
         let words: Vec<&str> = words.into_iter().flatten().collect();
         let (from, to) = (flow.from.clone().unwrap_or_else(outside), flow.to.clone().unwrap_or_else(outside));
         self.note("flow", name, "course", &format!("from {from} to {to}; {}", words.join("; ")));

@@ -244,7 +244,7 @@ fn transfers(report: &Report) -> Grid {
     let rows = report.flows.0.iter().filter(|(_, f)| f.kind != "material").map(|(name, f)| {
         let rate = main_figure(f);
         let at = f.figures.get("temperature").or_else(|| f.figures.get("mean_temperature"));
-        let kind = f.fluid.as_deref().map_or_else(|| f.kind.to_owned(), |form| format!("{form} {}", f.kind));
+        let kind = f.form.map_or_else(|| f.kind.to_owned(), |form| format!("{form} {}", f.kind));
         vec![
             prose::clean(name),
             prose::clean(&kind),

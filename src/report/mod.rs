@@ -424,6 +424,10 @@ pub struct FlowReport {
     #[serde(skip_serializing_if = "Option::is_none")]
     #[cfg_attr(feature = "server", schema(nullable = false))]
     pub fluid: Option<String>,
+    /// Form of work: `shaft` or `electric`.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub form: Option<&'static str>,
     /// Phase.
     #[serde(skip_serializing_if = "Option::is_none")]
     #[cfg_attr(feature = "server", schema(nullable = false))]

@@ -2,6 +2,7 @@
 
 use super::grid::{self, Align, Grid};
 use super::{Finding, Report, prose};
+use crate::rules;
 use std::fmt::Write;
 
 /// Widest line.
@@ -63,7 +64,11 @@ impl Report {
     fn headline(&self) -> String {
         match self.violations.first() {
             Some(f) => {
-                let short = format!("{}: {} (1 below).", prose::place(&f.r#where), prose::words(f.rule));
+                let specific = |name: &&&str| {
+                    rules::find(name).is_some_and(|i| rules::names_the_defect(rules::ALL[i].info()))
+                };
+                let plain = f.covers.iter().find(specific).copied().unwrap_or(f.rule);
+                let short = format!("{}: {} (1 below).", prose::place(&f.r#where), prose::words(plain));
                 prose::clean(&self.statement.replace(&f.statement, &short))
             }
             None => prose::clean(&self.statement),

@@ -270,6 +270,39 @@ pub fn find(name: &str) -> Option<usize> {
     ALL.iter().position(|r| r.info().name == name)
 }
 
+/// Every rule's name.
+pub fn names() -> Vec<&'static str> {
+    ALL.iter().map(|rule| rule.info().name).collect()
+}
+
+/// Whether a rule only adds up entropy, so that a finding of it gains from the sentence of a rule
+/// that [names the defect](names_the_defect).
+pub fn only_counts_entropy(name: &str) -> bool {
+    matches!(
+        name,
+        "negative-entropy-generation"
+            | "negative-group-entropy-generation"
+            | "negative-plant-entropy-generation"
+    )
+}
+
+/// Whether a rule of law says what is wrong in terms of the machine at hand, beyond the balance of
+/// entropy or exergy.
+pub fn names_the_defect(info: &RuleInfo) -> bool {
+    let of_law = matches!(info.authority, Authority::Law);
+    let restates = matches!(
+        info.name,
+        "clausius-inequality-broken"
+            | "batch-entropy-negative"
+            | "work-beats-reversible"
+            | "negative-exergy-destruction"
+            | "exergy-efficiency-above-one"
+            | "section-entropy-negative"
+    );
+    let aspect = matches!(info.aspect, Aspect::Entropy | Aspect::Interior | Aspect::Reaction);
+    of_law && aspect && !restates && !only_counts_entropy(info.name)
+}
+
 /// The family of a rule's tests by its authority and aspect.
 pub const fn family(info: &RuleInfo) -> Family {
     match info.aspect {

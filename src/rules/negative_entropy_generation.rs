@@ -76,7 +76,7 @@ pub(super) fn explain_generation(
     } else {
         String::new()
     };
-    let verb = if decision.value < 0.0 { "destroys" } else { "generates" };
+    let verb = if decision.value < 0.0 { "would have to destroy" } else { "generates" };
     Explanation {
         statement: phrase::sentence(format!(
             "{subject} {verb} entropy: σ = {}{spread} (z = {}; probability that σ < 0: {}).",

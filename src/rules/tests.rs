@@ -8,7 +8,7 @@ use std::rc::Rc;
 
 /// Reads, solves and evaluates a description.
 fn evaluated<R>(description: &str, ask: impl FnOnce(&mut Evaluation<'_>) -> R) -> R {
-    let (process, inputs) = read(description.as_bytes(), &ReadLimits::default())
+    let (process, inputs) = read(description.as_bytes(), &ReadLimits::default(), &names())
         .unwrap_or_else(|faults| panic!("{}", faults.iter().map(|f| format!("{f}\n")).collect::<String>()));
     let (model, inputs) = Model::compile(process, inputs);
     let mut workspace = Workspace::default();
@@ -162,7 +162,7 @@ fn gradients_follow_the_given_figures() {
     for rule in ALL {
         let info = rule.info();
         let Case::Description(description) = info.breaking else { continue };
-        let (process, inputs) = read(description.as_bytes(), &ReadLimits::default()).unwrap();
+        let (process, inputs) = read(description.as_bytes(), &ReadLimits::default(), &names()).unwrap();
         let (model, inputs) = Model::compile(process, inputs);
         let value = |inputs: &Inputs| {
             let mut workspace = Workspace::default();

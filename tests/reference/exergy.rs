@@ -7,6 +7,7 @@ use sigmadot::balance::Exergies;
 use sigmadot::model::Scope;
 use sigmadot::pipeline::{Bound, Room};
 use sigmadot::process::{ReadLimits, read};
+use sigmadot::rules::names;
 use std::fmt::Write;
 
 /// Checks both identities over every region of a description, to 1e-9 of the throughput:
@@ -14,7 +15,7 @@ use std::fmt::Write;
 /// balances and accounts there were.
 #[track_caller]
 fn identities(description: &str) -> (usize, usize) {
-    let (process, inputs) = read(description.as_bytes(), &ReadLimits::default())
+    let (process, inputs) = read(description.as_bytes(), &ReadLimits::default(), &names())
         .unwrap_or_else(|faults| panic!("{faults:?}\n{description}"));
     let mut room = Room::default();
     let bound = Bound::compile(process, inputs, &mut room);
@@ -522,7 +523,7 @@ fn an_own_purpose_counts_and_a_wrong_sign_is_refused() {
     let report = report(&description(r#"["a", "-b"]"#));
     let balance = &report["components"]["unit"]["exergy_balance"];
     account(balance, thermal(600.0) + mechanical(3.0) - thermal(500.0), 100.0);
-    let faults = read(description(r#"["a", "b"]"#).as_bytes(), &ReadLimits::default()).unwrap_err();
+    let faults = read(description(r#"["a", "b"]"#).as_bytes(), &ReadLimits::default(), &names()).unwrap_err();
     assert_eq!(faults.len(), 1, "{faults:?}");
     assert_eq!(faults[0].pointer, "/components/unit/purpose/fuel/1");
     assert!(faults[0].hint.as_deref().unwrap().contains("\"-b\""), "{faults:?}");

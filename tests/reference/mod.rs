@@ -7,6 +7,7 @@ mod exchanger;
 mod exergy;
 mod gas;
 mod humid_air;
+mod identities;
 mod kinds;
 mod plants;
 mod real_fluid;

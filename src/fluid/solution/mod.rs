@@ -213,7 +213,7 @@ fn solve_temperature(
 }
 
 /// Pure water as a solution without salt.
-fn pure(w: water::Gibbs) -> Saline {
+fn pure(w: water::LiquidWater) -> Saline {
     Saline { g: w.g, t: w.t, p: w.p, tt: w.tt, tp: w.tp, pp: w.pp, ..Saline::default() }
 }
 

@@ -67,6 +67,36 @@ impl Steam {
     }
 }
 
+/// Specific Gibbs energy of liquid water and its derivatives in SI, with h = 0 and s = 0 near the
+/// triple point: what mixtures with liquid water are built on.
+#[derive(Clone, Copy, Debug)]
+pub(in crate::fluid) struct LiquidWater {
+    /// g, J/kg.
+    pub g: f64,
+    /// (∂g/∂T)p, J/(kg K).
+    pub t: f64,
+    /// (∂g/∂p)T, m³/kg.
+    pub p: f64,
+    /// (∂²g/∂T²)p, J/(kg K²).
+    pub tt: f64,
+    /// ∂²g/∂T∂p, m³/(kg K).
+    pub tp: f64,
+    /// (∂²g/∂p²)T, m³/(kg Pa).
+    pub pp: f64,
+}
+
+/// Liquid water at `p` (Pa) and `t` (K) by the equation of region 1, which reaches from 273.15 to
+/// 623.15 K and to 100 MPa. The caller keeps to that range.
+pub(in crate::fluid) fn liquid(p: f64, t: f64) -> LiquidWater {
+    let at = Region::One.at(p, t);
+    LiquidWater { g: at.h - t * at.s, t: -at.s, p: at.v, tt: -at.cp / t, tp: at.v_t, pp: at.v_p }
+}
+
+/// Saturation pressure over liquid water in Pa and its slope, eq. (30); the caller keeps to its range.
+pub(in crate::fluid) fn saturation_liquid(t: f64) -> (f64, f64) {
+    saturation::pressure(t)
+}
+
 fn finite(values: &[f64]) -> Result<(), PropertyError> {
     if values.iter().all(|v| v.is_finite()) { Ok(()) } else { Err(PropertyError::NotFinite) }
 }

@@ -158,14 +158,9 @@ impl<'t> Reader<'t> {
         let sources = [(Some(node), "heat_loss"), (given, "heat_loss"), (given, "mechanical_loss")];
         let mut described = false;
         for (holder, member) in sources {
-            let Some(holder) = holder else { continue };
-            if holder.get(member).is_none() {
-                continue;
-            }
-            let factor = match (self.process.basis, self.process.duration) {
-                (Basis::Amount, Some(seconds)) => seconds,
-                _ => 1.0,
-            };
+            let Some(holder) = holder.filter(|h| h.get(member).is_some()) else { continue };
+            let instead = "the heat as a flow with its \"energy\"";
+            let Some(factor) = self.rate_factor(holder, member, instead) else { continue };
             let Some(v) = self.var(holder, member, Dimension::Power, Class::Amount, factor) else { continue };
             described |= member == "heat_loss";
             let name = self.process.components[k].name.clone();
@@ -506,15 +501,13 @@ impl<'t> Reader<'t> {
 
     fn stated(&mut self, k: ComponentId, node: Node<'t>) {
         let Some(stated) = node.get("stated_performance") else { return };
-        for (member, what, dimension) in [
-            ("isentropic_efficiency", StatedFigure::IsentropicEfficiency, Dimension::Fraction),
-            ("efficiency", StatedFigure::Efficiency, Dimension::Fraction),
-            ("cop", StatedFigure::Cop, Dimension::Fraction),
-            ("exergy_efficiency", StatedFigure::ExergyEfficiency, Dimension::Fraction),
-            ("power", StatedFigure::Power, Dimension::Power),
-            ("duty", StatedFigure::Duty, Dimension::Power),
+        for (member, what) in [
+            ("isentropic_efficiency", StatedFigure::IsentropicEfficiency),
+            ("efficiency", StatedFigure::Efficiency),
+            ("cop", StatedFigure::Cop),
+            ("exergy_efficiency", StatedFigure::ExergyEfficiency),
         ] {
-            if let Some(var) = self.var(stated, member, dimension, Class::Claim, 1.0) {
+            if let Some(var) = self.var(stated, member, Dimension::Fraction, Class::Claim, 1.0) {
                 let pointer = stated.pointer_to(member);
                 self.process.components[k].stated.push(Stated { what, var, pointer });
             }

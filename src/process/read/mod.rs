@@ -37,11 +37,15 @@ impl Default for ReadLimits {
     }
 }
 
-/// Reads a description.
+/// Reads a description. `rules` are the names that its policy can switch off.
 ///
 /// # Errors
 /// Every fault that was found, located (at most [`document::FAULT_LIMIT`] of them).
-pub fn read(body: &[u8], limits: &ReadLimits) -> Result<(Process, Inputs), Vec<Diagnostic>> {
+pub fn read(
+    body: &[u8],
+    limits: &ReadLimits,
+    rules: &[&'static str],
+) -> Result<(Process, Inputs), Vec<Diagnostic>> {
     let mut faults = Faults::new();
     let Some(tree) = Tree::read(body, &limits.tree, &mut faults) else {
         return Err(faults.into_vec());
@@ -64,7 +68,7 @@ pub fn read(body: &[u8], limits: &ReadLimits) -> Result<(Process, Inputs), Vec<D
         return Err(faults.into_vec());
     }
     let mut reader = Reader::new(root, limits, Faults::new());
-    reader.run();
+    reader.run(rules);
     if faults.is_empty() && reader.faults.is_empty() {
         return Ok((reader.process, reader.inputs));
     }
@@ -154,6 +158,8 @@ struct Reader<'t> {
     flow_fluids: Vec<Option<FluidId>>,
     flow_states: Vec<Progress>,
     ambient: Option<(VarId, VarId)>,
+    /// The barometric pressure is not given, and no gauge reading has made use of it yet.
+    barometer_assumed: bool,
 }
 
 /// A flow that is described by its two ends.
@@ -231,11 +237,12 @@ impl<'t> Reader<'t> {
             flow_fluids: Vec::new(),
             flow_states: Vec::new(),
             ambient: None,
+            barometer_assumed: false,
         }
     }
 
-    fn run(&mut self) {
-        self.policy();
+    fn run(&mut self, rules: &[&'static str]) {
+        self.policy(rules);
         self.environment();
         if let Some(node) = self.root.get("duration") {
             self.process.duration = node.quantity(Dimension::Duration, &mut self.faults).map(|q| q.value);
@@ -266,7 +273,7 @@ impl<'t> Reader<'t> {
         self.process.assumptions.push(Assumption { pointer: pointer.into(), statement: statement.into() });
     }
 
-    fn policy(&mut self) {
+    fn policy(&mut self, rules: &[&'static str]) {
         let Some(node) = self.root.get("policy") else { return };
         let mut policy = self.process.policy.clone();
         if let Some(n) = node.get("false_alarm") {
@@ -294,16 +301,32 @@ impl<'t> Reader<'t> {
             policy.minimum_approach =
                 n.quantity(Dimension::TemperatureDifference, &mut self.faults).map(|q| q.value);
         }
-        let words = |member: &str| -> Vec<Node<'t>> {
-            node.get(member).map(|n| n.items().collect()).unwrap_or_default()
-        };
-        for n in words("disable") {
-            policy.disable.push(n.text().unwrap_or_default().to_owned());
-        }
-        for n in words("enable") {
-            policy.disable.retain(|d| Some(d.as_str()) != n.text());
-        }
+        policy.disable = self.rule_names(node, "disable", rules);
+        let enable = self.rule_names(node, "enable", rules);
+        policy.disable.retain(|name| !enable.contains(name));
         self.process.policy = policy;
+    }
+
+    /// The rules that a list of the policy names, each once.
+    fn rule_names(&mut self, policy: Node<'t>, member: &str, rules: &[&'static str]) -> Vec<&'static str> {
+        let mut out = Vec::new();
+        for item in policy.get(member).into_iter().flat_map(|list| list.items()) {
+            let name = item.text().unwrap_or_default();
+            match rules.iter().find(|rule| **rule == name) {
+                Some(rule) if !out.contains(rule) => out.push(*rule),
+                Some(_) => {}
+                None => {
+                    let fault = item.fault(Code::UnknownChoice, format!("there is no rule \"{name}\""));
+                    let near = nearest(name, rules.iter().copied());
+                    self.fault(if near.is_empty() {
+                        fault.hint("GET /v1/rules lists them, and so does `sigmadot rules`")
+                    } else {
+                        fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")))
+                    });
+                }
+            }
+        }
+        out
     }
 
     fn environment(&mut self) {
@@ -330,6 +353,7 @@ impl<'t> Reader<'t> {
                 }
             }
             None => {
+                self.barometer_assumed = true;
                 self.process.environment.barometer = self.source(
                     "/environment/barometric_pressure".to_owned(),
                     SourceKind::Barometer,

@@ -135,6 +135,12 @@ impl<'t> Reader<'t> {
         if q.reference() == Reference::Gauge {
             terms.push((self.process.environment.barometer, factor));
             let barometer = self.process.environment.barometer;
+            if std::mem::take(&mut self.barometer_assumed) {
+                self.assume(
+                    "/environment/barometric_pressure",
+                    "barometric pressure not given: 1.01325 bar with a standard uncertainty of 3 kPa",
+                );
+            }
             if q.value + self.inputs.values[barometer] <= 0.0 {
                 self.fault(Diagnostic::new(
                     Code::BelowAbsoluteZero,
@@ -223,10 +229,24 @@ impl<'t> Reader<'t> {
         Some(id)
     }
 
+    /// What a rate is to be multiplied by: 1, or the duration of a batch. A batch without a duration
+    /// takes no rate, but `instead`.
+    pub(super) fn rate_factor(&mut self, holder: Node<'t>, member: &str, instead: &str) -> Option<f64> {
+        match (self.process.basis, self.process.duration) {
+            (Basis::Rate, _) => Some(1.0),
+            (Basis::Amount, Some(seconds)) => Some(seconds),
+            (Basis::Amount, None) => {
+                let message = "a rate in a batch needs the description's \"duration\"";
+                let fault = Diagnostic::new(Code::Conflict, holder.pointer_to(member), message);
+                self.fault(fault.hint(format!("give \"duration\", or {instead}")));
+                None
+            }
+        }
+    }
+
     /// An amount of material: the variable and how it counts.
     pub(super) fn amount(&mut self, node: Node<'t>, name: &str, what: &str) -> (VarId, AmountForm) {
         let batch = self.process.basis == Basis::Amount;
-        let duration = self.process.duration;
         let mut found: Option<(VarId, AmountForm)> = None;
         for (member, dimension, rate) in [
             ("mass_flow", Dimension::MassFlow, true),
@@ -245,17 +265,14 @@ impl<'t> Reader<'t> {
                 );
                 continue;
             }
-            let factor = match (batch, rate, duration) {
-                (false, true, _) | (true, false, _) => 1.0,
-                (true, true, Some(seconds)) => seconds,
-                (true, true, None) => {
-                    self.fault(
-                        n.fault(Code::Conflict, "a rate in a batch needs the description's \"duration\"")
-                            .hint("give \"duration\", or the total as \"mass\", \"moles\" or \"volume\""),
-                    );
-                    continue;
+            let factor = match (batch, rate) {
+                (_, true) => {
+                    let instead = "the total as \"mass\", \"moles\" or \"volume\"";
+                    let Some(factor) = self.rate_factor(node, member, instead) else { continue };
+                    factor
                 }
-                (false, false, _) => {
+                (true, false) => 1.0,
+                (false, false) => {
                     self.fault(
                         n.fault(
                             Code::Conflict,
@@ -300,18 +317,8 @@ impl<'t> Reader<'t> {
         if both && let Some(n) = node.get("energy") {
             self.fault(n.fault(Code::Conflict, format!("give \"{rate}\" or \"energy\", not both")));
         }
-        if let Some(n) = node.get(rate) {
-            let factor = match (batch, self.process.duration) {
-                (false, _) => 1.0,
-                (true, Some(seconds)) => seconds,
-                (true, None) => {
-                    self.fault(
-                        n.fault(Code::Conflict, "a rate in a batch needs the description's \"duration\"")
-                            .hint("give \"duration\", or the total as \"energy\""),
-                    );
-                    1.0
-                }
-            };
+        if node.get(rate).is_some() {
+            let factor = self.rate_factor(node, rate, "the total as \"energy\"").unwrap_or(1.0);
             if let Some(v) = self.var(node, rate, Dimension::Power, Class::Amount, factor) {
                 return v;
             }
