@@ -1,6 +1,7 @@
 //! The invariants of the house: who may import whom, what the core must not name, what every rule
 //! must bring along.
 
+mod fuzz;
 mod layers;
 mod properties;
 mod readme;
