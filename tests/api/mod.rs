@@ -1,5 +1,6 @@
 //! The service over real HTTP on loopback.
 
+mod bad_input;
 mod batch;
 mod cases;
 mod command_line;
