@@ -276,7 +276,10 @@ fn primaries(margins: &[Margin], decisions: &[Option<Decision>]) -> Vec<Option<D
     let aspect = |i: usize| rules::ALL[margins[i].rule].info().aspect;
     let mut first: HashMap<(Scope, bool), Decision> = HashMap::new();
     for (i, margin) in margins.iter().enumerate() {
+        // A test over nothing that flows bounds nothing.
+        let idle = margin.throughput == 0.0 && decisions[i].is_some_and(|d| d.at_limit);
         if margin.family == Family::Entropy
+            && !idle
             && let Some(decision) = decisions[i]
         {
             first.entry((margin.scope, aspect(i) == Aspect::Interior)).or_insert(decision);
@@ -341,7 +344,12 @@ fn gather(
         Scope::Plant => 3,
         Scope::Description => 4,
     };
-    sequence.sort_by_key(|&i| (rank(margins[i].scope), order(aspect(i)), margins[i].rule, i));
+    // Of several margins of one rule at one place the largest comes first and stands for all.
+    let size = |i: usize| decisions[i].map_or(0, |d| d.z.abs().to_bits());
+    sequence.sort_by_key(|&i| {
+        let m = &margins[i];
+        (rank(m.scope), order(aspect(i)), m.rule, m.scope, std::cmp::Reverse(size(i)), i)
+    });
     let mut findings: Vec<(usize, Finding)> = Vec::new();
     // Findings of entropy generation that a more specific rule has put into plain words.
     let mut worded: Vec<usize> = Vec::new();
@@ -396,6 +404,11 @@ fn gather(
                 && !finding.conditional_on.contains(&info.name)
             {
                 finding.conditional_on.push(info.name);
+                if finding.scope == margin.scope {
+                    let sentence = rules::ALL[margin.rule].explain(evaluation, margin, &decision).statement;
+                    finding.explanation.statement.push_str(" It is conditional on this: ");
+                    finding.explanation.statement.push_str(&sentence);
+                }
             }
             continue;
         }

@@ -137,8 +137,12 @@ fn wrong_values(shape: &Shape) -> Vec<(String, &'static str)> {
         ("1e999".to_owned(), if shape.takes(JsonType::Number) { "bad-number" } else { "" }),
         (long, "limit-exceeded"),
     ];
-    let samples =
-        [(JsonType::Boolean, "true"), (JsonType::List, "[]"), (JsonType::Object, "{}"), (JsonType::Number, "7")];
+    let samples = [
+        (JsonType::Boolean, "true"),
+        (JsonType::List, "[]"),
+        (JsonType::Object, "{}"),
+        (JsonType::Number, "7"),
+    ];
     for (json, text) in samples {
         if !shape.takes(json) {
             let bare = json == JsonType::Number && quantity(shape).is_some();
@@ -251,9 +255,12 @@ fn every_value_of_every_example_spoilt() {
             places(&example, "", &mut all);
             for place in all {
                 let mut spoilt = example.clone();
-                for (value, certain) in
-                    [(json!(null), true), (json!("x".repeat(10_000)), true), (json!(""), false), (json!([]), false)]
-                {
+                for (value, certain) in [
+                    (json!(null), true),
+                    (json!("x".repeat(10_000)), true),
+                    (json!(""), false),
+                    (json!([]), false),
+                ] {
                     *spoilt.pointer_mut(&place).unwrap() = value.clone();
                     let (status, answer) = line.post(target, spoilt.to_string().as_bytes());
                     count += 1;
@@ -262,7 +269,10 @@ fn every_value_of_every_example_spoilt() {
                         assert_eq!(status, 422, "{name}{place} = {value}");
                         assert!(found.iter().any(|(p, _)| p == &place), "{name}{place} = {value}: {found:?}");
                     } else {
-                        assert!(status == 200 || !faults(&answer).is_empty(), "{name}{place} = {value}: {status}");
+                        assert!(
+                            status == 200 || !faults(&answer).is_empty(),
+                            "{name}{place} = {value}: {status}"
+                        );
                     }
                 }
             }
