@@ -320,7 +320,7 @@ fn table() -> Vec<Row> {
         (swapped("\"40 bar\"", "40"), 422, &[("/flows/a/pressure", "bare-number")]),
         (swapped("\"40 bar\"", "1e999"), 422, &[("/flows/a/pressure", "")]),
         (swapped("40 bar", "1e999 bar"), 422, &[("/flows/a/pressure", "")]),
-        (swapped("40 bar", "NaN bar"), 422, &[("/flows/a/pressure", "bad-quantity")]),
+        (swapped("40 bar", "NaN bar"), 422, &[("/flows/a/pressure", "bad-number")]),
         (swapped("40 bar", "-1 bar"), 422, &[("/flows/a/pressure", "below-absolute-zero")]),
         (swapped("400 degC", "-300 degC"), 422, &[("/flows/a/temperature", "below-absolute-zero")]),
         (swapped("400 degC", "0 K"), 422, &[("/flows/a/temperature", "below-absolute-zero")]),
@@ -344,8 +344,9 @@ fn table() -> Vec<Row> {
         ),
         (swapped("\"water\"", "\"R-134b\""), 422, &[("/flows/a/fluid", "unknown-fluid")]),
         // Incomplete sides.
-        (exchanger(r#"[{"in": ["hi"], "out": ["ho"]}]"#), 422, &[("/components/x/sides", "")]),
-        (exchanger(r#"[{"in": ["hi"], "out": []}, {"in": ["ci"], "out": ["co"]}]"#), 422, &[("/components/x/sides/0", "")]),
+        (exchanger(r#"[{"in": ["hi"]}, {"in": ["ci"], "out": ["co"]}]"#), 422, &[("/components/x/sides/0", "missing-field")]),
+        (exchanger(r#"[{"in": ["hi"], "out": []}, {"in": ["ci"], "out": ["co"]}]"#), 422, &[("/components/x", "missing-port")]),
+        (exchanger("[{}]"), 422, &[("/components/x/sides/0", "missing-field")]),
         (exchanger(r#"[{"in": ["hi"], "out": ["zz"]}, {"in": ["ci"], "out": ["co"]}]"#), 422, &[("/components/x/sides/0/out/0", "dangling-reference")]),
         (exchanger(r#"[{"in": ["hi", "hi"], "out": ["ho"]}, {"in": ["ci"], "out": ["co"]}]"#), 422, &[("/components/x/sides/0/in/1", "")]),
         // Many faults at once.
