@@ -3,6 +3,7 @@
 
 mod defects;
 mod layers;
+mod promises;
 mod properties;
 mod readme;
 mod rules;

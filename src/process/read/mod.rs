@@ -5,6 +5,7 @@ mod ends;
 mod fluids;
 mod holdup;
 mod media;
+mod references;
 mod states;
 mod values;
 
@@ -65,6 +66,7 @@ pub fn read(
         }
     }
     if !faults.is_empty() {
+        references::check(root, &mut faults);
         return Err(faults.into_vec());
     }
     let mut reader = Reader::new(root, limits, faults);
@@ -297,11 +299,9 @@ impl<'t> Reader<'t> {
                 None => {
                     let fault = item.fault(Code::UnknownChoice, format!("there is no rule \"{name}\""));
                     let near = nearest(name, rules.iter().copied());
-                    self.fault(if near.is_empty() {
-                        fault.hint("GET /v1/rules lists them, and so does `sigmadot rules`")
-                    } else {
-                        fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")))
-                    });
+                    self.fault(
+                        fault.suggest(&near, "GET /v1/rules lists them, and so does `sigmadot rules`"),
+                    );
                 }
             }
         }
@@ -439,14 +439,8 @@ impl<'t> Reader<'t> {
                 let target = n.text()?;
                 let found = self.component_ids.get(target).copied();
                 if found.is_none() {
-                    let known: Vec<&str> = self.component_ids.keys().copied().collect();
-                    let mut fault =
-                        n.fault(Code::DanglingReference, format!("there is no component \"{target}\""));
-                    let near = nearest(target, known);
-                    if !near.is_empty() {
-                        fault = fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")));
-                    }
-                    self.faults.push(fault);
+                    let known = self.component_ids.keys().copied();
+                    self.faults.push(references::dangling(n, "component", target, known));
                 }
                 found
             };
@@ -498,9 +492,10 @@ impl<'t> Reader<'t> {
                 match self.component_ids.get(target) {
                     Some(&k) if !members.contains(&k) => members.push(k),
                     Some(_) => {}
-                    None => self.fault(
-                        item.fault(Code::DanglingReference, format!("there is no component \"{target}\"")),
-                    ),
+                    None => {
+                        let known = self.component_ids.keys().copied();
+                        self.faults.push(references::dangling(item, "component", target, known));
+                    }
                 }
             }
             self.process.groups.push(Group { name: name.to_owned(), pointer: list.pointer(), members });
