@@ -4,7 +4,7 @@ use super::{Explanation, Figure, measure, phrase};
 use crate::balance::Evaluation;
 use crate::balance::passage::sections;
 use crate::balance::performance::isentropic_efficiency;
-use crate::model::{Decision, Dual, Margin, Scope};
+use crate::model::{Decision, Dual, Family, Margin, Scope};
 use crate::process::kinds::Kind;
 use crate::process::{Component, Stated, StatedFigure};
 use crate::quantity::Dimension;
@@ -50,6 +50,7 @@ pub(super) fn margins(machine: Machine, me: usize, evaluation: &Evaluation<'_>, 
                 out.push(Margin {
                     pointer: Some(process.flows[after].pointer.clone()),
                     detail: if sections.len() == 1 { 0 } else { i + 1 },
+                    family: if sections.len() == 1 { Family::None } else { Family::Entropy },
                     ..measure::lower_bound(me, Scope::Component(k), rise, throughput)
                 });
             }

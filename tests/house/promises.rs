@@ -217,3 +217,48 @@ fn a_tag_in_a_single_check_is_told_that_it_has_no_reading() {
     let found = faults(&description);
     assert_eq!((found[0].0, found[0].1.as_str()), (Code::DanglingReference, "/flows/hot/temperature"));
 }
+
+#[test]
+fn each_section_of_a_turbine_is_a_test_of_its_family() {
+    let report = check(&json!({
+        "components": {"turbine": {"kind": "turbine"}},
+        "flows": {
+            "live": {"kind": "material", "to": "turbine", "fluid": "water", "pressure": "60.0 bar", "temperature": "480.0 degC", "mass_flow": "5 kg/s"},
+            "exhaust": {"kind": "material", "from": "turbine", "fluid": "water", "pressure": "0.100 bar", "quality": 0.920, "mass_flow": "4 kg/s"},
+            "bleed": {"kind": "material", "from": "turbine", "fluid": "water", "pressure": "8.00 bar", "temperature": "190.0 degC", "mass_flow": "1 kg/s"},
+            "shaft": {"kind": "work", "from": "turbine", "form": "shaft"}
+        }
+    }));
+    // The turbine as a whole, and its two sections.
+    assert_eq!(report.families.0[0].1.tests, 3);
+    assert_eq!(report.verdict, "violated");
+    assert_eq!(report.violations.len(), 1);
+    assert_eq!(report.violations[0].r#where, "/flows/bleed");
+    assert!(!report.components.0[0].1.region.at_limit);
+}
+
+#[test]
+fn the_ports_of_an_ejector_can_be_named_from_either_side() {
+    let product = |ports: Value| {
+        let report = check(&json!({
+            "components": {"ejector": {"kind": "ejector", "ports": ports}},
+            "flows": {
+                "steam": {"kind": "material", "to": "ejector", "fluid": "water", "pressure": "10.0 bar", "temperature": "200.0 degC", "mass_flow": "1 kg/s"},
+                "vapour": {"kind": "material", "to": "ejector", "fluid": "water", "pressure": "0.100 bar", "quality": 1, "mass_flow": "0.35 kg/s"},
+                "mixed": {"kind": "material", "from": "ejector", "fluid": "water", "pressure": "0.400 bar", "mass_flow": "1.35 kg/s"}
+            }
+        }));
+        let report = serde_json::to_value(&report).unwrap();
+        report["components"]["ejector"]["exergy_balance"]["product"]["value"].as_f64().unwrap()
+    };
+    let inferred = product(json!({}));
+    for ports in [
+        json!({"motive": "steam"}),
+        json!({"suction": "vapour"}),
+        json!({"motive": "steam", "suction": ["vapour"]}),
+    ] {
+        assert_eq!(product(ports), inferred);
+    }
+    // Named the other way round, the roles change places.
+    assert!((product(json!({"motive": "vapour"})) - inferred).abs() > 1.0);
+}
