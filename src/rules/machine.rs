@@ -56,16 +56,7 @@ pub(super) fn margins(machine: Machine, me: usize, evaluation: &Evaluation<'_>, 
             }
         }
         for (i, stated) in claims(component) {
-            let Ok(claim) = view.var(stated.var) else { continue };
-            let form = Dual::constant(1.0).minus(&claim);
-            // At the limit: the limit lies within the rounding interval of the claimed figure.
-            let within = form.value.abs() <= measure::half_digit(process, stated.var);
-            let form = if within { Dual::constant(0.0) } else { form };
-            out.push(Margin {
-                pointer: Some(stated.pointer.clone()),
-                detail: sections.len() + i + 1,
-                ..measure::lower_bound(me, Scope::Component(k), form, 1.0 + claim.value.abs())
-            });
+            out.extend(measure::claim(me, view, k, stated, &Dual::constant(1.0), sections.len() + i + 1));
         }
     }
 }
