@@ -5,6 +5,7 @@
 use sigmadot::pipeline::{Bound, Cancel, Room, check_bytes, evaluate_and_decide};
 use sigmadot::process::{ReadLimits, read};
 use sigmadot::quantity::UnitSystem;
+use sigmadot::rules::names;
 use std::hint::black_box;
 use std::time::Instant;
 
@@ -69,7 +70,7 @@ fn main() {
     println!("{:<58} {:>10} {:>10}", "", "best µs", "median µs");
     let row = |name: &str, (best, median): (f64, f64)| println!("{name:<58} {best:>10.2} {median:>10.2}");
 
-    let (process, inputs) = read(PLANT.as_bytes(), &limits).expect("bench plant");
+    let (process, inputs) = read(PLANT.as_bytes(), &limits, &names()).expect("bench plant");
     let mut room = Room::default();
     let bound = Bound::compile(process, inputs, &mut room);
     row(

@@ -204,7 +204,8 @@ pub fn judge(evaluation: &Evaluation<'_>, margins: &[Margin], sensitivity: &mut 
                         Scope::Flow(_) | Scope::Description => None,
                     };
                     if let Some(slot) = slot {
-                        if margin.family == Family::Entropy && info.aspect == Aspect::Entropy {
+                        let whole = margin.family == Family::Entropy && margin.detail == 0;
+                        if whole && info.aspect == Aspect::Entropy {
                             slot.1 = d.at_limit;
                         }
                         slot.0 = slot.0.max(verdict);
@@ -280,6 +281,7 @@ fn primaries(margins: &[Margin], decisions: &[Option<Decision>]) -> Vec<Option<D
         let idle = margin.throughput == 0.0 && decisions[i].is_some_and(|d| d.at_limit);
         if margin.family == Family::Entropy
             && !idle
+            && (aspect(i) == Aspect::Interior || margin.detail == 0)
             && let Some(decision) = decisions[i]
         {
             first.entry((margin.scope, aspect(i) == Aspect::Interior)).or_insert(decision);

@@ -104,6 +104,23 @@ impl Diagnostic {
         self.hint = Some(hint.into());
         self
     }
+
+    /// The same fault with the names that were perhaps meant, as a hint; without any, `otherwise`
+    /// unless that is empty.
+    #[must_use]
+    pub fn suggest<S: AsRef<str>>(self, near: &[S], otherwise: &str) -> Self {
+        match did_you_mean(near) {
+            Some(hint) => self.hint(hint),
+            None if otherwise.is_empty() => self,
+            None => self.hint(otherwise.to_owned()),
+        }
+    }
+}
+
+/// `did you mean "a" or "b"?`; `None` without names.
+pub fn did_you_mean<S: AsRef<str>>(near: &[S]) -> Option<String> {
+    let quoted: Vec<String> = near.iter().map(|name| format!("\"{}\"", name.as_ref())).collect();
+    (!quoted.is_empty()).then(|| format!("did you mean {}?", quoted.join(" or ")))
 }
 
 impl fmt::Display for Diagnostic {

@@ -45,7 +45,7 @@ examples! {
     "district-heat-pump": "A river heat pump with sliding source and sink.",
     "power-house-cooling-tower": "A cooling tower: dry air and make-up are solved.",
     "brewery-organic-cycle": "An organic Rankine cycle on hot water.",
-    "grain-store-dryer": "A belt dryer: moist grain as dry grain and water, the air flow solved.",
+    "grain-store-dryer": "A belt dryer: moist grain as dry grain and water; air flow and humidity of the exhaust solved.",
 }
 
 /// The example of this name.

@@ -91,9 +91,11 @@ pub fn compressed_side(view: View<'_>, component: &Component) -> Option<usize> {
 
 /// Whether an inlet of a firing component is its fuel: it is said to be, or it can burn.
 pub(super) fn is_fuel(process: &Process, component: &Component, f: FlowId) -> bool {
-    let named: Vec<FlowId> = component.ports.iter().filter(|p| p.0 == "fuel").map(|p| p.1).collect();
-    if !named.is_empty() {
-        return named.contains(&f);
+    if component.ports.iter().any(|p| p.0 == "fuel") {
+        return component.ports.contains(&("fuel", f));
+    }
+    if component.ports.contains(&("oxidant", f)) {
+        return false;
     }
     let Some(m) = process.flows[f].material() else { return false };
     let fluid = &process.fluids[process.states[m.state].fluid];

@@ -524,12 +524,19 @@ impl<'a, 's> Book<'a, 's> {
     /// P = m_s (e_out − e_s), F = m_m (e_m − e_out).
     fn ejection(&mut self) -> Result<(), Blocked> {
         let component = self.component;
-        let named: Vec<FlowId> = component.ports.iter().filter(|p| p.0 == "suction").map(|p| p.1).collect();
-        if !named.is_empty() {
-            return self.joining(Some(&named));
+        let named = |role: &str| -> Vec<FlowId> {
+            component.ports.iter().filter(|p| p.0 == role).map(|p| p.1).collect()
+        };
+        let (suction, motive) = (named("suction"), named("motive"));
+        if !suction.is_empty() {
+            return self.joining(Some(&suction));
+        }
+        let inlets: Vec<FlowId> = component.sides.iter().flat_map(|s| s.inlets.iter().copied()).collect();
+        if !motive.is_empty() {
+            let others: Vec<FlowId> = inlets.into_iter().filter(|f| !motive.contains(f)).collect();
+            return self.joining(Some(&others));
         }
         // The stream of the highest pressure is the motive one.
-        let inlets: Vec<FlowId> = component.sides.iter().flat_map(|s| s.inlets.iter().copied()).collect();
         let pressure = |f: FlowId| {
             let state = self.process().flows[f].material().map(|m| m.state)?;
             self.view.property(state, Property::Pressure).ok().map(|p| p.value)
@@ -590,6 +597,9 @@ impl<'a, 's> Book<'a, 's> {
                 Carried::Work(..) => Entry::Fuel,
                 _ if sign > 0.0 && (heats || driving) => Entry::Fuel,
                 _ if sign > 0.0 => self.by_temperature(f, &e, Entry::Fuel, Entry::Product),
+                _ if component.ports.contains(&("rejected", f)) => {
+                    self.by_temperature(f, &e, Entry::Loss, Entry::Fuel)
+                }
                 _ if flow.role == Some(Role::Product) => Entry::Product,
                 _ if heats && !flow.implied && flow.role.is_none() => {
                     self.by_temperature(f, &e, Entry::Product, Entry::Fuel)

@@ -275,11 +275,7 @@ impl<'t> Desk<'t> {
                 Err(near) => {
                     let shown: String = text.chars().take(40).collect();
                     let fault = node.fault(Code::UnknownFluid, format!("\"{shown}\" is not a known fluid"));
-                    self.faults.push(if near.is_empty() {
-                        fault.hint("GET /v1/fluids lists the fluids")
-                    } else {
-                        fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")))
-                    });
+                    self.faults.push(fault.suggest(&near, "GET /v1/fluids lists the fluids"));
                     return None;
                 }
             },

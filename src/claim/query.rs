@@ -93,14 +93,11 @@ pub fn body(kind: &str, params: &[(String, String)]) -> Result<String, Vec<Diagn
     let Some(known) = parameters(kind) else {
         let words = CLAIM.variants.iter().map(|v| v.word);
         let near = nearest(kind, words.clone());
-        let hint = if near.is_empty() {
-            format!("known: {}", words.collect::<Vec<_>>().join(", "))
-        } else {
-            format!("did you mean \"{}\"?", near.join("\" or \""))
-        };
+        let otherwise = format!("known: {}", words.collect::<Vec<_>>().join(", "));
         let shown: String = kind.chars().take(40).collect();
         let message = format!("\"{shown}\" is not a kind of claim");
-        return Err(vec![Diagnostic::new(Code::UnknownChoice, CLAIM.member, message).hint(hint)]);
+        let fault = Diagnostic::new(Code::UnknownChoice, CLAIM.member, message);
+        return Err(vec![fault.suggest(&near, &otherwise)]);
     };
     let mut faults = Vec::new();
     let mut root = Map::new();
@@ -117,12 +114,8 @@ pub fn body(kind: &str, params: &[(String, String)]) -> Result<String, Vec<Diagn
                 format!("\"{shown}\" is not a parameter of {kind}"),
             );
             let near = nearest(name, known.iter().map(|p| p.name.as_str()));
-            faults.push(if near.is_empty() {
-                let all: Vec<&str> = known.iter().map(|p| p.name.as_str()).collect();
-                fault.hint(format!("known: {}", all.join(", ")))
-            } else {
-                fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")))
-            });
+            let all: Vec<&str> = known.iter().map(|p| p.name.as_str()).collect();
+            faults.push(fault.suggest(&near, &format!("known: {}", all.join(", "))));
             continue;
         };
         let value = match (parameter.shape, value.as_str()) {

@@ -114,16 +114,10 @@ fn check_choice(node: Node<'_>, words: impl Iterator<Item = &'static str> + Clon
         return;
     }
     let near = nearest(text, words.clone());
-    let quote = |words: &[&str], joint: &str| {
-        words.iter().map(|w| format!("\"{w}\"")).collect::<Vec<_>>().join(joint)
-    };
-    let hint = if near.is_empty() {
-        format!("known: {}", quote(&words.collect::<Vec<_>>(), ", "))
-    } else {
-        format!("did you mean {}?", quote(&near, " or "))
-    };
+    let quoted: Vec<String> = words.map(|w| format!("\"{w}\"")).collect();
     let message = format!("\"{}\" is not one of the words that stand here", shortened(text));
-    faults.push(node.fault(Code::UnknownChoice, message).hint(hint));
+    let fault = node.fault(Code::UnknownChoice, message);
+    faults.push(fault.suggest(&near, &format!("known: {}", quoted.join(", "))));
 }
 
 fn check_object(node: Node<'_>, shape: &ObjectShape, telling: Option<&str>, faults: &mut Faults) {

@@ -157,18 +157,13 @@ pub(super) fn unknown_field<'a>(
         format!("the member \"{name}\" is not known here"),
     );
     let near = nearest(name, known.clone());
-    let hint = if near.is_empty() {
-        let known: Vec<&str> = known.into_iter().collect();
-        match known.len() {
-            0 => "nothing is expected here".to_owned(),
-            1..=40 => format!("known here: {}", known.join(", ")),
-            _ => "GET /openapi.json lists what is known".to_owned(),
-        }
-    } else {
-        let quoted: Vec<String> = near.iter().map(|n| format!("\"{n}\"")).collect();
-        format!("did you mean {}?", quoted.join(" or "))
+    let known: Vec<&str> = known.into_iter().collect();
+    let otherwise = match known.len() {
+        0 => "nothing is expected here".to_owned(),
+        1..=40 => format!("known here: {}", known.join(", ")),
+        _ => "GET /openapi.json lists what is known".to_owned(),
     };
-    faults.push(fault.hint(hint));
+    faults.push(fault.suggest(&near, &otherwise));
 }
 
 fn refuse_unknown(node: Node<'_>, known: &[(&str, &str)], faults: &mut Faults) {

@@ -323,18 +323,13 @@ pub fn find(text: &str, dimension: Dimension) -> Result<Scale, Diagnostic> {
     let spellings =
         table::rows().filter(|u| u.dimensions.contains(&dimension)).flat_map(|u| u.spellings.iter().copied());
     let near = nearest(text, spellings);
-    let hint = if near.is_empty() {
-        format!("for instance \"{}\"; GET /v1/units lists the units", dimension.example())
-    } else {
-        let quoted: Vec<String> = near.iter().map(|n| format!("\"{n}\"")).collect();
-        format!("did you mean {}?", quoted.join(" or "))
-    };
     let message = if text.is_empty() {
         format!("the unit is empty; a unit of {} is expected", dimension.name())
     } else {
         format!("\"{}\" is not a known unit of {}", shown(text), dimension.name())
     };
-    Err(Diagnostic::new(Code::UnknownUnit, "", message).hint(hint))
+    let otherwise = format!("for instance \"{}\"; GET /v1/units lists the units", dimension.example());
+    Err(Diagnostic::new(Code::UnknownUnit, "", message).suggest(&near, &otherwise))
 }
 
 pub(super) fn with_article(dimension: Dimension) -> String {

@@ -4,7 +4,7 @@
 use super::{Explanation, Figure, measure, phrase};
 use crate::balance::Evaluation;
 use crate::balance::reservoir::Reservoirs;
-use crate::model::{Decision, Dual, Margin, Scope};
+use crate::model::{Decision, Margin, Scope};
 use crate::process::StatedFigure;
 use crate::quantity::Dimension;
 
@@ -41,26 +41,15 @@ pub(super) fn margins(machine: Machine, me: usize, evaluation: &Evaluation<'_>, 
         }
         let Some(reservoirs) = Reservoirs::of(evaluation.view, k) else { continue };
         let Some(limit) = machine.limit(&reservoirs) else { continue };
-        let scale = |figure: f64| figure.abs() + limit.value.abs();
         if let Some(actual) = machine.actual(evaluation.view, k, &reservoirs) {
-            let throughput = scale(actual.value);
+            let throughput = actual.value.abs() + limit.value.abs();
             out.push(measure::lower_bound(me, Scope::Component(k), limit.clone().minus(&actual), throughput));
         }
         for (i, stated) in component.stated.iter().enumerate() {
             if stated.what != claimed(machine) {
                 continue;
             }
-            let Ok(claim) = evaluation.view.var(stated.var) else { continue };
-            let throughput = scale(claim.value);
-            let form = limit.clone().minus(&claim);
-            // At the limit: the limit lies within the rounding interval of the claimed figure.
-            let within = form.value.abs() <= measure::half_digit(process, stated.var);
-            let form = if within { Dual::constant(0.0) } else { form };
-            out.push(Margin {
-                pointer: Some(stated.pointer.clone()),
-                detail: i + 1,
-                ..measure::lower_bound(me, Scope::Component(k), form, throughput)
-            });
+            out.extend(measure::claim(me, evaluation.view, k, stated, &limit, i + 1));
         }
     }
 }

@@ -53,19 +53,9 @@ impl Rule for ExergyEfficiencyAboveOne {
                 out.push(measure::lower_bound(me, Scope::Component(k), form, account.throughput));
             }
             for (i, stated) in component.stated.iter().enumerate() {
-                if stated.what != StatedFigure::ExergyEfficiency {
-                    continue;
+                if stated.what == StatedFigure::ExergyEfficiency {
+                    out.extend(measure::claim(me, view, k, stated, &Dual::constant(1.0), i + 1));
                 }
-                let Ok(claim) = view.var(stated.var) else { continue };
-                let form = Dual::constant(1.0).minus(&claim);
-                // At the limit: the limit lies within the rounding interval of the claimed figure.
-                let within = form.value.abs() <= measure::half_digit(&view.model.process, stated.var);
-                let form = if within { Dual::constant(0.0) } else { form };
-                out.push(Margin {
-                    pointer: Some(stated.pointer.clone()),
-                    detail: i + 1,
-                    ..measure::lower_bound(me, Scope::Component(k), form, 1.0 + claim.value.abs())
-                });
             }
         }
     }

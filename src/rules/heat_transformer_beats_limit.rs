@@ -1,12 +1,12 @@
 //! heat-transformer-beats-limit
 
-use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, measure, phrase};
+use super::three_bodies::{self, Machine, Words};
+use super::{Aspect, Authority, Case, Explanation, Rule, RuleInfo, Severity, measure};
 use crate::balance::Evaluation;
 use crate::balance::reservoir::Reservoirs;
-use crate::model::{Decision, Dual, Margin, Scope};
+use crate::model::{Decision, Dual, Margin};
+use crate::process::ComponentId;
 use crate::process::kinds::Kind;
-use crate::process::{ComponentId, StatedFigure};
-use crate::quantity::Dimension;
 
 /// A heat transformer lifts a larger share of its heat than a reversible one would.
 ///
@@ -46,95 +46,42 @@ impl Rule for HeatTransformerBeatsLimit {
     }
 
     fn margins(&self, me: usize, evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
-        let view = evaluation.view;
-        let process = &view.model.process;
-        for (k, component) in process.components.iter().enumerate() {
-            let Some(machine) = Machine::of(evaluation, k) else { continue };
-            if let Some(actual) = &machine.actual {
-                let throughput = actual.value.abs() + machine.limit.value.abs();
-                let form = machine.limit.clone().minus(actual);
-                out.push(measure::lower_bound(me, Scope::Component(k), form, throughput));
-            }
-            for (i, stated) in component.stated.iter().enumerate() {
-                let Ok(claim) = view.var(stated.var) else { continue };
-                if stated.what != StatedFigure::Cop {
-                    continue;
-                }
-                let form = machine.limit.clone().minus(&claim);
-                // At the limit: the limit lies within the rounding interval of the claimed figure.
-                let within = form.value.abs() <= measure::half_digit(process, stated.var);
-                let form = if within { Dual::constant(0.0) } else { form };
-                out.push(Margin {
-                    pointer: Some(stated.pointer.clone()),
-                    detail: i + 1,
-                    ..measure::lower_bound(me, Scope::Component(k), form, 1.0 + claim.value.abs())
-                });
-            }
-        }
+        three_bodies::margins(me, machine, evaluation, out);
     }
 
     fn explain(&self, evaluation: &Evaluation<'_>, margin: &Margin, decision: &Decision) -> Explanation {
-        let Scope::Component(k) = margin.scope else { return Explanation::default() };
-        let Some(machine) = Machine::of(evaluation, k) else { return Explanation::default() };
-        let component = &evaluation.view.model.process.components[k];
-        let claim = margin.detail.checked_sub(1).and_then(|i| component.stated.get(i));
-        let figure = match claim {
-            Some(stated) => evaluation.view.var(stated.var).ok(),
-            None => machine.actual,
+        let words = Words {
+            figure: "lifted share",
+            roles: ["heat taken in at", "lifted to", "rest given off at"],
         };
-        let Some(figure) = figure else { return Explanation::default() };
-        let [a, b, c] = machine.temperatures.map(|t| phrase::figure(t, Dimension::Temperature));
-        Explanation {
-            statement: format!(
-                "The lifted share {} of {} {} the limit {} of a reversible machine (heat taken in at {a}, lifted to {b}, rest given off at {c}){}.",
-                phrase::number(figure.value),
-                phrase::subject(evaluation, margin.scope),
-                if decision.value < 0.0 { "exceeds" } else { "does not exceed" },
-                phrase::number(machine.limit.value),
-                phrase::sureness(decision),
-            ),
-            value: Some(Figure { value: figure.value, dimension: Dimension::Fraction }),
-            limit: Some(Figure { value: machine.limit.value, dimension: Dimension::Fraction }),
-            ..Explanation::default()
-        }
+        three_bodies::explain(machine, evaluation, margin, decision, &words)
     }
 }
 
-/// A machine between three reservoirs.
-struct Machine {
-    /// Reversible share of the heat that is lifted.
-    limit: Dual,
-    /// What its own flows amount to, where they are known.
-    actual: Option<Dual>,
-    /// Of the heat taken in, the heat lifted and what takes the rest, K.
-    temperatures: [f64; 3],
-}
-
-impl Machine {
-    fn of(evaluation: &Evaluation<'_>, k: ComponentId) -> Option<Machine> {
-        let component = &evaluation.view.model.process.components[k];
-        let (_, work) = measure::net_work_out(evaluation.view, component).ok()?;
-        if component.kind != Kind::AbsorptionMachine || work {
-            return None;
-        }
-        let reservoirs = Reservoirs::of(evaluation.view, k)?;
-        let [source] = &reservoirs.sources[..] else { return None };
-        let [first, second] = &reservoirs.sinks[..] else { return None };
-        let (hot, cold) =
-            if first.temperature.value > second.temperature.value { (first, second) } else { (second, first) };
-        let middle = source.temperature.value;
-        if !(hot.temperature.value > middle && middle > cold.temperature.value) {
-            return None;
-        }
-        let factor = |t: &Dual| Dual::constant(1.0).minus(&cold.temperature.times(&t.reciprocal()));
-        let limit = factor(&source.temperature).times(&factor(&hot.temperature).reciprocal());
-        let actual = source
-            .heat
-            .as_ref()
-            .zip(hot.heat.as_ref())
-            .filter(|(taken, _)| taken.value > 0.0)
-            .map(|(taken, lifted)| lifted.times(&taken.reciprocal()));
-        let temperatures = [middle, hot.temperature.value, cold.temperature.value];
-        Some(Machine { limit, actual, temperatures })
+/// A heat engine and the heat pump that it drives, with the share of the heat that is lifted.
+fn machine(evaluation: &Evaluation<'_>, k: ComponentId) -> Option<Machine> {
+    let component = &evaluation.view.model.process.components[k];
+    let (_, work) = measure::net_work_out(evaluation.view, component).ok()?;
+    if component.kind != Kind::AbsorptionMachine || work {
+        return None;
     }
+    let reservoirs = Reservoirs::of(evaluation.view, k)?;
+    let [source] = &reservoirs.sources[..] else { return None };
+    let [first, second] = &reservoirs.sinks[..] else { return None };
+    let (hot, cold) =
+        if first.temperature.value > second.temperature.value { (first, second) } else { (second, first) };
+    let middle = source.temperature.value;
+    if !(hot.temperature.value > middle && middle > cold.temperature.value) {
+        return None;
+    }
+    let factor = |t: &Dual| Dual::constant(1.0).minus(&cold.temperature.times(&t.reciprocal()));
+    let limit = factor(&source.temperature).times(&factor(&hot.temperature).reciprocal());
+    let actual = source
+        .heat
+        .as_ref()
+        .zip(hot.heat.as_ref())
+        .filter(|(taken, _)| taken.value > 0.0)
+        .map(|(taken, lifted)| lifted.times(&taken.reciprocal()));
+    let temperatures = [middle, hot.temperature.value, cold.temperature.value];
+    Some(Machine { limit, actual, temperatures })
 }

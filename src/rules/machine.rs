@@ -4,7 +4,7 @@ use super::{Explanation, Figure, measure, phrase};
 use crate::balance::Evaluation;
 use crate::balance::passage::sections;
 use crate::balance::performance::isentropic_efficiency;
-use crate::model::{Decision, Dual, Margin, Scope};
+use crate::model::{Decision, Dual, Family, Margin, Scope};
 use crate::process::kinds::Kind;
 use crate::process::{Component, Stated, StatedFigure};
 use crate::quantity::Dimension;
@@ -50,21 +50,13 @@ pub(super) fn margins(machine: Machine, me: usize, evaluation: &Evaluation<'_>, 
                 out.push(Margin {
                     pointer: Some(process.flows[after].pointer.clone()),
                     detail: if sections.len() == 1 { 0 } else { i + 1 },
+                    family: if sections.len() == 1 { Family::None } else { Family::Entropy },
                     ..measure::lower_bound(me, Scope::Component(k), rise, throughput)
                 });
             }
         }
         for (i, stated) in claims(component) {
-            let Ok(claim) = view.var(stated.var) else { continue };
-            let form = Dual::constant(1.0).minus(&claim);
-            // At the limit: the limit lies within the rounding interval of the claimed figure.
-            let within = form.value.abs() <= measure::half_digit(process, stated.var);
-            let form = if within { Dual::constant(0.0) } else { form };
-            out.push(Margin {
-                pointer: Some(stated.pointer.clone()),
-                detail: sections.len() + i + 1,
-                ..measure::lower_bound(me, Scope::Component(k), form, 1.0 + claim.value.abs())
-            });
+            out.extend(measure::claim(me, view, k, stated, &Dual::constant(1.0), sections.len() + i + 1));
         }
     }
 }

@@ -5,7 +5,7 @@ use crate::fluid::{CompositionForm, Property};
 use crate::model::{Dual, Family, Margin, Scope, Slot, Test, View};
 use crate::process::{
     AmountForm, Basis, Boundary, Carried, Component, ComponentId, FlowId, Literals, Process, StateForm,
-    StateId, Var, VarId,
+    StateId, Stated, Var, VarId,
 };
 use crate::quantity::Dimension;
 
@@ -25,6 +25,25 @@ pub(super) fn lower_bound(me: usize, scope: Scope, form: Dual, throughput: f64) 
         pointer: None,
         detail: 0,
     }
+}
+
+/// A claim of a component against its upper limit. It is at the limit where that lies within the
+/// rounding interval of the claimed figure.
+pub(super) fn claim(
+    me: usize,
+    view: View<'_>,
+    k: ComponentId,
+    stated: &Stated,
+    limit: &Dual,
+    detail: usize,
+) -> Option<Margin> {
+    let claim = view.var(stated.var).ok()?;
+    let throughput = claim.value.abs() + limit.value.abs();
+    let form = limit.clone().minus(&claim);
+    let within = form.value.abs() <= half_digit(&view.model.process, stated.var);
+    let form = if within { Dual::constant(0.0) } else { form };
+    let pointer = Some(stated.pointer.clone());
+    Some(Margin { pointer, detail, ..lower_bound(me, Scope::Component(k), form, throughput) })
 }
 
 /// Something that is simply so: a margin without uncertainty that does not hold.

@@ -17,6 +17,7 @@ mod saturation;
 mod terminal;
 #[cfg(test)]
 mod tests;
+mod three_bodies;
 
 use crate::balance::Evaluation;
 use crate::model::{Decision, Family, Margin};

@@ -50,18 +50,9 @@ impl Rule for RadiationExergyAboveLimit {
         for (k, component) in view.model.process.components.iter().enumerate() {
             let Some(limit) = limit(view, component) else { continue };
             for (i, stated) in component.stated.iter().enumerate() {
-                let Ok(claim) = view.var(stated.var) else { continue };
-                if stated.what != StatedFigure::Efficiency {
-                    continue;
+                if stated.what == StatedFigure::Efficiency {
+                    out.extend(measure::claim(me, view, k, stated, &limit, i));
                 }
-                let form = limit.clone().minus(&claim);
-                let within = form.value.abs() <= measure::half_digit(&view.model.process, stated.var);
-                let form = if within { Dual::constant(0.0) } else { form };
-                out.push(Margin {
-                    pointer: Some(stated.pointer.clone()),
-                    detail: i,
-                    ..measure::lower_bound(me, Scope::Component(k), form, 1.0 + claim.value.abs())
-                });
             }
         }
     }

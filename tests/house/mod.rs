@@ -4,6 +4,7 @@
 mod defects;
 mod fuzz;
 mod layers;
+mod promises;
 mod properties;
 mod readme;
 mod rules;

@@ -141,12 +141,7 @@ impl<'t> Reader<'t> {
                 None
             }
             None => {
-                let near = nearest(name, self.flow_ids.keys().copied());
-                let mut fault = node.fault(Code::DanglingReference, format!("there is no flow \"{name}\""));
-                if !near.is_empty() {
-                    fault = fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")));
-                }
-                self.fault(fault);
+                self.faults.push(references::dangling(node, "flow", name, self.flow_ids.keys().copied()));
                 None
             }
         }

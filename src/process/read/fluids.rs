@@ -113,18 +113,8 @@ impl<'t> Reader<'t> {
     fn named_fluid(&mut self, node: Node<'t>, text: &str) -> Option<(String, Medium)> {
         match crate::fluid::by_name(text) {
             Ok((substance, engine)) => Some((text.to_owned(), (substance, engine, None))),
-            Err(mut near) => {
-                if let Some(fluids) = self.root.get("fluids") {
-                    let own = nearest(text, fluids.members().map(|(name, _)| name));
-                    near.splice(0..0, own.into_iter().map(str::to_owned));
-                }
-                let mut fault = node.fault(Code::UnknownFluid, format!("there is no fluid \"{text}\""));
-                fault = if near.is_empty() {
-                    fault.hint("GET /v1/fluids lists the fluids; own ones go into \"fluids\"")
-                } else {
-                    fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")))
-                };
-                self.fault(fault);
+            Err(near) => {
+                self.fault(super::references::unknown_fluid(self.root, node, text, near));
                 None
             }
         }
@@ -204,12 +194,8 @@ impl<'t> Reader<'t> {
             let listed = Incompressible::listed(name).or_else(|| Incompressible::species(name));
             let Some(medium) = listed else {
                 let known = crate::fluid::incompressible::LISTED.iter().map(|m| m.name);
-                let near = nearest(name, known);
-                let mut fault = n.fault(Code::UnknownFluid, format!("there is no listed medium \"{name}\""));
-                if !near.is_empty() {
-                    fault = fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")));
-                }
-                self.fault(fault);
+                let fault = n.fault(Code::UnknownFluid, format!("there is no listed medium \"{name}\""));
+                self.fault(fault.suggest(&nearest(name, known), ""));
                 return None;
             };
             return Some((Substance::Inert, Arc::new(medium), None));
@@ -265,12 +251,8 @@ impl<'t> Reader<'t> {
                 own.iter().find(|s| s.name() == name).cloned().or_else(|| find_species(name).cloned());
             let Some(species) = species else {
                 let known = crate::fluid::ideal_gas::all_species().iter().map(Species::name);
-                let near = nearest(name, known);
-                let mut fault = n.fault(Code::UnknownSpecies, format!("there is no species \"{name}\""));
-                if !near.is_empty() {
-                    fault = fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")));
-                }
-                self.fault(fault);
+                let fault = n.fault(Code::UnknownSpecies, format!("there is no species \"{name}\""));
+                self.fault(fault.suggest(&nearest(name, known), ""));
                 good = false;
                 continue;
             };

@@ -115,12 +115,7 @@ impl<'t> Reader<'t> {
     fn named_flow(&mut self, node: Node<'t>) -> Option<(FlowId, FluidId)> {
         let name = node.text()?;
         let Some(&f) = self.flow_ids.get(name) else {
-            let near = nearest(name, self.flow_ids.keys().copied());
-            let mut fault = node.fault(Code::DanglingReference, format!("there is no flow \"{name}\""));
-            if !near.is_empty() {
-                fault = fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")));
-            }
-            self.fault(fault);
+            self.faults.push(references::dangling(node, "flow", name, self.flow_ids.keys().copied()));
             return None;
         };
         if self.flow_nodes[f].1.get("kind").and_then(Node::text) != Some("material") {
@@ -276,15 +271,9 @@ impl<'t> Reader<'t> {
             }
             _ => {
                 let known = ["seawater", "sodium chloride", "ethylene glycol", "propylene glycol"];
-                let mut fault =
+                let fault =
                     named.fault(Code::UnknownFluid, format!("there is no listed solution \"{name}\""));
-                let near = nearest(name, known);
-                fault = if near.is_empty() {
-                    fault.hint(format!("there are {}", known.join(", ")))
-                } else {
-                    fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")))
-                };
-                self.fault(fault);
+                self.fault(fault.suggest(&nearest(name, known), &format!("there are {}", known.join(", "))));
                 return None;
             }
         };

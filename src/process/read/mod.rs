@@ -5,6 +5,7 @@ mod ends;
 mod fluids;
 mod holdup;
 mod media;
+mod references;
 mod states;
 mod values;
 
@@ -64,33 +65,13 @@ pub fn read(
             );
         }
     }
-    if faults.as_slice().iter().any(|f| f.code == Code::LimitExceeded) {
+    if !faults.is_empty() {
+        references::check(root, &mut faults);
         return Err(faults.into_vec());
     }
-    let mut reader = Reader::new(root, limits, Faults::new());
+    let mut reader = Reader::new(root, limits, faults);
     reader.run(rules);
-    if faults.is_empty() && reader.faults.is_empty() {
-        return Ok((reader.process, reader.inputs));
-    }
-    let walked = faults.is_empty();
-    // Where the walk found faults, the second stage adds only what does not follow from them.
-    for fault in reader.faults.into_vec() {
-        let apart = |known: &Diagnostic| {
-            !known.pointer.starts_with(&fault.pointer) && !fault.pointer.starts_with(&known.pointer)
-        };
-        let own = matches!(
-            fault.code,
-            Code::DanglingReference
-                | Code::CircularReference
-                | Code::NotConnected
-                | Code::UnknownFluid
-                | Code::UnknownSpecies
-        );
-        if walked || own && faults.as_slice().iter().all(apart) {
-            faults.push(fault);
-        }
-    }
-    Err(faults.into_vec())
+    if reader.faults.is_empty() { Ok((reader.process, reader.inputs)) } else { Err(reader.faults.into_vec()) }
 }
 
 /// Reads a question for one state: a process that holds this state only.
@@ -318,11 +299,9 @@ impl<'t> Reader<'t> {
                 None => {
                     let fault = item.fault(Code::UnknownChoice, format!("there is no rule \"{name}\""));
                     let near = nearest(name, rules.iter().copied());
-                    self.fault(if near.is_empty() {
-                        fault.hint("GET /v1/rules lists them, and so does `sigmadot rules`")
-                    } else {
-                        fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")))
-                    });
+                    self.fault(
+                        fault.suggest(&near, "GET /v1/rules lists them, and so does `sigmadot rules`"),
+                    );
                 }
             }
         }
@@ -461,14 +440,8 @@ impl<'t> Reader<'t> {
                 let target = n.text()?;
                 let found = self.component_ids.get(target).copied();
                 if found.is_none() {
-                    let known: Vec<&str> = self.component_ids.keys().copied().collect();
-                    let mut fault =
-                        n.fault(Code::DanglingReference, format!("there is no component \"{target}\""));
-                    let near = nearest(target, known);
-                    if !near.is_empty() {
-                        fault = fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")));
-                    }
-                    self.faults.push(fault);
+                    let known = self.component_ids.keys().copied();
+                    self.faults.push(references::dangling(n, "component", target, known));
                 }
                 found
             };
@@ -520,9 +493,10 @@ impl<'t> Reader<'t> {
                 match self.component_ids.get(target) {
                     Some(&k) if !members.contains(&k) => members.push(k),
                     Some(_) => {}
-                    None => self.fault(
-                        item.fault(Code::DanglingReference, format!("there is no component \"{target}\"")),
-                    ),
+                    None => {
+                        let known = self.component_ids.keys().copied();
+                        self.faults.push(references::dangling(item, "component", target, known));
+                    }
                 }
             }
             self.process.groups.push(Group { name: name.to_owned(), pointer: list.pointer(), members });

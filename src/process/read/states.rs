@@ -103,12 +103,7 @@ impl<'t> Reader<'t> {
         if let Some(n) = node.get("same_state_as") {
             let target = n.text().unwrap_or_default();
             let Some(&other) = self.flow_ids.get(target) else {
-                let near = nearest(target, self.flow_ids.keys().copied());
-                let mut fault = n.fault(Code::DanglingReference, format!("there is no flow \"{target}\""));
-                if !near.is_empty() {
-                    fault = fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")));
-                }
-                self.fault(fault);
+                self.faults.push(references::dangling(n, "flow", target, self.flow_ids.keys().copied()));
                 return None;
             };
             if self.flow_nodes[other].1.get("kind").and_then(Node::text) != Some("material") {
