@@ -168,7 +168,8 @@ fn with_unit<'a>(
 ) -> Result<Literal<'a>, Diagnostic> {
     let scale = unit::find(unit, dimension)?;
     let value = scale.to_si(number.value);
-    if value.is_nan() || value.abs() > LARGEST || (value == 0.0 && number.value != 0.0 && scale.offset == 0.0) {
+    if value.is_nan() || value.abs() > LARGEST || (value == 0.0 && number.value != 0.0 && scale.offset == 0.0)
+    {
         let size = if value == 0.0 { "small" } else { "large" };
         return Err(Diagnostic::new(
             Code::BadNumber,

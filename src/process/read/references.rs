@@ -44,7 +44,11 @@ pub(super) fn check(root: Node<'_>, faults: &mut Faults) {
         refer(flow.get("to"), "component", &components);
         refer(flow.get("same_state_as"), "flow", &flows);
     }
-    let own = names("fluids");
+    for (_, group) in root.get("groups").into_iter().flat_map(Node::members) {
+        group.items().for_each(|item| refer(Some(item), "component", &components));
+    }
+    let own: Vec<&str> =
+        root.get("fluids").into_iter().flat_map(|map| map.members().map(|(name, _)| name)).collect();
     for (_, flow) in root.get("flows").into_iter().flat_map(Node::members) {
         if let Some(node) = flow.get("fluid")
             && let Some(text) = node.text()
@@ -53,8 +57,5 @@ pub(super) fn check(root: Node<'_>, faults: &mut Faults) {
         {
             faults.push(unknown_fluid(root, node, text, near));
         }
-    }
-    for (_, group) in root.get("groups").into_iter().flat_map(Node::members) {
-        group.items().for_each(|item| refer(Some(item), "component", &components));
     }
 }
