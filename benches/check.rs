@@ -2,6 +2,8 @@
 //! memory over many checks. Prints a table; asserts nothing. Run with
 //! `cargo bench --bench check`.
 
+#![allow(clippy::expect_used, reason = "a bench fails by panicking")]
+
 use sigmadot::pipeline::{Bound, Cancel, Room, check_bytes, evaluate_and_decide};
 use sigmadot::process::{ReadLimits, read};
 use sigmadot::quantity::UnitSystem;
