@@ -2,8 +2,8 @@
 """Speed of the property engines beside a reference library, on the same states in one run.
 
 Needs: cargo, and a Python with CoolProp 8 (any release with the low-level interface), for instance
-    python3 -m venv /tmp/bench-venv && /tmp/bench-venv/bin/pip install CoolProp
-    /tmp/bench-venv/bin/python benches/property_speed.py
+    python3 -m venv ../bench-venv && ../bench-venv/bin/pip install CoolProp
+    ../bench-venv/bin/python benches/property_speed.py
 
 Both sides answer the same random states. The reference side is `AbstractState.update` of the HEOS
 backend; the time of an empty loop with a trivial method call of the same object is taken off as

@@ -3,7 +3,7 @@
 pub use crate::balance::Exergies;
 use crate::balance::{Evaluation, Row};
 use crate::evidence::{Families, Sensitivity, decide};
-use crate::model::{Blocked, Decision, Family, Margin, Model, Scope, Verdict};
+use crate::model::{Blocked, Decision, Family, Margin, Model, Scope, Verdict, View};
 use crate::process::{StateForm, Var};
 use crate::rules::{self, Aspect, Authority, Explanation, Severity};
 use std::collections::HashMap;
@@ -277,7 +277,10 @@ fn primaries(margins: &[Margin], decisions: &[Option<Decision>]) -> Vec<Option<D
     let aspect = |i: usize| rules::ALL[margins[i].rule].info().aspect;
     let mut first: HashMap<(Scope, bool), Decision> = HashMap::new();
     for (i, margin) in margins.iter().enumerate() {
+        // A test over nothing that flows bounds nothing.
+        let idle = margin.throughput == 0.0 && decisions[i].is_some_and(|d| d.at_limit);
         if margin.family == Family::Entropy
+            && !idle
             && (aspect(i) == Aspect::Interior || margin.detail == 0)
             && let Some(decision) = decisions[i]
         {
@@ -343,7 +346,12 @@ fn gather(
         Scope::Plant => 3,
         Scope::Description => 4,
     };
-    sequence.sort_by_key(|&i| (rank(margins[i].scope), order(aspect(i)), margins[i].rule, i));
+    // Of several margins of one rule at one place the largest comes first and stands for all.
+    let size = |i: usize| decisions[i].map_or(0, |d| d.z.abs().to_bits());
+    sequence.sort_by_key(|&i| {
+        let m = &margins[i];
+        (rank(m.scope), order(aspect(i)), m.rule, m.scope, std::cmp::Reverse(size(i)), i)
+    });
     let mut findings: Vec<(usize, Finding)> = Vec::new();
     // Findings of entropy generation that a more specific rule has put into plain words.
     let mut worded: Vec<usize> = Vec::new();
@@ -398,6 +406,11 @@ fn gather(
                 && !finding.conditional_on.contains(&info.name)
             {
                 finding.conditional_on.push(info.name);
+                if finding.scope == margin.scope {
+                    let sentence = rules::ALL[margin.rule].explain(evaluation, margin, &decision).statement;
+                    finding.explanation.statement.push_str(" It is conditional on this: ");
+                    finding.explanation.statement.push_str(&sentence);
+                }
             }
             continue;
         }
@@ -527,10 +540,13 @@ fn spent(evaluation: &Evaluation<'_>, out: &mut Judgement) {
     }
 }
 
-/// Whether a figure was given, solved for or assumed. An uncertainty that was assumed does not make
-/// the figure so.
-pub fn origin(model: &Model, var: usize) -> &'static str {
-    match &model.process.vars[var] {
+/// Whether a figure was given, solved for or assumed; `unknown` where none of these could be done.
+/// A given figure whose uncertainty alone was assumed is given.
+pub fn origin(view: View<'_>, var: usize) -> &'static str {
+    if !view.workspace.is_known(var) {
+        return "unknown";
+    }
+    match &view.model.process.vars[var] {
         Var::Unknown { .. } => "solved",
         Var::Given(affine) if affine.terms.is_empty() => "assumed",
         Var::Given(_) => "given",

@@ -43,7 +43,7 @@ codes! {
     UnknownUnit => "unknown-unit": "The unit is not known.",
     WrongDimension => "wrong-dimension": "The unit measures another quantity than the field takes.",
     BadQuantity => "bad-quantity": "The text or object cannot be read as a quantity.",
-    BadNumber => "bad-number": "The number is not finite, or too large or small to be represented.",
+    BadNumber => "bad-number": "The number is not finite, or too large or small to be computed with.",
     BadUncertainty => "bad-uncertainty": "The uncertainty cannot be read or does not fit the quantity.",
     BelowAbsoluteZero => "below-absolute-zero": "A temperature at or below 0 K, or a pressure at or below absolute vacuum.",
     OutOfBounds => "out-of-bounds": "The value lies outside what the field can take.",

@@ -8,6 +8,7 @@ use axum::http::header::{CONTENT_ENCODING, CONTENT_LENGTH, CONTENT_TYPE, EXPECT}
 use axum::http::request::Parts;
 use flate2::write::MultiGzDecoder;
 use http_body_util::BodyExt;
+use tokio::task::consume_budget;
 use tokio::time::{Instant, timeout, timeout_at};
 
 use super::negotiate::essence;
@@ -81,6 +82,8 @@ impl Incoming {
             let Some(decoder) = &mut self.decoder else { return Ok(Some(std::mem::take(&mut self.waiting))) };
             let piece = self.waiting.split_to(self.waiting.len().min(GZIP_PIECE));
             decoder.write_all(&piece).map_err(bad_gzip)?;
+            // A stream of many empty members is dear to expand and gives nothing: others get their turn.
+            consume_budget().await;
             let plain = std::mem::take(decoder.get_mut());
             if !plain.is_empty() {
                 return Ok(Some(Bytes::from(plain)));

@@ -95,6 +95,7 @@ pub fn document() -> Value {
         schemas.extend(found);
     }
     share_map_values(&mut schemas);
+    open_flattened_maps(&mut schemas);
     let mut paths = Map::new();
     for route in ROUTES.iter().filter(|route| route.tag.is_some()) {
         let entry = paths.entry(route.path).or_insert_with(|| json!({}));
@@ -143,6 +144,23 @@ fn share_map_values(schemas: &mut Map<String, Value>) {
     }
     for (name, schema) in shared {
         schemas.entry(name).or_insert(schema);
+    }
+}
+
+/// An object with a map flattened into it is derived as both at once (`allOf`), so that every declared
+/// member would have to be a value of the map as well; it becomes one object whose other members are
+/// the map's values.
+fn open_flattened_maps(schemas: &mut Map<String, Value>) {
+    const MAP: &str = "#/components/schemas/Named_";
+    for schema in schemas.values_mut() {
+        let Some([map, own]) = schema.get("allOf").and_then(Value::as_array).map(Vec::as_slice) else {
+            continue;
+        };
+        let Some(value) = map["$ref"].as_str().and_then(|r| r.strip_prefix(MAP)) else { continue };
+        let mut object = own.clone();
+        object["additionalProperties"] = schema_ref(value);
+        object["description"] = schema["description"].clone();
+        *schema = object;
     }
 }
 

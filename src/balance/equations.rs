@@ -112,7 +112,14 @@ impl Equations {
                 }
             }
         }
-        for k in 0..process.components.len() {
+        // What has few flows comes first: a throttle's enthalpy follows from the throttle, so that the
+        // exchanger after it keeps its balance as a test.
+        let mut by_flows: Vec<usize> = (0..process.components.len()).collect();
+        by_flows.sort_by_key(|&k| {
+            let c = &process.components[k];
+            (c.inlets.len() + c.outlets.len(), k)
+        });
+        for k in by_flows {
             let region = &out.components[k];
             if region.inlets.is_empty() && region.outlets.is_empty() && process.components[k].holdup.is_none()
             {

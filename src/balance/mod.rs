@@ -6,6 +6,7 @@ mod equations;
 mod evaluation;
 mod exergies;
 pub mod exergy;
+pub mod leniency;
 pub mod passage;
 pub mod performance;
 pub mod plant;

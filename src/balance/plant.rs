@@ -186,7 +186,9 @@ fn energy(view: View<'_>, roles: &[(FlowId, f64, Option<Role>)], out: &mut Plant
             out.metrics.push(Metric::new(format!("heat_rate_{basis}"), x, Dimension::Fraction));
         }
         let delivered = electric.clone().plus(&shaft).plus(&warmth);
-        if let Some(x) = ratio(&delivered, fuel) {
+        if delivered.value > 0.0
+            && let Some(x) = ratio(&delivered, fuel)
+        {
             out.metrics.push(Metric::new(format!("fuel_utilisation_{basis}"), x, Dimension::Fraction));
         }
     }

@@ -233,6 +233,9 @@ pub(super) fn check_any_unit(node: Node<'_>, unit: &str, faults: &mut Faults) {
 /// Checks an uncertainty whose dimension is not known yet.
 pub(super) fn check_uncertainty(node: Node<'_>, faults: &mut Faults) {
     uncertainty_text(node, faults);
+    if let Some(text) = node.number_text() {
+        located(node, quantity::split(text), faults);
+    }
 }
 
 /// `{"tag": …}`: `None` where this is no tag, `Some(None)` where it is a faulty one.

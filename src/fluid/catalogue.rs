@@ -59,10 +59,9 @@ pub fn by_name(name: &str) -> Result<(Substance, Arc<dyn Engine>), Vec<String>> 
         }
         _ => {}
     }
-    let near = match real_fluid::by_name(name) {
-        Ok(fluid) => return Ok((Substance::Pure, fluid.clone())),
-        Err(near) => near,
-    };
+    if let Ok(fluid) = real_fluid::by_name(name) {
+        return Ok((Substance::Pure, fluid.clone()));
+    }
     if name.eq_ignore_ascii_case("ash")
         && let Ok(ash) = Incompressible::ash()
     {
@@ -71,10 +70,8 @@ pub fn by_name(name: &str) -> Result<(Substance, Arc<dyn Engine>), Vec<String>> 
     if let Some(medium) = Incompressible::listed(name).or_else(|| Incompressible::species(name)) {
         return Ok((Substance::Inert, Arc::new(medium)));
     }
-    let mut known: Vec<&str> = near;
-    known.extend(nearest(name, names()));
-    known.dedup();
-    Err(known.into_iter().map(str::to_owned).collect())
+    let real = real_fluid::catalogue().iter().flat_map(|f| f.names().iter().map(String::as_str));
+    Err(nearest(name, names().chain(real)).into_iter().map(str::to_owned).collect())
 }
 
 /// Every name that [`by_name`] knows by heart, for the catalogue.

@@ -137,6 +137,10 @@ pub fn read_resolution(text: &str, dimension: Dimension, scale: &Scale) -> Resul
     }
 }
 
+/// The largest magnitude that is taken, in SI units: far beyond anything real, and small enough that
+/// no product or square of figures overflows, which a report could not show.
+const LARGEST: f64 = 1e30;
+
 fn whole(text: &str) -> Result<Decimal<'_>, Diagnostic> {
     match number::split(text)? {
         (number, "") => Ok(number),
@@ -164,12 +168,13 @@ fn with_unit<'a>(
 ) -> Result<Literal<'a>, Diagnostic> {
     let scale = unit::find(unit, dimension)?;
     let value = scale.to_si(number.value);
-    if !value.is_finite() || (value == 0.0 && number.value != 0.0 && scale.offset == 0.0) {
+    if value.is_nan() || value.abs() > LARGEST || (value == 0.0 && number.value != 0.0 && scale.offset == 0.0)
+    {
         let size = if value == 0.0 { "small" } else { "large" };
         return Err(Diagnostic::new(
             Code::BadNumber,
             "",
-            format!("{} {} is too {size} to be represented", shown(number.text), shown(unit)),
+            format!("{} {} is too {size} to be computed with", shown(number.text), shown(unit)),
         ));
     }
     if bounds == Bounds::Physical {

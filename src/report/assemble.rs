@@ -300,7 +300,7 @@ impl Assembler<'_, '_> {
         };
         match &flow.carried {
             Carried::Material(m) => {
-                out.origin = assessment::origin(view.model, m.amount);
+                out.origin = assessment::origin(view, m.amount);
                 let spec = &process.states[m.state];
                 let fluid = &process.fluids[spec.fluid];
                 out.fluid = Some(fluid.name.clone());
@@ -381,7 +381,7 @@ impl Assembler<'_, '_> {
             }
             Carried::Heat(q, boundary) => {
                 out.kind = "heat";
-                out.origin = assessment::origin(view.model, *q);
+                out.origin = assessment::origin(view, *q);
                 if let Ok(q) = view.var(*q) {
                     let figure = self.figure(&q, energy);
                     out.figures.push("rate", figure);
@@ -406,7 +406,7 @@ impl Assembler<'_, '_> {
             }
             Carried::Work(w, form) => {
                 out.kind = "work";
-                out.origin = assessment::origin(view.model, *w);
+                out.origin = assessment::origin(view, *w);
                 if let Ok(w) = view.var(*w) {
                     let figure = self.figure(&w, energy);
                     out.figures.push("power", figure);
@@ -418,7 +418,7 @@ impl Assembler<'_, '_> {
             }
             Carried::Radiation(q, t) => {
                 out.kind = "radiation";
-                out.origin = assessment::origin(view.model, *q);
+                out.origin = assessment::origin(view, *q);
                 if let (Ok(q), Ok(t)) = (view.var(*q), view.var(*t)) {
                     let figure = self.figure(&q, energy);
                     out.figures.push("rate", figure);

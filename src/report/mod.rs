@@ -417,7 +417,8 @@ pub struct FlowReport {
     #[serde(skip_serializing_if = "Option::is_none")]
     #[cfg_attr(feature = "server", schema(nullable = false))]
     pub to: Option<String>,
-    /// Where its amount comes from: `given`, `solved` or `assumed`.
+    /// Where its amount comes from: `given`, `solved`, `assumed`, or `unknown` where it could not be
+    /// solved for.
     pub origin: &'static str,
     /// Fluid.
     #[serde(skip_serializing_if = "Option::is_none")]

@@ -249,6 +249,10 @@ pub(super) fn certainty(f: &Finding) -> Option<String> {
         "data" => "data that agree",
         _ => return None,
     };
+    // A plain contradiction (no figure that could be off by chance) needs no such sentence.
+    if f.authority == "data" && f.value.is_none_or(|v| v.u == 0.0) {
+        return None;
+    }
     let distance = if f.z.abs() >= 1000.0 {
         "more than 1000 standard uncertainties from the limit".to_owned()
     } else {
@@ -444,7 +448,7 @@ mod tests {
     }
 
     #[test]
-    fn steering_characters_are_replaced() {
+    fn control_characters_are_replaced() {
         assert_eq!(clean("a\u{1b}[31m\u{202e}b"), "a\u{fffd}[31m\u{fffd}b");
     }
 }

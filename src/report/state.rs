@@ -71,19 +71,25 @@ impl StateReport {
             let u = h.minus(&p.times(&v));
             properties.push("internal_energy", figure(&u, Dimension::SpecificEnergy));
         }
-        if state.volume > 0.0 {
-            properties.push("density", bare(1.0 / state.volume, Dimension::Density));
+        if state.volume > 0.0
+            && let Ok(v) = view.property(0, Property::Volume)
+        {
+            properties.push("density", figure(&v.reciprocal(), Dimension::Density));
         }
         if let Some(cp) = state.heat_capacity() {
-            properties.push("heat_capacity", bare(cp, Dimension::SpecificEntropy));
+            // The formulation's own uncertainty; the derivative of cp is not at hand.
+            let u = fluid.engine.relative_uncertainty(&state) * cp;
+            properties.push("heat_capacity", Figure::new(cp, u, Dimension::SpecificEntropy, units));
         }
         if state.quality.is_some()
             && let Ok(x) = view.property(0, Property::Quality)
         {
             properties.push("quality", figure(&x, Dimension::Fraction));
         }
-        if let Ok((t, _)) = fluid.engine.saturation_temperature(state.pressure, 1.0) {
-            properties.push("saturation_temperature", bare(t, Dimension::Temperature));
+        if let Ok((t, slope)) = fluid.engine.saturation_temperature(state.pressure, 1.0)
+            && let Ok(p) = view.property(0, Property::Pressure)
+        {
+            properties.push("saturation_temperature", figure(&p.map(t, slope), Dimension::Temperature));
         }
         if spec.c.is_some()
             && let Ok(c) = view.composition(0)

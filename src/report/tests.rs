@@ -158,8 +158,8 @@ fn check_page(page: &str) {
     for word in page.split(|c: char| !c.is_alphanumeric()) {
         assert!(!["NaN", "inf", "Infinity", "null", "undefined"].contains(&word), "{word}");
     }
-    let steering = |c: char| (c.is_control() && c != '\n') || ('\u{202a}'..='\u{202e}').contains(&c);
-    assert!(!page.contains(steering));
+    let hidden = |c: char| (c.is_control() && c != '\n') || ('\u{202a}'..='\u{202e}').contains(&c);
+    assert!(!page.contains(hidden));
 }
 
 #[test]

@@ -31,7 +31,7 @@ static INFO: RuleInfo = RuleInfo {
               "supply": {"kind": "work", "to": "pump", "form": "electric", "power": "10 kW"}}}"#,
     ),
     keeping: Case::Description(
-        r#"{"components": {"pump": {"kind": "heat_pump", "stated_performance": {"cop": 4.10}}},
+        r#"{"components": {"pump": {"kind": "heat_pump", "stated_performance": {"cop": 4.00}}},
             "flows": {
               "ground": {"kind": "heat", "to": "pump", "rate": "37.5 kW", "temperature": "5.0 degC"},
               "floor": {"kind": "heat", "from": "pump", "rate": "50 kW", "temperature": "50.0 degC"},

@@ -241,6 +241,8 @@ rules! {
     surplus_property_mismatch::SurplusPropertyMismatch,
     saturation_mismatch::SaturationMismatch,
     redundant_readings_disagree::RedundantReadingsDisagree,
+    given_figure_contradicted::GivenFigureContradicted,
+    stated_figure_missed::StatedFigureMissed,
     state_outside_formulation::StateOutsideFormulation,
     vapour_below_saturation::VapourBelowSaturation,
     liquid_above_saturation::LiquidAboveSaturation,

@@ -1,7 +1,7 @@
 //! negative-entropy-generation
 
 use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, family, phrase};
-use crate::balance::Evaluation;
+use crate::balance::{Evaluation, RegionBalances, leniency};
 use crate::model::{Decision, Margin, Scope, Test};
 
 /// A component destroys entropy.
@@ -43,23 +43,40 @@ impl Rule for NegativeEntropyGeneration {
 
     fn margins(&self, me: usize, evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
         for (k, balances) in evaluation.components.iter().enumerate() {
-            let generation = balances.generation(evaluation.view);
-            let throughput = generation.as_ref().map_or(0.0, |g| g.1);
-            out.push(Margin {
-                rule: me,
-                scope: Scope::Component(k),
-                family: family(&INFO),
-                test: Test::NonNegative,
-                form: generation.map(|g| g.0),
-                throughput,
-                pointer: None,
-                detail: 0,
-            });
+            out.push(generation_margin(me, Scope::Component(k), evaluation, balances, &[k]));
         }
     }
 
     fn explain(&self, evaluation: &Evaluation<'_>, margin: &Margin, decision: &Decision) -> Explanation {
         explain_generation(evaluation, margin, decision)
+    }
+}
+
+/// The margin shared by component, group and plant: σ with what an open balance could explain.
+pub(super) fn generation_margin(
+    me: usize,
+    scope: Scope,
+    evaluation: &Evaluation<'_>,
+    balances: &RegionBalances,
+    members: &[usize],
+) -> Margin {
+    let generation = balances.generation(evaluation.view);
+    let throughput = generation.as_ref().map_or(0.0, |g| g.1);
+    let form = generation.and_then(|(sigma, _)| {
+        Ok(match leniency::of(evaluation, members)? {
+            Some(explained) => sigma.plus(&explained),
+            None => sigma,
+        })
+    });
+    Margin {
+        rule: me,
+        scope,
+        family: family(&INFO),
+        test: Test::NonNegative,
+        form,
+        throughput,
+        pointer: None,
+        detail: 0,
     }
 }
 

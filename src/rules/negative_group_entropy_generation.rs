@@ -1,9 +1,9 @@
 //! negative-group-entropy-generation
 
-use super::negative_entropy_generation::explain_generation;
-use super::{Aspect, Authority, Case, Explanation, Rule, RuleInfo, Severity, family};
+use super::negative_entropy_generation::{explain_generation, generation_margin};
+use super::{Aspect, Authority, Case, Explanation, Rule, RuleInfo, Severity};
 use crate::balance::Evaluation;
-use crate::model::{Decision, Margin, Scope, Test};
+use crate::model::{Decision, Margin, Scope};
 
 /// A declared group of components destroys entropy.
 ///
@@ -47,19 +47,9 @@ impl Rule for NegativeGroupEntropyGeneration {
     }
 
     fn margins(&self, me: usize, evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
+        let groups = &evaluation.view.model.process.groups;
         for (g, balances) in evaluation.groups.iter().enumerate() {
-            let generation = balances.generation(evaluation.view);
-            let throughput = generation.as_ref().map_or(0.0, |g| g.1);
-            out.push(Margin {
-                rule: me,
-                scope: Scope::Group(g),
-                family: family(&INFO),
-                test: Test::NonNegative,
-                form: generation.map(|g| g.0),
-                throughput,
-                pointer: None,
-                detail: 0,
-            });
+            out.push(generation_margin(me, Scope::Group(g), evaluation, balances, &groups[g].members));
         }
     }
 

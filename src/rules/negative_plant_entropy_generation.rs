@@ -1,9 +1,9 @@
 //! negative-plant-entropy-generation
 
-use super::negative_entropy_generation::explain_generation;
-use super::{Aspect, Authority, Case, Explanation, Rule, RuleInfo, Severity, family};
+use super::negative_entropy_generation::{explain_generation, generation_margin};
+use super::{Aspect, Authority, Case, Explanation, Rule, RuleInfo, Severity};
 use crate::balance::Evaluation;
-use crate::model::{Decision, Margin, Scope, Test};
+use crate::model::{Decision, Margin, Scope};
 
 /// The plant as a whole destroys entropy.
 ///
@@ -46,21 +46,10 @@ impl Rule for NegativePlantEntropyGeneration {
 
     fn margins(&self, me: usize, evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
         let components = &evaluation.view.model.process.components;
-        if components.iter().filter(|c| !c.implied).count() < 2 {
-            return;
+        if components.iter().filter(|c| !c.implied).count() >= 2 {
+            let members = &evaluation.equations.plant.members;
+            out.push(generation_margin(me, Scope::Plant, evaluation, &evaluation.plant, members));
         }
-        let generation = evaluation.plant.generation(evaluation.view);
-        let throughput = generation.as_ref().map_or(0.0, |g| g.1);
-        out.push(Margin {
-            rule: me,
-            scope: Scope::Plant,
-            family: family(&INFO),
-            test: Test::NonNegative,
-            form: generation.map(|g| g.0),
-            throughput,
-            pointer: None,
-            detail: 0,
-        });
     }
 
     fn explain(&self, evaluation: &Evaluation<'_>, margin: &Margin, decision: &Decision) -> Explanation {

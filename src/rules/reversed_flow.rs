@@ -23,7 +23,7 @@ static INFO: RuleInfo = RuleInfo {
     inequality: "every declared amount, heat and power ≥ 0",
     applies_to: "amounts of material, heats, powers",
     needs: "the amount",
-    typical_cause: "a reversed direction, the sign convention of another program, a meter wired backwards",
+    typical_cause: "inlet and outlet readings swapped, a reversed direction, the sign convention of another program, a meter wired backwards",
     source: "definition of a directed flow",
     breaking: Case::Description(
         r#"{"components": {"letdown": {"kind": "valve"}},
@@ -57,7 +57,18 @@ impl Rule for ReversedFlow {
             if free || seen.contains(&var) || remark::covers(INFO.name, evaluation, &flow.pointer) {
                 continue;
             }
+            // What a backward flow through a component carries on is the same defect.
+            let solved = |f: &usize| {
+                let (v, _, _) = measure::extent(process, *f);
+                matches!(process.vars[v], Var::Unknown { .. }) && negative(evaluation, *f).is_some()
+            };
+            let carried_on = flow.material().is_some()
+                && solved(&f)
+                && flow.from.is_some_and(|k| process.components[k].inlets.iter().any(solved));
             seen.push(var);
+            if carried_on {
+                continue;
+            }
             out.push(Margin {
                 pointer: Some(flow.pointer.clone()),
                 detail: f,
@@ -89,6 +100,9 @@ impl Rule for ReversedFlow {
             statement,
             value: Some(Figure { value: decision.value, dimension }),
             limit: Some(Figure { value: 0.0, dimension }),
+            severity: (matches!(process.vars[var], Var::Unknown { .. })
+                && process.flows[f].material().is_some())
+            .then_some(Severity::Major),
             ..Explanation::default()
         }
     }

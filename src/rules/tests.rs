@@ -191,7 +191,13 @@ fn gradients_follow_the_given_figures() {
                 value(&inputs)
             });
             for (i, form) in base.iter().enumerate() {
-                if solved(form) {
+                // An amount that is moved alone opens a balance, which entropy generation is then
+                // judged with: a kink where it was closed.
+                let opens = info.name.ends_with("-entropy-generation")
+                    && ["_flow", "/mass", "/moles", "/volume", "/power", "/rate", "/energy"]
+                        .iter()
+                        .any(|end| source.pointer.ends_with(end));
+                if solved(form) || opens {
                     continue;
                 }
                 let want: f64 = form

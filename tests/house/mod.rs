@@ -2,6 +2,7 @@
 //! must bring along.
 
 mod defects;
+mod fuzz;
 mod layers;
 mod promises;
 mod properties;

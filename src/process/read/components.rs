@@ -176,9 +176,15 @@ impl<'t> Reader<'t> {
             component.inlets.iter().chain(&component.outlets).any(|&f| {
                 matches!(self.process.flows[f].carried, Carried::Heat(..) | Carried::Radiation(..))
             });
+        let known = |f: &FlowId| match self.process.flows[*f].carried {
+            Carried::Work(v, _) => matches!(self.process.vars.get(v), Some(Var::Given(_))),
+            _ => true,
+        };
+        let flows = || component.inlets.iter().chain(&component.outlets);
+        let closed = flows().all(known);
         let converts = component.kind.info().purpose == kinds::Purposeful::Conversion;
         self.process.components[k].given.heat_loss = described;
-        if converts && !has_heat && given.is_some_and(|g| g.get("efficiency").is_some()) {
+        if converts && !has_heat && (closed || given.is_some_and(|g| g.get("efficiency").is_some())) {
             // What a converter does not pass on it gives off as heat.
             let name = self.process.components[k].name.clone();
             let loss = self.unknown(format!("heat loss of \"{name}\""), Nature::Energy, node.pointer());

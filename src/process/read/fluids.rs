@@ -113,14 +113,8 @@ impl<'t> Reader<'t> {
     fn named_fluid(&mut self, node: Node<'t>, text: &str) -> Option<(String, Medium)> {
         match crate::fluid::by_name(text) {
             Ok((substance, engine)) => Some((text.to_owned(), (substance, engine, None))),
-            Err(mut near) => {
-                if let Some(fluids) = self.root.get("fluids") {
-                    let own = nearest(text, fluids.members().map(|(name, _)| name));
-                    near.splice(0..0, own.into_iter().map(str::to_owned));
-                }
-                let fault = node.fault(Code::UnknownFluid, format!("there is no fluid \"{text}\""));
-                let otherwise = "GET /v1/fluids lists the fluids; own ones go into \"fluids\"";
-                self.fault(fault.suggest(&near, otherwise));
+            Err(near) => {
+                self.fault(super::references::unknown_fluid(self.root, node, text, near));
                 None
             }
         }

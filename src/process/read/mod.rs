@@ -397,7 +397,8 @@ impl<'t> Reader<'t> {
         if let Some(node) = self.root.get("components") {
             for (name, n) in node.members() {
                 let kind = n.get("kind").and_then(Node::text).and_then(Kind::from_name);
-                let Some(kind) = kind else { continue };
+                // An unknown kind has its fault; the name is known all the same.
+                let kind = kind.unwrap_or(Kind::ControlVolume);
                 self.component_ids.insert(name, self.process.components.len());
                 self.process.components.push(Component {
                     name: name.to_owned(),

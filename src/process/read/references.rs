@@ -14,6 +14,16 @@ pub(super) fn dangling<'a>(
     fault.suggest(&nearest(name, known), "")
 }
 
+/// The fault of a fluid that is not known; `near` are the nearest listed names.
+pub(super) fn unknown_fluid(root: Node<'_>, node: Node<'_>, text: &str, mut near: Vec<String>) -> Diagnostic {
+    if let Some(fluids) = root.get("fluids") {
+        let own = nearest(text, fluids.members().map(|(name, _)| name));
+        near.splice(0..0, own.into_iter().map(str::to_owned));
+    }
+    let otherwise = "GET /v1/fluids lists the fluids; own ones go into \"fluids\"";
+    node.fault(Code::UnknownFluid, format!("there is no fluid \"{text}\"")).suggest(&near, otherwise)
+}
+
 /// The references that can be told to dangle from the text alone. A description with other faults of
 /// form is not read further, so that these would otherwise only show once those are mended.
 pub(super) fn check(root: Node<'_>, faults: &mut Faults) {
@@ -36,5 +46,16 @@ pub(super) fn check(root: Node<'_>, faults: &mut Faults) {
     }
     for (_, group) in root.get("groups").into_iter().flat_map(Node::members) {
         group.items().for_each(|item| refer(Some(item), "component", &components));
+    }
+    let own: Vec<&str> =
+        root.get("fluids").into_iter().flat_map(|map| map.members().map(|(name, _)| name)).collect();
+    for (_, flow) in root.get("flows").into_iter().flat_map(Node::members) {
+        if let Some(node) = flow.get("fluid")
+            && let Some(text) = node.text()
+            && !own.contains(&text)
+            && let Err(near) = crate::fluid::by_name(text)
+        {
+            faults.push(unknown_fluid(root, node, text, near));
+        }
     }
 }

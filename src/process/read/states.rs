@@ -448,7 +448,9 @@ impl<'t> Reader<'t> {
                 self.fault(n.fault(Code::Conflict, "the composition is given twice"));
                 continue;
             }
-            if let Some(v) = self.var(node, member, dimension, Class::State, 1.0) {
+            // A composition counts as exact unless an uncertainty is stated; humidity is a reading.
+            let class = if member == "salinity" { Class::Parameter } else { Class::State };
+            if let Some(v) = self.var(node, member, dimension, class, 1.0) {
                 found = Some((form, v));
             }
         }
