@@ -1,6 +1,7 @@
 //! What a check costs: evaluation on a bound model, bytes to report bytes, growth with size,
 //! memory over many checks. Prints a table; asserts nothing. Run with
 //! `cargo bench --bench check`.
+#![allow(clippy::expect_used, reason = "a measurement of broken input is worth nothing")]
 
 #![allow(clippy::expect_used, reason = "a bench fails by panicking")]
 

@@ -126,3 +126,30 @@ fn pages_work_offline() {
     assert_eq!(start, true);
     server.get("/docs/..%2f..%2fetc%2fpasswd").assert_problem(404, "not-found");
 }
+
+#[test]
+fn the_catalogue_of_fluids_has_spellings_ranges_sources_and_species() {
+    let list = Server::start().get("/v1/fluids").json();
+    let fluids = list["fluids"].as_array().unwrap();
+    assert!(fluids.len() > 50, "{}", fluids.len());
+    for entry in fluids.iter().chain(list["species"].as_array().unwrap()) {
+        assert!(entry["source"].as_str().is_some_and(|s| !s.is_empty()), "{entry}");
+    }
+    for fluid in fluids {
+        assert!(fluid["range"].as_str().is_some_and(|s| !s.is_empty()), "{fluid}");
+    }
+    let refrigerant = fluids.iter().find(|f| f["name"] == "R134a").unwrap();
+    assert_eq!(refrigerant["kind"], "pure");
+    // Every spelling is taken as it stands.
+    let server = Server::start();
+    for alias in refrigerant["aliases"].as_array().unwrap() {
+        let fluid = alias.as_str().unwrap().replace(' ', "+");
+        let answer = server.get(&format!("/v1/states?fluid={fluid}&pressure=1+bar&temperature=20+degC"));
+        assert_eq!(answer.status, 200, "{alias}: {}", answer.text());
+    }
+    let species = list["species"].as_array().unwrap();
+    assert!(species.len() >= 26, "{}", species.len());
+    let methane = species.iter().find(|s| s["name"] == "CH4").unwrap();
+    assert!((methane["molar_mass"].as_f64().unwrap() - 0.016043).abs() < 1e-6);
+    assert!(methane["lowest_temperature"].as_f64() < methane["highest_temperature"].as_f64());
+}

@@ -37,16 +37,30 @@ fn assert_close(a: f64, b: f64, relative: f64, what: &str) {
 
 #[test]
 fn entropy_generation_knows_no_environment() {
-    let base = check(&plant());
+    let grouped = || {
+        let mut description = plant();
+        description["groups"] = json!({"hot": ["combustor", "turbine"]});
+        description
+    };
+    let union = |report: &Value| {
+        ["/groups/hot", "/plant"].map(|region| {
+            let pointer = format!("{region}/entropy_balance/generation/value");
+            report.pointer(&pointer).and_then(Value::as_f64).unwrap()
+        })
+    };
+    let base = check(&grouped());
     for environment in [
         json!({"temperature": "35 degC", "pressure": "0.95 bar"}),
         json!({"temperature": "-15 degC", "pressure": "1.04 bar", "relative_humidity": 0.3}),
         json!({"temperature": "25 degC", "pressure": "1.013 bar", "chemistry": "ahrendts"}),
     ] {
-        let mut other = plant();
+        let mut other = grouped();
         other["environment"] = environment.clone();
         let report = check(&other);
         assert_eq!(report["verdict"], base["verdict"]);
+        for (a, b) in union(&base).into_iter().zip(union(&report)) {
+            assert_close(a, b, 1e-11, &format!("unions in {environment}"));
+        }
         for ((name, a), (_, b)) in sigmas(&base).iter().zip(sigmas(&report)) {
             assert_close(*a, b, 1e-12, &format!("{name} in {environment}"));
         }

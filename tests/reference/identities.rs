@@ -87,7 +87,7 @@ impl Check<'_> {
     }
 
     fn close(&mut self, at: &State, what: &str, got: f64, want: f64, room: f64) {
-        if (got - want).abs().is_nan() || (got - want).abs() > room {
+        if (got - want).abs() > room || got.is_nan() {
             self.fault(at, what, got, want);
         }
     }
