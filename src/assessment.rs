@@ -161,7 +161,7 @@ pub fn judge(evaluation: &Evaluation<'_>, margins: &[Margin], sensitivity: &mut 
     let model = evaluation.view.model;
     let process = &model.process;
     let (mut decisions, families) = decide(model, margins, sensitivity, process.policy.false_alarm);
-    follow_primary(margins, &mut decisions);
+    let elsewhere = follow_primary(margins, &mut decisions);
     let mut out = Judgement {
         verdict: Overall::Unchecked,
         complete: true,
@@ -176,11 +176,11 @@ pub fn judge(evaluation: &Evaluation<'_>, margins: &[Margin], sensitivity: &mut 
         groups: vec![(Overall::Unchecked, false); process.groups.len()],
         plant: (Overall::Unchecked, false),
     };
-    for (margin, decision) in margins.iter().zip(&decisions) {
+    for ((margin, decision), elsewhere) in margins.iter().zip(&decisions).zip(elsewhere) {
         let info = rules::ALL[margin.rule].info();
         match (&margin.form, decision) {
             (Ok(_), Some(d)) => {
-                if info.authority == Authority::Law && !secondary(margin) {
+                if info.authority == Authority::Law && !elsewhere {
                     let verdict = Overall::of(d.verdict);
                     out.verdict = out.verdict.max(verdict);
                     match d.verdict {
@@ -246,8 +246,10 @@ fn secondary(margin: &Margin) -> bool {
 }
 
 /// A secondary view never says more than the test it follows from: the probability of a false
-/// alarm was shared out among the primary tests.
-fn follow_primary(margins: &[Margin], decisions: &mut [Option<Decision>]) {
+/// alarm was shared out among the primary tests. Returns which margins are counted elsewhere: the
+/// secondary ones, but for those that see a defect where the primary test could not be made.
+fn follow_primary(margins: &[Margin], decisions: &mut [Option<Decision>]) -> Vec<bool> {
+    let mut elsewhere = vec![false; margins.len()];
     for i in 0..margins.len() {
         if !secondary(&margins[i]) {
             continue;
@@ -257,12 +259,16 @@ fn follow_primary(margins: &[Margin], decisions: &mut [Option<Decision>]) {
                 && margins[j].family == Family::Entropy
                 && rules::ALL[margins[j].rule].info().aspect == rules::ALL[margins[i].rule].info().aspect
         });
-        if let Some(Some(first)) = primary.map(|j| decisions[j])
+        let first = primary.and_then(|j| decisions[j]);
+        if let Some(first) = first
             && let Some(own) = &mut decisions[i]
         {
             own.verdict = own.verdict.min(first.verdict);
         }
+        let broken = decisions[i].is_some_and(|d| d.verdict >= Verdict::Suspect);
+        elsewhere[i] = first.is_some() || !broken;
     }
+    elsewhere
 }
 
 /// Where a scope is described.

@@ -153,7 +153,9 @@ fn share_map_values(schemas: &mut Map<String, Value>) {
 fn open_flattened_maps(schemas: &mut Map<String, Value>) {
     const MAP: &str = "#/components/schemas/Named_";
     for schema in schemas.values_mut() {
-        let Some([map, own]) = schema.get("allOf").and_then(Value::as_array).map(Vec::as_slice) else { continue };
+        let Some([map, own]) = schema.get("allOf").and_then(Value::as_array).map(Vec::as_slice) else {
+            continue;
+        };
         let Some(value) = map["$ref"].as_str().and_then(|r| r.strip_prefix(MAP)) else { continue };
         let mut object = own.clone();
         object["additionalProperties"] = schema_ref(value);

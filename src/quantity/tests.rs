@@ -136,8 +136,17 @@ fn faults_are_told_apart() {
         assert_eq!(code(text, Pressure), Code::BadQuantity, "{text}");
     }
     assert_eq!(code("150 degC ± 2 K", Temperature), Code::BadQuantity);
-    for text in ["NaN bar", "inf bar", "-Infinity bar", "1e999 bar", "-1e999 bar", "1e-999 bar", "1e308 MPa", "1e30 bar", "-1e26 bar"]
-    {
+    for text in [
+        "NaN bar",
+        "inf bar",
+        "-Infinity bar",
+        "1e999 bar",
+        "-1e999 bar",
+        "1e-999 bar",
+        "1e308 MPa",
+        "1e30 bar",
+        "-1e26 bar",
+    ] {
         assert_eq!(code(text, Pressure), Code::BadNumber, "{text}");
     }
     assert_eq!(code("1e99999999999999999999 bar", Pressure), Code::BadNumber);

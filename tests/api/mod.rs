@@ -7,3 +7,4 @@ mod command_line;
 mod documents;
 mod limits;
 mod problems;
+mod schema;
