@@ -75,7 +75,7 @@ fn main() {
 
     let (process, inputs) = read(PLANT.as_bytes(), &limits, &names()).expect("bench plant");
     let mut room = Room::default();
-    let bound = Bound::compile(process, inputs, &mut room);
+    let bound = Bound::compile(process, inputs, &mut room, &Cancel::new());
     row(
         "evaluate + decide, 5 components, 13 flows, bound model",
         measure(30, 200, || {

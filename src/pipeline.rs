@@ -75,12 +75,12 @@ pub struct Room {
 
 impl Bound {
     /// Compiles a process and finds how its unknowns are solved. The room holds the solution
-    /// afterwards.
-    pub fn compile(process: process::Process, inputs: Inputs, room: &mut Room) -> Bound {
+    /// afterwards. Once cancelled it comes to an end soon, with a plan that is not complete.
+    pub fn compile(process: process::Process, inputs: Inputs, room: &mut Room, cancel: &Cancel) -> Bound {
         let (model, inputs) = Model::compile(process, inputs);
         room.workspace.bind(&model, &inputs);
         let equations = Equations::compile(&model, &room.workspace);
-        let plan = Plan::make(&model, &equations, &mut room.workspace);
+        let plan = Plan::make(&model, &equations, &mut room.workspace, &|| cancel.is_cancelled());
         Bound { model, equations, plan, inputs }
     }
 
@@ -118,7 +118,7 @@ pub fn check_bytes(
     let (process, inputs) = process::read(body, limits, &rules::names()).map_err(Failure::Rejected)?;
     cancel.check()?;
     let mut room = Room::default();
-    let bound = Bound::compile(process, inputs, &mut room);
+    let bound = Bound::compile(process, inputs, &mut room, cancel);
     cancel.check()?;
     let view = View { model: &bound.model, workspace: &room.workspace };
     let mut evaluation = Evaluation::new(view, &bound.equations, &bound.plan);
@@ -149,7 +149,7 @@ pub fn state_bytes(
     let (process, inputs) = process::read_state(body, limits).map_err(Failure::Rejected)?;
     cancel.check()?;
     let mut room = Room::default();
-    let bound = Bound::compile(process, inputs, &mut room);
+    let bound = Bound::compile(process, inputs, &mut room, cancel);
     let view = View { model: &bound.model, workspace: &room.workspace };
     room.sensitivity.take(view, &bound.equations, &bound.plan);
     cancel.check()?;

@@ -18,9 +18,10 @@ impl Faults {
         Faults::default()
     }
 
-    /// Adds one fault; beyond the limit it is dropped, and the list says so.
+    /// Adds one fault, unless it is there already; beyond the limit it is dropped, and the list says
+    /// so.
     pub fn push(&mut self, fault: Diagnostic) {
-        if !self.stops() {
+        if !self.stops() && !self.list.contains(&fault) {
             self.list.push(fault);
         }
     }

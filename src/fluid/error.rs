@@ -37,7 +37,10 @@ impl fmt::Display for PropertyError {
             PropertyError::NotFinite => f.write_str("an input is not a finite number"),
             PropertyError::OutOfRange { quantity, unit, value, min, max } => write!(
                 f,
-                "{quantity} {value:.6} {unit} is outside the formulation's range {min:.6} to {max:.6} {unit}"
+                "{quantity} {} {unit} is outside the formulation's range {} to {} {unit}",
+                Short(*value),
+                Short(*min),
+                Short(*max)
             ),
             PropertyError::UnsupportedPair(pair) => {
                 write!(f, "the formulation cannot be fixed by {pair}")
@@ -50,3 +53,36 @@ impl fmt::Display for PropertyError {
 }
 
 impl std::error::Error for PropertyError {}
+
+/// A number to about six significant digits, without trailing zeros.
+struct Short(f64);
+
+impl fmt::Display for Short {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        // Six digits are written and read back, so that the shortest text of the result is theirs.
+        let rounded = format!("{:.5e}", self.0).parse().unwrap_or(self.0);
+        if rounded == 0.0 || (1e-4..1e6).contains(&rounded.abs()) {
+            write!(f, "{rounded}")
+        } else {
+            write!(f, "{rounded:e}")
+        }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn ranges_are_written_shortly() {
+        let error = PropertyError::OutOfRange {
+            quantity: "pressure",
+            unit: "Pa",
+            value: 2e8,
+            min: 611.212_677_444_345_2,
+            max: 1.0e8,
+        };
+        let text = error.to_string();
+        assert_eq!(text, "pressure 2e8 Pa is outside the formulation's range 611.213 to 1e8 Pa");
+    }
+}

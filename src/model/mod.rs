@@ -11,7 +11,7 @@ mod workspace;
 
 pub use dual::{Dual, Slot};
 pub use margin::{Decision, Family, Margin, Scope, Test, Verdict};
-pub use solve::{Plan, Rows, Step, invert};
+pub use solve::{Plan, Rows, Step, Stop, invert};
 pub use workspace::{Blocked, StateValue, View, Workspace};
 
 use crate::fluid::{Datum, Elements, Pair};

@@ -58,9 +58,13 @@ pub struct Plan {
 
 const MAX_ITERATIONS: usize = 60;
 
+/// Asked now and then whether to give up.
+pub type Stop<'a> = &'a dyn Fn() -> bool;
+
 impl Plan {
-    /// Finds an order in which the unknowns can be solved, and solves them in the workspace.
-    pub fn make(model: &Model, rows: &impl Rows, workspace: &mut Workspace) -> Plan {
+    /// Finds an order in which the unknowns can be solved, and solves them in the workspace. Once
+    /// `stop` says so it gives up, and the plan is not complete.
+    pub fn make(model: &Model, rows: &impl Rows, workspace: &mut Workspace, stop: Stop<'_>) -> Plan {
         let mut plan = Plan { spent: vec![None; rows.len()], ..Plan::default() };
         let mut open: Vec<Vec<VarId>> = (0..rows.len()).map(|r| rows.unknowns(r).to_vec()).collect();
         let mut touching: Vec<Vec<usize>> = vec![Vec::new(); model.process.vars.len()];
@@ -74,11 +78,14 @@ impl Plan {
         let mut refused = vec![false; rows.len()];
         loop {
             while let Some(row) = ready.pop_first() {
+                if stop() {
+                    return plan;
+                }
                 let [unknown] = open[row][..] else { continue };
                 if refused[row] {
                     continue;
                 }
-                match solve_step(model, rows, workspace, &[row], &[unknown], None) {
+                match solve_step(model, rows, workspace, &[row], &[unknown], None, stop) {
                     Some(start) => {
                         plan.spent[row] = Some(plan.steps.len());
                         plan.steps.push(Step { rows: vec![row], unknowns: vec![unknown], start });
@@ -90,7 +97,8 @@ impl Plan {
                     }
                 }
             }
-            let Some(found) = solve_block(model, rows, workspace, &open, &touching, &mut refused) else {
+            let Some(found) = solve_block(model, rows, workspace, &open, &touching, &mut refused, stop)
+            else {
                 break;
             };
             for step in found {
@@ -111,7 +119,8 @@ impl Plan {
     /// unknown.
     pub fn execute(&self, model: &Model, rows: &impl Rows, workspace: &mut Workspace) {
         for step in &self.steps {
-            if solve_step(model, rows, workspace, &step.rows, &step.unknowns, Some(&step.start)).is_none() {
+            let start = Some(&step.start[..]);
+            if solve_step(model, rows, workspace, &step.rows, &step.unknowns, start, &|| false).is_none() {
                 for &v in &step.unknowns {
                     workspace.forget(model, v);
                 }
@@ -242,17 +251,18 @@ fn solve_step(
     chosen: &[usize],
     unknowns: &[VarId],
     start: Option<&[f64]>,
+    stop: Stop<'_>,
 ) -> Option<Vec<f64>> {
     let first: Vec<f64> = match start {
         Some(s) => s.to_vec(),
         None => unknowns.iter().map(|&v| guess(model, workspace, v)).collect(),
     };
-    if newton(model, rows, workspace, chosen, unknowns, &first) {
+    if newton(model, rows, workspace, chosen, unknowns, &first, stop) {
         return Some(first);
     }
     if let ([row], [unknown]) = (chosen, unknowns) {
         let candidate = scan(model, rows, workspace, *row, *unknown)?;
-        if newton(model, rows, workspace, chosen, unknowns, &[candidate]) {
+        if newton(model, rows, workspace, chosen, unknowns, &[candidate], stop) {
             return Some(vec![candidate]);
         }
     }
@@ -266,6 +276,7 @@ fn newton(
     chosen: &[usize],
     unknowns: &[VarId],
     start: &[f64],
+    stop: Stop<'_>,
 ) -> bool {
     let n = unknowns.len();
     let mut x = start.to_vec();
@@ -276,6 +287,9 @@ fn newton(
         return false;
     };
     for _ in 0..MAX_ITERATIONS {
+        if stop() {
+            return false;
+        }
         let (residuals, jacobian) = &current;
         let Some(step) = solve_dense(jacobian, residuals, n) else {
             return false;
@@ -450,11 +464,15 @@ fn solve_block(
     open: &[Vec<VarId>],
     touching: &[Vec<usize>],
     refused: &mut [bool],
+    stop: Stop<'_>,
 ) -> Option<Vec<Step>> {
     let mut seen_rows = vec![false; open.len()];
     for first in 0..open.len() {
         if seen_rows[first] || refused[first] || open[first].len() < 2 {
             continue;
+        }
+        if stop() {
+            return None;
         }
         // The connected set.
         let mut block_rows = vec![first];
@@ -492,7 +510,7 @@ fn solve_block(
         let natures: Vec<f64> = unknowns.iter().map(|&v| scale(model, v)).collect();
         let ranks: Vec<Rank> =
             usable.iter().map(|&r| Rank { class: rows.class(r), weight: rows.weight(r) }).collect();
-        let (picked, determined) = reduce(&mut matrix, &ranks, &natures);
+        let (picked, determined) = reduce(&mut matrix, &ranks, &natures, stop);
         let chosen_unknowns: Vec<VarId> = determined.iter().map(|&(_, j)| unknowns[j]).collect();
         let chosen_rows: Vec<usize> = determined.iter().map(|&(i, _)| usable[picked[i]]).collect();
         for &v in &unknowns {
@@ -504,7 +522,7 @@ fn solve_block(
             }
             continue;
         }
-        if let Some(start) = solve_step(model, rows, workspace, &chosen_rows, &chosen_unknowns, None) {
+        if let Some(start) = solve_step(model, rows, workspace, &chosen_rows, &chosen_unknowns, None, stop) {
             return Some(vec![Step { rows: chosen_rows, unknowns: chosen_unknowns, start }]);
         }
         for &v in &chosen_unknowns {
@@ -533,7 +551,12 @@ const INDEPENDENT_WEIGHTED: f64 = 1e-3;
 /// Gauss-Jordan elimination with rows accepted in order of class (within a class, the largest
 /// pivot first). Returns the accepted rows, and for each unknown that is determined by rows that
 /// involve determined unknowns only, the pair (index of its accepted row, unknown).
-fn reduce(matrix: &mut [Vec<f64>], ranks: &[Rank], scales: &[f64]) -> (Vec<usize>, Vec<(usize, usize)>) {
+fn reduce(
+    matrix: &mut [Vec<f64>],
+    ranks: &[Rank],
+    scales: &[f64],
+    stop: Stop<'_>,
+) -> (Vec<usize>, Vec<(usize, usize)>) {
     let n = scales.len();
     let originals: Vec<Vec<bool>> =
         matrix.iter().map(|row| row.iter().map(|v| *v != 0.0).collect()).collect();
@@ -554,13 +577,17 @@ fn reduce(matrix: &mut [Vec<f64>], ranks: &[Rank], scales: &[f64]) -> (Vec<usize
     let mut left: Vec<usize> = (0..matrix.len()).collect();
     let mut picked = Vec::new();
     let mut pivots = Vec::new();
+    let mut is_pivot = vec![false; n];
     while let Some(class) = left.iter().map(|&i| ranks[i].class).min() {
+        if stop() {
+            return (Vec::new(), Vec::new());
+        }
         // The best pivot among the rows of the lowest class.
         let mut best: Option<(usize, usize, f64)> = None;
         for &i in left.iter().filter(|&&i| ranks[i].class == class) {
             for (j, v) in matrix[i].iter().enumerate() {
                 let size = weights[i] * v.abs();
-                if !pivots.contains(&j) && v.abs() > floor(i) && size > best.map_or(0.0, |b| b.2) {
+                if !is_pivot[j] && v.abs() > floor(i) && size > best.map_or(0.0, |b| b.2) {
                     best = Some((i, j, size));
                 }
             }
@@ -583,19 +610,19 @@ fn reduce(matrix: &mut [Vec<f64>], ranks: &[Rank], scales: &[f64]) -> (Vec<usize
         }
         picked.push(i);
         pivots.push(j);
+        is_pivot[j] = true;
     }
     // An unknown is determined if its reduced row has no free column.
     let mut determined: Vec<(usize, usize)> = (0..picked.len())
-        .filter(|&k| {
-            (0..n).all(|j| j == pivots[k] || pivots.contains(&j) || matrix[picked[k]][j].abs() < 1e-9)
-        })
+        .filter(|&k| (0..n).all(|j| is_pivot[j] || matrix[picked[k]][j].abs() < 1e-9))
         .map(|k| (k, pivots[k]))
         .collect();
     // Newton works on the original rows: keep only rows all of whose unknowns are determined.
     loop {
-        let known: Vec<usize> = determined.iter().map(|d| d.1).collect();
+        let mut known = vec![false; n];
+        determined.iter().for_each(|d| known[d.1] = true);
         let before = determined.len();
-        determined.retain(|&(k, _)| (0..n).all(|j| !originals[picked[k]][j] || known.contains(&j)));
+        determined.retain(|&(k, _)| (0..n).all(|j| !originals[picked[k]][j] || known[j]));
         if determined.len() == before {
             break;
         }

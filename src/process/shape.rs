@@ -456,8 +456,16 @@ static HOLDUP: ObjectShape = ObjectShape {
     name: "Holdup",
     doc: "What a component holds before and after.",
     fields: &[&[
-        optional("initial", Shape::List { item: &Shape::Object(&CONTENT), max: 64 }, "Contents before."),
-        optional("final", Shape::List { item: &Shape::Object(&CONTENT), max: 64 }, "Contents after."),
+        required(
+            "initial",
+            Shape::List { item: &Shape::Object(&CONTENT), max: 64 },
+            "Contents before; an empty list if it is empty then.",
+        ),
+        required(
+            "final",
+            Shape::List { item: &Shape::Object(&CONTENT), max: 64 },
+            "Contents after; an empty list if it is empty then.",
+        ),
         optional(
             "boundary_pressure",
             Shape::Quantity(D::Pressure),

@@ -139,7 +139,9 @@ pub fn read_resolution(text: &str, dimension: Dimension, scale: &Scale) -> Resul
 
 /// The largest magnitude that is taken, in SI units: far beyond anything real, and small enough that
 /// no product or square of figures overflows, which a report could not show.
-const LARGEST: f64 = 1e30;
+pub(super) const LARGEST: f64 = 1e30;
+/// The smallest magnitude but zero that is taken, in SI units, for the same reason.
+const SMALLEST: f64 = 1e-30;
 
 fn whole(text: &str) -> Result<Decimal<'_>, Diagnostic> {
     match number::split(text)? {
@@ -168,9 +170,9 @@ fn with_unit<'a>(
 ) -> Result<Literal<'a>, Diagnostic> {
     let scale = unit::find(unit, dimension)?;
     let value = scale.to_si(number.value);
-    if value.is_nan() || value.abs() > LARGEST || (value == 0.0 && number.value != 0.0 && scale.offset == 0.0)
-    {
-        let size = if value == 0.0 { "small" } else { "large" };
+    let tiny = value.abs() < SMALLEST && number.value != 0.0 && scale.offset == 0.0;
+    if value.is_nan() || value.abs() > LARGEST || tiny {
+        let size = if tiny { "small" } else { "large" };
         return Err(Diagnostic::new(
             Code::BadNumber,
             "",

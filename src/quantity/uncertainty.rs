@@ -5,6 +5,7 @@ use std::fmt;
 use super::dimension::Dimension;
 use super::instrument::Instrument;
 use super::number::{self, Decimal};
+use super::read::LARGEST;
 use super::unit::{self, Reference, Scale, shown};
 use crate::diagnostic::{Code, Diagnostic, nearest};
 
@@ -151,9 +152,10 @@ impl Spread {
                 Ok(Spread { amount: divided(amount, 3_f64.sqrt()), how: How::HalfWidth })
             }
             UncertaintyText::Expanded(text, coverage_factor) => {
-                if !(coverage_factor > 0.0 && coverage_factor.is_finite()) {
-                    return Err(bad(format!("the coverage factor is {coverage_factor}; it must be above 0"))
-                        .hint("a coverage factor of 2 stands for about 95 %"));
+                if !(0.01..=100.0).contains(&coverage_factor) {
+                    let message =
+                        format!("the coverage factor is {coverage_factor}; it lies between 0.01 and 100");
+                    return Err(bad(message).hint("a coverage factor of 2 stands for about 95 %"));
                 }
                 let amount = amount(without_sign(text).unwrap_or(text), dimension, scale)?;
                 Ok(Spread {
@@ -226,10 +228,10 @@ fn not_negative(number: Decimal<'_>, text: &str) -> Result<f64, Diagnostic> {
 }
 
 fn finite(u: f64, text: &str) -> Result<f64, Diagnostic> {
-    if u.is_finite() {
+    if u <= LARGEST {
         Ok(u)
     } else {
-        Err(bad(format!("the uncertainty \"{}\" is too large to be represented", shown(text))))
+        Err(bad(format!("the uncertainty \"{}\" is too large to be computed with", shown(text))))
     }
 }
 

@@ -144,6 +144,18 @@ impl StateReport {
     }
 }
 
+/// The member of the question that a fault is about, where it was given as such.
+fn place(view: View<'_>, error: Option<&PropertyError>) -> String {
+    let Some(PropertyError::OutOfRange { quantity, .. }) = error else { return String::new() };
+    let member = format!("/{}", quantity.replace(' ', "_"));
+    let mut sources = view.model.process.sources.iter();
+    if sources.any(|s| s.pointer == member || s.pointer.starts_with(&format!("{member}/"))) {
+        member
+    } else {
+        String::new()
+    }
+}
+
 fn fault(view: View<'_>, blocked: &Blocked) -> Diagnostic {
     match blocked {
         Blocked::State(s) => {
@@ -157,7 +169,8 @@ fn fault(view: View<'_>, blocked: &Blocked) -> Diagnostic {
                 error.map_or_else(|| "the state cannot be computed".to_owned(), ToString::to_string);
             let fluid = &view.model.process.fluids[view.model.process.states[*s].fluid];
             let range = fluid.engine.provenance().range;
-            Diagnostic::new(code, "", message).hint(format!("the formulation holds for {range}"))
+            Diagnostic::new(code, place(view, error), message)
+                .hint(format!("the formulation holds for {range}"))
         }
         Blocked::Unknown(_) => {
             Diagnostic::new(Code::Unsolvable, "", "two properties are needed to fix a state")

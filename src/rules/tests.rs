@@ -14,7 +14,7 @@ fn evaluated<R>(description: &str, ask: impl FnOnce(&mut Evaluation<'_>) -> R) -
     let mut workspace = Workspace::default();
     workspace.bind(&model, &inputs);
     let equations = Equations::compile(&model, &workspace);
-    let plan = Plan::make(&model, &equations, &mut workspace);
+    let plan = Plan::make(&model, &equations, &mut workspace, &|| false);
     let view = View { model: &model, workspace: &workspace };
     let mut evaluation = Evaluation::new(view, &equations, &plan);
     evaluation.exergies = Some(Rc::new(Exergies::derive(&evaluation)));
@@ -168,7 +168,7 @@ fn gradients_follow_the_given_figures() {
             let mut workspace = Workspace::default();
             workspace.bind(&model, inputs);
             let equations = Equations::compile(&model, &workspace);
-            let plan = Plan::make(&model, &equations, &mut workspace);
+            let plan = Plan::make(&model, &equations, &mut workspace, &|| false);
             let view = View { model: &model, workspace: &workspace };
             let evaluation = Evaluation::new(view, &equations, &plan);
             let mut margins = Vec::new();

@@ -396,3 +396,145 @@ fn named_bad_inputs_are_refused_where_they_are() {
     assert!(wrong.is_empty(), "{}", wrong.join("\n"));
     server.assert_alive();
 }
+
+fn example(name: &str) -> Value {
+    let text = server_example(name);
+    serde_json::from_str(&text).unwrap()
+}
+
+fn server_example(name: &str) -> String {
+    fs::read_to_string(format!("{}/openapi/examples/{name}.json", env!("CARGO_MANIFEST_DIR"))).unwrap()
+}
+
+fn with(mut document: Value, pointer: &str, value: Value) -> Value {
+    *document.pointer_mut(pointer).unwrap_or_else(|| panic!("no {pointer}")) = value;
+    document
+}
+
+/// What is well-formed and means something impossible: refused with its place.
+#[test]
+fn what_cannot_be_is_refused_where_it_is() {
+    let server = Server::start();
+    let mut line = Line::to(&server);
+    let boiler = |o2: Value| with(example("laundry-gas-boiler"), "/fluids/flue-gas/o2_dry", o2);
+    let mut endless = example("forge-quench");
+    endless["components"]["bath"]["holdup"].as_object_mut().unwrap().remove("final");
+    let steady = with(example("forge-quench"), "/basis", json!("rate"));
+    for (target, body, place, code) in [
+        ("/v1/checks", boiler(json!(0.25)), "/fluids/flue-gas/o2_dry", "out-of-bounds"),
+        ("/v1/checks", boiler(json!("-1 %")), "/fluids/flue-gas/o2_dry", "out-of-bounds"),
+        ("/v1/checks", boiler(json!("3 bar")), "/fluids/flue-gas/o2_dry", "wrong-dimension"),
+        ("/v1/checks", endless, "/components/bath/holdup", "missing-field"),
+        ("/v1/checks", steady, "/components/bath/holdup", "conflict"),
+        (
+            "/v1/states",
+            json!({"fluid": "water", "pressure": "2000 bar", "temperature": "20 degC"}),
+            "/pressure",
+            "out-of-range",
+        ),
+        (
+            "/v1/states",
+            json!({"fluid": "water", "pressure": "1 bar", "temperature": "3000 degC"}),
+            "/temperature",
+            "out-of-range",
+        ),
+        (
+            "/v1/states",
+            json!({"fluid": "water", "pressure": "1.01325 bar", "temperature": "99.974 degC"}),
+            "",
+            "unsolvable",
+        ),
+        (
+            "/v1/states",
+            json!({"fluid": "water", "pressure": "1 bar", "quality": 1.5}),
+            "/quality",
+            "out-of-bounds",
+        ),
+    ] {
+        let (status, answer) = line.post(target, body.to_string().as_bytes());
+        assert_eq!(status, 422, "{body}: {answer}");
+        let found = faults(&answer);
+        assert!(found.contains(&(place.to_owned(), code.to_owned())), "{place} {code}: {found:?}");
+    }
+    for (written, meant) in [("R-134b", "R134a"), ("watre", "water"), ("amonia", "ammonia")] {
+        let body = json!({"fluid": written, "pressure": "1 bar", "temperature": "20 degC"}).to_string();
+        let (status, answer) = line.post("/v1/states", body.as_bytes());
+        assert_eq!(status, 422);
+        assert_eq!(answer["errors"].as_array().unwrap().len(), 1, "{answer}");
+        assert!(answer["errors"][0]["hint"].as_str().unwrap().contains(meant), "{answer}");
+    }
+    server.assert_alive();
+}
+
+/// What only the property formulations can tell is a finding, with its place, in a report that says it
+/// is not complete.
+#[test]
+fn what_cannot_be_computed_is_a_finding() {
+    let server = Server::start();
+    let mut line = Line::to(&server);
+    let valve = |from: &str, to: &str| serde_json::from_str::<Value>(&swapped(from, to)).unwrap();
+    let hot_air = json!({"components": {"x": {"kind": "heat_exchanger"}}, "flows": {
+        "hi": {"kind": "material", "to": "x", "fluid": "air", "pressure": "1.1 bar", "temperature": "2500 degC", "mass_flow": "1 kg/s"},
+        "ho": {"kind": "material", "from": "x", "fluid": "air", "pressure": "1 bar", "temperature": "200 degC"},
+        "ci": {"kind": "material", "to": "x", "fluid": "water", "pressure": "900 bar", "temperature": "20 degC", "mass_flow": "0.5 kg/s"},
+        "co": {"kind": "material", "from": "x", "fluid": "water", "pressure": "900 bar"}}});
+    for (body, list, rule, place) in [
+        (valve("40 bar", "2000 bar"), "warnings", "state-outside-formulation", "/flows/a"),
+        (valve("400 degC", "3000 degC"), "warnings", "state-outside-formulation", "/flows/a"),
+        (
+            valve(
+                "\"40 bar\", \"temperature\": \"400 degC\"",
+                "\"10 bar\", \"temperature\": \"179.89 degC\"",
+            ),
+            "warnings",
+            "wetness-unknown",
+            "/flows/a",
+        ),
+        (hot_air, "unchecked", "internal-temperature-cross", "/components/x"),
+    ] {
+        let (status, report) = line.post("/v1/checks", body.to_string().as_bytes());
+        assert_eq!(status, 200, "{report}");
+        assert_eq!(report["complete"], false);
+        let told = report[list]
+            .as_array()
+            .unwrap()
+            .iter()
+            .any(|f| (f["rule"] == rule || f["what"] == rule) && f["where"] == place);
+        assert!(told, "{rule} at {place} is not among {}", report[list]);
+    }
+    server.assert_alive();
+}
+
+/// The time of the largest description that is taken is bounded: if it cannot be had before the
+/// deadline, the answer says so, and the worker is free again.
+#[test]
+fn a_ring_of_unknowns_ends_at_the_deadline() {
+    let server = Server::limited(|limits| limits.service.workers = 1);
+    let mut components = Map::new();
+    let mut flows = Map::new();
+    for i in 0..200 {
+        let (this, next) = (format!("c{i}"), format!("c{}", (i + 1) % 200));
+        components.insert(this.clone(), json!({"kind": if i % 2 == 1 { "mixer" } else { "splitter" }}));
+        let state = json!({"kind": "material", "fluid": "water", "pressure": "5 bar"});
+        let mut ring = state.clone();
+        ring["from"] = json!(this);
+        ring["to"] = json!(next);
+        flows.insert(format!("ring{i}"), ring);
+        let mut side = state;
+        side["mass_flow"] = json!("1 kg/s");
+        if i % 2 == 1 {
+            side["to"] = json!(this);
+            side["temperature"] = json!(format!("{} degC", 20 + i % 100));
+        } else {
+            side["from"] = json!(this);
+        }
+        flows.insert(format!("side{i}"), side);
+    }
+    let body = json!({"components": components, "flows": flows}).to_string();
+    let mut line = Line::to(&server);
+    let (status, answer) = line.post("/v1/checks?deadline=1ms", body.as_bytes());
+    assert_eq!((status, &answer["type"]), (503, &json!("/v1/codes#deadline-exceeded")));
+    let begun = Instant::now();
+    assert_eq!(line.post("/v1/checks?deadline=30s", VALVE.as_bytes()).0, 200);
+    assert!(begun.elapsed() < Duration::from_secs(2), "the worker went on for {:?}", begun.elapsed());
+}

@@ -8,3 +8,4 @@ mod documents;
 mod faults;
 mod limits;
 mod problems;
+mod schema;

@@ -209,3 +209,21 @@ fn the_same_description_gives_the_same_bytes() {
     };
     assert_eq!(bytes(), bytes());
 }
+
+/// Where the entropy balance has no answer, a limit that is broken all the same makes the verdict.
+#[test]
+fn a_defect_that_only_a_secondary_test_sees_is_counted() {
+    let report = check(&json!({
+        "components": {"engine": {"kind": "heat_engine"}},
+        "flows": {
+            "hot": {"kind": "heat", "to": "engine", "rate": "1000 kW", "temperature": "500 K"},
+            "cold": {"kind": "heat", "from": "engine", "temperature": "300 K"},
+            "colder": {"kind": "heat", "from": "engine", "temperature": "300 K"},
+            "work": {"kind": "work", "from": "engine", "power": "450 kW"}
+        }
+    }));
+    assert_eq!(report["violations"][0]["rule"], "engine-beats-carnot");
+    assert_eq!((&report["verdict"], &report["complete"]), (&json!("violated"), &json!(false)));
+    assert!(report["counts"]["violated"].as_u64().unwrap() > 0);
+    assert_eq!(report["components"]["engine"]["verdict"], "violated");
+}

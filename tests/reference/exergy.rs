@@ -5,7 +5,7 @@ use super::Random;
 use super::cogeneration::{plant, report};
 use sigmadot::balance::Exergies;
 use sigmadot::model::Scope;
-use sigmadot::pipeline::{Bound, Room};
+use sigmadot::pipeline::{Bound, Cancel, Room};
 use sigmadot::process::{ReadLimits, read};
 use sigmadot::rules::names;
 use std::fmt::Write;
@@ -18,7 +18,7 @@ fn identities(description: &str) -> (usize, usize) {
     let (process, inputs) = read(description.as_bytes(), &ReadLimits::default(), &names())
         .unwrap_or_else(|faults| panic!("{faults:?}\n{description}"));
     let mut room = Room::default();
-    let bound = Bound::compile(process, inputs, &mut room);
+    let bound = Bound::compile(process, inputs, &mut room, &Cancel::new());
     let inputs = bound.inputs.clone();
     let evaluation = bound.evaluate(&inputs, &mut room);
     let exergies = Exergies::derive(&evaluation);
