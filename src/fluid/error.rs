@@ -35,10 +35,10 @@ impl fmt::Display for PropertyError {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
             PropertyError::NotFinite => f.write_str("an input is not a finite number"),
-            PropertyError::OutOfRange { quantity, unit, value, min, max } => write!(
-                f,
-                "{quantity} {value:.6} {unit} is outside the formulation's range {min:.6} to {max:.6} {unit}"
-            ),
+            PropertyError::OutOfRange { quantity, unit, value, min, max } => {
+                let [value, min, max] = [value, min, max].map(|x| in_words(*x, unit));
+                write!(f, "{quantity} {value} is outside the formulation's range {min} to {max}")
+            }
             PropertyError::UnsupportedPair(pair) => {
                 write!(f, "the formulation cannot be fixed by {pair}")
             }
@@ -46,6 +46,16 @@ impl fmt::Display for PropertyError {
             PropertyError::Unstated(what) => write!(f, "{what} is not stated"),
             PropertyError::NoConvergence => f.write_str("the property equation did not converge"),
         }
+    }
+}
+
+/// Five significant digits, and degrees Celsius beside kelvins.
+fn in_words(x: f64, unit: &str) -> String {
+    let short = |x: f64| format!("{x:.4e}").parse().unwrap_or(x);
+    if unit == "K" {
+        format!("{} K ({} degC)", short(x), short(((x - 273.15) * 100.0).round() / 100.0))
+    } else {
+        format!("{} {unit}", short(x))
     }
 }
 

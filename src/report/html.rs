@@ -77,7 +77,7 @@ impl Report {
             out,
             "<ul class=\"facts\"><li>{}</li><li>{complete}</li><li>{}</li></ul>\n</section>",
             prose::counts(self),
-            prose::data_clause(self.data_verdict)
+            prose::data_clause(self)
         )
     }
 

@@ -15,6 +15,9 @@ pub(super) struct Digits {
     pub exponent: i32,
 }
 
+/// Less than this, in any unit in use, is rounding noise.
+const NOISE: f64 = 1e-12;
+
 /// Most significant digits of a value, whatever its uncertainty claims.
 const MOST_DIGITS: i32 = 6;
 
@@ -24,6 +27,8 @@ const EXACT_DIGITS: i32 = 5;
 /// The digits of a value and its uncertainty.
 pub(super) fn digits(value: f64, u: f64) -> Digits {
     let (value, u) = (if value.is_finite() { value } else { 0.0 }, if u.is_finite() { u.abs() } else { 0.0 });
+    let value = if value.abs().max(u) < NOISE { 0.0 } else { value };
+    let u = if u < NOISE { 0.0 } else { u };
     let largest = value.abs().max(u);
     let magnitude = order(largest);
     let exponent =
@@ -203,8 +208,14 @@ pub(super) fn sign(word: &str) -> char {
 }
 
 /// The data verdict as a clause.
-pub(super) fn data_clause(word: &str) -> &'static str {
-    match word {
+pub(super) fn data_clause(report: &Report) -> &'static str {
+    let sure = report
+        .violations
+        .iter()
+        .chain(&report.warnings)
+        .any(|f| f.authority == "data" && f.verdict == "violated");
+    match report.data_verdict {
+        "contradictory" if !sure => "likely contradictions between the data",
         "consistent" => "the data agree with each other",
         "contradictory" => "the data contradict each other",
         _ => "no redundant data to compare",
