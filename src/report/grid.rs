@@ -187,16 +187,25 @@ fn causes(report: &Report) -> Grid {
     }
 }
 
+/// A figure of merit as engineers call it: by heating value, and a heat rate per kilowatt hour.
+fn merit(quantity: &str, f: Figure) -> (String, Figure) {
+    let words = match (quantity.strip_suffix("_lower"), quantity.strip_suffix("_higher")) {
+        (Some(of), _) => format!("{} (LHV)", prose::words(of)),
+        (_, Some(of)) => format!("{} (HHV)", prose::words(of)),
+        _ => prose::qualified(quantity),
+    };
+    if quantity.starts_with("heat_rate_") && f.unit == "1" {
+        return (words, Figure { value: 3600.0 * f.value, u: 3600.0 * f.u, unit: "kJ/kWh" });
+    }
+    (words, f)
+}
+
 fn performance(report: &Report) -> Grid {
     let mut rows = Vec::new();
     for (name, region) in regions(report) {
         for (quantity, f) in &region.performance.0 {
-            rows.push(vec![
-                prose::clean(name),
-                prose::qualified(quantity),
-                pair(Some(*f)),
-                prose::unit(f.unit),
-            ]);
+            let (words, f) = merit(quantity, *f);
+            rows.push(vec![prose::clean(name), words, pair(Some(f)), prose::unit(f.unit)]);
         }
     }
     Grid {

@@ -312,10 +312,21 @@ pub(super) struct UncheckedGroup {
 /// rule and reason.
 pub(super) fn group_unchecked(unchecked: &[Unchecked]) -> Vec<UncheckedGroup> {
     let mut groups: Vec<UncheckedGroup> = Vec::new();
+    // Balances that found several unknowns together, by these.
+    let mut joint: Vec<UncheckedGroup> = Vec::new();
     for u in unchecked {
         let (heading, place) = if u.reason == "spent-on" {
             let balance = u.what.split('-').next().unwrap_or(u.what);
             let found = u.detail.strip_prefix("the balance was used to find the ").unwrap_or(&u.detail);
+            if found.contains(", ") {
+                let place = place(&u.r#where);
+                match joint.iter_mut().find(|g| g.heading == found) {
+                    Some(g) if g.places.contains(&place) => {}
+                    Some(g) => g.places.push(place),
+                    None => joint.push(UncheckedGroup { heading: found.to_owned(), places: vec![place] }),
+                }
+                continue;
+            }
             (
                 format!("{} balance, used to find an unknown and so no test any more", title(balance)),
                 format!("{} ({})", place(&u.r#where), clean(found)),
@@ -328,6 +339,13 @@ pub(super) fn group_unchecked(unchecked: &[Unchecked]) -> Vec<UncheckedGroup> {
             None => groups.push(UncheckedGroup { heading, places: vec![place] }),
         }
     }
+    groups.extend(joint.into_iter().map(|g| {
+        let of = match g.places.len() {
+            1 => "Balances of 1 component used".to_owned(),
+            n => format!("{n} components solved together"),
+        };
+        UncheckedGroup { heading: format!("{of} for: {}", clean(&g.heading)), places: g.places }
+    }));
     groups
 }
 
@@ -427,6 +445,31 @@ mod tests {
 
     fn shown(value: f64, u: f64) -> String {
         digits(value, u).text()
+    }
+
+    #[test]
+    fn what_is_solved_together_is_named_once() {
+        let one = |name: &str, what| Unchecked {
+            r#where: format!("/components/{name}"),
+            what,
+            reason: "spent-on",
+            detail: "the balance was used to find the flow of a, flow of b".to_owned(),
+            would_need: String::new(),
+        };
+        let groups = group_unchecked(&[
+            one("x", "mass-imbalance"),
+            one("x", "energy-imbalance"),
+            one("y", "mass-imbalance"),
+        ]);
+        let [group] = groups.as_slice() else { panic!("{groups:?}") };
+        assert_eq!(group.heading, "2 components solved together for: flow of a, flow of b");
+        assert_eq!(group.places, ["x", "y"]);
+    }
+
+    #[test]
+    fn rounding_noise_is_zero() {
+        assert_eq!(shown(-14.552e-15, 0.0), "0");
+        assert_eq!(shown(3.0, 1e-15), "3");
     }
 
     #[test]
