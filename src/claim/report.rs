@@ -192,15 +192,16 @@ impl ClaimReport {
         }
         for (name, l) in &self.limits.0 {
             let side = l.sense.replace('_', " ");
-            lines.push(format!(
-                "  {} {side} {} ({}, {}); claimed {}: {}",
+            let line = format!(
+                "{} {side} {} ({}, {}); claimed {}: {}",
                 l.of.replace('_', " "),
                 l.figure.in_words(),
                 name.replace('_', " "),
                 l.authority,
                 l.claimed.in_words(),
                 l.standing.replace('_', " ")
-            ));
+            );
+            lines.push(wrapped_at(SHORT_WIDTH, &line, 2, 4));
         }
         if !self.figures.is_empty() {
             lines.push("\nFigures".to_owned());

@@ -292,7 +292,7 @@ pub fn transfer(desk: &mut Desk<'_>) -> Option<Case> {
         of: None,
         sense: Sense::AtMost,
         value: mean(View::Lenient, true),
-        assumes: format!("the mean temperature of the source; {}", two.assumes()),
+        assumes: "that of the source, each the heat passed over the entropy that goes with it".to_owned(),
         law: true,
     }];
     if two.source.slides() || two.sink.slides() {
@@ -301,7 +301,7 @@ pub fn transfer(desk: &mut Desk<'_>) -> Option<Case> {
             of: Some(("sink_hottest_temperature", hottest(false), D::Temperature)),
             sense: Sense::AtMost,
             value: hottest(true),
-            assumes: "the hottest end of the source, which nothing heated by it alone can pass".to_owned(),
+            assumes: "nothing heated by the source alone gets hotter than its hottest end".to_owned(),
             law: true,
         });
         limits.push(Limit {
@@ -309,7 +309,7 @@ pub fn transfer(desk: &mut Desk<'_>) -> Option<Case> {
             of: Some(("source_coldest_temperature", coldest(true), D::Temperature)),
             sense: Sense::AtLeast,
             value: coldest(false),
-            assumes: "the coldest end of the sink, which nothing cooled by it alone can pass".to_owned(),
+            assumes: "nothing cooled by the sink alone gets colder than its coldest end".to_owned(),
             law: true,
         });
     }

@@ -126,3 +126,17 @@ fn pages_work_offline() {
     assert_eq!(start, true);
     server.get("/docs/..%2f..%2fetc%2fpasswd").assert_problem(404, "not-found");
 }
+
+#[test]
+fn claims_and_states_come_as_text_too() {
+    let server = Server::start();
+    for (path, word) in [
+        ("/v1/claims/heat_pump?source=-7+degC&sink=35+degC&cop=4.2", "POSSIBLE"),
+        ("/v1/states?fluid=water&temperature=300+degC&pressure=10+bar", "enthalpy"),
+    ] {
+        let answer = server.call("GET", path, &[("accept", "text/plain")], b"");
+        let text = answer.text();
+        assert!(text.contains(word), "{text}");
+        assert!(text.lines().all(|line| line.chars().count() <= 96), "{text}");
+    }
+}

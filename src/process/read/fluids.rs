@@ -119,7 +119,11 @@ impl<'t> Reader<'t> {
                     near.splice(0..0, own.into_iter().map(str::to_owned));
                 }
                 let mut fault = node.fault(Code::UnknownFluid, format!("there is no fluid \"{text}\""));
-                fault = if near.is_empty() {
+                fault = if ["propylene glycol", "ethylene glycol"].contains(&text) {
+                    fault.hint(format!(
+                        "a glycol comes with its share: {{\"kind\": \"solution\", \"name\": \"{text}\", \"mass_fraction\": 0.4}} in \"fluids\""
+                    ))
+                } else if near.is_empty() {
                     fault.hint("GET /v1/fluids lists the fluids; own ones go into \"fluids\"")
                 } else {
                     fault.hint(format!("did you mean \"{}\"?", near.join("\" or \"")))
