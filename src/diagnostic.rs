@@ -148,6 +148,10 @@ pub fn push_token(pointer: &mut String, token: &str) {
     }
 }
 
+/// Symbols that an analysis of a fuel may be written with.
+const ELEMENTS: [(&str, &str); 5] =
+    [("C", "carbon"), ("H", "hydrogen"), ("O", "oxygen"), ("N", "nitrogen"), ("S", "sulphur")];
+
 /// The candidates nearest to `word` by edit distance, best first; at most three, and only such
 /// as a slip of the fingers or another spelling would explain.
 pub fn nearest<'a>(word: &str, candidates: impl IntoIterator<Item = &'a str>) -> Vec<&'a str> {
@@ -170,6 +174,11 @@ pub fn nearest<'a>(word: &str, candidates: impl IntoIterator<Item = &'a str>) ->
     let folded = fold(word);
     if folded.is_empty() {
         return Vec::new();
+    }
+    let symbol = ELEMENTS.iter().find(|(symbol, _)| *symbol == word).map(|e| e.1);
+    let candidates: Vec<&str> = candidates.into_iter().collect();
+    if let Some(element) = symbol.filter(|element| candidates.contains(element)) {
+        return vec![element];
     }
     let mut scored: Vec<(usize, &str)> = candidates
         .into_iter()
@@ -204,6 +213,13 @@ mod tests {
             assert!(code.text().chars().all(|c| c.is_ascii_lowercase() || c == '-'));
             assert!(code.meaning().ends_with('.'));
         }
+    }
+
+    #[test]
+    fn a_symbol_stands_for_its_element() {
+        assert_eq!(nearest("S", ["carbon", "sulphur"]), ["sulphur"]);
+        assert_eq!(nearest("C", ["cop", "carbon"]), ["carbon"]);
+        assert!(nearest("C", ["temperature"]).is_empty());
     }
 
     #[test]

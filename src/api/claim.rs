@@ -7,13 +7,14 @@ use serde::Serialize;
 use utoipa::ToSchema;
 
 use super::check::{DEADLINE, UNITS};
-use super::route::{BASE, Call, Gives, JSON, Method, Outcome, Parameter, Route, Takes, json_response};
+use super::route::{BASE, Call, Gives, JSON, Method, Outcome, Parameter, Route, TEXT, Takes, json_response};
 use super::state::OF_THE_CALL;
 use crate::claim::{self, ClaimReport};
 
 const VERDICT: HeaderName = HeaderName::from_static("verdict");
 
-const CLAIM: &[Gives] = &[Gives { media: JSON, schema: Some("ClaimReport") }];
+const CLAIM: &[Gives] =
+    &[Gives { media: JSON, schema: Some("ClaimReport") }, Gives { media: TEXT, schema: None }];
 
 /// `POST /v1/claims`.
 pub const POST_CLAIM: Route = Route {
@@ -138,22 +139,27 @@ fn kinds() -> ClaimKindList {
 }
 
 async fn by_body(call: Call) -> Outcome {
-    let (deadline, units, body) = (call.deadline()?, call.query.units(), call.body.clone());
+    let (deadline, units, media, body) =
+        (call.deadline()?, call.query.units(), call.media, call.body.clone());
     let work = call.service.run(deadline, move |engine, limits, cancel| {
-        engine.claim(&body, limits, units, cancel).map(|report| (report.verdict, report.to_json()))
+        engine.claim(&body, limits, units, cancel).map(|report| (report.verdict, render(&report, media)))
     });
     Ok(answer(work.await?))
 }
 
 async fn by_query(call: Call) -> Outcome {
-    let (deadline, units) = (call.deadline()?, call.query.units());
+    let (deadline, units, media) = (call.deadline()?, call.query.units(), call.media);
     let (kind, parameters) = (call.path("kind").to_owned(), call.query.further(OF_THE_CALL));
     let work = call.service.run(deadline, move |engine, limits, cancel| {
         engine
             .claim_query(&kind, &parameters, limits, units, cancel)
-            .map(|report: ClaimReport| (report.verdict, report.to_json()))
+            .map(|report| (report.verdict, render(&report, media)))
     });
     Ok(answer(work.await?))
+}
+
+fn render(report: &ClaimReport, media: &str) -> Vec<u8> {
+    if media == TEXT { report.to_text().into_bytes() } else { report.to_json() }
 }
 
 fn answer((verdict, bytes): (&'static str, Vec<u8>)) -> Response<Body> {

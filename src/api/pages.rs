@@ -4,9 +4,11 @@
 use std::fmt::Write;
 use std::sync::{Arc, OnceLock};
 
-use axum::body::{Body, Bytes};
-use axum::http::header::{CACHE_CONTROL, CONTENT_ENCODING, CONTENT_SECURITY_POLICY, CONTENT_TYPE, LOCATION};
-use axum::http::{HeaderValue, Response, StatusCode};
+use axum::body::Body;
+use axum::http::header::{
+    CACHE_CONTROL, CONTENT_ENCODING, CONTENT_SECURITY_POLICY, CONTENT_TYPE, HOST, LOCATION,
+};
+use axum::http::{HeaderMap, HeaderValue, Response, StatusCode};
 use utoipa_swagger_ui::Config;
 
 use super::examples::EXAMPLES;
@@ -26,7 +28,7 @@ const DOCS_POLICY: &str = "default-src 'none'; script-src 'self'; style-src 'sel
 pub const LANDING: Route = Route {
     path: "/",
     gives: &[Gives { media: HTML, schema: None }],
-    handler: |_| Box::pin(landing()),
+    handler: |call| Box::pin(landing(call)),
     ..BASE
 };
 
@@ -60,9 +62,20 @@ pub const DOCS_FILE: Route = Route {
     ..BASE
 };
 
-async fn landing() -> Outcome {
-    static PAGE: OnceLock<Bytes> = OnceLock::new();
-    let page = PAGE.get_or_init(|| Bytes::from(landing_page())).clone();
+/// The address that the landing page is written with.
+const ADDRESS: &str = "127.0.0.1:8298";
+
+/// The host that a call names, if it is one that can stand in a page and on a command line.
+fn host(headers: &HeaderMap) -> Option<&str> {
+    let plain = |c: char| c.is_ascii_alphanumeric() || matches!(c, '.' | ':' | '-' | '[' | ']');
+    let host = headers.get(HOST)?.to_str().ok()?;
+    (!host.is_empty() && host.len() < 256 && host.chars().all(plain)).then_some(host)
+}
+
+async fn landing(call: Call) -> Outcome {
+    static PAGE: OnceLock<String> = OnceLock::new();
+    let page = PAGE.get_or_init(landing_page);
+    let page = page.replace(ADDRESS, host(&call.parts.headers).unwrap_or(ADDRESS));
     let mut response = Response::new(Body::from(page));
     response.headers_mut().insert(CONTENT_SECURITY_POLICY, HeaderValue::from_static(LANDING_POLICY));
     Ok(response)
@@ -140,6 +153,19 @@ fn landing_page() -> String {
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn only_a_plain_host_stands_in_the_page() {
+        let of = |text: &'static str| {
+            let headers = HeaderMap::from_iter([(HOST, HeaderValue::from_static(text))]);
+            host(&headers).map(str::to_owned)
+        };
+        assert_eq!(of("plant.example:8300").as_deref(), Some("plant.example:8300"));
+        assert_eq!(of("[::1]:80").as_deref(), Some("[::1]:80"));
+        assert_eq!(of("a;rm -rf"), None);
+        assert_eq!(of("<b>"), None);
+        assert!(landing_page().contains(ADDRESS));
+    }
 
     #[test]
     fn the_landing_page_loads_nothing_from_elsewhere_and_runs_nothing() {

@@ -6,12 +6,13 @@ use axum::http::Response;
 use serde_json::Value;
 
 use super::check::{DEADLINE, UNITS};
-use super::route::{BASE, Call, Gives, JSON, Method, Outcome, Parameter, Route, Takes, optional};
+use super::route::{BASE, Call, Gives, JSON, Method, Outcome, Parameter, Route, TEXT, Takes, optional};
 
 /// Parameters of the call itself, which are no members of the question.
 pub(super) const OF_THE_CALL: &[&str] = &["units", "deadline"];
 
-const STATE: &[Gives] = &[Gives { media: JSON, schema: Some("StateReport") }];
+const STATE: &[Gives] =
+    &[Gives { media: JSON, schema: Some("StateReport") }, Gives { media: TEXT, schema: None }];
 
 /// `GET /v1/states`.
 pub const GET_STATE: Route = Route {
@@ -91,9 +92,10 @@ async fn by_query(call: Call) -> Outcome {
 }
 
 async fn answer(call: Call, body: Bytes) -> Outcome {
-    let (deadline, units) = (call.deadline()?, call.query.units());
+    let (deadline, units, media) = (call.deadline()?, call.query.units(), call.media);
     let work = call.service.run(deadline, move |engine, limits, cancel| {
-        engine.state(&body, limits, units, cancel).map(|state| state.to_json())
+        let state = engine.state(&body, limits, units, cancel)?;
+        Ok(if media == TEXT { state.to_text().into_bytes() } else { state.to_json() })
     });
     Ok(Response::new(Body::from(work.await?)))
 }

@@ -157,10 +157,17 @@ pub fn component(view: View<'_>, k: ComponentId) -> Vec<Metric> {
 fn machine(view: View<'_>, k: ComponentId, out: &mut Vec<Metric>) {
     let process = &view.model.process;
     let component = &process.components[k];
+    let sections = sections(view, component);
+    if component.kind.info().purpose == Purposeful::Compression
+        && let [(inlet, _)] = sections[..]
+        && let (Ok((work_in, ..)), Ok(mass)) = (transfers(view, k), view.mass(inlet))
+        && let Some(x) = ratio(&work_in, &mass).filter(|x| x.value > 0.0)
+    {
+        out.push(Metric::new("specific_work", x, Dimension::SpecificEnergy));
+    }
     if !is_adiabatic(process, component) {
         return;
     }
-    let sections = sections(view, component);
     let several = sections.len() > 1;
     for &(before, after) in &sections {
         if let Some(x) = isentropic_efficiency(view, before, after) {

@@ -225,11 +225,15 @@ impl Case {
     /// The judgement.
     pub fn judge(
         self,
-        desk: Desk<'_>,
+        mut desk: Desk<'_>,
         units: UnitSystem,
         false_alarm: f64,
         claim_sha256: String,
     ) -> Computed<ClaimReport> {
+        if !desk.exact.is_empty() {
+            let text = format!("conditions taken as exact: {}", desk.exact.join(", "));
+            desk.assume("", text);
+        }
         let inputs = desk.inputs.as_slice();
         let figure = |k: Known, d: Dimension| Figure::new(k.value, k.u, d, units);
         let (factor, scale, metric) = self.speech(inputs, units)?;
@@ -242,7 +246,7 @@ impl Case {
         let mut limits = Named::default();
         let mut verdict = Standing::Possible;
         // The deciding limit: the worst standing among the laws, and of equals the first.
-        let mut deciding: Option<(usize, Known, Standing, f64)> = None;
+        let mut deciding: Option<Deciding> = None;
         let mut sentences = Vec::new();
         for (i, limit) in self.limits.iter().enumerate() {
             let (of, subject, dimension) = match &limit.of {
@@ -259,13 +263,18 @@ impl Case {
             let margin = propagate(inputs, &|x| Ok(sign * ((limit.value)(x)? - subject(x)?)))?;
             let (standing, z) = stand(own, value.value, margin, false_alarm);
             if limit.law {
-                if deciding.is_none_or(|d| standing > d.2) {
-                    deciding = Some((i, value, standing, z));
+                if deciding.is_none_or(|d| standing > d.standing) {
+                    deciding = Some(Deciding { index: i, limit: value, claimed: own, standing });
                 }
                 verdict = verdict.max(standing);
             }
             let text = dimension.map_or_else(|| spoken(value.value), |d| words(value.value, d));
-            sentences.push((i, text, standing));
+            // A reference that is the limit of law itself says nothing new.
+            let repeats = !limit.law
+                && deciding.is_some_and(|d| (d.limit.value - value.value).abs() <= 1e-6 * value.value.abs());
+            if !repeats {
+                sentences.push((i, text, standing));
+            }
             limits.push(
                 limit.name,
                 ClaimLimit {
@@ -276,7 +285,7 @@ impl Case {
                     authority: if limit.law { "law" } else { "reference" },
                     assumes: limit.assumes.clone(),
                     standing: if limit.law { standing.text() } else { standing.beside_a_reference() },
-                    z: rounded(z),
+                    z: (margin.u > 0.0).then(|| rounded(z)),
                 },
             );
         }
@@ -291,19 +300,15 @@ impl Case {
             if !inside && verdict == Standing::Possible {
                 verdict = Standing::Undecided;
             }
-            let lenient = deciding.map(|d| main(d.1));
+            let lenient = deciding.map(|d| main(d.limit));
             if strict.value.is_finite() {
                 bracket = Some(ClaimBracket { strict: main(strict), lenient, assumes: assumes.clone() });
             }
         }
         let sigma = finite(propagate(inputs, &self.entropy.value)?)?;
-        let z_sigma = deciding.map_or_else(
-            || clamped(sigma.value / sigma.u.max(ROUNDING * sigma.value.abs()).max(f64::MIN_POSITIVE)),
-            |d| d.3,
-        );
-        let z_sigma = if sigma.u > 0.0 { clamped(sigma.value / sigma.u) } else { z_sigma };
-        let ratio = deciding.filter(|_| self.relative).map(|(i, limit, ..)| {
-            let sense = self.limits.get(i).map_or(Sense::AtMost, |l| l.sense);
+        let z_sigma = (sigma.u > 0.0).then(|| clamped(sigma.value / sigma.u));
+        let ratio = deciding.filter(|_| self.relative).map(|Deciding { index, limit, .. }| {
+            let sense = self.limits.get(index).map_or(Sense::AtMost, |l| l.sense);
             (
                 if sense == Sense::AtMost {
                     claimed.value / limit.value
@@ -352,12 +357,33 @@ impl Case {
             }
         }
         let mut statement = self.subject.clone();
+        // Claimed figure and limit are those of one test: the one that decides.
+        let decided = deciding
+            .filter(|_| verdict > Standing::Possible)
+            .and_then(|d| Some((d.claimed, self.limits.get(d.index)?.of.as_ref()?)));
+        let (name, told, own) = match decided {
+            Some((own, of)) => (of.0, Some(of.2), own),
+            None => (self.figure.0, None, claimed),
+        };
+        let deciding = match (decided, deciding) {
+            (None, Some(d)) => {
+                // Of laws that are all kept, the one on the claimed figure itself speaks.
+                let of_the_figure = self.limits.get(d.index).is_some_and(|l| l.of.is_none());
+                Some(d).filter(|_| of_the_figure)
+            }
+            (_, d) => d,
+        };
+        let width = |half: f64| match told {
+            Some(d) => in_words(half, &Scale { offset: 0.0, ..display(d, UnitSystem::Metric) }),
+            None => in_words(half * factor, &Scale { offset: 0.0, ..metric }),
+        };
         let said = Said {
-            figure: spoken(claimed.value),
-            width: (claimed.half > 0.0).then(|| {
-                in_words(claimed.half * factor, &Scale { offset: 0.0, ..metric }).replace("degC", "K")
-            }),
-            deciding: deciding.map(|d| d.0),
+            name: told.map_or_else(|| self.figure.1.to_owned(), |_| spelled(name)),
+            figure: told.map_or_else(|| spoken(own.value), |d| words(own.value, d)),
+            width: (own.half > 0.0).then(|| width(own.half).replace("degC", "K")),
+            coarse: deciding
+                .is_some_and(|d| (d.limit.value - d.claimed.value).abs() > 1e-3 * d.limit.value.abs()),
+            limited: !sentences.is_empty(),
             verdict,
             sentences,
         };
@@ -395,20 +421,21 @@ impl Case {
             verdict: verdict.text(),
             statement,
             claimed: ClaimedFigure {
-                name: self.figure.0,
-                figure: main(claimed),
-                half_width: Figure::in_unit(claimed.half * factor, 0.0, &Scale { offset: 0.0, ..scale })
-                    .value,
+                name,
+                figure: told.map_or_else(|| main(own), |d| figure(own, d)),
+                half_width: match told {
+                    Some(d) => Figure::in_unit(own.half, 0.0, &Scale { offset: 0.0, ..display(d, units) }),
+                    None => Figure::in_unit(own.half * factor, 0.0, &Scale { offset: 0.0, ..scale }),
+                }
+                .value,
             },
-            limit: deciding.and_then(|(i, limit, ..)| {
-                Some(self.limits.get(i)?.of.as_ref().map_or_else(|| main(limit), |o| figure(limit, o.2)))
-            }),
+            limit: deciding.map(|d| told.map_or_else(|| main(d.limit), |t| figure(d.limit, t))),
             limits,
             bracket,
             entropy_generation: ClaimEntropy {
                 figure: figure(sigma, self.entropy.dimension),
                 per: self.entropy.per,
-                z: rounded(z_sigma),
+                z: z_sigma.map(rounded),
             },
             second_law_efficiency: ratio.map(|(r, u)| Figure::new(r, r * u, Dimension::Fraction, units)),
             figures,
@@ -451,13 +478,13 @@ impl Case {
             out.push_str(&text);
         };
         let name = self.figure.1;
-        if said.deciding.is_none() {
+        if !said.limited {
             say(format!("Under these conditions the second law sets the {name} no limit."));
         }
         for (i, limit, standing) in &said.sentences {
             let Some(l) = self.limits.get(*i) else { continue };
             let side = if l.sense == Sense::AtMost { "at most" } else { "at least" };
-            let of = l.of.as_ref().map_or(name.to_owned(), |o| o.0.replace('_', " "));
+            let of = l.of.as_ref().map_or(name.to_owned(), |o| spelled(o.0));
             let label = l.name.replace('_', " ");
             if l.law {
                 say(format!("By the second law the {of} is {side} {limit} ({label}: {}).", l.assumes));
@@ -474,19 +501,21 @@ impl Case {
                 ));
             }
         }
-        let figure = &said.figure;
+        let (name, figure) = (&said.name, &said.figure);
         let rounding =
             said.width.as_ref().map(|w| format!(" (±{w} by its printed digits)")).unwrap_or_default();
         say(match said.verdict {
             Standing::Possible => format!("The claimed {name} of {figure}{rounding} is possible."),
+            Standing::AtLimit if said.coarse => format!(
+                "Its printed digits cannot tell the claimed {name} of {figure}{rounding} from the limit; a figure \
+                 with more digits would decide."
+            ),
             Standing::AtLimit => format!(
                 "The claimed {name} of {figure}{rounding} is at the limit: only a machine without any loss, friction \
                  or temperature difference would reach it."
             ),
             Standing::Impossible => {
-                let of = said.deciding.and_then(|i| self.limits.get(i)?.of.as_ref());
-                let by = of.map(|o| format!(" for its {}", o.0.replace('_', " "))).unwrap_or_default();
-                format!("The claimed {name} of {figure}{rounding} is impossible as stated{by}.")
+                format!("The claimed {name} of {figure}{rounding} is impossible as stated.")
             }
             Standing::Undecided if bracket.is_some() => {
                 format!(
@@ -507,29 +536,58 @@ impl Case {
         }
     }
 
-    fn say_entropy(&self, out: &mut String, sigma: Known, z: f64, verdict: Standing) {
+    fn say_entropy(&self, out: &mut String, sigma: Known, z: Option<f64>, verdict: Standing) {
         let amount = words(sigma.value, self.entropy.dimension);
-        let per =
-            if self.entropy.per.is_empty() { String::new() } else { format!(" per {}", self.entropy.per) };
+        let per = match self.entropy.per {
+            whole if whole.starts_with("the ") => format!(" for {whole}"),
+            unit => format!(" per {unit}"),
+        };
         out.push_str(&format!(" As stated it would generate an entropy of {amount}{per}"));
         if verdict == Standing::Impossible && sigma.value < 0.0 {
             out.push_str(", which no device can have below zero");
-            if sigma.u > 0.0 {
+            if let Some(z) = z {
                 out.push_str(&format!(
                     "; the chance of such a figure at the limit is {}",
                     phrase::probability(normal_cdf(z))
                 ));
             }
+        } else if verdict == Standing::Impossible {
+            out.push_str(", enough as a whole, but in one part heat would have to run uphill");
         }
         out.push('.');
     }
 }
 
+/// The limit that decides, with the figure it bounds.
+#[derive(Clone, Copy)]
+struct Deciding {
+    index: usize,
+    limit: Known,
+    claimed: Known,
+    standing: Standing,
+}
+
+/// The name of a limited figure in words: `sink_hottest_temperature` is the hottest temperature of
+/// the sink.
+fn spelled(name: &str) -> String {
+    let plain = name.replace('_', " ");
+    for body in ["sink", "source"] {
+        if let Some(rest) = plain.strip_prefix(body).and_then(|r| r.strip_prefix(' ')) {
+            return format!("{rest} of the {body}");
+        }
+    }
+    plain
+}
+
 /// What the statement says about limits.
 struct Said {
+    name: String,
     figure: String,
     width: Option<String>,
-    deciding: Option<usize>,
+    /// Whether the limit is another figure, which only the digits do not tell apart.
+    coarse: bool,
+    /// Whether there is any limit.
+    limited: bool,
     verdict: Standing,
     sentences: Vec<(usize, String, Standing)>,
 }

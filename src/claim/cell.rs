@@ -19,6 +19,9 @@ const FARADAY: f64 = 96_485.332_12;
 /// Molar volume of liquid water at 25 degC, m3/mol (IAPWS-95: 997.05 kg/m3).
 const LIQUID_VOLUME: f64 = 18.015_28e-3 / 997.05;
 
+/// Liquid water in the table of species.
+const LIQUID_WATER: &str = "H2O(L)";
+
 struct Cell {
     hydrogen: &'static Species,
     oxygen: &'static Species,
@@ -35,8 +38,12 @@ struct Cell {
 /// Enthalpy and Gibbs energy of the splitting of one mole of water, J/mol, at standard pressure.
 fn splitting(h2: &Species, o2: &Species, water: &Species, t: f64) -> Computed<(f64, f64)> {
     let fault = |e| trouble("/temperature", "the cell", &e);
+    let boiled = |e| {
+        let fault = fault(e);
+        if water.name() == LIQUID_WATER { fault.hint("a hot cell takes steam: water=vapour") } else { fault }
+    };
     let (a, b, c) =
-        (h2.standard(t).map_err(fault)?, o2.standard(t).map_err(fault)?, water.standard(t).map_err(fault)?);
+        (h2.standard(t).map_err(fault)?, o2.standard(t).map_err(fault)?, water.standard(t).map_err(boiled)?);
     let h = a.h + 0.5 * b.h - c.h;
     Ok((h, h - t * (a.s + 0.5 * b.s - c.s)))
 }
@@ -87,8 +94,8 @@ fn species(desk: &mut Desk<'_>, name: &'static str) -> Option<&'static Species> 
 /// An electrolyser, or a fuel cell where `delivers`.
 pub fn cell(desk: &mut Desk<'_>, delivers: bool) -> Option<Case> {
     let root = Some(desk.root);
-    let liquid = desk.root.get("water").and_then(Node::text) != Some("vapour");
-    let water = species(desk, if liquid { "H2O(L)" } else { "H2O" })?;
+    let liquid = desk.root.get("water").and_then(Node::text).is_none_or(|word| word == "liquid");
+    let water = species(desk, if liquid { LIQUID_WATER } else { "H2O" })?;
     let (hydrogen, oxygen) = (species(desk, "H2")?, species(desk, "O2")?);
     let temperature = desk.member(root, "temperature", D::Temperature, Role::Condition);
     let pressure = desk.member(root, "pressure", D::Pressure, Role::Condition);
@@ -264,7 +271,7 @@ fn claimed(desk: &mut Desk<'_>, cell: &Rc<Cell>, delivers: bool) -> Option<Claim
         1 => plain(1.0 / molar_mass),
         2 => plain(1.0 / (2.0 * FARADAY)),
         _ => {
-            let water = species(desk, if form == 3 { "H2O(L)" } else { "H2O" })?;
+            let water = species(desk, if form == 3 { LIQUID_WATER } else { "H2O" })?;
             let (heating, _) = splitting(cell.hydrogen, cell.oxygen, water, STANDARD_TEMPERATURE)
                 .map_err(|e| desk.faults.push(e))
                 .ok()?;

@@ -149,6 +149,8 @@ pub struct Desk<'t> {
     pub missing: Vec<ClaimMissing>,
     /// Formulations used.
     pub formulations: Named<Formulation>,
+    /// Conditions for which no uncertainty is stated, as written.
+    pub exact: Vec<String>,
     barometer: Option<usize>,
 }
 
@@ -162,6 +164,7 @@ impl<'t> Desk<'t> {
             assumptions: Vec::new(),
             missing: Vec::new(),
             formulations: Named::default(),
+            exact: Vec::new(),
             barometer: None,
         }
     }
@@ -186,6 +189,9 @@ impl<'t> Desk<'t> {
         let q = node.quantity(dimension, &mut self.faults)?;
         let half = if role == Role::Claimed { q.half_digit } else { 0.0 };
         let stated = q.u().unwrap_or(0.0);
+        if role == Role::Condition && q.u().is_none() && !self.exact.contains(&q.text) {
+            self.exact.push(q.text.clone());
+        }
         self.inputs.push(Input { value: q.value, u: stated.hypot(half / 3f64.sqrt()), half });
         let index = self.inputs.len() - 1;
         let gauge = dimension == Dimension::Pressure && q.reference() == Reference::Gauge;

@@ -1,6 +1,6 @@
 //! The judgement of a claim, as it is answered.
 
-use crate::report::{AssumptionReport, Figure, Formulation, Named};
+use crate::report::{AssumptionReport, Figure, Formulation, Named, SHORT_WIDTH, wrapped_at};
 use serde::Serialize;
 #[cfg(feature = "server")]
 use utoipa::ToSchema;
@@ -102,8 +102,11 @@ pub struct ClaimLimit {
     /// How the claim stands against this limit: `possible`, `at_limit`, `impossible` or
     /// `undecided` for a law; `within`, `at_limit`, `beyond` or `undecided` for a reference.
     pub standing: &'static str,
-    /// Distance to it in standard uncertainties; negative beyond it.
-    pub z: f64,
+    /// Distance to it in standard uncertainties; negative beyond it. Absent where the figures have
+    /// no uncertainty.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub z: Option<f64>,
 }
 
 /// Between what a limit lies.
@@ -128,8 +131,10 @@ pub struct ClaimEntropy {
     pub figure: Figure,
     /// What it is counted for, for instance `kW of heat delivered`.
     pub per: &'static str,
-    /// Distance from zero in standard uncertainties.
-    pub z: f64,
+    /// Distance from zero in standard uncertainties; absent where the figures have no uncertainty.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    #[cfg_attr(feature = "server", schema(nullable = false))]
+    pub z: Option<f64>,
 }
 
 /// A remark beside the law.
@@ -173,6 +178,47 @@ pub struct ClaimProvenance {
 }
 
 impl ClaimReport {
+    /// The report as plain text.
+    pub fn to_text(&self) -> String {
+        let wrapped = |text: &str| wrapped_at(SHORT_WIDTH, text, 0, 2);
+        let mut lines = vec![
+            format!("Claim    {}", self.kind.replace('_', " ")),
+            format!("Verdict  {}", self.verdict.replace('_', " ").to_uppercase()),
+            String::new(),
+            wrapped_at(SHORT_WIDTH, &self.statement, 0, 0),
+        ];
+        if !self.limits.is_empty() {
+            lines.push("\nLimits".to_owned());
+        }
+        for (name, l) in &self.limits.0 {
+            let side = l.sense.replace('_', " ");
+            let line = format!(
+                "{} {side} {} ({}, {}); claimed {}: {}",
+                l.of.replace('_', " "),
+                l.figure.in_words(),
+                name.replace('_', " "),
+                l.authority,
+                l.claimed.in_words(),
+                l.standing.replace('_', " ")
+            );
+            lines.push(wrapped_at(SHORT_WIDTH, &line, 2, 4));
+        }
+        if !self.figures.is_empty() {
+            lines.push("\nFigures".to_owned());
+        }
+        for (name, figure) in &self.figures.0 {
+            lines.push(format!("  {}: {}", name.replace('_', " "), figure.in_words()));
+        }
+        if !self.cautions.is_empty() {
+            lines.push("\nCautions".to_owned());
+        }
+        lines.extend(self.cautions.iter().map(|c| wrapped(&format!("! {c}"))));
+        lines.push(format!("\n{}, edition {}", self.provenance.tool, self.provenance.edition));
+        let text = lines.join("\n");
+        // What the claimant wrote is not to steer a terminal.
+        text.chars().map(|c| if c.is_control() && c != '\n' { '\u{fffd}' } else { c }).chain(['\n']).collect()
+    }
+
     /// The report as JSON, without a final line break.
     pub fn to_json(&self) -> Vec<u8> {
         // A report holds no map with other than text keys, so this cannot fail.

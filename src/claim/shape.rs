@@ -392,8 +392,11 @@ static SEPARATION: ObjectShape = object(
         COMMON,
     ],
 );
-const WATER: &[(&str, &str)] =
-    &[("liquid", "Liquid water."), ("vapour", "Water vapour at `water_pressure`.")];
+const WATER: &[(&str, &str)] = &[
+    ("liquid", "Liquid water."),
+    ("vapour", "Water vapour at `water_pressure`."),
+    ("steam", "The same as `vapour`."),
+];
 static CELL_FIELDS: &[Field] = &[
     optional("temperature", TEMPERATURE, "Temperature of the cell; 25 degC if absent."),
     optional("pressure", PRESSURE, "Pressure of hydrogen and oxygen; 1 bar if absent."),

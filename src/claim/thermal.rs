@@ -176,6 +176,7 @@ pub fn machine(desk: &mut Desk<'_>, machine: Machine) -> Option<Case> {
             Box::new(move |x| two.betas(x, View::Lenient).map(|(a, b)| 1.0 / if first { a } else { b }));
         figures.push((name, mean, D::Temperature));
     }
+    let is_ratio = total.is_some();
     if let Some((heat, dimension)) = total {
         let total = if dimension == D::Power { D::EntropyRate } else { D::Entropy };
         figures.push(("entropy_generation_total", entropy(Some(heat)), total));
@@ -185,9 +186,23 @@ pub fn machine(desk: &mut Desk<'_>, machine: Machine) -> Option<Case> {
         notes.push("A COP of 1 is that of an electric heater.".to_owned());
     }
     let x: Vec<f64> = desk.inputs.iter().map(|i| i.value).collect();
-    if engine && claimed(&x).is_ok_and(|eta| eta > 1.0) {
+    let value = claimed(&x).unwrap_or(f64::NAN);
+    if engine && value > 1.0 {
         notes.push(
             "It would deliver more work than the heat it takes in, against the first law too.".to_owned(),
+        );
+        if !is_ratio && value <= 100.0 {
+            let percent = crate::rules::phrase::number(value);
+            notes.push(format!("Did you mean {percent} %? A per cent sign is part of the number."));
+        }
+    }
+    if machine == Machine::HeatPump && value < 1.0 {
+        notes.push("This one would deliver less heat than the power it takes in.".to_owned());
+    }
+    if !engine && two.betas(&x, View::Lenient).is_ok_and(|(source, sink)| source < sink) {
+        notes.push(
+            "The source is hotter than the sink, so that heat would pass by itself: source and sink look swapped."
+                .to_owned(),
         );
     }
     let per_heat = entropy(None);
@@ -255,8 +270,8 @@ pub fn transfer(desk: &mut Desk<'_>) -> Option<Case> {
     let subject =
         format!("Heat is claimed to pass by itself from a body {} to a body {}.", source.text(), sink.text());
     let (amount, dimension, per) = match (flow, heat) {
-        (Some(q), _) => (Some(q), D::EntropyRate, ""),
-        (_, Some(q)) => (Some(q), D::Entropy, ""),
+        (Some(q), _) => (Some(q), D::EntropyRate, "the heat flow stated"),
+        (_, Some(q)) => (Some(q), D::Entropy, "the heat stated"),
         _ => (None, D::EntropyRate, "kW of heat"),
     };
     let two = Rc::new(Two { source, sink });
@@ -277,7 +292,7 @@ pub fn transfer(desk: &mut Desk<'_>) -> Option<Case> {
         of: None,
         sense: Sense::AtMost,
         value: mean(View::Lenient, true),
-        assumes: format!("the mean temperature of the source; {}", two.assumes()),
+        assumes: "that of the source, each the heat passed over the entropy that goes with it".to_owned(),
         law: true,
     }];
     if two.source.slides() || two.sink.slides() {
@@ -286,7 +301,7 @@ pub fn transfer(desk: &mut Desk<'_>) -> Option<Case> {
             of: Some(("sink_hottest_temperature", hottest(false), D::Temperature)),
             sense: Sense::AtMost,
             value: hottest(true),
-            assumes: "the hottest end of the source, which nothing heated by it alone can pass".to_owned(),
+            assumes: "nothing heated by the source alone gets hotter than its hottest end".to_owned(),
             law: true,
         });
         limits.push(Limit {
@@ -294,7 +309,7 @@ pub fn transfer(desk: &mut Desk<'_>) -> Option<Case> {
             of: Some(("source_coldest_temperature", coldest(true), D::Temperature)),
             sense: Sense::AtLeast,
             value: coldest(false),
-            assumes: "the coldest end of the sink, which nothing cooled by it alone can pass".to_owned(),
+            assumes: "nothing cooled by the sink alone gets colder than its coldest end".to_owned(),
             law: true,
         });
     }

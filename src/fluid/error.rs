@@ -35,13 +35,10 @@ impl fmt::Display for PropertyError {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
             PropertyError::NotFinite => f.write_str("an input is not a finite number"),
-            PropertyError::OutOfRange { quantity, unit, value, min, max } => write!(
-                f,
-                "{quantity} {} {unit} is outside the formulation's range {} to {} {unit}",
-                Short(*value),
-                Short(*min),
-                Short(*max)
-            ),
+            PropertyError::OutOfRange { quantity, unit, value, min, max } => {
+                let [value, min, max] = [value, min, max].map(|x| in_words(*x, unit));
+                write!(f, "{quantity} {value} is outside the formulation's range {min} to {max}")
+            }
             PropertyError::UnsupportedPair(pair) => {
                 write!(f, "the formulation cannot be fixed by {pair}")
             }
@@ -52,22 +49,25 @@ impl fmt::Display for PropertyError {
     }
 }
 
-impl std::error::Error for PropertyError {}
-
-/// A number to about six significant digits, without trailing zeros.
-struct Short(f64);
-
-impl fmt::Display for Short {
-    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        // Six digits are written and read back, so that the shortest text of the result is theirs.
-        let rounded = format!("{:.5e}", self.0).parse().unwrap_or(self.0);
+/// Five significant digits, and degrees Celsius beside kelvins.
+fn in_words(x: f64, unit: &str) -> String {
+    // The digits are written and read back, so that the shortest text of the result is theirs.
+    let short = |x: f64| {
+        let rounded: f64 = format!("{x:.4e}").parse().unwrap_or(x);
         if rounded == 0.0 || (1e-4..1e6).contains(&rounded.abs()) {
-            write!(f, "{rounded}")
+            format!("{rounded}")
         } else {
-            write!(f, "{rounded:e}")
+            format!("{rounded:e}")
         }
+    };
+    if unit == "K" {
+        format!("{} K ({} degC)", short(x), short(((x - 273.15) * 100.0).round() / 100.0))
+    } else {
+        format!("{} {unit}", short(x))
     }
 }
+
+impl std::error::Error for PropertyError {}
 
 #[cfg(test)]
 mod tests {
@@ -75,14 +75,16 @@ mod tests {
 
     #[test]
     fn ranges_are_written_shortly() {
-        let error = PropertyError::OutOfRange {
-            quantity: "pressure",
-            unit: "Pa",
-            value: 2e8,
-            min: 611.212_677_444_345_2,
-            max: 1.0e8,
+        let range = |quantity, unit, value, min, max| {
+            PropertyError::OutOfRange { quantity, unit, value, min, max }.to_string()
         };
-        let text = error.to_string();
-        assert_eq!(text, "pressure 2e8 Pa is outside the formulation's range 611.213 to 1e8 Pa");
+        assert_eq!(
+            range("pressure", "Pa", 2e8, 611.212_677_444_345_2, 1e8),
+            "pressure 2e8 Pa is outside the formulation's range 611.21 Pa to 1e8 Pa"
+        );
+        assert_eq!(
+            range("temperature", "K", 1123.15, 273.15, 600.0),
+            "temperature 1123.2 K (850 degC) is outside the formulation's range 273.15 K (0 degC) to 600 K (326.85 degC)"
+        );
     }
 }

@@ -280,7 +280,13 @@ impl Assembler<'_, '_> {
             detectable,
             covers: f.covers.clone(),
             conditional_on: f.conditional_on.clone(),
-            causes: info.typical_cause.split(", ").map(str::to_owned).collect(),
+            causes: f
+                .explanation
+                .causes
+                .unwrap_or(info.typical_cause)
+                .split(", ")
+                .map(str::to_owned)
+                .collect(),
             source: info.source,
         }
     }

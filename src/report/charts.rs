@@ -125,7 +125,11 @@ pub(super) fn destruction(report: &Report) -> Option<String> {
             d.line((x(value - u), y + 9.0), (x(value + u), y + 9.0), "whisker");
         }
         d.text((NAMES + PLOT + FIGURES - 56.0, y + 13.0), "figures", "end", &prose::figure(&bar.figure));
-        d.text((NAMES + PLOT + FIGURES, y + 13.0), "figures", "end", &prose::percent(bar.share));
+        let share = match bar.share {
+            share if share < 0.0 || bar.verdict == "violated" => "–".to_owned(),
+            share => prose::percent(share),
+        };
+        d.text((NAMES + PLOT + FIGURES, y + 13.0), "figures", "end", &share);
         d.close();
     }
     d.line((x(0.0), 0.0), (x(0.0), height), "limit");

@@ -41,6 +41,11 @@ impl Figure {
         Figure::in_unit(value, u, &display(dimension, units))
     }
 
+    /// With the digits that the uncertainty warrants: `12.00 ± 0.10 kW`.
+    pub(crate) fn in_words(&self) -> String {
+        super::prose::figure(self)
+    }
+
     /// The same in a unit of the caller's choice.
     pub fn in_unit(value: f64, u: f64, scale: &Scale) -> Figure {
         Figure {

@@ -45,7 +45,11 @@ fn with_unit(symbol: &str, code: Option<&str>) -> String {
 }
 
 fn pair(f: Option<Figure>) -> String {
-    f.map_or_else(|| NOTHING.to_owned(), |f| prose::digits(f.value, f.u).text())
+    // How many times its value an uncertainty may be before the value says nothing.
+    const DROWNED: f64 = 10.0;
+    let Some(f) = f else { return NOTHING.to_owned() };
+    let drowned = !f.unit.starts_with("deg") && f.u > DROWNED * f.value.abs();
+    prose::digits(if drowned { 0.0 } else { f.value }, f.u).text()
 }
 
 /// Every table, those without rows left out.
@@ -81,7 +85,14 @@ fn components(report: &Report) -> Grid {
             verdict,
             pair(region.entropy_balance.map(|e| e.generation)),
             pair(region.exergy_balance.as_ref().map(|e| e.destruction)),
-            share.map_or_else(String::new, prose::percent),
+            share.map_or_else(String::new, |share| {
+                // What is destroyed against the law is no share of what is destroyed.
+                if share < 0.0 || region.verdict == "violated" {
+                    NOTHING.to_owned()
+                } else {
+                    prose::percent(share)
+                }
+            }),
         ]);
     };
     for k in prose::component_order(report) {
@@ -176,16 +187,25 @@ fn causes(report: &Report) -> Grid {
     }
 }
 
+/// A figure of merit as engineers call it: by heating value, and a heat rate per kilowatt hour.
+fn merit(quantity: &str, f: Figure) -> (String, Figure) {
+    let words = match (quantity.strip_suffix("_lower"), quantity.strip_suffix("_higher")) {
+        (Some(of), _) => format!("{} (LHV)", prose::words(of)),
+        (_, Some(of)) => format!("{} (HHV)", prose::words(of)),
+        _ => prose::qualified(quantity),
+    };
+    if quantity.starts_with("heat_rate_") && f.unit == "1" {
+        return (words, Figure { value: 3600.0 * f.value, u: 3600.0 * f.u, unit: "kJ/kWh" });
+    }
+    (words, f)
+}
+
 fn performance(report: &Report) -> Grid {
     let mut rows = Vec::new();
     for (name, region) in regions(report) {
         for (quantity, f) in &region.performance.0 {
-            rows.push(vec![
-                prose::clean(name),
-                prose::qualified(quantity),
-                pair(Some(*f)),
-                prose::unit(f.unit),
-            ]);
+            let (words, f) = merit(quantity, *f);
+            rows.push(vec![prose::clean(name), words, pair(Some(f)), prose::unit(f.unit)]);
         }
     }
     Grid {
@@ -202,10 +222,11 @@ fn performance(report: &Report) -> Grid {
 }
 
 /// Columns of the table of states, by the names of their figures; the last is the exergy.
-const STATE: [(&str, &[&str]); 6] = [
+const STATE: [(&str, &[&str]); 7] = [
     ("m", &["mass_flow", "mass"]),
     ("T", &["temperature"]),
     ("p", &["pressure"]),
+    ("x", &["quality"]),
     ("h", &["enthalpy"]),
     ("s", &["entropy"]),
     ("e", &[]),
@@ -221,13 +242,16 @@ fn state_figure(f: &FlowReport, keys: &[&str]) -> Option<Figure> {
 fn material(report: &Report) -> Grid {
     let flows = || report.flows.0.iter().filter(|(_, f)| f.kind == "material");
     let mut columns = heads(&[("Flow", Align::Left), ("Fluid", Align::Left)]);
-    for (symbol, keys) in STATE {
+    let wet = flows().any(|(_, f)| f.figures.get("quality").is_some());
+    let columns_of = || STATE.iter().filter(move |(symbol, _)| wet || *symbol != "x");
+    for (symbol, keys) in columns_of() {
         let unit = flows().find_map(|(_, f)| state_figure(f, keys)).map(|f| f.unit);
+        let unit = unit.filter(|code| *code != "1");
         columns.push((with_unit(symbol, unit), Align::Right));
     }
     let rows = flows().map(|(name, f)| {
         let mut row = vec![prose::clean(name), prose::clean(f.fluid.as_deref().unwrap_or(""))];
-        row.extend(STATE.iter().map(|(_, keys)| {
+        row.extend(columns_of().map(|(_, keys)| {
             state_figure(f, keys).map_or_else(|| NOTHING.to_owned(), |x| prose::digits(x.value, x.u).bare())
         }));
         row

@@ -77,7 +77,7 @@ impl Report {
             out,
             "<ul class=\"facts\"><li>{}</li><li>{complete}</li><li>{}</li></ul>\n</section>",
             prose::counts(self),
-            prose::data_clause(self.data_verdict)
+            prose::data_clause(self)
         )
     }
 
@@ -270,10 +270,11 @@ impl Report {
 
 /// One finding. What the headline has told is not told again.
 fn write_finding(out: &mut String, id: &str, f: &Finding, headline: bool) -> Result {
+    let tone = if f.authority == "practice" { "practice" } else { f.verdict };
     writeln!(
         out,
         "<article class=\"finding {}\">\n<h3>{} – {} <span class=\"tag\">{}, {}</span></h3>",
-        f.verdict,
+        tone,
         escaped(&prose::title(f.rule)),
         escaped(&prose::place(&f.r#where)),
         f.authority,

@@ -18,6 +18,10 @@ mod text;
 pub use figure::{Figure, Named};
 pub use profile::{CrossedReport, PinchReport, ProfilePoint, ProfileReport};
 pub use state::StateReport;
+pub(crate) use text::wrapped_at;
+
+/// Widest line of the short answers, to a claim or for a state.
+pub(crate) const SHORT_WIDTH: usize = 96;
 
 use serde::Serialize;
 #[cfg(feature = "server")]

@@ -15,6 +15,9 @@ pub(super) struct Digits {
     pub exponent: i32,
 }
 
+/// Less than this, in any unit in use, is rounding noise.
+const NOISE: f64 = 1e-12;
+
 /// Most significant digits of a value, whatever its uncertainty claims.
 const MOST_DIGITS: i32 = 6;
 
@@ -24,6 +27,8 @@ const EXACT_DIGITS: i32 = 5;
 /// The digits of a value and its uncertainty.
 pub(super) fn digits(value: f64, u: f64) -> Digits {
     let (value, u) = (if value.is_finite() { value } else { 0.0 }, if u.is_finite() { u.abs() } else { 0.0 });
+    let value = if value.abs().max(u) < NOISE { 0.0 } else { value };
+    let u = if u < NOISE { 0.0 } else { u };
     let largest = value.abs().max(u);
     let magnitude = order(largest);
     let exponent =
@@ -203,8 +208,14 @@ pub(super) fn sign(word: &str) -> char {
 }
 
 /// The data verdict as a clause.
-pub(super) fn data_clause(word: &str) -> &'static str {
-    match word {
+pub(super) fn data_clause(report: &Report) -> &'static str {
+    let sure = report
+        .violations
+        .iter()
+        .chain(&report.warnings)
+        .any(|f| f.authority == "data" && f.verdict == "violated");
+    match report.data_verdict {
+        "contradictory" if !sure => "likely contradictions between the data",
         "consistent" => "the data agree with each other",
         "contradictory" => "the data contradict each other",
         _ => "no redundant data to compare",
@@ -301,10 +312,21 @@ pub(super) struct UncheckedGroup {
 /// rule and reason.
 pub(super) fn group_unchecked(unchecked: &[Unchecked]) -> Vec<UncheckedGroup> {
     let mut groups: Vec<UncheckedGroup> = Vec::new();
+    // Balances that found several unknowns together, by these.
+    let mut joint: Vec<UncheckedGroup> = Vec::new();
     for u in unchecked {
         let (heading, place) = if u.reason == "spent-on" {
             let balance = u.what.split('-').next().unwrap_or(u.what);
             let found = u.detail.strip_prefix("the balance was used to find the ").unwrap_or(&u.detail);
+            if found.contains(", ") {
+                let place = place(&u.r#where);
+                match joint.iter_mut().find(|g| g.heading == found) {
+                    Some(g) if g.places.contains(&place) => {}
+                    Some(g) => g.places.push(place),
+                    None => joint.push(UncheckedGroup { heading: found.to_owned(), places: vec![place] }),
+                }
+                continue;
+            }
             (
                 format!("{} balance, used to find an unknown and so no test any more", title(balance)),
                 format!("{} ({})", place(&u.r#where), clean(found)),
@@ -317,6 +339,13 @@ pub(super) fn group_unchecked(unchecked: &[Unchecked]) -> Vec<UncheckedGroup> {
             None => groups.push(UncheckedGroup { heading, places: vec![place] }),
         }
     }
+    groups.extend(joint.into_iter().map(|g| {
+        let of = match g.places.len() {
+            1 => "Balances of 1 component used".to_owned(),
+            n => format!("{n} components solved together"),
+        };
+        UncheckedGroup { heading: format!("{of} for: {}", clean(&g.heading)), places: g.places }
+    }));
     groups
 }
 
@@ -416,6 +445,31 @@ mod tests {
 
     fn shown(value: f64, u: f64) -> String {
         digits(value, u).text()
+    }
+
+    #[test]
+    fn what_is_solved_together_is_named_once() {
+        let one = |name: &str, what| Unchecked {
+            r#where: format!("/components/{name}"),
+            what,
+            reason: "spent-on",
+            detail: "the balance was used to find the flow of a, flow of b".to_owned(),
+            would_need: String::new(),
+        };
+        let groups = group_unchecked(&[
+            one("x", "mass-imbalance"),
+            one("x", "energy-imbalance"),
+            one("y", "mass-imbalance"),
+        ]);
+        let [group] = groups.as_slice() else { panic!("{groups:?}") };
+        assert_eq!(group.heading, "2 components solved together for: flow of a, flow of b");
+        assert_eq!(group.places, ["x", "y"]);
+    }
+
+    #[test]
+    fn rounding_noise_is_zero() {
+        assert_eq!(shown(-14.552e-15, 0.0), "0");
+        assert_eq!(shown(3.0, 1e-15), "3");
     }
 
     #[test]

@@ -137,6 +137,35 @@ impl StateReport {
         })
     }
 
+    /// The answer as plain text.
+    pub fn to_text(&self) -> String {
+        let mut lines = vec![format!("{}, {}", super::prose::clean(&self.fluid), self.phase)];
+        for (title, figures) in [
+            ("Properties", &self.properties),
+            ("Specific exergy", &self.exergy),
+            ("Environment", &self.environment),
+        ] {
+            if figures.is_empty() {
+                continue;
+            }
+            lines.push(format!("\n{title}"));
+            let width = figures.0.iter().map(|(name, _)| name.chars().count()).max().unwrap_or(0);
+            for (name, figure) in &figures.0 {
+                lines.push(format!("  {:width$}  {}", super::prose::words(name), figure.in_words()));
+            }
+        }
+        let wrapped = |text: &str| super::wrapped_at(super::SHORT_WIDTH, text, 0, 2);
+        let f = &self.formulation;
+        lines.push(format!(
+            "\n{}",
+            wrapped(&format!("Formulation: {}; {}. Range: {}", f.formulation, f.source, f.range))
+        ));
+        for a in &self.assumptions {
+            lines.push(wrapped(&super::prose::clean(&format!("Assumed: {}", a.statement))));
+        }
+        lines.join("\n") + "\n"
+    }
+
     /// The answer as JSON.
     pub fn to_json(&self) -> Vec<u8> {
         // Only text keys: this cannot fail.

@@ -30,7 +30,7 @@ impl Report {
         }
         let complete = if self.complete { "complete" } else { "incomplete" };
         writeln!(out, "Second law  {} ({complete})", self.verdict.to_uppercase())?;
-        writeln!(out, "Data        {}", prose::data_clause(self.data_verdict))?;
+        writeln!(out, "Data        {}", prose::data_clause(self))?;
         writeln!(out, "\n{}", wrapped(&self.headline(), 0, 0))?;
         writeln!(out, "({})", prose::counts(self))?;
         for (title, findings) in
@@ -160,12 +160,17 @@ fn listed(places: &[String]) -> String {
 
 /// Breaks a paragraph with an indent for its first line and one for the others.
 fn wrapped(text: &str, first: usize, others: usize) -> String {
+    wrapped_at(WIDTH, text, first, others)
+}
+
+/// The same, at most `width` columns wide.
+pub(crate) fn wrapped_at(width: usize, text: &str, first: usize, others: usize) -> String {
     let mut out = " ".repeat(first);
     let mut column = first;
     let mut fresh = true;
     for word in text.split_whitespace() {
         let length = word.chars().count();
-        if !fresh && column + 1 + length > WIDTH {
+        if !fresh && column + 1 + length > width {
             out.push('\n');
             out.push_str(&" ".repeat(others));
             column = others;

@@ -3,6 +3,8 @@
 use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, family, measure, phrase};
 use crate::balance::{Evaluation, Row};
 use crate::model::{Decision, Margin, Scale, Scope, Test};
+use crate::process::Component;
+use crate::process::kinds::{Kind, Purposeful};
 
 /// More energy enters than leaves, or less.
 ///
@@ -76,8 +78,25 @@ impl Rule for EnergyImbalance {
             statement,
             value: Some(Figure { value: decision.value, dimension }),
             limit: Some(Figure { value: 0.0, dimension }),
+            causes: causes(&evaluation.view.model.process.components[k]),
             ..Explanation::default()
         }
+    }
+}
+
+/// What usually opens the balance of a component of some kinds (common practice).
+fn causes(component: &Component) -> Option<&'static str> {
+    match component.kind {
+        Kind::Valve => Some("the quality of wet steam, a pressure or temperature reading, heat lost"),
+        kind if kind.is_exchanger() => {
+            Some("a flow meter, leakage between the sides, a temperature reading, heat lost")
+        }
+        kind => match kind.info().purpose {
+            Purposeful::Compression | Purposeful::Expansion => Some(
+                "heat lost through the casing or to cooling (heat_loss is not given), the power reading, a flow meter",
+            ),
+            _ => None,
+        },
     }
 }
 

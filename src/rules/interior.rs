@@ -54,6 +54,19 @@ pub(super) const fn origin(profile: &Profile) -> &'static str {
     if profile.parallel { "the inlet end" } else { "the cold end" }
 }
 
+/// Where in the exchanger a place is, as share of the duty.
+pub(super) fn position(profile: &Profile, x: f64) -> String {
+    const END: f64 = 1e-4;
+    let (first, last) = (origin(profile), if profile.parallel { "the outlet end" } else { "the hot end" });
+    if x <= END {
+        format!("at {first}")
+    } else if x >= 1.0 - END {
+        format!("at {last}")
+    } else {
+        format!("at {} % of the duty from {first}", phrase::number(100.0 * x))
+    }
+}
+
 /// The explanation with the pinch, its place and the crossed section.
 pub(super) fn explain(evaluation: &Evaluation<'_>, margin: &Margin, decision: &Decision) -> Explanation {
     let Some(profile) = of(evaluation, margin) else { return Explanation::default() };
@@ -62,8 +75,7 @@ pub(super) fn explain(evaluation: &Evaluation<'_>, margin: &Margin, decision: &D
     let subject = phrase::subject(evaluation, margin.scope);
     let hot = phrase::figure(pinch.hot, Dimension::Temperature);
     let cold = phrase::figure(pinch.cold, Dimension::Temperature);
-    let whole = if profile.balanced { place(evaluation, profile, 1.0) } else { "each duty".to_owned() };
-    let at = format!("at {} of {whole} from {}", place(evaluation, profile, pinch.place), origin(profile));
+    let at = position(profile, pinch.place);
     let mut statement = if decision.value < 0.0 {
         format!(
             "Inside {subject}, what is heated ({cold}) is {} hotter than what heats it ({hot}) {at}{}.",

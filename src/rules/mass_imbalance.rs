@@ -79,6 +79,10 @@ impl Rule for MassImbalance {
             value: Some(Figure { value: decision.value, dimension }),
             limit: Some(Figure { value: 0.0, dimension }),
             severity: explained.then_some(Severity::Minor),
+            causes: view.model.process.components[k]
+                .kind
+                .is_exchanger()
+                .then_some("a flow meter, leakage between the sides, a stream left out"),
             ..Explanation::default()
         }
     }

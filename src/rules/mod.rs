@@ -168,6 +168,8 @@ pub struct Explanation {
     pub limit: Option<Figure>,
     /// A milder severity, where the case is milder than the rule.
     pub severity: Option<Severity>,
+    /// The usual causes, separated by commas, where this case has others than the rule.
+    pub causes: Option<&'static str>,
     /// Rules that this finding covers by its nature.
     pub covers: Vec<&'static str>,
 }

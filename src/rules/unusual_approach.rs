@@ -19,7 +19,7 @@ static INFO: RuleInfo = RuleInfo {
     authority: Authority::Practice,
     severity: Severity::Advice,
     aspect: Aspect::Practice,
-    inequality: "ΔT ≥ 20 K gas to gas, 10 K gas to liquid, 8 K gas to boiling liquid, 5 K liquid to liquid, \
+    inequality: "ΔT ≥ 20 K gas to gas, 10 K gas to liquid, 8 K gas to boiling liquid, 1 K liquid to liquid, \
                  3 K at condensation and evaporation, 1 K below 120 K, or the policy's minimum approach",
     applies_to: "exchangers with a temperature profile that is lawful",
     needs: "the temperature profile",
@@ -32,7 +32,7 @@ static INFO: RuleInfo = RuleInfo {
               "hot-in": {"kind": "material", "to": "exchanger", "fluid": "water", "pressure": "6.0 bar", "temperature": "90.0 degC", "mass_flow": "10 kg/s"},
               "hot-out": {"kind": "material", "from": "exchanger", "fluid": "water", "pressure": "6.0 bar", "temperature": "60.0 degC", "mass_flow": "10 kg/s"},
               "cold-in": {"kind": "material", "to": "exchanger", "fluid": "water", "pressure": "4.0 bar", "temperature": "15.0 degC"},
-              "cold-out": {"kind": "material", "from": "exchanger", "fluid": "water", "pressure": "4.0 bar", "temperature": "89.0 degC"}}}"#,
+              "cold-out": {"kind": "material", "from": "exchanger", "fluid": "water", "pressure": "4.0 bar", "temperature": "89.7 degC"}}}"#,
     ),
     keeping: Case::Description(interior::UNCROSSED),
 };
@@ -66,12 +66,12 @@ impl Rule for UnusualApproach {
         let difference = decision.value + bound;
         Explanation {
             statement: format!(
-                "Inside {} the streams come as close as {} at {} from {}; {what} at least {}.",
+                "Inside {} the streams come as close as {} {}; {what} at least {}{}.",
                 phrase::subject(evaluation, margin.scope),
                 phrase::figure(difference, dimension),
-                interior::place(evaluation, profile, profile.pinch.place),
-                interior::origin(profile),
+                interior::position(profile, profile.pinch.place),
                 phrase::figure(bound, dimension),
+                if what.starts_with("usual") { " (common practice)" } else { "" },
             ),
             value: Some(Figure { value: difference, dimension }),
             limit: Some(Figure { value: bound, dimension }),
@@ -86,7 +86,7 @@ fn bound(evaluation: &Evaluation<'_>, k: usize, profile: &Profile) -> Option<(f6
     if let Some(own) = process.policy.minimum_approach {
         return Some((own, "the policy asks for"));
     }
-    let (hot, cold) = profile.phases(evaluation.view)?;
+    let [hot, cold] = profile.phases(evaluation.view)?;
     let kind = process.components[k].kind;
     let gas = |p: Phase| matches!(p, Phase::Vapour | Phase::Supercritical);
     let boiling = cold == Phase::TwoPhase || kind == Kind::Evaporator && cold == Phase::Liquid;
@@ -104,6 +104,7 @@ fn bound(evaluation: &Evaluation<'_>, k: usize, profile: &Profile) -> Option<(f6
         }
         (true, true) => (20.0, "usual between gas and gas is"),
         (true, false) | (false, true) => (10.0, "usual between gas and liquid is"),
-        (false, false) => (5.0, "usual between liquid and liquid is"),
+        // Plates are built for a few kelvin.
+        (false, false) => (1.0, "usual between liquid and liquid is"),
     })
 }

@@ -153,3 +153,17 @@ fn the_catalogue_of_fluids_has_spellings_ranges_sources_and_species() {
     assert!((methane["molar_mass"].as_f64().unwrap() - 0.016043).abs() < 1e-6);
     assert!(methane["lowest_temperature"].as_f64() < methane["highest_temperature"].as_f64());
 }
+
+#[test]
+fn claims_and_states_come_as_text_too() {
+    let server = Server::start();
+    for (path, word) in [
+        ("/v1/claims/heat_pump?source=-7+degC&sink=35+degC&cop=4.2", "POSSIBLE"),
+        ("/v1/states?fluid=water&temperature=300+degC&pressure=10+bar", "enthalpy"),
+    ] {
+        let answer = server.call("GET", path, &[("accept", "text/plain")], b"");
+        let text = answer.text();
+        assert!(text.contains(word), "{text}");
+        assert!(text.lines().all(|line| line.chars().count() <= 96), "{text}");
+    }
+}

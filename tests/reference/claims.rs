@@ -784,3 +784,39 @@ fn a_cancelled_claim_stops() {
         br#"{"kind": "heat_engine", "source": "500 K", "sink": "300 K", "claim": {"efficiency": 0.3}}"#;
     assert_eq!(judge_bytes(body, &Limits::default(), UnitSystem::Si, &cancel), Err(Failure::Cancelled));
 }
+
+/// The figure that is called impossible and its limit belong to one test, and no distance is told in
+/// uncertainties that nobody stated.
+#[test]
+fn claimed_and_limit_are_of_one_test() {
+    let crossed = query(
+        "heat_transfer",
+        "source_inlet=80 degC&source_outlet=50 degC&sink_inlet=45 degC&sink_outlet=82 degC&heat_flow=500 kW",
+    )
+    .unwrap();
+    assert_eq!(crossed["verdict"], "impossible");
+    assert_eq!(crossed["claimed"]["name"], "sink_hottest_temperature");
+    assert_eq!(crossed["claimed"]["figure"]["value"], 82.0);
+    assert_eq!(crossed["limit"]["value"], 80.0);
+    assert!(crossed["limits"]["hottest_end"].get("z").is_none());
+    assert!(!crossed["entropy_generation"]["per"].as_str().unwrap().is_empty());
+    let assumed = crossed["assumptions"].to_string();
+    assert!(assumed.contains("conditions taken as exact") && assumed.contains("82 degC"), "{assumed}");
+}
+
+/// What a claimant is likely to have meant is said.
+#[test]
+fn slips_of_the_pen_are_named() {
+    let statement = |kind: &str, text: &str| query(kind, text).unwrap()["statement"].to_string();
+    let coarse = statement("heat_engine", "source=840 K&sink=300 K&efficiency=0.6");
+    assert!(coarse.contains("printed digits cannot tell"), "{coarse}");
+    let swapped = statement("heat_pump", "source=35 degC&sink=-7 degC&cop=4.2");
+    assert!(swapped.contains("look swapped"), "{swapped}");
+    let percent = statement("heat_engine", "source=90 degC&sink=15 degC&efficiency=22");
+    assert!(percent.contains("mean 22 %"), "{percent}");
+    let hot = query("electrolyser", "temperature=850 degC&specific_work=36 kWh/kg").unwrap_err();
+    assert!(hot[0].message.contains("(850 degC)"), "{hot:?}");
+    assert!(hot[0].hint.as_ref().is_some_and(|h| h.contains("water=vapour")), "{hot:?}");
+    let steam = query("electrolyser", "temperature=850 degC&specific_work=36 kWh/kg&water=steam").unwrap();
+    assert_eq!(steam["verdict"], "possible");
+}

@@ -532,3 +532,26 @@ fn hostile_figures_never_panic() {
         }
     }
 }
+
+/// A refrigerant that boils and leaves a little superheated is judged as boiling, also where the pinch
+/// lies on its vapour; figures that are read coarsely are told.
+#[test]
+fn a_boiling_side_is_no_gas() {
+    let report = check(
+        r#"{"components": {"evap": {"kind": "evaporator", "arrangement": "counterflow",
+              "sides": [{"in": ["a"], "out": ["b"]}, {"in": ["c"], "out": ["d"]}]}},
+            "flows": {
+              "a": {"kind": "material", "to": "evap", "fluid": "R290", "pressure": "3.900 bar", "quality": 0.43, "mass_flow": "35 g/s"},
+              "b": {"kind": "material", "from": "evap", "fluid": "R290", "pressure": "3.900 bar", "temperature": "3.00 degC"},
+              "c": {"kind": "material", "to": "evap", "fluid": "water", "pressure": "2 bar", "temperature": "4.00 degC"},
+              "d": {"kind": "material", "from": "evap", "fluid": "water", "pressure": "1.800 bar", "temperature": "1.00 degC"}}}"#,
+    );
+    let found = report.warnings.iter().find(|f| f.rule == "unusual-approach").expect("an unusual approach");
+    assert!(found.statement.contains("at the hot end"), "{}", found.statement);
+    assert!(found.statement.contains("condensation and evaporation"), "{}", found.statement);
+    let coarse = report.assumptions.iter().find(|a| a.statement.contains("printed digits")).expect("a note");
+    assert_eq!(
+        coarse.statement,
+        "read as 2 bar ± 0.5 bar by its printed digits; write 2.000 bar if it is meant so"
+    );
+}

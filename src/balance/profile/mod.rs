@@ -126,14 +126,28 @@ impl Profile {
     }
 
     /// The phases of the hot and the cold stream at the pinch, where there are just these two.
-    pub fn phases(&self, view: View<'_>) -> Option<(Phase, Phase)> {
-        match (&self.hot[..], &self.cold[..]) {
-            ([h], [c]) => {
-                let x = self.pinch.place;
-                h.phase(view, if self.parallel { x } else { 1.0 - x }).zip(c.phase(view, x))
-            }
-            _ => None,
-        }
+    /// A stream that begins or ends to boil or condense there counts as both phases; so does a
+    /// vapour that boils or condenses elsewhere in the exchanger while the other stream is liquid.
+    pub fn phases(&self, view: View<'_>) -> Option<[Phase; 2]> {
+        // Beside the pinch, wide enough to leave the kink that it may sit on.
+        const BESIDE: f64 = 1e-3;
+        let ([hot], [cold]) = (&self.hot[..], &self.cold[..]) else { return None };
+        let near = |stream: &Passage, y: f64| {
+            let at = |y: f64| stream.phase(view, y.clamp(0.0, 1.0));
+            let two = [y - BESIDE, y + BESIDE].into_iter().any(|y| at(y) == Some(Phase::TwoPhase));
+            if two { Some(Phase::TwoPhase) } else { at(y) }
+        };
+        let changes = |stream: &Passage| {
+            (1..16).any(|i| stream.phase(view, f64::from(i) / 16.0) == Some(Phase::TwoPhase))
+        };
+        let x = self.pinch.place;
+        let h = near(hot, if self.parallel { x } else { 1.0 - x })?;
+        let c = near(cold, x)?;
+        Some(match (h, c) {
+            (Phase::Vapour, Phase::Liquid) if changes(hot) => [Phase::TwoPhase, c],
+            (Phase::Liquid, Phase::Vapour) if changes(cold) => [h, Phase::TwoPhase],
+            both => both.into(),
+        })
     }
 
     /// The fluids of the hot and the cold stream, where there are just these two.

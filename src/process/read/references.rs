@@ -20,6 +20,11 @@ pub(super) fn unknown_fluid(root: Node<'_>, node: Node<'_>, text: &str, mut near
         let own = nearest(text, fluids.members().map(|(name, _)| name));
         near.splice(0..0, own.into_iter().map(str::to_owned));
     }
+    if ["propylene glycol", "ethylene glycol"].contains(&text) {
+        return node.fault(Code::UnknownFluid, format!("\"{text}\" needs the share of the glycol")).hint(format!(
+            "a glycol comes with its share: {{\"kind\": \"solution\", \"name\": \"{text}\", \"mass_fraction\": 0.4}} in \"fluids\""
+        ));
+    }
     let otherwise = "GET /v1/fluids lists the fluids; own ones go into \"fluids\"";
     node.fault(Code::UnknownFluid, format!("there is no fluid \"{text}\"")).suggest(&near, otherwise)
 }

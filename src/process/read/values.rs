@@ -103,6 +103,23 @@ impl<'t> Reader<'t> {
         vars
     }
 
+    /// Says how a figure is read whose printed digits leave more than a tenth of it open.
+    fn note_coarse(&mut self, q: &Quantity) {
+        if q.value == 0.0 || q.half_digit <= 0.1 * q.value.abs() {
+            return;
+        }
+        let (text, code) = (&q.text, q.scale.code);
+        let (value, half) = (q.scale.from_si(q.value), q.half_digit / q.scale.scale.abs());
+        let (half, meant) = match code {
+            "1" => (format!("{half}"), format!("{value:.3}")),
+            code => (format!("{half} {code}"), format!("{value:.3} {code}")),
+        };
+        self.assume(
+            q.pointer.clone(),
+            format!("read as {text} ± {half} by its printed digits; write {meant} if it is meant so"),
+        );
+    }
+
     /// One quantity as an affine function of sources, times a factor.
     fn affine(&mut self, q: &Quantity, class: Class, factor: f64) -> Affine {
         let (u, kind) = match q.u() {
@@ -117,6 +134,7 @@ impl<'t> Reader<'t> {
                     if exact {
                         (0.0, SourceKind::Exact)
                     } else {
+                        self.note_coarse(q);
                         (q.half_digit / 3f64.sqrt(), SourceKind::Digits)
                     }
                 }
