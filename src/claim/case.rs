@@ -552,7 +552,7 @@ impl Case {
                 ));
             }
         } else if verdict == Standing::Impossible {
-            out.push_str(", enough as a whole, but in one part heat would have to run uphill");
+            out.push_str(", enough as a whole; it is another bound that the claim breaks");
         }
         out.push('.');
     }
