@@ -448,7 +448,7 @@ fn what_cannot_be_is_refused_where_it_is() {
             "/v1/states",
             json!({"fluid": "water", "pressure": "1 bar", "quality": 1.5}),
             "/quality",
-            "out-of-bounds",
+            "out-of-range",
         ),
     ] {
         let (status, answer) = line.post(target, body.to_string().as_bytes());
