@@ -78,26 +78,31 @@ impl Rule for EnergyImbalance {
             statement,
             value: Some(Figure { value: decision.value, dimension }),
             limit: Some(Figure { value: 0.0, dimension }),
-            causes: causes(&evaluation.view.model.process.components[k]),
+            causes: causes(&evaluation.view.model.process.components[k], decision.value > 0.0),
             ..Explanation::default()
         }
     }
 }
 
 /// What usually opens the balance of a component of some kinds (common practice).
-fn causes(component: &Component) -> Option<&'static str> {
-    match component.kind {
-        Kind::Valve => Some("the quality of wet steam, a pressure or temperature reading, heat lost"),
-        kind if kind.is_exchanger() => {
-            Some("a flow meter, leakage between the sides, a temperature reading, heat lost")
+/// Heat can be lost only where less leaves than enters.
+fn causes(component: &Component, less_leaves: bool) -> Option<&'static str> {
+    let purpose = component.kind.info().purpose;
+    Some(match (component.kind, less_leaves) {
+        (Kind::Valve, true) => "the quality of wet steam, a pressure or temperature reading, heat lost",
+        (Kind::Valve, false) => "the quality of wet steam, a pressure or temperature reading",
+        (kind, true) if kind.is_exchanger() => {
+            "a flow meter, leakage between the sides, a temperature reading, heat lost"
         }
-        kind => match kind.info().purpose {
-            Purposeful::Compression | Purposeful::Expansion => Some(
-                "heat lost through the casing or to cooling (heat_loss is not given), the power reading, a flow meter",
-            ),
-            _ => None,
-        },
-    }
+        (kind, false) if kind.is_exchanger() => {
+            "a flow meter, leakage between the sides, a temperature reading"
+        }
+        _ if !matches!(purpose, Purposeful::Compression | Purposeful::Expansion) => return None,
+        (_, true) => {
+            "heat lost through the casing or to cooling (heat_loss is not given), the power reading, a flow meter"
+        }
+        (_, false) => "the power reading, a flow meter, a temperature reading",
+    })
 }
 
 fn on_formation_scale(evaluation: &Evaluation<'_>, k: usize) -> bool {
