@@ -1,6 +1,7 @@
 //! What a check costs: evaluation on a bound model, bytes to report bytes, growth with size,
 //! memory over many checks. Prints a table; asserts nothing. Run with
 //! `cargo bench --bench check`.
+#![allow(clippy::expect_used, reason = "a bench without its data has nothing to measure")]
 
 use sigmadot::pipeline::{Bound, Cancel, Room, check_bytes, evaluate_and_decide};
 use sigmadot::process::{ReadLimits, read};
