@@ -273,8 +273,7 @@ fn relative_enthalpy(view: View<'_>, state: usize) -> Result<f64, Blocked> {
 
 /// Relative standard uncertainty of the formulation at a state (zero where it cannot be had).
 pub fn formulation_uncertainty(view: View<'_>, state: usize) -> f64 {
-    let fluid = view.model.process.states[state].fluid;
-    view.state(state).map_or(0.0, |s| view.model.process.fluids[fluid].engine.relative_uncertainty(&s.state))
+    view.state(state).map_or(0.0, |s| s.uncertainty)
 }
 
 /// Which end of the bracket is taken where a boundary temperature is not given.
@@ -479,17 +478,18 @@ pub fn element(view: View<'_>, k: ComponentId, side: usize, index: usize) -> Res
     let process = &view.model.process;
     let mut out = Balance::default();
     for (state, mass, sign) in set_masses(view, k, side) {
-        let engine = &process.fluids[process.states[state].fluid].engine;
+        let fluid = process.states[state].fluid;
+        let scale = &view.model.scales[fluid];
         let missing = Blocked::Missing("the elements that the fluid consists of");
-        let share = if engine.elements_vary() {
+        let moles = if scale.variable {
             let c = view.composition(state)?;
-            let (elements, slopes) = engine.elements(c.value).ok_or(missing)?;
-            c.map(elements[index], slopes[index])
+            let (elements, slopes) = process.fluids[fluid].engine.elements(c.value).ok_or(missing)?;
+            mass?.times(&c.map(elements[index], slopes[index]))
         } else {
-            let (elements, _) = engine.elements(0.0).ok_or(missing)?;
-            Dual::constant(elements[index])
+            let elements = scale.elements.as_ref().ok_or(missing)?;
+            mass?.scaled(elements[index])
         };
-        out.add(sign, &mass?.times(&share));
+        out.add(sign, &moles);
     }
     let (i, o) = (out.inflow.value.abs(), out.outflow.value.abs());
     out.close(i, o);

@@ -5,13 +5,17 @@ use smallvec::SmallVec;
 /// What a gradient entry refers to: a variable of the process or, above the variables, a source.
 pub type Slot = u32;
 
+/// Entries that are held without an allocation. What one flow carries has about as many; sums over
+/// a region have more, and every figure is as large as this makes it.
+const INLINE: usize = 4;
+
 /// A figure and its partial derivatives. Slots may repeat; the entries of a slot add up.
 #[derive(Clone, Debug, Default)]
 pub struct Dual {
     /// The value, SI.
     pub value: f64,
     /// Partial derivatives.
-    pub terms: SmallVec<[(Slot, f64); 8]>,
+    pub terms: SmallVec<[(Slot, f64); INLINE]>,
 }
 
 impl Dual {

@@ -14,7 +14,7 @@ pub use margin::{Decision, Family, Margin, Scope, Test, Verdict};
 pub use solve::{Plan, Rows, Step, invert};
 pub use workspace::{Blocked, StateValue, View, Workspace};
 
-use crate::fluid::{Datum, Pair};
+use crate::fluid::{Datum, Elements, Pair};
 use crate::process::{Affine, Component, FluidId, Inputs, Process, Side, SourceId, StateSpec, Var, VarId};
 use std::collections::BTreeMap;
 
@@ -44,6 +44,8 @@ pub struct FluidScale {
     pub reference: (f64, f64),
     /// Whether the composition varies, so that the offset follows `Engine::datum_at`.
     pub variable: bool,
+    /// Moles of each element per kg, where they are known and do not vary.
+    pub elements: Option<Elements>,
 }
 
 /// The compiled process.
@@ -198,6 +200,7 @@ fn scales(process: &Process) -> Vec<FluidScale> {
         .zip(absolute)
         .map(|(fluid, absolute)| {
             let variable = fluid.engine.elements_vary();
+            let elements = if variable { None } else { fluid.engine.elements(0.0).map(|(moles, _)| moles) };
             let reference = if matches!(fluid.substance, crate::fluid::Substance::Stated) {
                 (0.0, 0.0)
             } else {
@@ -212,13 +215,14 @@ fn scales(process: &Process) -> Vec<FluidScale> {
             };
             match fluid.engine.datum().or_else(|| Some(fluid.engine.datum_at(sample_composition(fluid))?.0)) {
                 Some(datum) if absolute => {
-                    FluidScale { scale: Scale::Absolute, offset: datum, reference, variable }
+                    FluidScale { scale: Scale::Absolute, offset: datum, reference, variable, elements }
                 }
                 _ => FluidScale {
                     scale: Scale::Own,
                     offset: Datum { enthalpy: -reference.0, entropy: -reference.1 },
                     reference,
                     variable,
+                    elements,
                 },
             }
         })

@@ -27,6 +27,8 @@ pub struct StateValue {
     pub composition: f64,
     /// Its derivatives with respect to the variables a, b and c.
     pub composition_gradient: [f64; 3],
+    /// Relative standard uncertainty of the formulation here.
+    pub uncertainty: f64,
 }
 
 /// Reusable room for one evaluation.
@@ -133,6 +135,7 @@ impl Workspace {
                 let state = engine.state(pair, a, b, figure)?;
                 let jacobian = state.jacobian(pair).ok_or(PropertyError::UnsupportedPair(pair))?;
                 return Ok(StateValue {
+                    uncertainty: engine.relative_uncertainty(&state),
                     state,
                     jacobian,
                     composition: figure,
@@ -152,7 +155,13 @@ impl Workspace {
                 row[1] += along * gradient[1];
                 row[2] = along * gradient[2];
             }
-            return Ok(StateValue { state, jacobian, composition, composition_gradient: gradient });
+            return Ok(StateValue {
+                uncertainty: engine.relative_uncertainty(&state),
+                state,
+                jacobian,
+                composition,
+                composition_gradient: gradient,
+            });
         }
         let (state, jacobian) = match spec.form {
             StateForm::Pair(pair) => {
@@ -165,7 +174,13 @@ impl Workspace {
             StateForm::TemperatureSuperheat => offset_at_temperature(engine, a, b, 1.0)?,
             StateForm::TemperatureSubcooling => offset_at_temperature(engine, a, -b, 0.0)?,
         };
-        Ok(StateValue { state, jacobian, composition: 0.0, composition_gradient: [0.0; 3] })
+        Ok(StateValue {
+            uncertainty: engine.relative_uncertainty(&state),
+            state,
+            jacobian,
+            composition: 0.0,
+            composition_gradient: [0.0; 3],
+        })
     }
 }
 

@@ -6,7 +6,7 @@ use crate::fluid::heat_capacity::{
 };
 use crate::fluid::{Element, Elements, PropertyError};
 use serde::Deserialize;
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, HashMap};
 use std::ops::RangeInclusive;
 use std::sync::OnceLock;
 
@@ -255,8 +255,18 @@ pub fn all_species() -> &'static [Species] {
 
 /// The species known by this formula or name; case, spaces, hyphens and underscores do not matter.
 pub fn find_species(name: &str) -> Option<&'static Species> {
-    let wanted = key(name);
-    all_species().iter().find(|s| key(&s.name) == wanted || s.aliases.iter().any(|a| key(a) == wanted))
+    static BY_KEY: OnceLock<HashMap<String, &'static Species>> = OnceLock::new();
+    let by_key = BY_KEY.get_or_init(|| {
+        let mut out = HashMap::new();
+        for species in all_species() {
+            for name in species.aliases.iter().chain([&species.name]) {
+                // Of two that share a name, the first in the table has it.
+                out.entry(key(name)).or_insert(species);
+            }
+        }
+        out
+    });
+    by_key.get(&key(name)).copied()
 }
 
 fn key(name: &str) -> String {

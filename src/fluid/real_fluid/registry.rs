@@ -2,6 +2,7 @@
 
 use super::RealFluid;
 use crate::diagnostic::nearest;
+use std::collections::HashMap;
 use std::sync::{Arc, OnceLock};
 
 /// Every data file.
@@ -65,11 +66,14 @@ fn fold(name: &str) -> String {
 /// # Errors
 /// The nearest names that are known, none where nothing is near.
 pub fn by_name(name: &str) -> Result<&'static Arc<RealFluid>, Vec<&'static str>> {
-    let folded = fold(name);
+    static BY_NAME: OnceLock<HashMap<String, &'static Arc<RealFluid>>> = OnceLock::new();
     let fluids = catalogue();
-    fluids
-        .iter()
-        .find(|f| f.names().iter().any(|n| fold(n) == folded))
+    let by_name = BY_NAME.get_or_init(|| {
+        fluids.iter().flat_map(|f| f.names().iter().map(move |n| (fold(n), f))).collect()
+    });
+    by_name
+        .get(&fold(name))
+        .copied()
         .ok_or_else(|| nearest(name, fluids.iter().flat_map(|f| f.names().iter().map(String::as_str))))
 }
 
