@@ -1,6 +1,6 @@
 //! What a check costs: evaluation on a bound model, bytes to report bytes, growth with size,
 //! memory over many checks. Prints a table; asserts nothing. Run with
-//! `cargo bench --bench check`.
+//! `cargo bench --bench check`, or a part of it with `-- evaluate`, `report`, `growth` or `memory`.
 
 use sigmadot::pipeline::{Bound, Cancel, Room, check_bytes, evaluate_and_decide};
 use sigmadot::process::{ReadLimits, read};
@@ -65,40 +65,61 @@ fn resident_kib() -> Option<u64> {
 }
 
 fn main() {
-    let limits = ReadLimits { components: 5000, flows: 20_000, ..ReadLimits::default() };
-    println!("{:<58} {:>10} {:>10}", "", "best µs", "median µs");
-    let row = |name: &str, (best, median): (f64, f64)| println!("{name:<58} {best:>10.2} {median:>10.2}");
+    let wanted: Vec<String> = std::env::args().skip(1).filter(|a| !a.starts_with('-')).collect();
+    for (part, run) in
+        [("evaluate", evaluate as fn()), ("report", report), ("growth", growth), ("memory", memory)]
+    {
+        if wanted.is_empty() || wanted.iter().any(|w| w == part) {
+            println!("{:<58} {:>10} {:>10}", part, "best µs", "median µs");
+            run();
+        }
+    }
+}
 
-    let (process, inputs) = read(PLANT.as_bytes(), &limits).expect("bench plant");
+fn row(name: &str, (best, median): (f64, f64)) {
+    println!("{name:<58} {best:>10.2} {median:>10.2}");
+}
+
+fn limits() -> ReadLimits {
+    ReadLimits { components: 5000, flows: 20_000, ..ReadLimits::default() }
+}
+
+fn check(body: &str) -> usize {
+    let report = check_bytes(body.as_bytes(), &limits(), UnitSystem::Metric, &Cancel::new());
+    black_box(report.expect("bench plant").to_json().len())
+}
+
+fn evaluate() {
+    let (process, inputs) = read(PLANT.as_bytes(), &limits()).expect("bench plant");
     let mut room = Room::default();
     let bound = Bound::compile(process, inputs, &mut room);
     row(
         "evaluate + decide, 5 components, 13 flows, bound model",
-        measure(30, 200, || {
+        measure(200, 200, || {
             black_box(evaluate_and_decide(&bound, &bound.inputs, &mut room));
         }),
     );
+}
 
-    let check = |body: &str| {
-        let report = check_bytes(body.as_bytes(), &limits, UnitSystem::Metric, &Cancel::new());
-        black_box(report.expect("bench plant").to_json().len())
-    };
+fn report() {
     let small = without_exchangers();
     println!("report bytes: {} (with two exchangers), {} (without)", check(PLANT), check(&small));
     row(
         "bytes to report bytes, without exchangers",
-        measure(30, 50, || {
+        measure(100, 20, || {
             check(&small);
         }),
     );
     row(
         "bytes to report bytes, with two exchangers",
-        measure(30, 50, || {
+        measure(100, 20, || {
             check(PLANT);
         }),
     );
+}
 
-    println!("\ngrowth with replicated components, bytes to report bytes");
+/// Replicated components, bytes to report bytes.
+fn growth() {
     let mut points = Vec::new();
     for n in [10usize, 30, 100, 300, 1000] {
         let body = replicated(n);
@@ -110,16 +131,17 @@ fn main() {
     }
     let slope = (points[points.len() - 1].1 - points[0].1) / (points[points.len() - 1].0 - points[0].0);
     println!("exponent from 10 to 1000: {slope:.3}");
+}
 
-    println!("\nmemory over 100,000 checks");
-    let mut seen = Vec::new();
-    for i in 0..=10 {
-        seen.push(resident_kib().unwrap_or(0));
-        if i < 10 {
-            for _ in 0..10_000 {
-                check(&small);
-            }
+/// Resident memory over 100,000 checks.
+fn memory() {
+    let small = without_exchangers();
+    let mut seen = vec![resident_kib().unwrap_or(0)];
+    for _ in 0..10 {
+        for _ in 0..10_000 {
+            check(&small);
         }
+        seen.push(resident_kib().unwrap_or(0));
     }
     println!("resident KiB after each 10,000: {seen:?}");
 }

@@ -148,8 +148,8 @@ pub fn by_pressure(model: &Model, workspace: &Workspace, outlets: &[FlowId], kin
     let pressure = |f: FlowId| {
         model.process.flows[f]
             .material()
-            .and_then(|m| view.property(m.state, Property::Pressure).ok())
-            .map_or(0.0, |p| p.value)
+            .and_then(|m| view.property_value(m.state, Property::Pressure).ok())
+            .unwrap_or(0.0)
     };
     let mut out = outlets.to_vec();
     let falling = matches!(kind, Kind::Turbine | Kind::Engine);

@@ -1,6 +1,6 @@
 //! One evaluation of a process: solved unknowns and the balances that rules and report share.
 
-use super::{Balance, Bracket, Equations, Exergies, Profile, Region, region};
+use super::{Balance, Bracket, Equations, Exergies, Profile, Region, region::Shares};
 use crate::model::{Blocked, Dual, Plan, Scope, View};
 use crate::process::ComponentId;
 use std::cell::OnceCell;
@@ -16,11 +16,8 @@ pub struct RegionBalances {
 }
 
 impl RegionBalances {
-    fn of(view: View<'_>, r: &Region) -> RegionBalances {
-        RegionBalances {
-            energy: region::energy(view, r),
-            entropy: region::entropy(view, r, Bracket::Lenient),
-        }
+    fn of(shares: &Shares<'_>, r: &Region) -> RegionBalances {
+        RegionBalances { energy: shares.energy(r), entropy: shares.entropy(r, Bracket::Lenient) }
     }
 
     /// Entropy generation σ with its gradient, and the entropy throughput.
@@ -68,13 +65,14 @@ pub struct Evaluation<'a> {
 impl<'a> Evaluation<'a> {
     /// Evaluates the balances of a solved workspace.
     pub fn new(view: View<'a>, equations: &'a Equations, plan: &'a Plan) -> Evaluation<'a> {
+        let shares = Shares::new(view);
         Evaluation {
             view,
             equations,
             plan,
-            components: equations.components.iter().map(|r| RegionBalances::of(view, r)).collect(),
-            groups: equations.groups.iter().map(|r| RegionBalances::of(view, r)).collect(),
-            plant: RegionBalances::of(view, &equations.plant),
+            components: equations.components.iter().map(|r| RegionBalances::of(&shares, r)).collect(),
+            groups: equations.groups.iter().map(|r| RegionBalances::of(&shares, r)).collect(),
+            plant: RegionBalances::of(&shares, &equations.plant),
             exergy_mismatch: None,
             exergies: None,
             profiles: if view.model.process.components.iter().any(|c| c.kind.is_exchanger()) {

@@ -25,7 +25,7 @@ pub fn is_reversed(view: View<'_>, flow: FlowId) -> bool {
         Carried::Material(m) => m.amount,
         Carried::Heat(v, _) | Carried::Work(v, _) | Carried::Radiation(v, _) => *v,
     };
-    view.var(var).is_ok_and(|x| x.value < 0.0)
+    view.workspace.known(var).is_ok_and(|x| x < 0.0)
 }
 
 /// The sections of a machine with one inlet, in the order in which the fluid passes them; none
@@ -55,7 +55,7 @@ pub(super) fn mean_level(view: View<'_>, flows: &[FlowId], by_enthalpy: bool) ->
         let level = if by_enthalpy {
             view.enthalpy(m.state)?.value
         } else {
-            view.property(m.state, Property::Temperature)?.value
+            view.property_value(m.state, Property::Temperature)?
         };
         let kg = view.mass(f)?.value;
         sum += kg * level;
@@ -76,7 +76,7 @@ pub(super) fn enthalpy_rise(view: View<'_>, side: &Side) -> Result<f64, Blocked>
 pub fn compressed_side(view: View<'_>, component: &Component) -> Option<usize> {
     let pressure = |f: Option<&FlowId>| {
         let state = view.model.process.flows[*f?].material()?.state;
-        view.property(state, Property::Pressure).ok().map(|p| p.value)
+        view.property_value(state, Property::Pressure).ok()
     };
     let ratio = |side: &Side| {
         let (before, after) = (pressure(side.inlets.first())?, pressure(side.outlets.first())?);

@@ -4,6 +4,7 @@ use crate::fluid::{Property, Substance};
 use crate::model::{Blocked, Dual, View, dual::log_mean};
 use crate::process::{Boundary, Carried, ComponentId, Content, FlowId, Process, StateId, VarId};
 use smallvec::SmallVec;
+use std::borrow::Cow;
 
 /// Standard acceleration of free fall, m/s² (ISO 80000-3, conventional value).
 pub const GRAVITY: f64 = 9.80665;
@@ -79,9 +80,13 @@ pub struct Balance {
     pub outflow: Dual,
     /// Sum of magnitudes relative to the reference state: the scale of closure.
     pub throughput: f64,
-    /// Uncertainty of the property formulations: (component, fluid) and derivative.
-    pub formulation: Vec<((ComponentId, usize), f64)>,
+    /// Uncertainty of the property formulations.
+    pub formulation: Vec<FormulationTerm>,
 }
+
+/// What one relative error of a property formulation adds: its component and fluid, and the
+/// derivative.
+pub type FormulationTerm = ((ComponentId, usize), f64);
 
 impl Balance {
     /// Inflow minus outflow, with the formulation terms as gradient entries.
@@ -208,25 +213,136 @@ fn specific_energy(
     Ok(theta)
 }
 
+/// What a flow carries of a quantity, and how much that is beside the reference state: the scale
+/// of closure.
+pub type Share = (Dual, f64);
+
+/// What crosses boundaries of a quantity: what each flow carries, and what the property
+/// formulations leave uncertain in each component.
+trait Ledger {
+    fn flow(&self, f: FlowId) -> Result<Cow<'_, Share>, Blocked>;
+    fn formulation(&self, k: ComponentId) -> Cow<'_, [FormulationTerm]>;
+}
+
+/// Energy or entropy, found where it is asked for.
+struct Direct<'a> {
+    view: View<'a>,
+    share: fn(View<'_>, FlowId) -> Result<Share, Blocked>,
+    relative: fn(View<'_>, StateId) -> Result<f64, Blocked>,
+}
+
+impl Ledger for Direct<'_> {
+    fn flow(&self, f: FlowId) -> Result<Cow<'_, Share>, Blocked> {
+        (self.share)(self.view, f).map(Cow::Owned)
+    }
+
+    fn formulation(&self, k: ComponentId) -> Cow<'_, [FormulationTerm]> {
+        Cow::Owned(formulation_terms(self.view, k, self.relative))
+    }
+}
+
+/// Energy or entropy of every flow and component, found once: each flow bounds several regions.
+struct Table {
+    flows: Vec<Result<Share, Blocked>>,
+    formulations: Vec<Vec<FormulationTerm>>,
+}
+
+impl Table {
+    fn of(direct: &Direct<'_>) -> Table {
+        let Direct { view, share, relative } = *direct;
+        let process = &view.model.process;
+        Table {
+            flows: (0..process.flows.len()).map(|f| share(view, f)).collect(),
+            formulations: (0..process.components.len())
+                .map(|k| formulation_terms(view, k, relative))
+                .collect(),
+        }
+    }
+}
+
+impl Ledger for Table {
+    fn flow(&self, f: FlowId) -> Result<Cow<'_, Share>, Blocked> {
+        self.flows[f].as_ref().map(Cow::Borrowed).map_err(Clone::clone)
+    }
+
+    fn formulation(&self, k: ComponentId) -> Cow<'_, [FormulationTerm]> {
+        Cow::Borrowed(&self.formulations[k])
+    }
+}
+
+const fn energy_ledger(view: View<'_>) -> Direct<'_> {
+    Direct { view, share: energy_share, relative: relative_enthalpy }
+}
+
+const fn entropy_ledger(view: View<'_>) -> Direct<'_> {
+    Direct { view, share: entropy_share, relative: relative_entropy }
+}
+
+fn energy_share(view: View<'_>, f: FlowId) -> Result<Share, Blocked> {
+    let energy = flow_energy(view, f)?;
+    let size = match view.model.process.flows[f].material() {
+        Some(m) => view.mass_value(m.state, m.amount, m.form)? * relative_enthalpy(view, m.state)?,
+        None => energy.value,
+    };
+    Ok((energy, size.abs()))
+}
+
+/// What material carries; nothing for other flows, whose entropy depends on the region.
+fn entropy_share(view: View<'_>, f: FlowId) -> Result<Share, Blocked> {
+    let Some(m) = view.model.process.flows[f].material() else { return Ok(Share::default()) };
+    let mass = view.mass(f)?;
+    let entropy = mass.times(&view.entropy(m.state)?);
+    Ok((entropy, (mass.value * relative_entropy(view, m.state)?).abs()))
+}
+
+/// Energy and entropy of every flow and component, for the balances of many regions.
+pub struct Shares<'a> {
+    view: View<'a>,
+    energy: Table,
+    entropy: Table,
+}
+
+impl<'a> Shares<'a> {
+    /// Finds what every flow carries.
+    pub fn new(view: View<'a>) -> Shares<'a> {
+        Shares { view, energy: Table::of(&energy_ledger(view)), entropy: Table::of(&entropy_ledger(view)) }
+    }
+
+    /// See [`energy`].
+    ///
+    /// # Errors
+    /// The first thing that blocks it.
+    pub fn energy(&self, region: &Region) -> Result<Balance, Blocked> {
+        sum_energy(self.view, region, &self.energy)
+    }
+
+    /// See [`entropy`].
+    ///
+    /// # Errors
+    /// The first thing that blocks it.
+    pub fn entropy(&self, region: &Region, bracket: Bracket) -> Result<Balance, Blocked> {
+        sum_entropy(self.view, region, bracket, &self.entropy)
+    }
+}
+
 /// Energy over a region, W or J. The boundary work of a batch counts as outflow.
 ///
 /// # Errors
 /// The first thing that blocks it.
 pub fn energy(view: View<'_>, region: &Region) -> Result<Balance, Blocked> {
+    sum_energy(view, region, &energy_ledger(view))
+}
+
+fn sum_energy(view: View<'_>, region: &Region, ledger: &impl Ledger) -> Result<Balance, Blocked> {
     let process = &view.model.process;
     grounded(view, region)?;
     let mut out = Balance::default();
     let (mut inward, mut outward) = (0.0, 0.0);
     let mut tally = |sign: f64, size: f64| if sign > 0.0 { inward += size } else { outward += size };
     for (f, _, sign) in region.crossings() {
-        let e = flow_energy(view, f)?;
-        out.add(sign, &e);
-        if let Some(m) = process.flows[f].material() {
-            let relative = relative_enthalpy(view, m.state)?;
-            tally(sign, (view.mass(f)?.value * relative).abs());
-        } else {
-            tally(sign, e.value.abs());
-        }
+        let share = ledger.flow(f)?;
+        out.add(sign, &share.0);
+        tally(sign, share.1);
     }
     for (c, _, sign) in region.contents(process) {
         let mass = view.mass_of(c.state, c.amount, c.form)?;
@@ -234,7 +350,9 @@ pub fn energy(view: View<'_>, region: &Region) -> Result<Balance, Blocked> {
         let relative = relative_enthalpy(view, c.state)?;
         tally(sign, (mass.value * relative).abs());
     }
-    add_formulations(view, region, &mut out, relative_enthalpy);
+    for &k in &region.members {
+        out.formulation.extend_from_slice(&ledger.formulation(k));
+    }
     for &k in &region.members {
         if let Some(work) = boundary_work(view, k)? {
             tally(-1.0, work.value.abs());
@@ -267,7 +385,7 @@ pub fn boundary_work(view: View<'_>, k: ComponentId) -> Result<Option<Dual>, Blo
 /// h − h(298.15 K, 1 bar) of a state, J/kg: independent of the datum of the balances.
 fn relative_enthalpy(view: View<'_>, state: usize) -> Result<f64, Blocked> {
     let fluid = view.model.process.states[state].fluid;
-    let h = view.property(state, Property::Enthalpy)?.value;
+    let h = view.property_value(state, Property::Enthalpy)?;
     Ok(h - view.model.scales[fluid].reference.0)
 }
 
@@ -320,9 +438,9 @@ fn temperature_range(view: View<'_>, members: &[ComponentId]) -> (Option<f64>, O
     let process = &view.model.process;
     let mut range: (Option<f64>, Option<f64>) = (None, None);
     let mut take = |state: usize| {
-        if let Ok(t) = view.property(state, Property::Temperature) {
-            range.0 = Some(range.0.map_or(t.value, |m: f64| m.min(t.value)));
-            range.1 = Some(range.1.map_or(t.value, |m: f64| m.max(t.value)));
+        if let Ok(t) = view.property_value(state, Property::Temperature) {
+            range.0 = Some(range.0.map_or(t, |m: f64| m.min(t)));
+            range.1 = Some(range.1.map_or(t, |m: f64| m.max(t)));
         }
     };
     for &k in members {
@@ -348,6 +466,15 @@ pub const RADIATION_ENTROPY: f64 = 4.0 / 3.0;
 /// # Errors
 /// The first thing that blocks it.
 pub fn entropy(view: View<'_>, region: &Region, bracket: Bracket) -> Result<Balance, Blocked> {
+    sum_entropy(view, region, bracket, &entropy_ledger(view))
+}
+
+fn sum_entropy(
+    view: View<'_>,
+    region: &Region,
+    bracket: Bracket,
+    ledger: &impl Ledger,
+) -> Result<Balance, Blocked> {
     let process = &view.model.process;
     grounded(view, region)?;
     let mut out = Balance::default();
@@ -355,12 +482,10 @@ pub fn entropy(view: View<'_>, region: &Region, bracket: Bracket) -> Result<Bala
     let mut tally = |sign: f64, size: f64| if sign > 0.0 { inward += size } else { outward += size };
     for (f, _, sign) in region.crossings() {
         match &process.flows[f].carried {
-            Carried::Material(m) => {
-                let mass = view.mass(f)?;
-                let s = view.entropy(m.state)?;
-                out.add(sign, &mass.times(&s));
-                let relative = relative_entropy(view, m.state)?;
-                tally(sign, (mass.value * relative).abs());
+            Carried::Material(_) => {
+                let share = ledger.flow(f)?;
+                out.add(sign, &share.0);
+                tally(sign, share.1);
             }
             Carried::Heat(q, boundary) => {
                 let s = heat_entropy(view, *q, *boundary, sign, bracket, &region.members)?;
@@ -381,61 +506,61 @@ pub fn entropy(view: View<'_>, region: &Region, bracket: Bracket) -> Result<Bala
         let relative = relative_entropy(view, c.state)?;
         tally(sign, (mass.value * relative).abs());
     }
-    add_formulations(view, region, &mut out, relative_entropy);
+    for &k in &region.members {
+        out.formulation.extend_from_slice(&ledger.formulation(k));
+    }
     add_fuel_entropies(view, region, &mut out);
     out.close(inward, outward);
     Ok(out)
 }
 
-/// Adds what the property formulations leave uncertain at the flows of every member: the terms of
-/// a union are the sums of its members' terms, so that balances stay additive in every respect.
+/// What the property formulations leave uncertain at the flows of a component. The terms of a union
+/// are those of its members, so that balances stay additive in every respect.
 ///
 /// One relative error is common to all states of a fluid in a component, the largest of theirs, so
 /// that it cancels for equal states.
-fn add_formulations(
+fn formulation_terms(
     view: View<'_>,
-    region: &Region,
-    out: &mut Balance,
-    relative: fn(View<'_>, usize) -> Result<f64, Blocked>,
-) {
+    k: ComponentId,
+    relative: fn(View<'_>, StateId) -> Result<f64, Blocked>,
+) -> Vec<FormulationTerm> {
     let process = &view.model.process;
-    for &k in &region.members {
-        let component = &process.components[k];
-        let first = out.formulation.len();
-        let mut largest: SmallVec<[f64; 4]> = SmallVec::new();
-        let mut add = |state: usize, mass: Result<Dual, Blocked>, sign: f64| {
-            let (Ok(mass), Ok(figure)) = (mass, relative(view, state)) else { return };
-            let key = (k, process.states[state].fluid);
-            let u = formulation_uncertainty(view, state);
-            match out.formulation[first..].iter().position(|(other, _)| *other == key) {
-                Some(at) => {
-                    out.formulation[first + at].1 += sign * mass.value * figure;
-                    largest[at] = largest[at].max(u);
-                }
-                None => {
-                    out.formulation.push((key, sign * mass.value * figure));
-                    largest.push(u);
-                }
+    let component = &process.components[k];
+    let mut out: Vec<FormulationTerm> = Vec::new();
+    let mut largest: SmallVec<[f64; 4]> = SmallVec::new();
+    let mut add = |state: usize, mass: Result<f64, Blocked>, sign: f64| {
+        let (Ok(mass), Ok(figure)) = (mass, relative(view, state)) else { return };
+        let key = (k, process.states[state].fluid);
+        let u = formulation_uncertainty(view, state);
+        match out.iter().position(|(other, _)| *other == key) {
+            Some(at) => {
+                out[at].1 += sign * mass * figure;
+                largest[at] = largest[at].max(u);
             }
-        };
-        for (flows, sign) in [(&component.inlets, 1.0), (&component.outlets, -1.0)] {
-            for &f in flows {
-                if let Some(m) = process.flows[f].material() {
-                    add(m.state, view.mass(f), sign);
-                }
+            None => {
+                out.push((key, sign * mass * figure));
+                largest.push(u);
             }
         }
-        if let Some(holdup) = &component.holdup {
-            for (contents, sign) in [(&holdup.initial, 1.0), (&holdup.r#final, -1.0)] {
-                for c in contents {
-                    add(c.state, view.mass_of(c.state, c.amount, c.form), sign);
-                }
+    };
+    for (flows, sign) in [(&component.inlets, 1.0), (&component.outlets, -1.0)] {
+        for &f in flows {
+            if let Some(m) = process.flows[f].material() {
+                add(m.state, view.mass_value(m.state, m.amount, m.form), sign);
             }
-        }
-        for ((_, derivative), u) in out.formulation[first..].iter_mut().zip(&largest) {
-            *derivative *= u;
         }
     }
+    if let Some(holdup) = &component.holdup {
+        for (contents, sign) in [(&holdup.initial, 1.0), (&holdup.r#final, -1.0)] {
+            for c in contents {
+                add(c.state, view.mass_value(c.state, c.amount, c.form), sign);
+            }
+        }
+    }
+    for ((_, derivative), u) in out.iter_mut().zip(&largest) {
+        *derivative *= u;
+    }
+    out
 }
 
 /// Adds what the correlations of chemical exergy leave uncertain in the entropy of fuels.
@@ -459,7 +584,7 @@ fn add_fuel_entropies(view: View<'_>, region: &Region, out: &mut Balance) {
 
 fn relative_entropy(view: View<'_>, state: usize) -> Result<f64, Blocked> {
     let fluid = view.model.process.states[state].fluid;
-    let s = view.property(state, Property::Entropy)?.value;
+    let s = view.property_value(state, Property::Entropy)?;
     Ok(s - view.model.scales[fluid].reference.1)
 }
 

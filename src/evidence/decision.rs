@@ -87,12 +87,13 @@ pub fn decide(
         }
         families.push((family, summary));
     }
+    let critical_z = normal_quantile(1.0 - false_alarm);
     for (i, margin) in margins.iter().enumerate() {
         if margin.family == Family::None
             && let Some(d) = &mut decisions[i]
             && !d.at_limit
         {
-            judge(d, margin.test, normal_quantile(1.0 - false_alarm), false_alarm);
+            judge(d, margin.test, critical_z, false_alarm);
         }
     }
     (decisions, families)

@@ -1,7 +1,7 @@
 //! Values under evaluation: variables, and states computed on demand.
 
 use super::{Dual, Model, Scale, Slot};
-use crate::fluid::{CompositionForm, Pair, Property, PropertyError, State, state::PROPERTIES};
+use crate::fluid::{CompositionForm, Datum, Pair, Property, PropertyError, State, state::PROPERTIES};
 use crate::process::{AmountForm, FlowId, Inputs, SourceId, StateForm, StateId, Var, VarId};
 use std::cell::OnceCell;
 
@@ -102,7 +102,15 @@ impl Workspace {
     /// # Errors
     /// `Blocked::Unknown` if it has no value.
     pub fn var(&self, var: VarId) -> Result<Dual, Blocked> {
-        if self.known[var] { Ok(Dual::slot(var as Slot, self.vars[var])) } else { Err(Blocked::Unknown(var)) }
+        self.known(var).map(|value| Dual::slot(var as Slot, value))
+    }
+
+    /// The value of a variable.
+    ///
+    /// # Errors
+    /// `Blocked::Unknown` if it has none.
+    pub fn known(&self, var: VarId) -> Result<f64, Blocked> {
+        if self.known[var] { Ok(self.vars[var]) } else { Err(Blocked::Unknown(var)) }
     }
 
     /// A state.
@@ -296,24 +304,38 @@ impl<'a> View<'a> {
     /// # Errors
     /// `Blocked`.
     pub fn property(&self, id: StateId, property: Property) -> Result<Dual, Blocked> {
-        let spec = &self.model.process.states[id];
-        if let StateForm::Pair(pair) = spec.form {
-            let (first, second) = pair.properties();
-            if property == first {
-                return self.var(spec.a);
-            }
-            if property == second {
-                return self.var(spec.b);
-            }
-        } else if property == Property::Pressure
-            && matches!(spec.form, StateForm::PressureSuperheat | StateForm::PressureSubcooling)
-            || property == Property::Temperature
-                && matches!(spec.form, StateForm::TemperatureSuperheat | StateForm::TemperatureSubcooling)
-        {
-            return self.var(spec.a);
+        if let Some(v) = self.coordinate(id, property) {
+            return self.var(v);
         }
         let s = self.state(id)?;
         Ok(self.dual(id, s.state.get(property), &s.jacobian[property as usize]))
+    }
+
+    /// The value of a property, as [`View::property`] has it, without its gradient.
+    ///
+    /// # Errors
+    /// `Blocked`.
+    pub fn property_value(&self, id: StateId, property: Property) -> Result<f64, Blocked> {
+        match self.coordinate(id, property) {
+            Some(v) => self.workspace.known(v),
+            None => Ok(self.state(id)?.state.get(property)),
+        }
+    }
+
+    /// The variable that is itself a property of a state, where one is.
+    fn coordinate(&self, id: StateId, property: Property) -> Option<VarId> {
+        let spec = &self.model.process.states[id];
+        let (first, second) = match spec.form {
+            StateForm::Pair(pair) => {
+                let (first, second) = pair.properties();
+                (first, Some(second))
+            }
+            StateForm::PressureSuperheat | StateForm::PressureSubcooling => (Property::Pressure, None),
+            StateForm::TemperatureSuperheat | StateForm::TemperatureSubcooling => {
+                (Property::Temperature, None)
+            }
+        };
+        if property == first { Some(spec.a) } else { (Some(property) == second).then_some(spec.b) }
     }
 
     /// The composition coordinate of a state; given directly, it needs no state.
@@ -333,16 +355,27 @@ impl<'a> View<'a> {
     /// # Errors
     /// `Blocked`.
     pub fn offset(&self, id: StateId) -> Result<(Dual, Dual), Blocked> {
-        let spec = &self.model.process.states[id];
-        let scale = &self.model.scales[spec.fluid];
+        let (mut enthalpy, mut entropy) = (Dual::default(), Dual::default());
+        self.add_offset(id, &mut enthalpy, |datum| datum.enthalpy)?;
+        self.add_offset(id, &mut entropy, |datum| datum.entropy)?;
+        Ok((enthalpy, entropy))
+    }
+
+    /// Adds to the engine's enthalpy or entropy of a state what `part` takes of the way to the
+    /// datum of the balances.
+    fn add_offset(&self, id: StateId, to: &mut Dual, part: fn(&Datum) -> f64) -> Result<(), Blocked> {
+        let fluid = self.model.process.states[id].fluid;
+        let scale = &self.model.scales[fluid];
         if scale.variable && scale.scale == Scale::Absolute {
             let c = self.composition(id)?;
-            let engine = &self.model.process.fluids[spec.fluid].engine;
+            let engine = &self.model.process.fluids[fluid].engine;
             if let Some((datum, slope)) = engine.datum_at(c.value) {
-                return Ok((c.map(datum.enthalpy, slope.enthalpy), c.map(datum.entropy, slope.entropy)));
+                to.add_scaled(1.0, &c.map(part(&datum), part(&slope)));
+                return Ok(());
             }
         }
-        Ok((Dual::constant(scale.offset.enthalpy), Dual::constant(scale.offset.entropy)))
+        to.value += part(&scale.offset);
+        Ok(())
     }
 
     /// Specific enthalpy on the datum of the balances, J/kg.
@@ -351,7 +384,7 @@ impl<'a> View<'a> {
     /// `Blocked`.
     pub fn enthalpy(&self, id: StateId) -> Result<Dual, Blocked> {
         let mut h = self.property(id, Property::Enthalpy)?;
-        h.add_scaled(1.0, &self.offset(id)?.0);
+        self.add_offset(id, &mut h, |datum| datum.enthalpy)?;
         Ok(h)
     }
 
@@ -361,7 +394,7 @@ impl<'a> View<'a> {
     /// `Blocked`.
     pub fn entropy(&self, id: StateId) -> Result<Dual, Blocked> {
         let mut s = self.property(id, Property::Entropy)?;
-        s.add_scaled(1.0, &self.offset(id)?.1);
+        self.add_offset(id, &mut s, |datum| datum.entropy)?;
         Ok(s)
     }
 
@@ -398,6 +431,17 @@ impl<'a> View<'a> {
                 let ahead = engine.molar_mass(c.value + step).ok_or(missing)?;
                 Ok(n.times(&c.map(m, (ahead - m) / step)))
             }
+        }
+    }
+
+    /// The value of a mass, as [`View::mass_of`] has it, without its gradient.
+    ///
+    /// # Errors
+    /// `Blocked`.
+    pub fn mass_value(&self, state: StateId, amount: VarId, form: AmountForm) -> Result<f64, Blocked> {
+        match form {
+            AmountForm::Mass => self.workspace.known(amount),
+            _ => self.mass_of(state, amount, form).map(|mass| mass.value),
         }
     }
 

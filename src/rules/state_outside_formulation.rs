@@ -46,14 +46,16 @@ impl Rule for StateOutsideFormulation {
     fn margins(&self, me: usize, evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
         let view = evaluation.view;
         for (s, spec) in view.model.process.states.iter().enumerate() {
-            // What another rule names better is left to it.
-            let named = quality_out_of_range::is_broken(view, s)
-                || humidity_above_saturation::is_broken(view, s)
-                || humidity_ratio_above_saturation::is_broken(view, s);
-            if named || !matches!(view.state(s), Err(Blocked::State(_))) {
+            if !matches!(view.state(s), Err(Blocked::State(_)))
+                || matches!(view.workspace.state_error(s), None | Some(PropertyError::Unstated(_)))
+            {
                 continue;
             }
-            if matches!(view.workspace.state_error(s), None | Some(PropertyError::Unstated(_))) {
+            // What another rule names better is left to it.
+            if quality_out_of_range::is_broken(view, s)
+                || humidity_above_saturation::is_broken(view, s)
+                || humidity_ratio_above_saturation::is_broken(view, s)
+            {
                 continue;
             }
             let scope = measure::scope_of_state(&view.model.process, s);

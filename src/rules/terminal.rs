@@ -29,7 +29,7 @@ fn ends(view: View<'_>, component: &Component) -> Option<[End; 2]> {
     let [first, second] = passages[..] else { return None };
     let enthalpy = |f: FlowId| {
         let state = view.model.process.flows[f].material()?.state;
-        Some(view.property(state, Property::Enthalpy).ok()?.value)
+        view.property_value(state, Property::Enthalpy).ok()
     };
     let gives = |(inlet, outlet): (FlowId, FlowId)| Some(enthalpy(inlet)? - enthalpy(outlet)?);
     let (a, b) = (gives(first)?, gives(second)?);

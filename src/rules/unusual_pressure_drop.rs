@@ -125,7 +125,7 @@ fn ends(
     };
     let pressure = |f: FlowId| {
         let state = process.flows[f].material()?.state;
-        Some(view.property(state, Property::Pressure).ok()?.value)
+        view.property_value(state, Property::Pressure).ok()
     };
     let first = inlets.iter().filter(gas).copied().min_by(|&a, &b| {
         pressure(a).unwrap_or(f64::INFINITY).total_cmp(&pressure(b).unwrap_or(f64::INFINITY))

@@ -18,7 +18,8 @@ fn the_report_in_the_readme_is_generated() {
     let start = readme.find(mark).expect("the README has a place for a report");
     let name = readme[start + mark.len()..].split(' ').next().unwrap();
     let body = fs::read(root.join(format!("openapi/examples/{name}.json"))).unwrap();
-    let text = check_bytes(&body, &ReadLimits::default(), UnitSystem::Metric, &Cancel::new()).unwrap().to_text();
+    let text =
+        check_bytes(&body, &ReadLimits::default(), UnitSystem::Metric, &Cancel::new()).unwrap().to_text();
     let shown: Vec<&str> = text.lines().take(SHOWN).map(str::trim_end).collect();
     let block = format!("{mark}{name} -->\n```text\n{}\n…\n```\n", shown.join("\n").trim_end());
     let end = start + readme[start..].find("<!-- end of report -->").unwrap();

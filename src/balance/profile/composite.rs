@@ -95,7 +95,7 @@ impl<'p> Course<'p> {
     }
 
     fn temperature(&self, view: View<'_>, u: f64) -> Result<Dual, Blocked> {
-        Ok(self.passage.dual_at(view, &Dual::constant(self.turned(u)))?.t)
+        self.passage.temperature_at(view, &Dual::constant(self.turned(u)))
     }
 }
 
@@ -263,8 +263,7 @@ impl<'p> Curve<'p> {
         for (x, t, sign) in [(from, self.at(from).1, -1.0), (to, self.at(to).0, 1.0)] {
             let shares = self.shares(x, t);
             for (course, &u) in self.courses.iter().zip(&shares) {
-                let spot = course.passage.dual_at(view, &Dual::constant(course.turned(u)))?;
-                out.add_scaled(sign, &spot.s);
+                out.add_scaled(sign, &course.passage.entropy_at(view, course.turned(u))?);
                 // The share of the whole is fixed, not that of each stream: what lacks passes at
                 // the temperature of the place.
                 out.add_scaled(sign * (x - u) / t, &course.passage.duty);

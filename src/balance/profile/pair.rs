@@ -176,17 +176,17 @@ impl Pair<'_> {
             Origin::Hot(i) => {
                 let kink = self.hot.kinks.get(i).ok_or(BEYOND)?;
                 let (y, t) = self.hot.dual_kink(view, kink)?;
-                (t, self.cold.dual_at(view, &turn(&y))?.t)
+                (t, self.cold.temperature_at(view, &turn(&y))?)
             }
             Origin::Cold(i) => {
                 let kink = self.cold.kinks.get(i).ok_or(BEYOND)?;
                 let (y, t) = self.cold.dual_kink(view, kink)?;
-                (self.hot.dual_at(view, &turn(&y))?.t, t)
+                (self.hot.temperature_at(view, &turn(&y))?, t)
             }
             // Between kinks the difference is stationary, at the ends the place is fixed.
             Origin::End | Origin::Free => {
                 let x = Dual::constant(place.x);
-                (self.hot.dual_at(view, &turn(&x))?.t, self.cold.dual_at(view, &x)?.t)
+                (self.hot.temperature_at(view, &turn(&x))?, self.cold.temperature_at(view, &x)?)
             }
         };
         Ok(hot.minus(&cold))
@@ -236,7 +236,7 @@ impl Pair<'_> {
     fn section(&self, from: f64, to: f64) -> Result<(Dual, f64), Blocked> {
         let weight = self.cold.duty.value / self.hot.duty.value;
         let weight = if (weight - 1.0).abs() <= super::BALANCED { 1.0 } else { weight };
-        let at = |p: &Passage, y: f64| Ok::<Dual, Blocked>(p.dual_at(self.view, &Dual::constant(y))?.s);
+        let at = |p: &Passage, y: f64| p.entropy_at(self.view, y);
         let (y0, y1) = (self.turned(from), self.turned(to));
         let hot = at(self.hot, y0.max(y1))?.minus(&at(self.hot, y0.min(y1))?);
         let cold = at(self.cold, to)?.minus(&at(self.cold, from)?);

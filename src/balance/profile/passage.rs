@@ -8,15 +8,6 @@ use crate::process::{FlowId, FluidId};
 pub(super) const BEYOND: Blocked =
     Blocked::Missing("a property formulation that covers every state inside the exchanger");
 
-/// Temperature and entropy rate with their gradients.
-#[derive(Clone, Debug)]
-pub(super) struct Spot {
-    /// K.
-    pub t: Dual,
-    /// What the whole stream carries, W/K or J/K, on a datum of its own.
-    pub s: Dual,
-}
-
 /// A place at which the temperature has a kink: saturated liquid or saturated vapour.
 #[derive(Clone, Debug)]
 pub(super) struct Kink {
@@ -266,33 +257,49 @@ impl Passage {
         phases.contains(&Phase::Supercritical)
     }
 
-    /// Temperature and entropy with gradients at a share `y` that itself depends on the inputs.
+    /// Temperature (K) with its gradient at a share `y` that itself depends on the inputs.
     ///
     /// # Errors
     /// A state outside the formulation's range.
-    pub fn dual_at(&self, view: View<'_>, y: &Dual) -> Result<Spot, Blocked> {
+    pub fn temperature_at(&self, view: View<'_>, y: &Dual) -> Result<Dual, Blocked> {
         match &self.way {
-            Way::Body { inlet, outlet } => {
-                let span = outlet.clone().minus(inlet);
-                let t = inlet.clone().plus(&y.times(&span));
-                let mut s = self.body_entropy(y.value);
-                let slope = self.duty.value / t.value;
-                s.terms.extend(y.terms.iter().map(|&(slot, d)| (slot, d * slope)));
-                Ok(Spot { t, s: s.scaled(self.sign()) })
-            }
-            Way::Material { mass, inlet, outlet, composition, .. } => {
-                if y.terms.is_empty() && (y.value <= 0.0 || y.value >= 1.0) {
-                    let end = if y.value <= 0.0 { inlet } else { outlet };
-                    return Ok(Spot { t: end.t.clone(), s: mass.times(&end.s) });
-                }
-                let p = mix(&inlet.p, &outlet.p, y);
-                let h = mix(&inlet.h, &outlet.h, y);
-                let state = self.state(view, y.value)?;
-                let jacobian = state.jacobian(Pair::PressureEnthalpy).ok_or(BEYOND)?;
-                let follow = |property| follow(&state, &jacobian, property, &p, &h, composition);
-                Ok(Spot { t: follow(Property::Temperature), s: mass.times(&follow(Property::Entropy)) })
+            Way::Body { inlet, outlet } => Ok(inlet.clone().plus(&y.times(&outlet.clone().minus(inlet)))),
+            Way::Material { .. } => self.property_at(view, y, Property::Temperature, |end| &end.t),
+        }
+    }
+
+    /// What the whole stream carries of entropy (W/K or J/K, on a datum of its own) at a share `y`
+    /// that is fixed, with its gradient.
+    ///
+    /// # Errors
+    /// A state outside the formulation's range.
+    pub fn entropy_at(&self, view: View<'_>, y: f64) -> Result<Dual, Blocked> {
+        match &self.way {
+            Way::Body { .. } => Ok(self.body_entropy(y).scaled(self.sign())),
+            Way::Material { mass, .. } => {
+                let s = self.property_at(view, &Dual::constant(y), Property::Entropy, |end| &end.s)?;
+                Ok(mass.times(&s))
             }
         }
+    }
+
+    /// A property of a material stream at a share `y` of its way; `end` has it at the ends.
+    fn property_at(
+        &self,
+        view: View<'_>,
+        y: &Dual,
+        property: Property,
+        end: fn(&End) -> &Dual,
+    ) -> Result<Dual, Blocked> {
+        let Way::Material { inlet, outlet, composition, .. } = &self.way else { return Err(BEYOND) };
+        if y.terms.is_empty() && (y.value <= 0.0 || y.value >= 1.0) {
+            return Ok(end(if y.value <= 0.0 { inlet } else { outlet }).clone());
+        }
+        let p = mix(&inlet.p, &outlet.p, y);
+        let h = mix(&inlet.h, &outlet.h, y);
+        let state = self.state(view, y.value)?;
+        let jacobian = state.jacobian(Pair::PressureEnthalpy).ok_or(BEYOND)?;
+        Ok(follow(&state, &jacobian, property, &p, &h, composition))
     }
 
     /// Where a kink lies and its temperature, with gradients.

@@ -68,9 +68,8 @@ fn fold(name: &str) -> String {
 pub fn by_name(name: &str) -> Result<&'static Arc<RealFluid>, Vec<&'static str>> {
     static BY_NAME: OnceLock<HashMap<String, &'static Arc<RealFluid>>> = OnceLock::new();
     let fluids = catalogue();
-    let by_name = BY_NAME.get_or_init(|| {
-        fluids.iter().flat_map(|f| f.names().iter().map(move |n| (fold(n), f))).collect()
-    });
+    let by_name = BY_NAME
+        .get_or_init(|| fluids.iter().flat_map(|f| f.names().iter().map(move |n| (fold(n), f))).collect());
     by_name
         .get(&fold(name))
         .copied()
