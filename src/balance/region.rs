@@ -91,7 +91,9 @@ pub type FormulationTerm = ((ComponentId, usize), f64);
 impl Balance {
     /// Inflow minus outflow, with the formulation terms as gradient entries.
     pub fn residual(&self, view: View<'_>) -> Dual {
-        let mut out = self.inflow.clone();
+        let mut out = Dual::constant(0.0);
+        out.terms.reserve(self.inflow.terms.len() + self.outflow.terms.len() + self.formulation.len());
+        out.add_scaled(1.0, &self.inflow);
         out.add_scaled(-1.0, &self.outflow);
         for (key, derivative) in &self.formulation {
             if let Some(&source) = view.model.formulation.get(key) {
@@ -99,6 +101,15 @@ impl Balance {
             }
         }
         out
+    }
+
+    /// Nothing yet, with room for what crosses a boundary.
+    fn over(region: &Region) -> Balance {
+        Balance {
+            inflow: Dual::with_room(region.inlets.len()),
+            outflow: Dual::with_room(region.outlets.len()),
+            ..Balance::default()
+        }
     }
 
     fn add(&mut self, sign: f64, figure: &Dual) {
@@ -336,7 +347,7 @@ pub fn energy(view: View<'_>, region: &Region) -> Result<Balance, Blocked> {
 fn sum_energy(view: View<'_>, region: &Region, ledger: &impl Ledger) -> Result<Balance, Blocked> {
     let process = &view.model.process;
     grounded(view, region)?;
-    let mut out = Balance::default();
+    let mut out = Balance::over(region);
     let (mut inward, mut outward) = (0.0, 0.0);
     let mut tally = |sign: f64, size: f64| if sign > 0.0 { inward += size } else { outward += size };
     for (f, _, sign) in region.crossings() {
@@ -477,7 +488,7 @@ fn sum_entropy(
 ) -> Result<Balance, Blocked> {
     let process = &view.model.process;
     grounded(view, region)?;
-    let mut out = Balance::default();
+    let mut out = Balance::over(region);
     let (mut inward, mut outward) = (0.0, 0.0);
     let mut tally = |sign: f64, size: f64| if sign > 0.0 { inward += size } else { outward += size };
     for (f, _, sign) in region.crossings() {

@@ -24,6 +24,11 @@ impl Dual {
         Dual { value, terms: SmallVec::new() }
     }
 
+    /// Zero, with room for the entries of a sum of figures of single flows.
+    pub fn with_room(flows: usize) -> Dual {
+        Dual { value: 0.0, terms: SmallVec::with_capacity(INLINE * flows) }
+    }
+
     /// A slot by itself.
     pub fn slot(slot: Slot, value: f64) -> Dual {
         let mut terms = SmallVec::new();

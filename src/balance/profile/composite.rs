@@ -196,8 +196,10 @@ impl<'p> Curve<'p> {
             let kinks = course.passage.kinks.iter().map(|k| (k.y, Some(k)));
             for (y, kink) in ends.into_iter().chain(kinks) {
                 let u = course.turned(y);
-                let level =
-                    kink.map_or_else(|| if u <= 0.5 { course.lowest() } else { course.highest() }, |k| k.t);
+                let level = kink.map_or_else(
+                    || if u <= 0.5 { course.lowest() } else { course.highest() },
+                    |k| k.temperature(),
+                );
                 if (level - t).abs() > 1e-7 {
                     continue;
                 }
@@ -207,7 +209,7 @@ impl<'p> Curve<'p> {
                     continue;
                 }
                 let (y, temperature) = match kink {
-                    Some(k) => course.passage.dual_kink(view, k)?,
+                    Some(k) => course.passage.dual_kink(k)?,
                     None => (Dual::constant(y), course.temperature(view, u)?),
                 };
                 let own = if course.passage.hot { y.map(1.0 - y.value, -1.0) } else { y };

@@ -74,11 +74,11 @@ impl Pair<'_> {
         for (i, kink) in self.hot.kinks.iter().enumerate() {
             let x = self.turned(kink.y);
             let cold = self.cold.at(self.view, x)?;
-            out.push(Place { x, hot: kink.t, cold, origin: Origin::Hot(i) });
+            out.push(Place { x, hot: kink.temperature(), cold, origin: Origin::Hot(i) });
         }
         for (i, kink) in self.cold.kinks.iter().enumerate() {
             let hot = self.hot.at(self.view, self.turned(kink.y))?;
-            out.push(Place { x: kink.y, hot, cold: kink.t, origin: Origin::Cold(i) });
+            out.push(Place { x: kink.y, hot, cold: kink.temperature(), origin: Origin::Cold(i) });
         }
         // Above the critical pressure the heat capacity may peak anywhere: look closely.
         if self.hot.is_supercritical() || self.cold.is_supercritical() {
@@ -175,12 +175,12 @@ impl Pair<'_> {
         let (hot, cold) = match place.origin {
             Origin::Hot(i) => {
                 let kink = self.hot.kinks.get(i).ok_or(BEYOND)?;
-                let (y, t) = self.hot.dual_kink(view, kink)?;
+                let (y, t) = self.hot.dual_kink(kink)?;
                 (t, self.cold.temperature_at(view, &turn(&y))?)
             }
             Origin::Cold(i) => {
                 let kink = self.cold.kinks.get(i).ok_or(BEYOND)?;
-                let (y, t) = self.cold.dual_kink(view, kink)?;
+                let (y, t) = self.cold.dual_kink(kink)?;
                 (self.hot.temperature_at(view, &turn(&y))?, t)
             }
             // Between kinks the difference is stationary, at the ends the place is fixed.

@@ -13,9 +13,15 @@ pub(super) const BEYOND: Blocked =
 pub(super) struct Kink {
     /// Share of the stream's duty passed from its inlet, 0 to 1, exclusive.
     pub y: f64,
-    /// K.
-    pub t: f64,
-    quality: f64,
+    /// The saturated state there.
+    saturated: State,
+}
+
+impl Kink {
+    /// Its temperature, K.
+    pub fn temperature(&self) -> f64 {
+        self.saturated.temperature
+    }
 }
 
 #[derive(Clone, Debug)]
@@ -196,7 +202,7 @@ impl Passage {
                 break;
             }
         }
-        (1e-12..=1.0 - 1e-12).contains(&y).then_some(Kink { y, t: found.temperature, quality })
+        (1e-12..=1.0 - 1e-12).contains(&y).then_some(Kink { y, saturated: found })
     }
 
     /// Temperature at a share `y` of the way, K.
@@ -306,18 +312,17 @@ impl Passage {
     ///
     /// # Errors
     /// A state outside the formulation's range.
-    pub fn dual_kink(&self, view: View<'_>, kink: &Kink) -> Result<(Dual, Dual), Blocked> {
-        let Way::Material { fluid, inlet, outlet, .. } = &self.way else { return Err(BEYOND) };
-        let engine = &*view.model.process.fluids[*fluid].engine;
+    pub fn dual_kink(&self, kink: &Kink) -> Result<(Dual, Dual), Blocked> {
+        let Way::Material { inlet, outlet, .. } = &self.way else { return Err(BEYOND) };
         let (dp, dh) = (outlet.p.value - inlet.p.value, outlet.h.value - inlet.h.value);
         let here = Dual::constant(kink.y);
         let p = mix(&inlet.p, &outlet.p, &here);
-        let saturated = saturation(engine, p.value, kink.quality).ok_or(BEYOND)?;
-        let rise = along(&saturated, Property::Enthalpy).ok_or(BEYOND)?;
+        let saturated = &kink.saturated;
+        let rise = along(saturated, Property::Enthalpy).ok_or(BEYOND)?;
         // h(y) = h_sat(p(y)) fixes y.
         let error = mix(&inlet.h, &outlet.h, &here).minus(&p.map(saturated.enthalpy, rise));
         let y = error.map(kink.y, -1.0 / (dh - rise * dp));
-        let slope = along(&saturated, Property::Temperature).ok_or(BEYOND)?;
+        let slope = along(saturated, Property::Temperature).ok_or(BEYOND)?;
         let t = mix(&inlet.p, &outlet.p, &y).map(saturated.temperature, slope);
         Ok((y, t))
     }
