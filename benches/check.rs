@@ -2,6 +2,8 @@
 //! memory over many checks. Prints a table; asserts nothing. Run with
 //! `cargo bench --bench check`, or a part of it with `-- evaluate`, `report`, `growth` or `memory`.
 
+#![allow(clippy::expect_used, reason = "a bench over its own data stops where they are broken")]
+
 use sigmadot::pipeline::{Bound, Cancel, Room, check_bytes, evaluate_and_decide};
 use sigmadot::process::{ReadLimits, read};
 use sigmadot::quantity::UnitSystem;
