@@ -10,6 +10,11 @@ use sigmadot::rules::names;
 use std::hint::black_box;
 use std::time::Instant;
 
+/// The allocator of the service, where it is built in.
+#[cfg(feature = "server")]
+#[global_allocator]
+static ALLOCATOR: mimalloc::MiMalloc = mimalloc::MiMalloc;
+
 const PLANT: &str = include_str!("data/gas-turbine.json");
 
 /// Best and median of repeated batches, µs a call.

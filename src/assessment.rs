@@ -6,7 +6,6 @@ use crate::evidence::{Families, Sensitivity, decide};
 use crate::model::{Blocked, Decision, Family, Margin, Model, Scope, Verdict, View};
 use crate::process::{StateForm, Var};
 use crate::rules::{self, Aspect, Authority, Explanation, Severity};
-use std::collections::HashMap;
 
 /// The verdict of a component, a group, the plant or the whole, over tests of law.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
@@ -147,11 +146,14 @@ pub struct Judgement {
     pub plant: (Overall, bool),
 }
 
-/// Collects the margins of every rule that is switched on.
+/// Collects the margins of every rule that is switched on. Advice of practice belongs to a full report
+/// only: without the exergy view the rules of practice are left out, as they decide nothing.
 pub fn margins(evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
     let disabled = &evaluation.view.model.process.policy.disable;
     for (i, rule) in rules::ALL.iter().enumerate() {
-        if !disabled.contains(&rule.info().name) {
+        let info = rule.info();
+        let advice = info.authority == Authority::Practice && evaluation.exergies.is_none();
+        if !advice && !disabled.contains(&info.name) {
             rule.margins(i, evaluation, out);
         }
     }
@@ -275,7 +277,19 @@ fn untested(evaluation: &Evaluation<'_>, margins: &[Margin], out: &mut Judgement
 /// whose primary test was not made stands for itself.
 fn primaries(margins: &[Margin], decisions: &[Option<Decision>]) -> Vec<Option<Decision>> {
     let aspect = |i: usize| rules::ALL[margins[i].rule].info().aspect;
-    let mut first: HashMap<(Scope, bool), Decision> = HashMap::new();
+    // By place: the entropy balance, and the smallest temperature difference.
+    let mut first: Vec<[Option<Decision>; 2]> = Vec::new();
+    let components = margins.iter().filter_map(|m| match m.scope {
+        Scope::Component(k) => Some(k + 1),
+        _ => None,
+    });
+    let after = components.max().unwrap_or(0);
+    let place = |scope: Scope| match scope {
+        Scope::Component(k) => Some(k),
+        Scope::Plant => Some(after),
+        Scope::Group(g) => Some(after + 1 + g),
+        Scope::Flow(_) | Scope::Description => None,
+    };
     for (i, margin) in margins.iter().enumerate() {
         // A test over nothing that flows bounds nothing.
         let idle = margin.throughput == 0.0 && decisions[i].is_some_and(|d| d.at_limit);
@@ -284,13 +298,18 @@ fn primaries(margins: &[Margin], decisions: &[Option<Decision>]) -> Vec<Option<D
             && (aspect(i) == Aspect::Interior || margin.detail == 0)
             && let Some(decision) = decisions[i]
         {
-            first.entry((margin.scope, aspect(i) == Aspect::Interior)).or_insert(decision);
+            let Some(at) = place(margin.scope) else { continue };
+            if first.len() <= at {
+                first.resize(at + 1, [None; 2]);
+            }
+            first[at][usize::from(aspect(i) == Aspect::Interior)].get_or_insert(decision);
         }
     }
     let primary = |(i, margin): (usize, &Margin)| {
         let view = margin.family == Family::None
             && (aspect(i) == Aspect::Interior || aspect(i) == Aspect::Entropy && margin.detail == 0);
-        view.then(|| first.get(&(margin.scope, aspect(i) == Aspect::Interior)).copied()).flatten()
+        let at = place(margin.scope).filter(|_| view)?;
+        first.get(at)?[usize::from(aspect(i) == Aspect::Interior)]
     };
     margins.iter().enumerate().map(primary).collect()
 }

@@ -61,11 +61,11 @@ fn unseen_stream(evaluation: &Evaluation<'_>, k: ComponentId) -> Result<(Option<
     let process = &view.model.process;
     let mut sum: Option<Dual> = None;
     for (i, side) in process.components[k].sides.iter().enumerate() {
-        let balance = region::set_mass(view, k, i)?;
-        let gap = balance.residual(view);
-        if gap.value.abs() <= CLOSED * balance.throughput {
+        let (inward, outward) = region::set_mass_values(view, k, i)?;
+        if (inward - outward).abs() <= CLOSED * inward.abs().max(outward.abs()) {
             continue;
         }
+        let gap = region::set_mass(view, k, i)?.residual(view);
         let mut extreme: Option<Dual> = None;
         for &f in side.inlets.iter().chain(&side.outlets) {
             let Some(m) = process.flows[f].material() else { continue };

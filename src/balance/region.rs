@@ -193,6 +193,32 @@ fn set_masses<'a>(
     flows.chain(contents)
 }
 
+/// Mass into and out of one set of a component, by value alone.
+///
+/// # Errors
+/// `Blocked`.
+pub fn set_mass_values(view: View<'_>, k: ComponentId, side: usize) -> Result<(f64, f64), Blocked> {
+    let process = &view.model.process;
+    let component = &process.components[k];
+    let side = &component.sides[side];
+    let mut sums = [0.0; 2];
+    for (flows, sum) in [&side.inlets, &side.outlets].into_iter().zip(&mut sums) {
+        for &f in flows {
+            if let Some(m) = process.flows[f].material() {
+                *sum += view.mass_value(m.state, m.amount, m.form)?;
+            }
+        }
+    }
+    if let Some(holdup) = &component.holdup {
+        for (contents, sum) in [&holdup.initial, &holdup.r#final].into_iter().zip(&mut sums) {
+            for c in contents.iter().filter(|c| side.contents.contains(&c.state)) {
+                *sum += view.mass_value(c.state, c.amount, c.form)?;
+            }
+        }
+    }
+    Ok((sums[0], sums[1]))
+}
+
 /// What a flow carries of energy on the datum of the balances, W or J.
 ///
 /// # Errors
