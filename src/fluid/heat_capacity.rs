@@ -265,7 +265,16 @@ impl Curve {
     /// Σ wᵢ·curveᵢ over the range that all share; `None` where there is none, or the sum has no
     /// positive heat capacity.
     pub fn weighted(parts: &[(&Curve, f64)]) -> Option<Curve> {
-        Curve::checked_sum(parts).and_then(|(t_min, segments)| Curve::checked(t_min, segments))
+        let (t_min, segments) = Curve::checked_sum(parts)?;
+        if !parts.iter().all(|(_, weight)| *weight > 0.0 && weight.is_finite()) {
+            return Curve::checked(t_min, segments);
+        }
+        // Sums of positive heat capacities are positive, and no lower than the sum of the lowest.
+        let t_max = segments.last()?.t_max;
+        let lowest_cp = parts.iter().map(|(curve, weight)| weight * curve.lowest_cp).sum();
+        let mut curve = Curve { t_min, t_max, lowest_cp, ends: (Caloric::ZERO, Caloric::ZERO), segments };
+        curve.ends = (curve.at(t_min), curve.at(t_max));
+        Some(curve)
     }
 
     fn checked_sum(parts: &[(&Curve, f64)]) -> Option<(f64, Vec<Segment>)> {
