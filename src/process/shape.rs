@@ -33,6 +33,11 @@ pub static DESCRIPTION: ObjectShape = ObjectShape {
         optional("fluids", FLUIDS, "Own fluids by name."),
         optional("groups", GROUPS, "Unions of components that get balances of their own."),
         optional("calibrations", CALIBRATIONS, "Errors common to the members of a calibration group."),
+        optional(
+            "economics",
+            Shape::Object(&ECONOMICS),
+            "Prices and costs; taken for later use, and listed as not used by a check.",
+        ),
         required("components", COMPONENTS, "Components by name."),
         required("flows", FLOWS, "Flows by name."),
     ]],
@@ -51,6 +56,26 @@ pub static STATE_QUESTION: ObjectShape = ObjectShape {
         STATE_FIELDS,
     ],
 };
+
+static ECONOMICS: ObjectShape = ObjectShape {
+    name: "Economics",
+    doc: "Prices and costs. A check computes none yet and says so.",
+    fields: &[&[
+        optional("currency", Shape::Text, "Three-letter code."),
+        optional("annual_hours", Shape::Number, "Hours of operation a year."),
+        optional("prices", PRICED, "Prices of fuels and products, by flow."),
+        optional("capital", PRICED, "Cost of capital and maintenance, by component."),
+        optional("loss_rule", Shape::Choice(LOSS_RULES), "Who bears the cost of a loss."),
+        optional("emissions", PRICED, "Specific emissions, by flow."),
+    ]],
+};
+
+const PRICED: Shape = Shape::Map { key: Key::Name("flow or component"), value: &Shape::Any };
+
+const LOSS_RULES: &[(&str, &str)] = &[
+    ("fuel_rule", "A loss leaves at the unit cost of the fuel it comes from."),
+    ("zero_value", "A loss is worth nothing; the product bears its cost."),
+];
 
 const BASES: &[(&str, &str)] = &[("rate", "Steady flow: kg/s and kW."), ("amount", "A batch: kg and kJ.")];
 

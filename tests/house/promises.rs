@@ -172,10 +172,35 @@ fn faults_of_form_do_not_hide_references_to_nothing() {
 }
 
 #[test]
-fn what_is_not_used_is_not_taken() {
+fn what_is_not_used_is_said_to_be_unused() {
     let mut description = engine();
-    description["economics"] = json!({"currency": "EUR"});
+    description["economics"] = json!({});
+    let silent = check(&description);
+    description["economics"] = json!({"currency": "EUR", "annual_hours": 8000});
+    let report = check(&description);
+    let said =
+        |report: &Report| report.assumptions.iter().any(|a| a.statement.contains("no costs are computed"));
+    assert!(said(&report) && !said(&silent));
+    description["economics"] = json!({"curency": "EUR"});
     assert_eq!(faults(&description)[0].0, Code::UnknownField);
+}
+
+/// Every member that a description may have, most of them empty.
+#[test]
+fn a_description_with_every_member_is_taken() {
+    let report = check(&json!({
+        "name": "Harbour laundry, steam let-down",
+        "basis": "rate",
+        "environment": {"temperature": "10 degC", "pressure": "1.013 bar", "relative_humidity": 0.70,
+                        "barometric_pressure": "1.008 bar", "chemistry": "szargut-1986"},
+        "policy": {}, "fluids": {}, "groups": {}, "calibrations": {}, "economics": {},
+        "components": {"letdown": {"kind": "valve"}},
+        "flows": {
+            "upstream": {"kind": "material", "to": "letdown", "fluid": "water", "pressure": "40 bar", "temperature": "400 degC", "mass_flow": "2 kg/s"},
+            "downstream": {"kind": "material", "from": "letdown", "fluid": "water", "pressure": "10 bar", "temperature": "376.5 degC", "mass_flow": "2 kg/s"}
+        }
+    }));
+    assert_eq!((report.verdict, report.data_verdict), ("holds", "consistent"));
 }
 
 #[test]

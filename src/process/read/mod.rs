@@ -234,6 +234,11 @@ impl<'t> Reader<'t> {
                 );
             }
         }
+        if let Some(node) = self.root.get("economics")
+            && node.members().len() > 0
+        {
+            self.assume(node.pointer(), "prices and costs were given, but no costs are computed");
+        }
         self.calibrations();
         self.names();
         self.links();
