@@ -78,11 +78,9 @@ impl Rule for EquilibriumOvershot {
     }
 }
 
-/// Temperature difference (K) that still counts as constant.
-const SAME: f64 = 0.5;
-/// Change of an amount, as share of all, that counts as taking part.
+/// Change of an amount, as share of all, that counts as taking part (our choice: above rounding, below any analyser).
 const TAKES_PART: f64 = 1e-6;
-/// Share of an element that the change of amounts may make or lose by rounding.
+/// Share of an element that the change of amounts may make or lose by rounding (our choice: analyses of three digits).
 const CLOSED: f64 = 1e-3;
 
 /// Affinity at the inlet and at the outlet of the one reaction that took place, J per mole.
@@ -100,7 +98,7 @@ fn affinities(view: View<'_>, component: &Component) -> Option<[Dual; 2]> {
     };
     let (before, after) = (gas(first)?, gas(last)?);
     let t = view.property(last, Property::Temperature).ok()?;
-    if (view.property(first, Property::Temperature).ok()?.value - t.value).abs() > SAME {
+    if (view.property(first, Property::Temperature).ok()?.value - t.value).abs() > physics::SAME_TEMPERATURE {
         return None;
     }
     let change = changes(before, after)?;

@@ -1,11 +1,10 @@
 //! filling-hotter-than-limit
 
-use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, measure, phrase, physics};
+use super::{Aspect, Authority, Case, Explanation, Rule, RuleInfo, Severity, hottest, measure, physics};
 use crate::balance::Evaluation;
 use crate::fluid::{Pair, Property, Substance};
-use crate::model::{Decision, Dual, Margin, Scope};
+use crate::model::{Decision, Dual, Margin};
 use crate::process::{Carried, ComponentId};
-use crate::quantity::Dimension;
 
 /// The gas in a vessel that was filled is hotter than filling without heat loss can make it.
 ///
@@ -46,35 +45,12 @@ impl Rule for FillingHotterThanLimit {
     }
 
     fn margins(&self, me: usize, evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
-        let process = &evaluation.view.model.process;
-        for (k, component) in process.components.iter().enumerate() {
-            let heated =
-                component.inlets.iter().any(|&f| matches!(process.flows[f].carried, Carried::Heat(..) | Carried::Radiation(..)));
-            if heated || physics::has_work(process, component) {
-                continue;
-            }
-            if let Some((limit, actual)) = temperatures(evaluation, k) {
-                let throughput = limit.value + actual.value;
-                out.push(measure::lower_bound(me, Scope::Component(k), limit.minus(&actual), throughput));
-            }
-        }
+        hottest::margins(me, temperatures, evaluation, out);
     }
 
     fn explain(&self, evaluation: &Evaluation<'_>, margin: &Margin, decision: &Decision) -> Explanation {
-        let Scope::Component(k) = margin.scope else { return Explanation::default() };
-        let Some((limit, actual)) = temperatures(evaluation, k) else { return Explanation::default() };
-        Explanation {
-            statement: format!(
-                "The gas in {} ends at {}; filling without heat loss gives at most {}{}.",
-                phrase::subject(evaluation, margin.scope),
-                phrase::figure(actual.value, Dimension::Temperature),
-                phrase::figure(limit.value, Dimension::Temperature),
-                phrase::sureness(decision),
-            ),
-            value: Some(Figure { value: actual.value, dimension: Dimension::Temperature }),
-            limit: Some(Figure { value: limit.value, dimension: Dimension::Temperature }),
-            ..Explanation::default()
-        }
+        let words = ["The gas in", "ends at", "filling without heat loss gives at most"];
+        hottest::explain(temperatures, evaluation, margin, decision, words)
     }
 }
 
@@ -84,6 +60,11 @@ fn temperatures(evaluation: &Evaluation<'_>, k: ComponentId) -> Option<(Dual, Du
     let view = evaluation.view;
     let process = &view.model.process;
     let component = &process.components[k];
+    let heated =
+        component.inlets.iter().any(|&f| matches!(process.flows[f].carried, Carried::Heat(..) | Carried::Radiation(..)));
+    if heated || physics::has_work(process, component) {
+        return None;
+    }
     let holdup = component.holdup.as_ref()?;
     let [content] = &holdup.r#final[..] else { return None };
     let fluid = &process.fluids[process.states[content.state].fluid];

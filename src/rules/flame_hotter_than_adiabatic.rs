@@ -1,12 +1,11 @@
 //! flame-hotter-than-adiabatic
 
-use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, measure, phrase, physics};
+use super::{Aspect, Authority, Case, Explanation, Rule, RuleInfo, Severity, hottest, measure, physics};
 use crate::balance::Evaluation;
 use crate::fluid::{Pair, Property};
-use crate::model::{Decision, Dual, Margin, Scope};
+use crate::model::{Decision, Dual, Margin};
 use crate::process::ComponentId;
 use crate::process::kinds::Kind;
-use crate::quantity::Dimension;
 
 /// A flame is hotter than its fuel and oxidant can make it.
 ///
@@ -50,33 +49,12 @@ impl Rule for FlameHotterThanAdiabatic {
     }
 
     fn margins(&self, me: usize, evaluation: &Evaluation<'_>, out: &mut Vec<Margin>) {
-        let process = &evaluation.view.model.process;
-        for (k, component) in process.components.iter().enumerate() {
-            if component.kind != Kind::Combustor || physics::has_work(process, component) {
-                continue;
-            }
-            if let Some((limit, actual)) = temperatures(evaluation, k) {
-                let throughput = limit.value + actual.value;
-                out.push(measure::lower_bound(me, Scope::Component(k), limit.minus(&actual), throughput));
-            }
-        }
+        hottest::margins(me, temperatures, evaluation, out);
     }
 
     fn explain(&self, evaluation: &Evaluation<'_>, margin: &Margin, decision: &Decision) -> Explanation {
-        let Scope::Component(k) = margin.scope else { return Explanation::default() };
-        let Some((limit, actual)) = temperatures(evaluation, k) else { return Explanation::default() };
-        Explanation {
-            statement: format!(
-                "The gas from {} is at {}; complete combustion without loss gives {}{}.",
-                phrase::subject(evaluation, margin.scope),
-                phrase::figure(actual.value, Dimension::Temperature),
-                phrase::figure(limit.value, Dimension::Temperature),
-                phrase::sureness(decision),
-            ),
-            value: Some(Figure { value: actual.value, dimension: Dimension::Temperature }),
-            limit: Some(Figure { value: limit.value, dimension: Dimension::Temperature }),
-            ..Explanation::default()
-        }
+        let words = ["The gas from", "is at", "complete combustion without loss gives"];
+        hottest::explain(temperatures, evaluation, margin, decision, words)
     }
 }
 
@@ -85,8 +63,12 @@ impl Rule for FlameHotterThanAdiabatic {
 fn temperatures(evaluation: &Evaluation<'_>, k: ComponentId) -> Option<(Dual, Dual)> {
     let view = evaluation.view;
     let process = &view.model.process;
+    let component = &process.components[k];
+    if component.kind != Kind::Combustor || physics::has_work(process, component) {
+        return None;
+    }
     let (surplus, throughput) = physics::energy_surplus(evaluation, k)?;
-    let outlet = physics::only_outlet(process, &process.components[k])?;
+    let outlet = physics::only_outlet(process, component)?;
     let state = process.flows[outlet].material()?.state;
     let mass = view.mass(outlet).ok()?;
     if mass.value <= 0.0 {

@@ -6,6 +6,7 @@
 //! the list below.
 
 mod carnot;
+mod hottest;
 mod interior;
 mod machine;
 mod measure;

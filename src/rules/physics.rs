@@ -6,6 +6,10 @@ use crate::model::{Dual, View};
 use crate::process::kinds::Kind;
 use crate::process::{Carried, Component, ComponentId, FlowId, Process, StateForm, StateId};
 
+/// Largest difference of temperature along a reactor that still counts as constant, K (our choice:
+/// about what two good thermometers may differ by).
+pub(super) const SAME_TEMPERATURE: f64 = 0.5;
+
 /// A function by its value and its partial derivatives with respect to figures.
 pub(super) fn combine(value: f64, parts: &[(&Dual, f64)]) -> Dual {
     let mut out = Dual::constant(value);

@@ -1,6 +1,6 @@
 //! reaction-against-affinity
 
-use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, measure, phrase};
+use super::{Aspect, Authority, Case, Explanation, Figure, Rule, RuleInfo, Severity, measure, phrase, physics};
 use crate::balance::Evaluation;
 use crate::fluid::Property;
 use crate::model::{Decision, Dual, Margin, Scope, View};
@@ -73,8 +73,8 @@ impl Rule for ReactionAgainstAffinity {
     }
 }
 
-/// Largest differences of temperature (K) and pressure (share) that still count as constant.
-const SAME: (f64, f64) = (0.5, 0.01);
+/// Largest difference of pressure (share) that still counts as constant (our choice).
+const SAME_PRESSURE: f64 = 0.01;
 
 /// The fall of Gibbs energy and the work put in, W or J, with its throughput, where all streams of
 /// a reactor have one temperature and pressure.
@@ -94,7 +94,7 @@ fn fall(evaluation: &Evaluation<'_>, k: ComponentId) -> Option<(Dual, f64)> {
         for &f in flows.iter().filter(|&&f| process.flows[f].material().is_some()) {
             let (t, p) = conditions(view, f)?;
             let (t0, p0) = *first.get_or_insert((t.value, p));
-            if (t.value - t0).abs() > SAME.0 || (p / p0 - 1.0).abs() > SAME.1 {
+            if (t.value - t0).abs() > physics::SAME_TEMPERATURE || (p / p0 - 1.0).abs() > SAME_PRESSURE {
                 return None;
             }
             let m = process.flows[f].material()?;
