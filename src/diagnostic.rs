@@ -139,6 +139,10 @@ impl std::error::Error for Diagnostic {}
 /// Appends one reference token to a JSON Pointer, escaped as RFC 6901 asks.
 pub fn push_token(pointer: &mut String, token: &str) {
     pointer.push('/');
+    if !token.bytes().any(|b| matches!(b, b'~' | b'/')) {
+        pointer.push_str(token);
+        return;
+    }
     for c in token.chars() {
         match c {
             '~' => pointer.push_str("~0"),

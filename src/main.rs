@@ -4,8 +4,10 @@ use std::ffi::OsString;
 use std::fs::File;
 use std::io::{self, Read, Write};
 use std::net::{Ipv4Addr, SocketAddr};
+use std::num::NonZero;
 use std::process::ExitCode;
 use std::sync::Arc;
+use std::thread;
 use std::time::Duration;
 
 use axum::body::Body;
@@ -28,6 +30,8 @@ static ALLOCATOR: mimalloc::MiMalloc = mimalloc::MiMalloc;
 
 /// Where the service listens unless told otherwise.
 const ADDRESS: SocketAddr = SocketAddr::new(std::net::IpAddr::V4(Ipv4Addr::LOCALHOST), 8298);
+/// One thread of the network keeps about this many cores of workers busy.
+const CORES_A_NETWORK_THREAD: usize = 8;
 /// How long the demonstration waits for its answer.
 const DEMO_TIME: Duration = Duration::from_secs(30);
 /// How long a health check waits for its answer.
@@ -184,7 +188,7 @@ fn serve(flags: Serve) -> io::Result<ExitCode> {
         log: Log::to(io::stdout())?,
     };
     let log = settings.log.clone();
-    let runtime = Runtime::new()?;
+    let runtime = network()?;
     runtime.block_on(async {
         let bound = bind(settings, Arc::new(Core)).await?;
         bound.serve(stop_signal()?).await;
@@ -194,6 +198,16 @@ fn serve(flags: Serve) -> io::Result<ExitCode> {
     runtime.shutdown_background();
     log.close();
     Ok(ExitCode::SUCCESS)
+}
+
+/// The threads that talk to the network. What they do for a call is a small part of what the workers
+/// do for it, and a thread more is one more to wake for it.
+fn network() -> io::Result<Runtime> {
+    let cores = thread::available_parallelism().map_or(1, NonZero::get);
+    tokio::runtime::Builder::new_multi_thread()
+        .worker_threads(cores.div_ceil(CORES_A_NETWORK_THREAD))
+        .enable_all()
+        .build()
 }
 
 /// Ready at the first SIGTERM or SIGINT.

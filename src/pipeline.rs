@@ -1,6 +1,6 @@
 //! The one place that composes the phases.
 
-use crate::assessment::{Exergies, Judgement, judge, margins};
+use crate::assessment::{Exergies, Judgement, explain, judge, margins};
 use crate::balance::{Equations, Evaluation};
 use crate::diagnostic::Diagnostic;
 use crate::document::{canonical, sha256_hex};
@@ -93,7 +93,8 @@ impl Bound {
     }
 }
 
-/// Evaluates and decides: the hot path of repeated checks of one process.
+/// Evaluates and decides: the hot path of repeated checks of one process. What is found is put into
+/// words only for a report.
 pub fn evaluate_and_decide(bound: &Bound, inputs: &Inputs, room: &mut Room) -> Judgement {
     room.workspace.bind(&bound.model, inputs);
     bound.plan.execute(&bound.model, &bound.equations, &mut room.workspace);
@@ -131,9 +132,10 @@ pub fn check_bytes(
     margins(&evaluation, &mut all);
     cancel.check()?;
     let judgement = judge(&evaluation, &all, &mut room.sensitivity);
+    let findings = explain(&evaluation, &all, &judgement);
     cancel.check()?;
     let hash = sha256_hex(canonical(std::str::from_utf8(body).unwrap_or_default()).as_bytes());
-    Ok(Report::assemble(&evaluation, &judgement, &exergies, &mut room.sensitivity, units, hash))
+    Ok(Report::assemble(&evaluation, (&judgement, &findings), &exergies, &mut room.sensitivity, units, hash))
 }
 
 /// From the bytes of a question to one state.

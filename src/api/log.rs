@@ -2,15 +2,20 @@
 //! reader who stops reading never stops the service. Bodies and query values are never logged.
 
 use std::io::{self, Write};
+use std::iter;
 use std::sync::Arc;
 use std::sync::atomic::{AtomicU64, Ordering};
 use std::sync::mpsc::{Receiver, SyncSender, sync_channel};
+use std::thread;
 use std::time::{Duration, SystemTime, UNIX_EPOCH};
 
 use serde_json::{Map, Value};
 
 /// Lines that may wait for the writer; beyond it they are dropped and counted.
 const WAITING: usize = 4096;
+/// How long the writer lets further lines gather after it has written: a wake-up for each line
+/// would cost more than the line.
+const GATHERING: Duration = Duration::from_millis(20);
 
 /// A handle on the log; cheap to clone.
 #[derive(Clone)]
@@ -40,7 +45,7 @@ impl Log {
         let (lines, waiting) = sync_channel(WAITING);
         let dropped = Arc::new(AtomicU64::new(0));
         let counter = Arc::clone(&dropped);
-        std::thread::Builder::new().name("log".into()).spawn(move || write(&waiting, sink, &counter))?;
+        thread::Builder::new().name("log".into()).spawn(move || write(&waiting, sink, &counter))?;
         Ok(Log { lines: Some(lines), dropped })
     }
 
@@ -72,14 +77,12 @@ fn write(waiting: &Receiver<Line>, sink: impl Write, dropped: &AtomicU64) {
     let mut sink = io::BufWriter::new(sink);
     while let Ok(first) = waiting.recv() {
         let mut flushed = Vec::new();
-        let mut next = Some(first);
-        while let Some(line) = next {
+        for line in iter::once(first).chain(waiting.try_iter()) {
             match line {
                 // A log that cannot be written is no reason to stop serving.
                 Line::Text(text) => drop(writeln!(sink, "{text}")),
                 Line::Flush(done) => flushed.push(done),
             }
-            next = waiting.try_recv().ok();
         }
         let lost = dropped.swap(0, Ordering::Relaxed);
         if lost > 0 {
@@ -90,6 +93,7 @@ fn write(waiting: &Receiver<Line>, sink: impl Write, dropped: &AtomicU64) {
             // Whoever asked may have stopped waiting.
             let _ = done.send(());
         }
+        thread::sleep(GATHERING);
     }
 }
 

@@ -66,7 +66,7 @@ pub fn of(evaluation: &Evaluation<'_>, k: ComponentId) -> Option<Causes> {
     if component.holdup.is_some() {
         return None;
     }
-    let (sigma, _) = evaluation.components.get(k)?.generation(view).ok()?;
+    let (sigma, _) = evaluation.components.get(k)?.generation().ok()?;
     let exchanger = component.kind.is_exchanger();
     let mut causes = match component.kind.info().purpose {
         _ if exchanger || matches!(component.kind, Kind::Valve | Kind::Pipe) => {
@@ -127,7 +127,7 @@ fn moved(
     let jacobian = at.jacobian(pair).ok_or(Blocked::Missing("a state on the way"))?;
     let row = jacobian[property as usize];
     let mut out = a.map(at.get(property), row[0]);
-    out.terms.extend(b.terms.iter().map(|&(slot, d)| (slot, d * row[1])));
+    out.follow(row[1], b);
     Ok(out)
 }
 

@@ -241,9 +241,9 @@ impl Rows for Equations {
                 let surplus = &process.states[s].surplus[i];
                 Ok(view.property(s, surplus.property)?.minus(&view.var(surplus.var)?))
             }
-            Row::Mass(k, i) => Ok(region::set_mass(view, k, i)?.residual(view)),
-            Row::Element(k, i, element) => Ok(region::element(view, k, i, element as usize)?.residual(view)),
-            Row::Energy(k) => Ok(region::energy(view, &self.components[k])?.residual(view)),
+            Row::Mass(k, i) => Ok(region::set_mass(view, k, i)?.into_residual()),
+            Row::Element(k, i, element) => Ok(region::element(view, k, i, element as usize)?.into_residual()),
+            Row::Energy(k) => Ok(region::energy(view, &self.components[k])?.into_residual()),
         }
     }
 }
@@ -332,7 +332,7 @@ pub fn isentropic_enthalpy(view: View<'_>, before: FlowId, after: FlowId) -> Res
         .map_err(|_| Blocked::State(second.state))?;
     // dh = v dp + T ds.
     let mut h = p.map(end.enthalpy, end.volume);
-    h.terms.extend(s.terms.iter().map(|&(slot, d)| (slot, d * end.temperature)));
+    h.follow(end.temperature, &s);
     Ok(h)
 }
 

@@ -1,6 +1,6 @@
 //! One evaluation of a process: solved unknowns and the balances that rules and report share.
 
-use super::{Balance, Bracket, Equations, Exergies, Profile, Region, region::Shares};
+use super::{Balance, Bracket, Equations, Exergies, Profile, Region, leniency, region::Shares};
 use crate::model::{Blocked, Dual, Plan, Scope, View};
 use crate::process::ComponentId;
 use std::cell::OnceCell;
@@ -24,18 +24,17 @@ impl RegionBalances {
     ///
     /// # Errors
     /// What blocks it.
-    pub fn generation(&self, view: View<'_>) -> Result<(Dual, f64), Blocked> {
+    pub fn generation(&self) -> Result<(Dual, f64), Blocked> {
         let balance = self.entropy.as_ref().map_err(Clone::clone)?;
-        Ok((balance.residual(view).scaled(-1.0), balance.throughput))
+        Ok((balance.generation(), balance.throughput))
     }
 
     /// Energy residual (in − out) with its gradient, and the energy throughput.
     ///
     /// # Errors
     /// What blocks it.
-    pub fn energy_residual(&self, view: View<'_>) -> Result<(Dual, f64), Blocked> {
-        let balance = self.energy.as_ref().map_err(Clone::clone)?;
-        Ok((balance.residual(view), balance.throughput))
+    pub fn energy_residual(&self) -> Result<(&Dual, f64), &Blocked> {
+        self.energy.as_ref().map(|balance| (balance.residual(), balance.throughput))
     }
 }
 
@@ -58,6 +57,8 @@ pub struct Evaluation<'a> {
     pub exergy_mismatch: Option<Vec<(Scope, f64, f64)>>,
     /// Interiors of exchangers, computed when first asked for; empty where there are none.
     profiles: Vec<OnceCell<Result<Option<Profile>, Blocked>>>,
+    /// What open balances may hide, one entry a component, computed when first asked for.
+    unseen: Vec<OnceCell<Result<Option<Dual>, Blocked>>>,
     /// The exergy view, once it is derived.
     pub exergies: Option<Rc<Exergies>>,
 }
@@ -75,6 +76,7 @@ impl<'a> Evaluation<'a> {
             plant: RegionBalances::of(&shares, &equations.plant),
             exergy_mismatch: None,
             exergies: None,
+            unseen: vec![OnceCell::new(); equations.components.len()],
             profiles: if view.model.process.components.iter().any(|c| c.kind.is_exchanger()) {
                 vec![OnceCell::new(); equations.components.len()]
             } else {
@@ -92,6 +94,14 @@ impl<'a> Evaluation<'a> {
             Some(cell) => cell.get_or_init(|| Profile::of(self.view, k)).as_ref().map(Option::as_ref),
             None => Ok(None),
         }
+    }
+
+    /// What the open balances of a component may hide of entropy generation; see [`leniency::of`].
+    ///
+    /// # Errors
+    /// What blocks it.
+    pub(super) fn unseen(&self, k: ComponentId) -> Result<Option<&Dual>, &Blocked> {
+        self.unseen[k].get_or_init(|| leniency::of_component(self, k)).as_ref().map(Option::as_ref)
     }
 
     /// Whether a row was spent on an unknown, so that it has no power as a test.

@@ -330,7 +330,7 @@ pub fn balance(
 ) -> Result<ExergyBalance, Blocked> {
     let view = evaluation.view;
     let process = &view.model.process;
-    let (sigma, _) = balances.generation(view)?;
+    let (sigma, _) = balances.generation()?;
     let mut out = ExergyBalance { destruction: sigma.scaled(surroundings.t0), ..ExergyBalance::default() };
     let mut unbalanced = 0.0;
     let add = |out: &mut ExergyBalance, sign: f64, e: &Dual| {
@@ -365,7 +365,7 @@ pub fn balance(
             Carried::Heat(..) | Carried::Work(..) => {}
         }
     }
-    for (c, _, sign) in region.contents(process) {
+    for (c, sign) in region.contents(process) {
         let x = surroundings.content(view, c)?;
         add(&mut out, sign, &x);
         let mass = view.mass_of(c.state, c.amount, c.form)?.value;
@@ -382,7 +382,7 @@ pub fn balance(
             unbalanced += work.value - useful.value;
         }
     }
-    let energy = balances.energy_residual(view)?.0.value;
+    let energy = balances.energy_residual().map_err(Clone::clone)?.0.value;
     out.mismatch = out.inflow.value - out.outflow.value - energy - out.destruction.value - unbalanced;
     Ok(out)
 }

@@ -25,17 +25,27 @@ const OPEN: f64 = 1e-3;
 pub fn of(evaluation: &Evaluation<'_>, members: &[ComponentId]) -> Result<Option<Dual>, Blocked> {
     let mut sum: Option<Dual> = None;
     for &k in members {
-        runs_as_declared(evaluation, k)?;
-        let (stream, closes) = unseen_stream(evaluation, k)?;
-        let heat = if closes { unseen_heat(evaluation, k)? } else { None };
-        for part in [stream, heat].into_iter().flatten() {
+        if let Some(part) = evaluation.unseen(k).map_err(Clone::clone)? {
             sum = Some(match sum {
-                Some(sum) => sum.plus(&part),
-                None => part,
+                Some(sum) => sum.plus(part),
+                None => part.clone(),
             });
         }
     }
     Ok(sum)
+}
+
+/// The part of one component.
+///
+/// # Errors
+/// See [`of`].
+pub(super) fn of_component(evaluation: &Evaluation<'_>, k: ComponentId) -> Result<Option<Dual>, Blocked> {
+    runs_as_declared(evaluation, k)?;
+    // Heat is looked for only where the masses close.
+    match unseen_stream(evaluation, k)? {
+        Some(stream) => Ok(Some(stream)),
+        None => unseen_heat(evaluation, k),
+    }
 }
 
 fn runs_as_declared(evaluation: &Evaluation<'_>, k: ComponentId) -> Result<(), Blocked> {
@@ -55,8 +65,8 @@ fn runs_as_declared(evaluation: &Evaluation<'_>, k: ComponentId) -> Result<(), B
 }
 
 /// The entropy of the stream that would close the mass of each set: what is missing leaves at the
-/// highest entropy of the set, what is too much came in at the lowest. And whether all close.
-fn unseen_stream(evaluation: &Evaluation<'_>, k: ComponentId) -> Result<(Option<Dual>, bool), Blocked> {
+/// highest entropy of the set, what is too much came in at the lowest. `None` where all close.
+fn unseen_stream(evaluation: &Evaluation<'_>, k: ComponentId) -> Result<Option<Dual>, Blocked> {
     let view = evaluation.view;
     let process = &view.model.process;
     let mut sum: Option<Dual> = None;
@@ -65,7 +75,7 @@ fn unseen_stream(evaluation: &Evaluation<'_>, k: ComponentId) -> Result<(Option<
         if (inward - outward).abs() <= CLOSED * inward.abs().max(outward.abs()) {
             continue;
         }
-        let gap = region::set_mass(view, k, i)?.residual(view);
+        let gap = region::set_mass(view, k, i)?.into_residual();
         let mut extreme: Option<Dual> = None;
         for &f in side.inlets.iter().chain(&side.outlets) {
             let Some(m) = process.flows[f].material() else { continue };
@@ -87,8 +97,7 @@ fn unseen_stream(evaluation: &Evaluation<'_>, k: ComponentId) -> Result<(Option<
             });
         }
     }
-    let closes = sum.is_none();
-    Ok((sum, closes))
+    Ok(sum)
 }
 
 /// The entropy of the heat that would close the energy balance of a component which was only assumed
@@ -101,7 +110,7 @@ fn unseen_heat(evaluation: &Evaluation<'_>, k: ComponentId) -> Result<Option<Dua
     if component.given.heat_loss || component.inlets.iter().chain(&component.outlets).any(heats) {
         return Ok(None);
     }
-    let Ok((open, throughput)) = evaluation.components[k].energy_residual(view) else { return Ok(None) };
+    let Ok((open, throughput)) = evaluation.components[k].energy_residual() else { return Ok(None) };
     let tolerance = match process.policy.literals {
         Literals::Design => process.policy.closure_tolerance.max(OPEN),
         Literals::Measured => OPEN,
@@ -121,5 +130,5 @@ fn unseen_heat(evaluation: &Evaluation<'_>, k: ComponentId) -> Result<Option<Dua
     if let Some(hottest) = hottest {
         coldest = coldest.min(hottest);
     }
-    Ok(Some(open.scaled(1.0 / coldest)))
+    Ok(Some(open.clone().scaled(1.0 / coldest)))
 }

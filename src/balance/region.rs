@@ -2,7 +2,7 @@
 
 use crate::fluid::{Property, Substance};
 use crate::model::{Blocked, Dual, View, dual::log_mean};
-use crate::process::{Boundary, Carried, ComponentId, Content, FlowId, Process, StateId, VarId};
+use crate::process::{Boundary, Carried, ComponentId, Content, FlowId, Holdup, Process, StateId, VarId};
 use smallvec::SmallVec;
 use std::borrow::Cow;
 
@@ -57,71 +57,131 @@ impl Region {
         inward.chain(outward)
     }
 
-    /// Contents before (+1, as if they entered) and after (−1) a batch.
-    pub fn contents<'a>(
+    /// Contents before a batch, which count as entering, or after it, which count as leaving.
+    fn held<'a>(
         &'a self,
         process: &'a Process,
-    ) -> impl Iterator<Item = (&'a Content, ComponentId, f64)> + 'a {
-        self.members.iter().flat_map(move |&k| {
-            let holdup = process.components[k].holdup.as_ref();
-            let before = holdup.into_iter().flat_map(|h| &h.initial).map(move |c| (c, k, 1.0));
-            let after = holdup.into_iter().flat_map(|h| &h.r#final).map(move |c| (c, k, -1.0));
-            before.chain(after)
-        })
+        of: fn(&Holdup) -> &Vec<Content>,
+    ) -> impl Iterator<Item = &'a Content> + 'a {
+        let holdups = self.members.iter().filter_map(|&k| process.components[k].holdup.as_ref());
+        holdups.flat_map(of)
     }
+
+    /// Contents before (+1, as if they entered) and after (−1) a batch.
+    pub fn contents<'a>(&'a self, process: &'a Process) -> impl Iterator<Item = (&'a Content, f64)> + 'a {
+        let before = self.held(process, |h| &h.initial).map(|c| (c, 1.0));
+        let after = self.held(process, |h| &h.r#final).map(|c| (c, -1.0));
+        before.chain(after)
+    }
+
+    /// What crosses the boundary and what it holds, everything that enters (+1) first and then what
+    /// leaves (−1).
+    fn items<'a>(&'a self, process: &'a Process) -> impl Iterator<Item = (Item<'a>, f64)> + 'a {
+        let inward = self.inlets.iter().map(|&(f, _)| (Item::Flow(f), 1.0));
+        let before = self.held(process, |h| &h.initial).map(|c| (Item::Content(c), 1.0));
+        let outward = self.outlets.iter().map(|&(f, _)| (Item::Flow(f), -1.0));
+        let after = self.held(process, |h| &h.r#final).map(|c| (Item::Content(c), -1.0));
+        inward.chain(before).chain(outward).chain(after)
+    }
+}
+
+/// One thing that a balance counts.
+enum Item<'a> {
+    Flow(FlowId),
+    Content(&'a Content),
 }
 
 /// In, out and difference of one conserved quantity over a region.
 #[derive(Clone, Debug, Default)]
 pub struct Balance {
+    /// Inflow minus outflow; its gradient has the entries of the inflow first, then those of the
+    /// outflow, then those of the property formulations.
+    residual: Dual,
+    /// How many of the entries are of the inflow, and how many of either.
+    entries: (usize, usize),
     /// What enters (content before a batch included).
-    pub inflow: Dual,
+    pub inflow: f64,
     /// What leaves (content after a batch included).
-    pub outflow: Dual,
+    pub outflow: f64,
     /// Sum of magnitudes relative to the reference state: the scale of closure.
     pub throughput: f64,
-    /// Uncertainty of the property formulations.
-    pub formulation: Vec<FormulationTerm>,
 }
 
 /// What one relative error of a property formulation adds: its component and fluid, and the
 /// derivative.
 pub type FormulationTerm = ((ComponentId, usize), f64);
 
+/// The same for several quantities at once.
+type FormulationTerms<const N: usize> = SmallVec<[((ComponentId, usize), [f64; N]); 4]>;
+
 impl Balance {
-    /// Inflow minus outflow, with the formulation terms as gradient entries.
-    pub fn residual(&self, view: View<'_>) -> Dual {
-        let mut out = Dual::constant(0.0);
-        out.terms.reserve(self.inflow.terms.len() + self.outflow.terms.len() + self.formulation.len());
-        out.add_scaled(1.0, &self.inflow);
-        out.add_scaled(-1.0, &self.outflow);
-        for (key, derivative) in &self.formulation {
-            if let Some(&source) = view.model.formulation.get(key) {
-                out.terms.push((view.model.source_slot(source), *derivative));
-            }
-        }
-        out
+    /// Inflow minus outflow, with the uncertainty of the property formulations.
+    pub fn residual(&self) -> &Dual {
+        &self.residual
+    }
+
+    /// See [`Balance::residual`].
+    pub fn into_residual(self) -> Dual {
+        self.residual
+    }
+
+    /// Outflow minus inflow, with the uncertainty of the property formulations.
+    pub fn generation(&self) -> Dual {
+        self.residual.map(-self.residual.value, -1.0)
+    }
+
+    /// The inflow with its gradient.
+    pub fn inflow_form(&self) -> Dual {
+        let terms = self.residual.terms[..self.entries.0].iter().copied();
+        Dual { value: self.inflow, terms: terms.collect() }
+    }
+
+    /// The outflow with its gradient.
+    pub fn outflow_form(&self) -> Dual {
+        let terms = self.residual.terms[self.entries.0..self.entries.1].iter().map(|&(s, d)| (s, -d));
+        Dual { value: self.outflow, terms: terms.collect() }
     }
 
     /// Nothing yet, with room for what crosses a boundary.
     fn over(region: &Region) -> Balance {
-        Balance {
-            inflow: Dual::with_room(region.inlets.len()),
-            outflow: Dual::with_room(region.outlets.len()),
-            ..Balance::default()
-        }
+        let room = region.inlets.len() + region.outlets.len() + region.members.len();
+        Balance { residual: Dual::with_room(room), ..Balance::default() }
     }
 
+    /// Counts what enters (+1) or leaves (−1), in this order.
     fn add(&mut self, sign: f64, figure: &Dual) {
+        self.residual.add_scaled(sign, figure);
+        let end = self.residual.terms.len();
         if sign > 0.0 {
-            self.inflow.add_scaled(1.0, figure);
+            self.inflow += figure.value;
+            self.entries = (end, end);
         } else {
-            self.outflow.add_scaled(1.0, figure);
+            self.outflow += figure.value;
+            self.entries.1 = end;
         }
     }
 
-    fn close(&mut self, inward: f64, outward: f64) {
-        self.throughput = inward.max(outward);
+    /// The sums are added up apart, so that equal sums leave no rounding.
+    fn close(
+        mut self,
+        view: View<'_>,
+        throughput: f64,
+        formulation: impl Iterator<Item = FormulationTerm>,
+    ) -> Balance {
+        self.residual.value = self.inflow - self.outflow;
+        self.throughput = throughput;
+        for (key, derivative) in formulation {
+            if let Some(&source) = view.model.formulation.get(&key) {
+                self.residual.terms.push((view.model.source_slot(source), derivative));
+            }
+        }
+        self
+    }
+
+    /// Without property formulations, and with its own sums as scale.
+    fn close_plain(self, view: View<'_>) -> Balance {
+        let throughput = self.inflow.abs().max(self.outflow.abs());
+        self.close(view, throughput, std::iter::empty())
     }
 }
 
@@ -131,18 +191,15 @@ impl Balance {
 /// The first thing that blocks it.
 pub fn mass(view: View<'_>, region: &Region) -> Result<Balance, Blocked> {
     let process = &view.model.process;
-    let mut out = Balance::default();
-    for (f, _, sign) in region.crossings() {
-        if process.flows[f].material().is_some() {
-            out.add(sign, &view.mass(f)?);
+    let mut out = Balance::over(region);
+    for (item, sign) in region.items(process) {
+        match item {
+            Item::Flow(f) if process.flows[f].material().is_none() => {}
+            Item::Flow(f) => out.add(sign, &view.mass(f)?),
+            Item::Content(c) => out.add(sign, &view.mass_of(c.state, c.amount, c.form)?),
         }
     }
-    for (c, _, sign) in region.contents(process) {
-        out.add(sign, &view.mass_of(c.state, c.amount, c.form)?);
-    }
-    let (i, o) = (out.inflow.value.abs(), out.outflow.value.abs());
-    out.close(i, o);
-    Ok(out)
+    Ok(out.close_plain(view))
 }
 
 /// Blocked where a member turns a substance without formation data into another one.
@@ -155,42 +212,38 @@ fn grounded(view: View<'_>, region: &Region) -> Result<(), Blocked> {
     Ok(())
 }
 
+/// What the flows and contents of one set of a component carry of a quantity that `of` finds from a
+/// state and its mass.
+fn set_balance(
+    view: View<'_>,
+    k: ComponentId,
+    side: usize,
+    of: impl Fn(StateId, Dual) -> Result<Dual, Blocked>,
+) -> Result<Balance, Blocked> {
+    let process = &view.model.process;
+    let component = &process.components[k];
+    let side = &component.sides[side];
+    let holdup = component.holdup.as_ref();
+    let mut out = Balance::default();
+    for (flows, contents, sign) in
+        [(&side.inlets, holdup.map(|h| &h.initial), 1.0), (&side.outlets, holdup.map(|h| &h.r#final), -1.0)]
+    {
+        for m in flows.iter().filter_map(|&f| process.flows[f].material()) {
+            out.add(sign, &of(m.state, view.mass_of(m.state, m.amount, m.form)?)?);
+        }
+        for c in contents.into_iter().flatten().filter(|c| side.contents.contains(&c.state)) {
+            out.add(sign, &of(c.state, view.mass_of(c.state, c.amount, c.form)?)?);
+        }
+    }
+    Ok(out.close_plain(view))
+}
+
 /// Mass of one set of a component, kg/s or kg: its flows and contents.
 ///
 /// # Errors
 /// The first thing that blocks it.
 pub fn set_mass(view: View<'_>, k: ComponentId, side: usize) -> Result<Balance, Blocked> {
-    let mut out = Balance::default();
-    for (_, mass, sign) in set_masses(view, k, side) {
-        out.add(sign, &mass?);
-    }
-    let (i, o) = (out.inflow.value.abs(), out.outflow.value.abs());
-    out.close(i, o);
-    Ok(out)
-}
-
-/// State, mass and sign of everything that enters (+1, contents before a batch included) or
-/// leaves (−1) one set of a component.
-fn set_masses<'a>(
-    view: View<'a>,
-    k: ComponentId,
-    side: usize,
-) -> impl Iterator<Item = (StateId, Result<Dual, Blocked>, f64)> + 'a {
-    let process = &view.model.process;
-    let component = &process.components[k];
-    let side = &component.sides[side];
-    let inward = side.inlets.iter().map(|&f| (f, 1.0));
-    let outward = side.outlets.iter().map(|&f| (f, -1.0));
-    let flows = inward
-        .chain(outward)
-        .filter_map(move |(f, sign)| process.flows[f].material().map(|m| (m.state, view.mass(f), sign)));
-    let before = component.holdup.iter().flat_map(|h| &h.initial).map(|c| (c, 1.0));
-    let after = component.holdup.iter().flat_map(|h| &h.r#final).map(|c| (c, -1.0));
-    let contents = before
-        .chain(after)
-        .filter(move |(c, _)| side.contents.contains(&c.state))
-        .map(move |(c, sign)| (c.state, view.mass_of(c.state, c.amount, c.form), sign));
-    flows.chain(contents)
+    set_balance(view, k, side, |_, mass| Ok(mass))
 }
 
 /// Mass into and out of one set of a component, by value alone.
@@ -258,14 +311,17 @@ pub type Share = (Dual, f64);
 /// formulations leave uncertain in each component.
 trait Ledger {
     fn flow(&self, f: FlowId) -> Result<Cow<'_, Share>, Blocked>;
-    fn formulation(&self, k: ComponentId) -> Cow<'_, [FormulationTerm]>;
+    fn formulation(&self, k: ComponentId) -> impl Iterator<Item = FormulationTerm>;
 }
+
+/// How far a figure of a state is from the reference state.
+type Relative = fn(View<'_>, StateId) -> Result<f64, Blocked>;
 
 /// Energy or entropy, found where it is asked for.
 struct Direct<'a> {
     view: View<'a>,
     share: fn(View<'_>, FlowId) -> Result<Share, Blocked>,
-    relative: fn(View<'_>, StateId) -> Result<f64, Blocked>,
+    relative: Relative,
 }
 
 impl Ledger for Direct<'_> {
@@ -273,46 +329,32 @@ impl Ledger for Direct<'_> {
         (self.share)(self.view, f).map(Cow::Owned)
     }
 
-    fn formulation(&self, k: ComponentId) -> Cow<'_, [FormulationTerm]> {
-        Cow::Owned(formulation_terms(self.view, k, self.relative))
+    fn formulation(&self, k: ComponentId) -> impl Iterator<Item = FormulationTerm> {
+        formulation_terms(self.view, k, [self.relative]).into_iter().map(|(key, [d])| (key, d))
     }
 }
 
-/// Energy or entropy of every flow and component, found once: each flow bounds several regions.
-struct Table {
-    flows: Vec<Result<Share, Blocked>>,
-    formulations: Vec<Vec<FormulationTerm>>,
+/// Energy and entropy of every flow and component, found once: each flow bounds several regions.
+pub struct Shares<'a> {
+    view: View<'a>,
+    flows: Vec<[Result<Share, Blocked>; 2]>,
+    formulations: Vec<FormulationTerms<2>>,
 }
 
-impl Table {
-    fn of(direct: &Direct<'_>) -> Table {
-        let Direct { view, share, relative } = *direct;
-        let process = &view.model.process;
-        Table {
-            flows: (0..process.flows.len()).map(|f| share(view, f)).collect(),
-            formulations: (0..process.components.len())
-                .map(|k| formulation_terms(view, k, relative))
-                .collect(),
-        }
-    }
+/// One of the quantities of [`Shares`].
+struct Column<'a> {
+    shares: &'a Shares<'a>,
+    column: usize,
 }
 
-impl Ledger for Table {
+impl Ledger for Column<'_> {
     fn flow(&self, f: FlowId) -> Result<Cow<'_, Share>, Blocked> {
-        self.flows[f].as_ref().map(Cow::Borrowed).map_err(Clone::clone)
+        self.shares.flows[f][self.column].as_ref().map(Cow::Borrowed).map_err(Clone::clone)
     }
 
-    fn formulation(&self, k: ComponentId) -> Cow<'_, [FormulationTerm]> {
-        Cow::Borrowed(&self.formulations[k])
+    fn formulation(&self, k: ComponentId) -> impl Iterator<Item = FormulationTerm> {
+        self.shares.formulations[k].iter().map(|(key, d)| (*key, d[self.column]))
     }
-}
-
-const fn energy_ledger(view: View<'_>) -> Direct<'_> {
-    Direct { view, share: energy_share, relative: relative_enthalpy }
-}
-
-const fn entropy_ledger(view: View<'_>) -> Direct<'_> {
-    Direct { view, share: entropy_share, relative: relative_entropy }
 }
 
 fn energy_share(view: View<'_>, f: FlowId) -> Result<Share, Blocked> {
@@ -332,17 +374,19 @@ fn entropy_share(view: View<'_>, f: FlowId) -> Result<Share, Blocked> {
     Ok((entropy, (mass.value * relative_entropy(view, m.state)?).abs()))
 }
 
-/// Energy and entropy of every flow and component, for the balances of many regions.
-pub struct Shares<'a> {
-    view: View<'a>,
-    energy: Table,
-    entropy: Table,
-}
-
 impl<'a> Shares<'a> {
     /// Finds what every flow carries.
     pub fn new(view: View<'a>) -> Shares<'a> {
-        Shares { view, energy: Table::of(&energy_ledger(view)), entropy: Table::of(&entropy_ledger(view)) }
+        let process = &view.model.process;
+        Shares {
+            view,
+            flows: (0..process.flows.len())
+                .map(|f| [energy_share(view, f), entropy_share(view, f)])
+                .collect(),
+            formulations: (0..process.components.len())
+                .map(|k| formulation_terms(view, k, [relative_enthalpy, relative_entropy]))
+                .collect(),
+        }
     }
 
     /// See [`energy`].
@@ -350,7 +394,7 @@ impl<'a> Shares<'a> {
     /// # Errors
     /// The first thing that blocks it.
     pub fn energy(&self, region: &Region) -> Result<Balance, Blocked> {
-        sum_energy(self.view, region, &self.energy)
+        sum_energy(self.view, region, &Column { shares: self, column: 0 })
     }
 
     /// See [`entropy`].
@@ -358,7 +402,7 @@ impl<'a> Shares<'a> {
     /// # Errors
     /// The first thing that blocks it.
     pub fn entropy(&self, region: &Region, bracket: Bracket) -> Result<Balance, Blocked> {
-        sum_entropy(self.view, region, bracket, &self.entropy)
+        sum_entropy(self.view, region, bracket, &Column { shares: self, column: 1 })
     }
 }
 
@@ -367,37 +411,57 @@ impl<'a> Shares<'a> {
 /// # Errors
 /// The first thing that blocks it.
 pub fn energy(view: View<'_>, region: &Region) -> Result<Balance, Blocked> {
-    sum_energy(view, region, &energy_ledger(view))
+    sum_energy(view, region, &Direct { view, share: energy_share, relative: relative_enthalpy })
 }
 
 fn sum_energy(view: View<'_>, region: &Region, ledger: &impl Ledger) -> Result<Balance, Blocked> {
     let process = &view.model.process;
     grounded(view, region)?;
     let mut out = Balance::over(region);
-    let (mut inward, mut outward) = (0.0, 0.0);
-    let mut tally = |sign: f64, size: f64| if sign > 0.0 { inward += size } else { outward += size };
-    for (f, _, sign) in region.crossings() {
-        let share = ledger.flow(f)?;
-        out.add(sign, &share.0);
-        tally(sign, share.1);
-    }
-    for (c, _, sign) in region.contents(process) {
-        let mass = view.mass_of(c.state, c.amount, c.form)?;
-        out.add(sign, &mass.times(&view.internal_energy(c.state)?));
-        let relative = relative_enthalpy(view, c.state)?;
-        tally(sign, (mass.value * relative).abs());
-    }
-    for &k in &region.members {
-        out.formulation.extend_from_slice(&ledger.formulation(k));
+    let mut size = Size::default();
+    for (item, sign) in region.items(process) {
+        match item {
+            Item::Flow(f) => {
+                let share = ledger.flow(f)?;
+                out.add(sign, &share.0);
+                size.add(sign, share.1);
+            }
+            Item::Content(c) => {
+                let mass = view.mass_of(c.state, c.amount, c.form)?;
+                out.add(sign, &mass.times(&view.internal_energy(c.state)?));
+                size.add(sign, (mass.value * relative_enthalpy(view, c.state)?).abs());
+            }
+        }
     }
     for &k in &region.members {
         if let Some(work) = boundary_work(view, k)? {
-            tally(-1.0, work.value.abs());
+            size.add(-1.0, work.value.abs());
             out.add(-1.0, &work);
         }
     }
-    out.close(inward, outward);
-    Ok(out)
+    let formulation = region.members.iter().flat_map(|&k| ledger.formulation(k));
+    Ok(out.close(view, size.throughput(), formulation))
+}
+
+/// Magnitudes in and out.
+#[derive(Default)]
+struct Size {
+    inward: f64,
+    outward: f64,
+}
+
+impl Size {
+    fn add(&mut self, sign: f64, size: f64) {
+        if sign > 0.0 {
+            self.inward += size;
+        } else {
+            self.outward += size;
+        }
+    }
+
+    fn throughput(&self) -> f64 {
+        self.inward.max(self.outward)
+    }
 }
 
 /// Work p_b (V₂ − V₁) that the contents of a component do at their moving boundary, J; `None`
@@ -503,7 +567,7 @@ pub const RADIATION_ENTROPY: f64 = 4.0 / 3.0;
 /// # Errors
 /// The first thing that blocks it.
 pub fn entropy(view: View<'_>, region: &Region, bracket: Bracket) -> Result<Balance, Blocked> {
-    sum_entropy(view, region, bracket, &entropy_ledger(view))
+    sum_entropy(view, region, bracket, &Direct { view, share: entropy_share, relative: relative_entropy })
 }
 
 fn sum_entropy(
@@ -515,40 +579,36 @@ fn sum_entropy(
     let process = &view.model.process;
     grounded(view, region)?;
     let mut out = Balance::over(region);
-    let (mut inward, mut outward) = (0.0, 0.0);
-    let mut tally = |sign: f64, size: f64| if sign > 0.0 { inward += size } else { outward += size };
-    for (f, _, sign) in region.crossings() {
-        match &process.flows[f].carried {
+    let mut size = Size::default();
+    for (item, sign) in region.items(process) {
+        let f = match item {
+            Item::Flow(f) => f,
+            Item::Content(c) => {
+                let mass = view.mass_of(c.state, c.amount, c.form)?;
+                out.add(sign, &mass.times(&view.entropy(c.state)?));
+                size.add(sign, (mass.value * relative_entropy(view, c.state)?).abs());
+                continue;
+            }
+        };
+        let carried = match &process.flows[f].carried {
             Carried::Material(_) => {
                 let share = ledger.flow(f)?;
                 out.add(sign, &share.0);
-                tally(sign, share.1);
+                size.add(sign, share.1);
+                continue;
             }
-            Carried::Heat(q, boundary) => {
-                let s = heat_entropy(view, *q, *boundary, sign, bracket, &region.members)?;
-                tally(sign, s.value.abs());
-                out.add(sign, &s);
-            }
+            Carried::Heat(q, boundary) => heat_entropy(view, *q, *boundary, sign, bracket, &region.members)?,
             Carried::Radiation(q, t) => {
-                let s = view.var(*q)?.times(&view.var(*t)?.reciprocal()).scaled(RADIATION_ENTROPY);
-                tally(sign, s.value.abs());
-                out.add(sign, &s);
+                view.var(*q)?.times(&view.var(*t)?.reciprocal()).scaled(RADIATION_ENTROPY)
             }
-            Carried::Work(..) => {}
-        }
+            Carried::Work(..) => continue,
+        };
+        size.add(sign, carried.value.abs());
+        out.add(sign, &carried);
     }
-    for (c, _, sign) in region.contents(process) {
-        let mass = view.mass_of(c.state, c.amount, c.form)?;
-        out.add(sign, &mass.times(&view.entropy(c.state)?));
-        let relative = relative_entropy(view, c.state)?;
-        tally(sign, (mass.value * relative).abs());
-    }
-    for &k in &region.members {
-        out.formulation.extend_from_slice(&ledger.formulation(k));
-    }
-    add_fuel_entropies(view, region, &mut out);
-    out.close(inward, outward);
-    Ok(out)
+    let formulation = region.members.iter().flat_map(|&k| ledger.formulation(k));
+    let fuels = region.members.iter().flat_map(|&k| fuel_terms(view, k));
+    Ok(out.close(view, size.throughput(), formulation.chain(fuels)))
 }
 
 /// What the property formulations leave uncertain at the flows of a component. The terms of a union
@@ -556,29 +616,33 @@ fn sum_entropy(
 ///
 /// One relative error is common to all states of a fluid in a component, the largest of theirs, so
 /// that it cancels for equal states.
-fn formulation_terms(
+fn formulation_terms<const N: usize>(
     view: View<'_>,
     k: ComponentId,
-    relative: fn(View<'_>, StateId) -> Result<f64, Blocked>,
-) -> Vec<FormulationTerm> {
+    relative: [Relative; N],
+) -> FormulationTerms<N> {
     let process = &view.model.process;
     let component = &process.components[k];
-    let mut out: Vec<FormulationTerm> = Vec::new();
+    let mut out = FormulationTerms::new();
     let mut largest: SmallVec<[f64; 4]> = SmallVec::new();
     let mut add = |state: usize, mass: Result<f64, Blocked>, sign: f64| {
-        let (Ok(mass), Ok(figure)) = (mass, relative(view, state)) else { return };
+        let Ok(mass) = mass else { return };
+        let mut figures = [0.0; N];
+        for (figure, relative) in figures.iter_mut().zip(relative) {
+            let Ok(found) = relative(view, state) else { return };
+            *figure = found;
+        }
         let key = (k, process.states[state].fluid);
         let u = formulation_uncertainty(view, state);
-        match out.iter().position(|(other, _)| *other == key) {
-            Some(at) => {
-                out[at].1 += sign * mass * figure;
-                largest[at] = largest[at].max(u);
-            }
-            None => {
-                out.push((key, sign * mass * figure));
-                largest.push(u);
-            }
+        let at = out.iter().position(|(other, _)| *other == key).unwrap_or_else(|| {
+            out.push((key, [0.0; N]));
+            largest.push(u);
+            out.len() - 1
+        });
+        for (sum, figure) in out[at].1.iter_mut().zip(figures) {
+            *sum += sign * mass * figure;
         }
+        largest[at] = largest[at].max(u);
     };
     for (flows, sign) in [(&component.inlets, 1.0), (&component.outlets, -1.0)] {
         for &f in flows {
@@ -594,29 +658,25 @@ fn formulation_terms(
             }
         }
     }
-    for ((_, derivative), u) in out.iter_mut().zip(&largest) {
-        *derivative *= u;
+    for ((_, derivatives), u) in out.iter_mut().zip(&largest) {
+        derivatives.iter_mut().for_each(|d| *d *= u);
     }
     out
 }
 
-/// Adds what the correlations of chemical exergy leave uncertain in the entropy of fuels.
-fn add_fuel_entropies(view: View<'_>, region: &Region, out: &mut Balance) {
+/// What the correlations of chemical exergy leave uncertain in the entropy of fuels.
+fn fuel_terms(view: View<'_>, k: ComponentId) -> impl Iterator<Item = FormulationTerm> + '_ {
     let process = &view.model.process;
-    for &k in &region.members {
-        let component = &process.components[k];
-        for (flows, sign) in [(&component.inlets, 1.0), (&component.outlets, -1.0)] {
-            for &f in flows {
-                let Some(m) = process.flows[f].material() else { continue };
-                let fluid = process.states[m.state].fluid;
-                if let Substance::Fuel(fuel) = &process.fluids[fluid].substance
-                    && let Ok(mass) = view.mass(f)
-                {
-                    out.formulation.push(((k, fluid), sign * mass.value * fuel.entropy_uncertainty()));
-                }
-            }
-        }
-    }
+    let component = &process.components[k];
+    let flows = [(&component.inlets, 1.0), (&component.outlets, -1.0)];
+    flows.into_iter().flat_map(|(flows, sign)| flows.iter().map(move |&f| (f, sign))).filter_map(
+        move |(f, sign)| {
+            let fluid = process.states[process.flows[f].material()?.state].fluid;
+            let Substance::Fuel(fuel) = &process.fluids[fluid].substance else { return None };
+            let mass = view.mass(f).ok()?;
+            Some(((k, fluid), sign * mass.value * fuel.entropy_uncertainty()))
+        },
+    )
 }
 
 fn relative_entropy(view: View<'_>, state: usize) -> Result<f64, Blocked> {
@@ -638,22 +698,17 @@ pub fn has_open_boundary(process: &Process, region: &Region) -> bool {
 /// `Blocked`; `Missing` where a fluid's make-up is not known.
 pub fn element(view: View<'_>, k: ComponentId, side: usize, index: usize) -> Result<Balance, Blocked> {
     let process = &view.model.process;
-    let mut out = Balance::default();
-    for (state, mass, sign) in set_masses(view, k, side) {
+    set_balance(view, k, side, |state, mass| {
         let fluid = process.states[state].fluid;
         let scale = &view.model.scales[fluid];
         let missing = Blocked::Missing("the elements that the fluid consists of");
-        let moles = if scale.variable {
+        if scale.variable {
             let c = view.composition(state)?;
             let (elements, slopes) = process.fluids[fluid].engine.elements(c.value).ok_or(missing)?;
-            mass?.times(&c.map(elements[index], slopes[index]))
+            Ok(mass.times(&c.map(elements[index], slopes[index])))
         } else {
             let elements = scale.elements.as_ref().ok_or(missing)?;
-            mass?.scaled(elements[index])
-        };
-        out.add(sign, &moles);
-    }
-    let (i, o) = (out.inflow.value.abs(), out.outflow.value.abs());
-    out.close(i, o);
-    Ok(out)
+            Ok(mass.scaled(elements[index]))
+        }
+    })
 }

@@ -14,36 +14,66 @@ struct StepGradient {
     inverse: Vec<f64>,
 }
 
+/// Where the derivative with respect to a slot goes.
+#[derive(Clone, Copy, Debug)]
+struct Route {
+    /// The one source that the slot depends on, or one of the words below.
+    to: u32,
+    /// The derivative of the slot with respect to that source.
+    weight: f64,
+}
+
+impl Route {
+    /// To no source or to several, as the affine form of the variable has it.
+    const SPREAD: u32 = u32::MAX;
+    /// To the rows of the step that solved for the variable.
+    const SOLVED: u32 = u32::MAX - 1;
+}
+
 /// Gradients of the solved steps and room to propagate through them.
 #[derive(Debug, Default)]
 pub struct Sensitivity {
     steps: Vec<Option<StepGradient>>,
     step_of: Vec<Option<usize>>,
-    by_slot: Vec<f64>,
-    touched: Vec<usize>,
+    /// One a slot.
+    routes: Vec<Route>,
+    /// Derivatives with respect to the variables of steps.
+    by_variable: Vec<f64>,
+    by_source: Vec<f64>,
+    touched: Vec<SourceId>,
     queue: BinaryHeap<usize>,
     queued: Vec<bool>,
-    variables: usize,
 }
 
 impl Sensitivity {
     /// Takes the gradients of every solved step at the current values.
     pub fn take(&mut self, view: View<'_>, rows: &impl Rows, plan: &Plan) {
         let process = &view.model.process;
-        self.variables = process.vars.len();
-        self.by_slot.clear();
-        self.by_slot.resize(self.variables + process.sources.len(), 0.0);
+        self.by_variable.clear();
+        self.by_variable.resize(process.vars.len(), 0.0);
+        self.by_source.clear();
+        self.by_source.resize(process.sources.len(), 0.0);
         self.touched.clear();
-        self.step_of.clear();
-        self.step_of.resize(self.variables, None);
+        self.routes.clear();
+        self.routes.extend(process.vars.iter().map(|var| match var {
+            Var::Given(affine) if affine.terms.len() == 1 => {
+                let (source, weight) = affine.terms[0];
+                Route { to: source as u32, weight }
+            }
+            _ => Route { to: Route::SPREAD, weight: 0.0 },
+        }));
+        self.routes.extend((0..process.sources.len()).map(|s| Route { to: s as u32, weight: 1.0 }));
         self.queue.clear();
         self.queued.clear();
         self.queued.resize(plan.steps.len(), false);
         self.steps.clear();
+        self.step_of.clear();
+        self.step_of.resize(process.vars.len(), None);
         for (i, step) in plan.steps.iter().enumerate() {
             let gradient = step_gradient(view, rows, step);
             if gradient.is_some() {
                 for &v in &step.unknowns {
+                    self.routes[v].to = Route::SOLVED;
                     self.step_of[v] = Some(i);
                 }
             }
@@ -51,24 +81,43 @@ impl Sensitivity {
         }
     }
 
-    fn add(&mut self, slot: usize, value: f64) {
-        if self.by_slot[slot] == 0.0 {
-            self.touched.push(slot);
+    #[inline]
+    fn add(&mut self, model: &Model, slot: Slot, d: f64) {
+        let route = self.routes[slot as usize];
+        if route.to < Route::SOLVED {
+            self.add_source(route.to as usize, d * route.weight);
+        } else {
+            self.add_apart(model, slot as usize, d);
         }
-        self.by_slot[slot] += value;
-        if slot < self.variables
-            && let Some(step) = self.step_of[slot]
-            && !self.queued[step]
-        {
-            self.queued[step] = true;
-            self.queue.push(step);
+    }
+
+    fn add_apart(&mut self, model: &Model, slot: usize, d: f64) {
+        if let Some(step) = self.step_of[slot] {
+            self.by_variable[slot] += d;
+            if !self.queued[step] {
+                self.queued[step] = true;
+                self.queue.push(step);
+            }
+        } else if let Var::Given(affine) = &model.process.vars[slot] {
+            for &(source, weight) in &affine.terms {
+                self.add_source(source, d * weight);
+            }
         }
+    }
+
+    #[inline]
+    fn add_source(&mut self, source: SourceId, d: f64) {
+        let sum = &mut self.by_source[source];
+        if *sum == 0.0 {
+            self.touched.push(source);
+        }
+        *sum += d;
     }
 
     /// The gradient of a figure over sources: calls `each` once for every source it depends on.
     pub fn over_sources(&mut self, model: &Model, form: &Dual, mut each: impl FnMut(SourceId, f64)) {
         for &(slot, d) in &form.terms {
-            self.add(slot as usize, d);
+            self.add(model, slot, d);
         }
         // Later steps depend on earlier ones only, so the largest index comes first.
         while let Some(i) = self.queue.pop() {
@@ -77,46 +126,25 @@ impl Sensitivity {
             let n = step.unknowns.len();
             for r in 0..n {
                 let weight: f64 =
-                    (0..n).map(|j| self.by_slot[step.unknowns[j]] * step.inverse[j * n + r]).sum();
+                    (0..n).map(|j| self.by_variable[step.unknowns[j]] * step.inverse[j * n + r]).sum();
                 if weight != 0.0 {
                     for &(slot, d) in &step.rows[r].terms {
                         if !step.unknowns.contains(&(slot as usize)) {
-                            self.add(slot as usize, -weight * d);
+                            self.add(model, slot, -weight * d);
                         }
                     }
                 }
             }
             for &v in &step.unknowns {
-                self.by_slot[v] = 0.0;
+                self.by_variable[v] = 0.0;
             }
             self.steps[i] = Some(step);
         }
-        // Variables to sources; a slot may have been touched more than once.
-        let mut i = 0;
-        while i < self.touched.len() {
-            let slot = self.touched[i];
-            i += 1;
-            if slot >= self.variables {
-                continue;
-            }
-            let d = std::mem::take(&mut self.by_slot[slot]);
-            if d != 0.0
-                && let Var::Given(affine) = &model.process.vars[slot]
-            {
-                for &(source, weight) in &affine.terms {
-                    let at = self.variables + source;
-                    if self.by_slot[at] == 0.0 {
-                        self.touched.push(at);
-                    }
-                    self.by_slot[at] += d * weight;
-                }
-            }
-        }
-        for i in 0..self.touched.len() {
-            let slot = self.touched[i];
-            let d = std::mem::take(&mut self.by_slot[slot]);
-            if slot >= self.variables && d != 0.0 {
-                each(slot - self.variables, d);
+        for &source in &self.touched {
+            // A source whose sum passed through zero was touched twice.
+            let d = std::mem::take(&mut self.by_source[source]);
+            if d != 0.0 {
+                each(source, d);
             }
         }
         self.touched.clear();

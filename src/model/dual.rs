@@ -36,10 +36,15 @@ impl Dual {
         Dual { value, terms }
     }
 
+    /// Adds the gradient of another figure, multiplied by a factor, but not its value: the chain rule.
+    pub fn follow(&mut self, factor: f64, other: &Dual) {
+        self.terms.extend(other.terms.iter().map(|&(s, d)| (s, factor * d)));
+    }
+
     /// Adds `factor · other`.
     pub fn add_scaled(&mut self, factor: f64, other: &Dual) {
         self.value += factor * other.value;
-        self.terms.extend(other.terms.iter().map(|&(s, d)| (s, factor * d)));
+        self.follow(factor, other);
     }
 
     /// `self · factor`.
@@ -70,8 +75,8 @@ impl Dual {
     #[must_use]
     pub fn times(&self, other: &Dual) -> Dual {
         let mut out = Dual::constant(self.value * other.value);
-        out.terms.extend(self.terms.iter().map(|&(s, d)| (s, d * other.value)));
-        out.terms.extend(other.terms.iter().map(|&(s, d)| (s, d * self.value)));
+        out.follow(other.value, self);
+        out.follow(self.value, other);
         out
     }
 
@@ -79,7 +84,7 @@ impl Dual {
     #[must_use]
     pub fn map(&self, value: f64, derivative: f64) -> Dual {
         let mut out = Dual::constant(value);
-        out.terms.extend(self.terms.iter().map(|&(s, d)| (s, d * derivative)));
+        out.follow(derivative, self);
         out
     }
 
@@ -106,8 +111,8 @@ pub fn log_mean(a: &Dual, b: &Dual) -> Dual {
         (value, (value / x - 1.0) / l, (1.0 - value / y) / l)
     };
     let mut out = Dual::constant(value);
-    out.terms.extend(a.terms.iter().map(|&(s, g)| (s, g * da)));
-    out.terms.extend(b.terms.iter().map(|&(s, g)| (s, g * db)));
+    out.follow(da, a);
+    out.follow(db, b);
     out
 }
 

@@ -118,9 +118,12 @@ impl Workspace {
     /// # Errors
     /// `Blocked` with the unknown variable, or with the state whose property engine refused.
     pub fn state(&self, model: &Model, id: StateId) -> Result<&StateValue, Blocked> {
-        let spec = &model.process.states[id];
-        if let Some(unknown) = spec.vars().find(|&v| !self.known[v]) {
-            return Err(Blocked::Unknown(unknown));
+        // What is in the cell was computed from figures that are still known: forgetting one empties it.
+        if self.states[id].get().is_none() {
+            let spec = &model.process.states[id];
+            if let Some(unknown) = spec.vars().find(|&v| !self.known[v]) {
+                return Err(Blocked::Unknown(unknown));
+            }
         }
         self.states[id].get_or_init(|| self.compute(model, id)).as_ref().map_err(|_| Blocked::State(id))
     }

@@ -1,6 +1,5 @@
 //! The units of reports.
 
-use std::collections::HashMap;
 use std::sync::OnceLock;
 
 use super::dimension::Dimension;
@@ -83,24 +82,12 @@ const fn units(dimension: Dimension) -> [&'static str; 3] {
 /// (which can be read back as input), [`Scale::from_si`] gives the figure and
 /// [`Scale::difference_from_si`] its standard uncertainty. For prices the code is what stands after the currency.
 pub fn display(dimension: Dimension, system: UnitSystem) -> Scale {
-    static SCALES: OnceLock<HashMap<(Dimension, UnitSystem), Scale>> = OnceLock::new();
+    static SCALES: OnceLock<Vec<[Scale; 3]>> = OnceLock::new();
+    // In the order of declaration.
     let scales = SCALES.get_or_init(|| {
-        let mut scales = HashMap::new();
-        for &dimension in Dimension::ALL {
-            for (&system, code) in UnitSystem::ALL.iter().zip(units(dimension)) {
-                scales.insert((dimension, system), scale(dimension, code));
-            }
-        }
-        scales
+        Dimension::ALL.iter().map(|&dimension| units(dimension).map(|code| scale(dimension, code))).collect()
     });
-    let si = Scale {
-        code: dimension.si_unit(),
-        scale: 1.0,
-        offset: 0.0,
-        reference: Reference::None,
-        currency: None,
-    };
-    scales.get(&(dimension, system)).copied().unwrap_or(si)
+    scales[dimension as usize][system as usize]
 }
 
 fn scale(dimension: Dimension, code: &'static str) -> Scale {

@@ -2,7 +2,7 @@
 
 use super::figure::{Figure, Named, plain};
 use super::*;
-use crate::assessment::{self, Exergies, Judgement, Overall};
+use crate::assessment::{self, Exergies, Findings, Judgement, Overall};
 use crate::balance::region::{self, Balance, Bracket, Region};
 use crate::balance::{Equations, Evaluation, RegionBalances, Row, exergy::ExergyBalance};
 use crate::evidence::Sensitivity;
@@ -23,7 +23,7 @@ impl Report {
     /// Draws up the report.
     pub fn assemble(
         evaluation: &Evaluation<'_>,
-        judgement: &Judgement,
+        (judgement, findings): (&Judgement, &Findings),
         exergies: &Exergies,
         sensitivity: &mut Sensitivity,
         units: UnitSystem,
@@ -65,9 +65,9 @@ impl Report {
             let flow = a.flow(f, exergies);
             flows.push(process.flows[f].name.clone(), flow);
         }
-        let violations: Vec<Finding> = judgement.violations.iter().map(|f| a.finding(f)).collect();
-        let warnings: Vec<Finding> = judgement.warnings.iter().map(|f| a.finding(f)).collect();
-        let undecided: Vec<Finding> = judgement.undecided.iter().map(|f| a.finding(f)).collect();
+        let violations: Vec<Finding> = findings.violations.iter().map(|f| a.finding(f)).collect();
+        let warnings: Vec<Finding> = findings.warnings.iter().map(|f| a.finding(f)).collect();
+        let undecided: Vec<Finding> = findings.undecided.iter().map(|f| a.finding(f)).collect();
         let c = judgement.counts;
         Report {
             name: process.name.clone(),
@@ -100,7 +100,7 @@ impl Report {
             violations,
             warnings,
             undecided,
-            unchecked: judgement
+            unchecked: findings
                 .unchecked
                 .iter()
                 .map(|u| Unchecked {
@@ -175,11 +175,11 @@ impl Assembler<'_, '_> {
     }
 
     fn balance(&mut self, balance: &Balance, dimension: Dimension) -> BalanceReport {
-        let residual = balance.residual(self.evaluation.view);
+        let residual = balance.residual();
         BalanceReport {
-            r#in: self.figure(&balance.inflow, dimension),
-            out: self.figure(&balance.outflow, dimension),
-            residual: self.figure(&residual, dimension),
+            r#in: self.figure(&balance.inflow_form(), dimension),
+            out: self.figure(&balance.outflow_form(), dimension),
+            residual: self.figure(residual, dimension),
             closure: if balance.throughput > 0.0 { plain(residual.value / balance.throughput) } else { 0.0 },
         }
     }
@@ -207,17 +207,17 @@ impl Assembler<'_, '_> {
         }
         let energy_balance = balances.energy.as_ref().ok().map(|b| self.balance(b, energy));
         let entropy_balance = balances.entropy.as_ref().ok().map(|b| {
-            let sigma = b.residual(view).scaled(-1.0);
+            let sigma = b.generation();
             let generation = self.figure(&sigma, entropy);
             let u = self.sensitivity.uncertainty(view.model, &sigma);
             let floor = u.hypot(1e-9 * b.throughput).max(f64::MIN_POSITIVE);
             let strict = region::has_open_boundary(&view.model.process, region)
                 .then(|| region::entropy(view, region, Bracket::Strict).ok())
                 .flatten();
-            let generation_strict = strict.map(|s| self.figure(&s.residual(view).scaled(-1.0), entropy));
+            let generation_strict = strict.map(|s| self.figure(&s.generation(), entropy));
             EntropyReport {
-                r#in: self.figure(&b.inflow, entropy),
-                out: self.figure(&b.outflow, entropy),
+                r#in: self.figure(&b.inflow_form(), entropy),
+                out: self.figure(&b.outflow_form(), entropy),
                 generation,
                 generation_strict,
                 z: plain((sigma.value / floor).clamp(-1e6, 1e6)),

@@ -21,16 +21,30 @@ fn significant(x: f64, digits: i32) -> f64 {
     if x == 0.0 || !x.is_finite() {
         return 0.0;
     }
-    let exponent = digits - 1 - x.abs().log10().floor() as i32;
+    let exponent = digits - 1 - order(x.abs());
     if exponent > 300 {
         return 0.0;
     }
-    if exponent >= 0 {
-        let scale = 10f64.powi(exponent);
-        (x * scale).round() / scale
-    } else {
-        let scale = 10f64.powi(-exponent);
-        (x / scale).round() * scale
+    let scale = power_of_ten(exponent.abs());
+    if exponent >= 0 { (x * scale).round() / scale } else { (x / scale).round() * scale }
+}
+
+/// The powers of ten that are exact.
+const POWERS: [f64; 23] = [
+    1e0, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15, 1e16, 1e17, 1e18,
+    1e19, 1e20, 1e21, 1e22,
+];
+
+fn power_of_ten(n: i32) -> f64 {
+    usize::try_from(n).ok().and_then(|n| POWERS.get(n)).copied().unwrap_or_else(|| 10f64.powi(n))
+}
+
+/// The decimal exponent of a positive number: 2 for 123.
+fn order(x: f64) -> i32 {
+    match POWERS.iter().position(|&power| x < power) {
+        // Below 1, or beyond the table.
+        Some(0) | None => x.log10().floor() as i32,
+        Some(n) => n as i32 - 1,
     }
 }
 

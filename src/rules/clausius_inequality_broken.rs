@@ -58,7 +58,7 @@ impl Rule for ClausiusInequalityBroken {
             if !flows.any(|&f| matches!(process.flows[f].carried, Carried::Heat(..) | Carried::Radiation(..))) {
                 continue;
             }
-            if let Ok((generation, throughput)) = evaluation.components[k].generation(evaluation.view) {
+            if let Ok((generation, throughput)) = evaluation.components[k].generation() {
                 out.push(measure::lower_bound(me, Scope::Component(k), generation, throughput));
             }
         }
@@ -68,7 +68,7 @@ impl Rule for ClausiusInequalityBroken {
         let Scope::Component(k) = margin.scope else { return Explanation::default() };
         let dimension = phrase::entropy_dimension(evaluation);
         let (inward, outward) =
-            evaluation.components[k].entropy.as_ref().map_or((0.0, 0.0), |b| (b.inflow.value, b.outflow.value));
+            evaluation.components[k].entropy.as_ref().map_or((0.0, 0.0), |b| (b.inflow, b.outflow));
         let total = -decision.value;
         Explanation {
             statement: format!(

@@ -67,17 +67,18 @@ impl Rule for ElementImbalance {
                 _ => region::set_mass(view, k, side).map_or(0.0, |mass| mass.throughput),
             };
             last = Some(((k, side), whole));
-            let trace = balance.throughput * element.molar_mass();
+            let throughput = balance.throughput;
+            let trace = throughput * element.molar_mass();
             if trace <= measure::allowance(&view.model.process, whole) {
                 continue;
             }
             out.push(Margin {
                 family: family(&INFO),
                 test: Test::Zero {
-                    allowance: measure::allowance(&view.model.process, balance.throughput),
+                    allowance: measure::allowance(&view.model.process, throughput),
                 },
                 detail: index,
-                ..measure::lower_bound(me, Scope::Component(k), balance.residual(view), balance.throughput)
+                ..measure::lower_bound(me, Scope::Component(k), balance.into_residual(), throughput)
             });
         }
     }
@@ -93,7 +94,7 @@ impl Rule for ElementImbalance {
             Basis::Rate => Dimension::MoleFlow,
             Basis::Amount => Dimension::Moles,
         };
-        let sums = (balance.inflow.value, balance.outflow.value, balance.throughput);
+        let sums = (balance.inflow, balance.outflow, balance.throughput);
         let what = format!("element {}", element.symbol());
         Explanation {
             statement: phrase::imbalance(evaluation, decision, margin.scope, &what, sums, dimension),

@@ -49,12 +49,12 @@ impl Rule for EnergyImbalance {
         let view = evaluation.view;
         for (index, row) in measure::unspent(evaluation) {
             let Row::Energy(k) = row else { continue };
-            let Ok((residual, throughput)) = evaluation.components[k].energy_residual(view) else { continue };
+            let Ok((residual, throughput)) = evaluation.components[k].energy_residual() else { continue };
             out.push(Margin {
                 family: family(&INFO),
                 test: Test::Zero { allowance: measure::allowance(&view.model.process, throughput) },
                 detail: index,
-                ..measure::lower_bound(me, Scope::Component(k), residual, throughput)
+                ..measure::lower_bound(me, Scope::Component(k), residual.clone(), throughput)
             });
         }
     }
@@ -63,7 +63,7 @@ impl Rule for EnergyImbalance {
         let Scope::Component(k) = margin.scope else { return Explanation::default() };
         let Ok(balance) = &evaluation.components[k].energy else { return Explanation::default() };
         let dimension = phrase::energy_dimension(evaluation);
-        let sums = (balance.inflow.value, balance.outflow.value, balance.throughput);
+        let sums = (balance.inflow, balance.outflow, balance.throughput);
         let mut statement =
             phrase::imbalance(evaluation, decision, margin.scope, "energy", sums, dimension);
         if on_formation_scale(evaluation, k) {

@@ -83,7 +83,7 @@ fn temperatures(evaluation: &Evaluation<'_>, k: ComponentId) -> Option<(Dual, Du
     let v = view.property(content.state, Property::Volume).ok()?;
     let actual = view.property(content.state, Property::Temperature).ok()?;
     let mut u = view.property(content.state, Property::Enthalpy).ok()?.minus(&p.times(&v));
-    u.add_scaled(1.0, &surplus.plus(&open).times(&mass.reciprocal()));
+    u.add_scaled(1.0, &open.plus(surplus).times(&mass.reciprocal()));
     // u of an ideal gas depends on T alone.
     let mut t = actual.value;
     for _ in 0..50 {

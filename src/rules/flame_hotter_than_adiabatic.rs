@@ -76,7 +76,7 @@ fn temperatures(evaluation: &Evaluation<'_>, k: ComponentId) -> Option<(Dual, Du
     }
     let open = Dual::constant(measure::allowance(process, throughput));
     let mut h = view.property(state, Property::Enthalpy).ok()?;
-    h.add_scaled(1.0, &surplus.plus(&open).times(&mass.reciprocal()));
+    h.add_scaled(1.0, &open.plus(surplus).times(&mass.reciprocal()));
     let p = view.property(state, Property::Pressure).ok()?;
     let c = match process.states[state].c {
         Some(_) => view.composition(state).ok()?,

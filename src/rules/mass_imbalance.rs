@@ -48,13 +48,14 @@ impl Rule for MassImbalance {
         for (index, row) in measure::unspent(evaluation) {
             let Row::Mass(k, side) = row else { continue };
             let Ok(balance) = region::set_mass(view, k, side) else { continue };
+            let throughput = balance.throughput;
             out.push(Margin {
                 family: family(&INFO),
                 test: Test::Zero {
-                    allowance: measure::allowance(&view.model.process, balance.throughput),
+                    allowance: measure::allowance(&view.model.process, throughput),
                 },
                 detail: index,
-                ..measure::lower_bound(me, Scope::Component(k), balance.residual(view), balance.throughput)
+                ..measure::lower_bound(me, Scope::Component(k), balance.into_residual(), throughput)
             });
         }
     }
@@ -66,10 +67,10 @@ impl Rule for MassImbalance {
         };
         let Ok(balance) = region::set_mass(view, k, side) else { return Explanation::default() };
         let dimension = phrase::mass_dimension(evaluation);
-        let sums = (balance.inflow.value, balance.outflow.value, balance.throughput);
+        let sums = (balance.inflow, balance.outflow, balance.throughput);
         let mut statement =
             phrase::imbalance(evaluation, decision, margin.scope, "mass", sums, dimension);
-        let digits = measure::rounding(&view.model.process, &balance.residual(view));
+        let digits = measure::rounding(&view.model.process, balance.residual());
         let explained = !decision.at_limit && decision.value.abs() <= digits * (1.0 + 1e-9);
         if explained {
             statement.push_str(" The printed digits of the amounts could explain it.");

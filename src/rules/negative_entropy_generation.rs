@@ -60,7 +60,7 @@ pub(super) fn generation_margin(
     balances: &RegionBalances,
     members: &[usize],
 ) -> Margin {
-    let generation = balances.generation(evaluation.view);
+    let generation = balances.generation();
     let throughput = generation.as_ref().map_or(0.0, |g| g.1);
     let form = generation.and_then(|(sigma, _)| {
         Ok(match leniency::of(evaluation, members)? {

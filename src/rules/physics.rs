@@ -14,7 +14,7 @@ pub(super) const SAME_TEMPERATURE: f64 = 0.5;
 pub(super) fn combine(value: f64, parts: &[(&Dual, f64)]) -> Dual {
     let mut out = Dual::constant(value);
     for (figure, d) in parts {
-        out.terms.extend(figure.terms.iter().map(|&(slot, g)| (slot, g * d)));
+        out.follow(*d, figure);
     }
     out
 }
@@ -42,17 +42,17 @@ pub(super) fn by_state(
 
 /// Entropy generation of a component with its gradient, W/K or J/K, and the entropy throughput.
 pub(super) fn generation(evaluation: &Evaluation<'_>, k: ComponentId) -> Option<(Dual, f64)> {
-    evaluation.components.get(k)?.generation(evaluation.view).ok()
+    evaluation.components.get(k)?.generation().ok()
 }
 
 /// Energy that enters a component beyond what leaves, with its throughput, where the balance was
 /// not spent on an unknown.
-pub(super) fn energy_surplus(evaluation: &Evaluation<'_>, k: ComponentId) -> Option<(Dual, f64)> {
+pub(super) fn energy_surplus<'e>(evaluation: &'e Evaluation<'_>, k: ComponentId) -> Option<(&'e Dual, f64)> {
     let row = evaluation.equations.find(Row::Energy(k))?;
     if evaluation.spent_on(row).is_some() {
         return None;
     }
-    evaluation.components.get(k)?.energy_residual(evaluation.view).ok()
+    evaluation.components.get(k)?.energy_residual().ok()
 }
 
 /// Whether a component has a flow of work.

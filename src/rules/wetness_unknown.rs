@@ -122,7 +122,7 @@ fn bounds(
     let offset = view.offset(state).ok()?.1.value;
     let sign = if leaves { 1.0 } else { -1.0 };
     let sigma = |s: &State| {
-        balance.outflow.value - balance.inflow.value + sign * mass * (s.entropy + offset)
+        balance.outflow - balance.inflow + sign * mass * (s.entropy + offset)
     };
     let (a, b) = (sigma(liquid), sigma(vapour));
     Some((a.min(b), a.max(b)))

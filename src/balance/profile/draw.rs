@@ -149,7 +149,7 @@ fn refined(pair: &Pair<'_>) -> Result<Vec<(f64, f64, f64)>, Blocked> {
                 still.push(false);
                 continue;
             }
-            let middle = pair.at(0.5 * (place.x + b.x))?;
+            let middle = pair.middle(place, b)?;
             let allowed = 0.1 * (middle.hot - middle.cold).abs().clamp(0.01, 1.0);
             let off = (middle.hot - 0.5 * (place.hot + b.hot))
                 .abs()

@@ -62,6 +62,24 @@ impl Pair<'_> {
         })
     }
 
+    /// The temperatures half way between two nodes or places between them. Either temperature runs one
+    /// way there: one that is equal on both sides is the same all along.
+    ///
+    /// # Errors
+    /// A state outside the formulation's range.
+    pub fn middle(&self, left: &Place, right: &Place) -> Result<Place, Blocked> {
+        let x = left.x + 0.5 * (right.x - left.x);
+        let between = |a: f64, b: f64, stream: &Passage, y: f64| {
+            if a == b { Ok(a) } else { stream.at(self.view, y) }
+        };
+        Ok(Place {
+            x,
+            hot: between(left.hot, right.hot, self.hot, self.turned(x))?,
+            cold: between(left.cold, right.cold, self.cold, x)?,
+            origin: Origin::Free,
+        })
+    }
+
     /// Ends and kinks, in order of the duty.
     ///
     /// # Errors
@@ -98,10 +116,12 @@ impl Pair<'_> {
         for (left, right) in nodes.iter().zip(nodes.iter().skip(1)) {
             out.push(*left);
             let width = right.x - left.x;
-            if width <= 1e-9 {
+            // Between two nodes either temperature runs one way, so that this bounds the difference.
+            let least = left.hot.min(right.hot) - left.cold.max(right.cold);
+            if width <= 1e-9 || least >= lowest.max(0.0) {
                 continue;
             }
-            let middle = self.at(left.x + 0.5 * width)?;
+            let middle = self.middle(left, right)?;
             let (a, b, c) = (left.gap(), middle.gap(), right.gap());
             let bend = a - 2.0 * b + c;
             // Vertex of the parabola through the three differences.

@@ -41,6 +41,7 @@ enum Way {
         inlet: Box<End>,
         outlet: Box<End>,
         phases: [Phase; 2],
+        qualities: [Option<f64>; 2],
     },
     /// A body at the boundary between two temperatures (equal for a reservoir).
     Body { inlet: Dual, outlet: Dual },
@@ -107,12 +108,22 @@ impl Passage {
             return Ok(None);
         }
         let hot = given_off.value > 0.0;
-        let phases = [view.state(first)?.state.phase, view.state(last)?.state.phase];
+        let ends = [&view.state(first)?.state, &view.state(last)?.state];
+        let phases = ends.map(|s| s.phase);
+        let qualities = ends.map(|s| s.quality);
         let mut out = Passage {
             duty: if hot { given_off } else { given_off.scaled(-1.0) },
             hot,
             kinks: Vec::new(),
-            way: Way::Material { fluid, composition, mass, inlet: Box::new(a), outlet: Box::new(b), phases },
+            way: Way::Material {
+                fluid,
+                composition,
+                mass,
+                inlet: Box::new(a),
+                outlet: Box::new(b),
+                phases,
+                qualities,
+            },
         };
         // A stream that stays vapour or stays liquid crosses no saturation line.
         if phases[0] != phases[1] || phases[0] == Phase::TwoPhase {
@@ -142,7 +153,7 @@ impl Passage {
                 (outlet.value > 0.0).then_some(())?;
                 Way::Body { inlet: inlet.clone(), outlet }
             }
-            Way::Material { fluid, composition, mass, inlet, outlet, phases } => {
+            Way::Material { fluid, composition, mass, inlet, outlet, phases, qualities } => {
                 let h = mix(&inlet.h, &outlet.h, factor);
                 let p = outlet.p.clone();
                 let engine = &view.model.process.fluids[*fluid].engine;
@@ -158,6 +169,7 @@ impl Passage {
                     inlet: inlet.clone(),
                     outlet: Box::new(end),
                     phases: [phases[0], state.phase],
+                    qualities: [qualities[0], state.quality],
                 }
             }
         };
@@ -176,7 +188,11 @@ impl Passage {
     /// The share of duty at which saturation is crossed, by Newton's method along the linear
     /// course of enthalpy and pressure.
     fn kink(&self, view: View<'_>, quality: f64) -> Option<Kink> {
-        let Way::Material { fluid, inlet, outlet, .. } = &self.way else { return None };
+        let Way::Material { fluid, inlet, outlet, qualities, .. } = &self.way else { return None };
+        // A stream that begins or ends just saturated has its kink there, not on the way.
+        if qualities.contains(&Some(quality)) {
+            return None;
+        }
         let engine = &*view.model.process.fluids[*fluid].engine;
         let (dp, dh) = (outlet.p.value - inlet.p.value, outlet.h.value - inlet.h.value);
         let mut y = 0.5;
@@ -355,9 +371,9 @@ fn follow(
 ) -> Dual {
     let row = jacobian[property as usize];
     let mut out = p.map(state.get(property), row[0]);
-    out.terms.extend(h.terms.iter().map(|&(slot, d)| (slot, d * row[1])));
+    out.follow(row[1], h);
     if row[2] != 0.0 {
-        out.terms.extend(composition.terms.iter().map(|&(slot, d)| (slot, d * row[2])));
+        out.follow(row[2], composition);
     }
     out
 }
@@ -367,7 +383,7 @@ fn mix(a: &Dual, b: &Dual, y: &Dual) -> Dual {
     let mut out = a.clone().scaled(1.0 - y.value);
     out.add_scaled(y.value, b);
     let span = b.value - a.value;
-    out.terms.extend(y.terms.iter().map(|&(slot, d)| (slot, d * span)));
+    out.follow(span, y);
     out
 }
 

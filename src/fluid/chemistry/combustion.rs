@@ -3,6 +3,7 @@
 use crate::fluid::heat_capacity::{Calorics, STANDARD_TEMPERATURE};
 use crate::fluid::ideal_gas::{IdealGas, Species, find_species};
 use crate::fluid::{Element, Elements, Engine};
+use std::sync::OnceLock;
 
 /// Heating values at 298.15 K, in J per unit of amount.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -55,10 +56,14 @@ pub fn complete_combustion(elements: &Elements) -> Option<Combustion> {
 /// Enthalpy of the products of complete combustion at 298.15 K less that of the oxygen taken, per
 /// unit of amount of `elements`: water as vapour and as liquid.
 pub(crate) fn product_enthalpy(elements: &Elements) -> Option<HeatingValue> {
+    static PRODUCTS: OnceLock<Option<[f64; 4]>> = OnceLock::new();
     let made = complete_combustion(elements)?;
-    let h = |name: &str| Some(find_species(name)?.curve().at(STANDARD_TEMPERATURE).h);
-    let dry = made.carbon_dioxide * h("CO2")? + made.sulfur_dioxide * h("SO2")?;
-    Some(HeatingValue { lower: dry + made.water * h("H2O")?, higher: dry + made.water * h("H2O(L)")? })
+    let [carbon_dioxide, sulfur_dioxide, vapour, liquid] = (*PRODUCTS.get_or_init(|| {
+        let h = |name: &str| Some(find_species(name)?.curve().at(STANDARD_TEMPERATURE).h);
+        Some([h("CO2")?, h("SO2")?, h("H2O")?, h("H2O(L)")?])
+    }))?;
+    let dry = made.carbon_dioxide * carbon_dioxide + made.sulfur_dioxide * sulfur_dioxide;
+    Some(HeatingValue { lower: dry + made.water * vapour, higher: dry + made.water * liquid })
 }
 
 /// Heating values of a species in its standard state, J/mol; `None` where its elements are not

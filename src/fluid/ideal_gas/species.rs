@@ -255,7 +255,13 @@ pub fn all_species() -> &'static [Species] {
 
 /// The species known by this formula or name; case, spaces, hyphens and underscores do not matter.
 pub fn find_species(name: &str) -> Option<&'static Species> {
+    static BY_NAME: OnceLock<HashMap<&'static str, &'static Species>> = OnceLock::new();
     static BY_KEY: OnceLock<HashMap<String, &'static Species>> = OnceLock::new();
+    // Nearly every name is written as the table has it.
+    let by_name = BY_NAME.get_or_init(|| all_species().iter().map(|s| (s.name(), s)).collect());
+    if let Some(species) = by_name.get(name) {
+        return Some(species);
+    }
     let by_key = BY_KEY.get_or_init(|| {
         let mut out = HashMap::new();
         for species in all_species() {
