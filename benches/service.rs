@@ -27,6 +27,8 @@ const PLANT: &str = include_str!("data/gas-turbine.json");
 /// Calls of each server a turn.
 const CALLS: usize = 2000;
 const TURNS: usize = 6;
+/// Connections that call at once, beside one alone.
+const CONNECTIONS: usize = 4;
 /// Ticks a second in `/proc/<pid>/stat` on every Linux architecture that Rust's tier 1 covers.
 const TICKS: f64 = 100.0;
 
@@ -96,10 +98,10 @@ fn serve_bare(size: usize) -> Result<(), Box<dyn Error>> {
     })
 }
 
-/// A server in a process of its own, and one connection to it.
+/// A server in a process of its own, and connections to it.
 struct Server {
     child: Child,
-    connection: BufReader<TcpStream>,
+    connections: Vec<BufReader<TcpStream>>,
 }
 
 impl Server {
@@ -113,27 +115,37 @@ impl Server {
         std::thread::spawn(move || std::io::copy(&mut output, &mut std::io::sink()));
         let said: serde_json::Value = serde_json::from_str(&line)?;
         let address: SocketAddr = said["address"].as_str().ok_or("no address")?.parse()?;
-        let stream = TcpStream::connect(address)?;
-        stream.set_nodelay(true)?;
-        Ok(Server { child, connection: BufReader::new(stream) })
+        let mut connections = Vec::new();
+        for _ in 0..CONNECTIONS {
+            let stream = TcpStream::connect(address)?;
+            stream.set_nodelay(true)?;
+            connections.push(BufReader::new(stream));
+        }
+        Ok(Server { child, connections })
     }
 
-    /// Posts the plant and reads the whole answer: its length.
-    fn call(&mut self) -> Result<usize, Box<dyn Error>> {
+    /// Posts the plant on one connection.
+    fn ask(&mut self, connection: usize) -> Result<(), Box<dyn Error>> {
         let request = format!(
             "POST /v1/checks HTTP/1.1\r\nhost: localhost\r\ncontent-type: application/json\r\ncontent-length: {}\r\n\r\n{PLANT}",
             PLANT.len()
         );
-        self.connection.get_mut().write_all(request.as_bytes())?;
+        self.connections[connection].get_mut().write_all(request.as_bytes())?;
+        Ok(())
+    }
+
+    /// Reads the whole answer on one connection: its length.
+    fn answer(&mut self, connection: usize) -> Result<usize, Box<dyn Error>> {
+        let connection = &mut self.connections[connection];
         let mut status = String::new();
-        self.connection.read_line(&mut status)?;
+        connection.read_line(&mut status)?;
         if !status.starts_with("HTTP/1.1 200") {
             return Err(format!("answered {status}").into());
         }
         let mut length = None;
         loop {
             let mut header = String::new();
-            self.connection.read_line(&mut header)?;
+            connection.read_line(&mut header)?;
             let header = header.trim_end().to_ascii_lowercase();
             if header.is_empty() {
                 break;
@@ -144,7 +156,7 @@ impl Server {
         }
         let length = length.ok_or("an answer without its length")?;
         let mut body = vec![0; length];
-        self.connection.read_exact(&mut body)?;
+        connection.read_exact(&mut body)?;
         Ok(length)
     }
 
@@ -160,11 +172,16 @@ impl Server {
         Ok(ticks / TICKS)
     }
 
-    /// CPU seconds of some calls.
-    fn turn(&mut self, calls: usize) -> Result<f64, Box<dyn Error>> {
+    /// CPU seconds of some calls, on so many connections at once.
+    fn turn(&mut self, calls: usize, connections: usize) -> Result<f64, Box<dyn Error>> {
         let before = self.cpu()?;
-        for _ in 0..calls {
-            self.call()?;
+        for _ in 0..calls / connections {
+            for connection in 0..connections {
+                self.ask(connection)?;
+            }
+            for connection in 0..connections {
+                self.answer(connection)?;
+            }
         }
         Ok(self.cpu()? - before)
     }
@@ -188,22 +205,26 @@ fn main() -> Result<(), Box<dyn Error>> {
     let mut service = Command::new(env!("CARGO_BIN_EXE_sigmadot"));
     service.args(["serve", "--address", "127.0.0.1:0"]);
     let mut checks = Server::start(service)?;
-    let size = checks.call()?;
+    checks.ask(0)?;
+    let size = checks.answer(0)?;
     let mut plain = Command::new(std::env::current_exe()?);
     plain.args(["bare", &size.to_string()]);
     let mut bare = Server::start(plain)?;
-    for server in [&mut checks, &mut bare] {
-        server.turn(CALLS / 4)?;
-    }
-    let (mut ours, mut theirs) = (0.0, 0.0);
-    for _ in 0..TURNS {
-        ours += checks.turn(CALLS)?;
-        theirs += bare.turn(CALLS)?;
-    }
-    let per_call = |seconds: f64| seconds * 1e6 / (TURNS * CALLS) as f64;
     println!("{} calls each, request {} bytes, answer {size} bytes", TURNS * CALLS, PLANT.len());
-    println!("{:<40} {:>10.1} µs CPU a call", "POST /v1/checks", per_call(ours));
-    println!("{:<40} {:>10.1} µs CPU a call", "bare typed route, stored answer", per_call(theirs));
-    println!("ratio {:.2}", ours / theirs);
+    for connections in [1, CONNECTIONS] {
+        for server in [&mut checks, &mut bare] {
+            server.turn(CALLS / 4, connections)?;
+        }
+        let (mut ours, mut theirs) = (0.0, 0.0);
+        for _ in 0..TURNS {
+            ours += checks.turn(CALLS, connections)?;
+            theirs += bare.turn(CALLS, connections)?;
+        }
+        let per_call = |seconds: f64| seconds * 1e6 / (TURNS * CALLS) as f64;
+        println!("connections in use: {connections}");
+        println!("{:<40} {:>10.1} µs CPU a call", "POST /v1/checks", per_call(ours));
+        println!("{:<40} {:>10.1} µs CPU a call", "bare typed route, stored answer", per_call(theirs));
+        println!("ratio {:.2}", ours / theirs);
+    }
     Ok(())
 }

@@ -1,8 +1,10 @@
 //! A closed boundary and what crosses it.
 
 use crate::fluid::{Property, Substance};
-use crate::model::{Blocked, Dual, View, dual::log_mean};
-use crate::process::{Boundary, Carried, ComponentId, Content, FlowId, Holdup, Process, StateId, VarId};
+use crate::model::{Blocked, Dual, Slot, View, dual::log_mean};
+use crate::process::{
+    Boundary, Carried, ComponentId, Content, FlowId, FluidId, Holdup, Process, StateId, VarId,
+};
 use smallvec::SmallVec;
 use std::borrow::Cow;
 
@@ -107,12 +109,11 @@ pub struct Balance {
     pub throughput: f64,
 }
 
-/// What one relative error of a property formulation adds: its component and fluid, and the
-/// derivative.
-pub type FormulationTerm = ((ComponentId, usize), f64);
+/// What one relative error of a property formulation adds: its slot and the derivative.
+type FormulationTerm = (Slot, f64);
 
 /// The same for several quantities at once.
-type FormulationTerms<const N: usize> = SmallVec<[((ComponentId, usize), [f64; N]); 4]>;
+type FormulationTerms<const N: usize> = SmallVec<[(Slot, [f64; N]); 4]>;
 
 impl Balance {
     /// Inflow minus outflow, with the uncertainty of the property formulations.
@@ -162,26 +163,17 @@ impl Balance {
     }
 
     /// The sums are added up apart, so that equal sums leave no rounding.
-    fn close(
-        mut self,
-        view: View<'_>,
-        throughput: f64,
-        formulation: impl Iterator<Item = FormulationTerm>,
-    ) -> Balance {
+    fn close(mut self, throughput: f64, formulation: impl Iterator<Item = FormulationTerm>) -> Balance {
         self.residual.value = self.inflow - self.outflow;
         self.throughput = throughput;
-        for (key, derivative) in formulation {
-            if let Some(&source) = view.model.formulation.get(&key) {
-                self.residual.terms.push((view.model.source_slot(source), derivative));
-            }
-        }
+        self.residual.terms.extend(formulation);
         self
     }
 
     /// Without property formulations, and with its own sums as scale.
-    fn close_plain(self, view: View<'_>) -> Balance {
+    fn close_plain(self) -> Balance {
         let throughput = self.inflow.abs().max(self.outflow.abs());
-        self.close(view, throughput, std::iter::empty())
+        self.close(throughput, std::iter::empty())
     }
 }
 
@@ -199,7 +191,7 @@ pub fn mass(view: View<'_>, region: &Region) -> Result<Balance, Blocked> {
             Item::Content(c) => out.add(sign, &view.mass_of(c.state, c.amount, c.form)?),
         }
     }
-    Ok(out.close_plain(view))
+    Ok(out.close_plain())
 }
 
 /// Blocked where a member turns a substance without formation data into another one.
@@ -235,7 +227,7 @@ fn set_balance(
             out.add(sign, &of(c.state, view.mass_of(c.state, c.amount, c.form)?)?);
         }
     }
-    Ok(out.close_plain(view))
+    Ok(out.close_plain())
 }
 
 /// Mass of one set of a component, kg/s or kg: its flows and contents.
@@ -330,7 +322,7 @@ impl Ledger for Direct<'_> {
     }
 
     fn formulation(&self, k: ComponentId) -> impl Iterator<Item = FormulationTerm> {
-        formulation_terms(self.view, k, [self.relative]).into_iter().map(|(key, [d])| (key, d))
+        formulation_terms(self.view, k, [self.relative]).into_iter().map(|(slot, [d])| (slot, d))
     }
 }
 
@@ -353,7 +345,7 @@ impl Ledger for Column<'_> {
     }
 
     fn formulation(&self, k: ComponentId) -> impl Iterator<Item = FormulationTerm> {
-        self.shares.formulations[k].iter().map(|(key, d)| (*key, d[self.column]))
+        self.shares.formulations[k].iter().map(|(slot, d)| (*slot, d[self.column]))
     }
 }
 
@@ -440,7 +432,7 @@ fn sum_energy(view: View<'_>, region: &Region, ledger: &impl Ledger) -> Result<B
         }
     }
     let formulation = region.members.iter().flat_map(|&k| ledger.formulation(k));
-    Ok(out.close(view, size.throughput(), formulation))
+    Ok(out.close(size.throughput(), formulation))
 }
 
 /// Magnitudes in and out.
@@ -608,7 +600,12 @@ fn sum_entropy(
     }
     let formulation = region.members.iter().flat_map(|&k| ledger.formulation(k));
     let fuels = region.members.iter().flat_map(|&k| fuel_terms(view, k));
-    Ok(out.close(view, size.throughput(), formulation.chain(fuels)))
+    Ok(out.close(size.throughput(), formulation.chain(fuels)))
+}
+
+/// The slot of the relative error that all states of a fluid in a component share.
+fn formulation_slot(view: View<'_>, k: ComponentId, fluid: FluidId) -> Option<Slot> {
+    view.model.formulation.get(&(k, fluid)).map(|&source| view.model.source_slot(source))
 }
 
 /// What the property formulations leave uncertain at the flows of a component. The terms of a union
@@ -632,10 +629,10 @@ fn formulation_terms<const N: usize>(
             let Ok(found) = relative(view, state) else { return };
             *figure = found;
         }
-        let key = (k, process.states[state].fluid);
+        let Some(slot) = formulation_slot(view, k, process.states[state].fluid) else { return };
         let u = formulation_uncertainty(view, state);
-        let at = out.iter().position(|(other, _)| *other == key).unwrap_or_else(|| {
-            out.push((key, [0.0; N]));
+        let at = out.iter().position(|(other, _)| *other == slot).unwrap_or_else(|| {
+            out.push((slot, [0.0; N]));
             largest.push(u);
             out.len() - 1
         });
@@ -674,7 +671,8 @@ fn fuel_terms(view: View<'_>, k: ComponentId) -> impl Iterator<Item = Formulatio
             let fluid = process.states[process.flows[f].material()?.state].fluid;
             let Substance::Fuel(fuel) = &process.fluids[fluid].substance else { return None };
             let mass = view.mass(f).ok()?;
-            Some(((k, fluid), sign * mass.value * fuel.entropy_uncertainty()))
+            let slot = formulation_slot(view, k, fluid)?;
+            Some((slot, sign * mass.value * fuel.entropy_uncertainty()))
         },
     )
 }

@@ -1,7 +1,5 @@
 //! The canonical form of a document, and its digest.
 
-use std::fmt::Write;
-
 use sha2::{Digest, Sha256};
 
 /// The canonical form of a well-formed JSON text: white space outside strings is removed; the
@@ -23,7 +21,9 @@ pub fn canonical(text: &str) -> String {
         } else if byte == b'"' {
             in_string = true;
         } else if matches!(byte, b' ' | b'\t' | b'\n' | b'\r') {
-            out.push_str(text.get(kept_from..at).unwrap_or_default());
+            if kept_from < at {
+                out.push_str(text.get(kept_from..at).unwrap_or_default());
+            }
             kept_from = at + 1;
         }
     }
@@ -33,9 +33,6 @@ pub fn canonical(text: &str) -> String {
 
 /// The SHA-256 (FIPS 180-4) of some bytes, as 64 lower-case hexadecimal digits.
 pub fn sha256_hex(bytes: &[u8]) -> String {
-    Sha256::digest(bytes).iter().fold(String::with_capacity(64), |mut out, byte| {
-        // Writing into a String cannot fail.
-        let _ = write!(out, "{byte:02x}");
-        out
-    })
+    let digit = |nibble: u8| char::from(b"0123456789abcdef"[usize::from(nibble & 0xf)]);
+    Sha256::digest(bytes).iter().flat_map(|&byte| [digit(byte >> 4), digit(byte)]).collect()
 }

@@ -128,7 +128,8 @@ impl<'a> Tree<'a> {
 
     /// The JSON Pointer of the value that came from the bytes `start..end`.
     pub(super) fn pointer(&self, start: u32, end: u32) -> String {
-        let mut pointer = String::new();
+        // Most are shorter than this.
+        let mut pointer = String::with_capacity(48);
         let mut value = &self.root;
         while (value.start, value.end) != (start, end) {
             let holds = |v: &Value<'_>| v.start <= start && end <= v.end;

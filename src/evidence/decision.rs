@@ -112,7 +112,8 @@ fn summary(family: Family, tests: usize, false_alarm: f64) -> FamilySummary {
 fn first_look(value: f64, u: f64, margin: &Margin) -> Decision {
     let rounding = ROUNDING * margin.throughput;
     let at_limit = value.abs() <= rounding && u <= rounding;
-    let scale = u.hypot(rounding).max(f64::MIN_POSITIVE);
+    // Figures are far from where their squares leave the range of numbers.
+    let scale = (u * u + rounding * rounding).sqrt().max(f64::MIN_POSITIVE);
     let (tested, z) = match margin.test {
         Test::NonNegative => (value, value / scale),
         Test::Zero { allowance } => {

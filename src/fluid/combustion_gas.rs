@@ -483,6 +483,6 @@ impl Engine for CombustionGas {
 
     fn relative_uncertainty(&self, state: &State) -> f64 {
         let neglected = self.critical.map_or(0.0, |c| c.departure(state.temperature, state.pressure));
-        UNCERTAINTY.hypot(neglected)
+        (UNCERTAINTY * UNCERTAINTY + neglected * neglected).sqrt()
     }
 }

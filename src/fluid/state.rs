@@ -205,6 +205,10 @@ impl State {
         let (first, second) = pair.properties();
         let ra = self.gradient[first as usize];
         let rb = self.gradient[second as usize];
+        if ra == [1.0, 0.0, 0.0] && rb == [0.0, 1.0, 0.0] {
+            // They are the local basis.
+            return Some(self.gradient);
+        }
         let det = ra[0] * rb[1] - ra[1] * rb[0];
         let scale = (ra[0] * rb[1]).abs() + (ra[1] * rb[0]).abs();
         if det.is_nan() || det.abs() <= 1e-13 * scale {

@@ -26,7 +26,8 @@ pub struct Decimal<'a> {
 pub fn split(text: &str) -> Result<(Decimal<'_>, &str), Diagnostic> {
     let text = text.trim();
     let bytes = text.as_bytes();
-    let digits = |from: usize| bytes.iter().skip(from).take_while(|b| b.is_ascii_digit()).count();
+    let digits =
+        |from: usize| bytes[from.min(bytes.len())..].iter().take_while(|b| b.is_ascii_digit()).count();
 
     let sign = match bytes.first() {
         Some(b'+' | b'-') => 1,
@@ -67,7 +68,6 @@ pub fn split(text: &str) -> Result<(Decimal<'_>, &str), Diagnostic> {
     let parsed =
         if sign > 1 { format!("-{}", &written[sign..]).parse::<f64>() } else { written.parse::<f64>() };
     let value = parsed.unwrap_or(f64::NAN);
-    let nonzero = bytes.iter().take(mantissa_end).any(|b| matches!(b, b'1'..=b'9'));
     if !value.is_finite() {
         return Err(Diagnostic::new(
             Code::BadNumber,
@@ -75,7 +75,7 @@ pub fn split(text: &str) -> Result<(Decimal<'_>, &str), Diagnostic> {
             format!("{} is too large to be represented", shown(written)),
         ));
     }
-    if nonzero && value == 0.0 {
+    if value == 0.0 && bytes.iter().take(mantissa_end).any(|b| matches!(b, b'1'..=b'9')) {
         return Err(Diagnostic::new(
             Code::BadNumber,
             "",
@@ -139,6 +139,12 @@ const SEPARATORS: &[char] = &[',', '\'', '’', '_', '.', ' ', '\u{a0}', '\u{202
 /// Refuses `1,5`, `1,000`, `1 000`, `1'000`, `1_000` and `1.000.000`, which are read differently
 /// in different countries.
 fn refuse_separators(written: &str, rest: &str) -> Result<(), Diagnostic> {
+    // Nearly always a space and the unit.
+    if let [b' ', letter, ..] = rest.as_bytes()
+        && letter.is_ascii_alphabetic()
+    {
+        return Ok(());
+    }
     let separator = rest.chars().next();
     if !separator.is_some_and(|c| SEPARATORS.contains(&c)) {
         return Ok(());

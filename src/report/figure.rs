@@ -29,22 +29,24 @@ fn significant(x: f64, digits: i32) -> f64 {
     if exponent >= 0 { (x * scale).round() / scale } else { (x / scale).round() * scale }
 }
 
-/// The powers of ten that are exact.
-const POWERS: [f64; 23] = [
-    1e0, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15, 1e16, 1e17, 1e18,
-    1e19, 1e20, 1e21, 1e22,
+/// Powers of ten around the figures of a plant, the lowest being 10^[`LOWEST`]; from 10^0 up they are
+/// exact.
+const POWERS: [f64; 32] = [
+    1e-9, 1e-8, 1e-7, 1e-6, 1e-5, 1e-4, 1e-3, 1e-2, 1e-1, 1e0, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9,
+    1e10, 1e11, 1e12, 1e13, 1e14, 1e15, 1e16, 1e17, 1e18, 1e19, 1e20, 1e21, 1e22,
 ];
+const LOWEST: i32 = -9;
 
+/// 10^n for n from 0 up.
 fn power_of_ten(n: i32) -> f64 {
-    usize::try_from(n).ok().and_then(|n| POWERS.get(n)).copied().unwrap_or_else(|| 10f64.powi(n))
+    usize::try_from(n - LOWEST).ok().and_then(|at| POWERS.get(at)).copied().unwrap_or_else(|| 10f64.powi(n))
 }
 
 /// The decimal exponent of a positive number: 2 for 123.
 fn order(x: f64) -> i32 {
-    match POWERS.iter().position(|&power| x < power) {
-        // Below 1, or beyond the table.
-        Some(0) | None => x.log10().floor() as i32,
-        Some(n) => n as i32 - 1,
+    match POWERS.partition_point(|&power| power <= x) {
+        0 | 32 => x.log10().floor() as i32,
+        above => above as i32 - 1 + LOWEST,
     }
 }
 

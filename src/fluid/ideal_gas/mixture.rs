@@ -259,6 +259,6 @@ impl Engine for IdealGas {
     /// That of the polynomials, and |Z − 1| for the pressure effect that the model neglects.
     fn relative_uncertainty(&self, state: &State) -> f64 {
         let neglected = self.critical.map_or(0.0, |c| c.departure(state.temperature, state.pressure));
-        UNCERTAINTY.hypot(neglected)
+        (UNCERTAINTY * UNCERTAINTY + neglected * neglected).sqrt()
     }
 }

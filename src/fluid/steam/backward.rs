@@ -3,7 +3,7 @@
 //! Source: IAPWS R7-97(2012), backward equations (11), (13) and (20) to (27). They are within
 //! 25 mK of the basic equations; the flash takes them from there to the basic equations' own root.
 
-use super::basic::{Term, powers, sum, terms};
+use super::basic::Terms;
 use super::tables::{BOUNDARY_2BC, T_PH_1, T_PH_2A, T_PH_2B, T_PH_2C, T_PS_1, T_PS_2A, T_PS_2B, T_PS_2C};
 
 /// Highest pressure of subregion 2a, MPa.
@@ -13,49 +13,49 @@ const ENTROPY_2BC: f64 = 5.85;
 
 /// Region 1: T (K) from `p` (Pa) and `h` (J/kg), eq. (11).
 pub(super) fn enthalpy_1(p: f64, h: f64) -> f64 {
-    const TERMS: [Term; 20] = terms(&T_PH_1, 0, 0);
-    sum(&TERMS, &powers(p * 1e-6, 0, 6), &powers(h * 1e-3 / 2500.0 + 1.0, 0, 32))
+    const TERMS: Terms<20> = Terms::of(&T_PH_1, 0, 0);
+    TERMS.sum(p * 1e-6, h * 1e-3 / 2500.0 + 1.0)
 }
 
 /// Region 1: T (K) from `p` (Pa) and `s` (J/(kg K)), eq. (13).
 pub(super) fn entropy_1(p: f64, s: f64) -> f64 {
-    const TERMS: [Term; 20] = terms(&T_PS_1, 0, 0);
-    sum(&TERMS, &powers(p * 1e-6, 0, 4), &powers(s * 1e-3 + 2.0, 0, 32))
+    const TERMS: Terms<20> = Terms::of(&T_PS_1, 0, 0);
+    TERMS.sum(p * 1e-6, s * 1e-3 + 2.0)
 }
 
 /// Region 2: T (K) from `p` (Pa) and `h` (J/kg), eqs. (20) to (24).
 pub(super) fn enthalpy_2(p: f64, h: f64) -> f64 {
-    const TERMS_A: [Term; 34] = terms(&T_PH_2A, 0, 0);
-    const TERMS_B: [Term; 38] = terms(&T_PH_2B, 0, 0);
-    const TERMS_C: [Term; 23] = terms(&T_PH_2C, 7, 0);
+    const TERMS_A: Terms<34> = Terms::of(&T_PH_2A, 0, 0);
+    const TERMS_B: Terms<38> = Terms::of(&T_PH_2B, 0, 0);
+    const TERMS_C: Terms<23> = Terms::of(&T_PH_2C, 7, 0);
     let pi = p * 1e-6;
     let h = h * 1e-3;
     let eta = h / 2000.0;
     if pi <= PRESSURE_2A {
-        return sum(&TERMS_A, &powers(pi, 0, 7), &powers(eta - 2.1, 0, 44));
+        return TERMS_A.sum(pi, eta - 2.1);
     }
     let [n3, n4, n5] = BOUNDARY_2BC;
     if pi < n5 || h >= n4 + ((pi - n5) / n3).sqrt() {
-        sum(&TERMS_B, &powers(pi - 2.0, 0, 9), &powers(eta - 2.6, 0, 40))
+        TERMS_B.sum(pi - 2.0, eta - 2.6)
     } else {
-        sum(&TERMS_C, &powers(pi + 25.0, 7, 6), &powers(eta - 1.8, 0, 22))
+        TERMS_C.sum(pi + 25.0, eta - 1.8)
     }
 }
 
 /// Region 2: T (K) from `p` (Pa) and `s` (J/(kg K)), eqs. (25) to (27).
 #[allow(clippy::approx_constant, reason = "0.7853 kJ/(kg K) is a reducing entropy and not a part of pi")]
 pub(super) fn entropy_2(p: f64, s: f64) -> f64 {
-    const TERMS_A: [Term; 46] = terms(&T_PS_2A, 6, 27);
-    const TERMS_B: [Term; 44] = terms(&T_PS_2B, 6, 0);
-    const TERMS_C: [Term; 30] = terms(&T_PS_2C, 2, 0);
+    const TERMS_A: Terms<46> = Terms::of(&T_PS_2A, 6, 27);
+    const TERMS_B: Terms<44> = Terms::of(&T_PS_2B, 6, 0);
+    const TERMS_C: Terms<30> = Terms::of(&T_PS_2C, 2, 0);
     let pi = p * 1e-6;
     let s = s * 1e-3;
     if pi <= PRESSURE_2A {
-        sum(&TERMS_A, &powers(pi.sqrt().sqrt(), 6, 6), &powers(s / 2.0 - 2.0, 27, 18))
+        TERMS_A.sum(pi.sqrt().sqrt(), s / 2.0 - 2.0)
     } else if s >= ENTROPY_2BC {
-        sum(&TERMS_B, &powers(pi, 6, 5), &powers(10.0 - s / 0.7853, 0, 12))
+        TERMS_B.sum(pi, 10.0 - s / 0.7853)
     } else {
-        sum(&TERMS_C, &powers(pi, 2, 7), &powers(2.0 - s / 2.9251, 0, 5))
+        TERMS_C.sum(pi, 2.0 - s / 2.9251)
     }
 }
 

@@ -75,31 +75,6 @@ impl Region {
 const SLOTS: usize = 64;
 type Powers = [f64; SLOTS];
 
-/// Puts x^1 … x^n into the slots after `at`; slot `at` holds 1. Each power is the product of two
-/// lower ones of half its exponent, so that the chain of dependent products stays short.
-#[inline(always)]
-fn fill(powers: &mut Powers, at: usize, x: f64, n: usize) {
-    powers[at & (SLOTS - 1)] = 1.0;
-    powers[(at + 1) & (SLOTS - 1)] = x;
-    for k in 2..=n {
-        let (a, b) = (k / 2, k - k / 2);
-        powers[(at + k) & (SLOTS - 1)] = powers[(at + a) & (SLOTS - 1)] * powers[(at + b) & (SLOTS - 1)];
-    }
-}
-
-/// The same for x^-1 … x^-n in the slots before `at`.
-#[inline(always)]
-fn fill_down(powers: &mut Powers, at: usize, x: f64, n: usize) {
-    let inverse = 1.0 / x;
-    powers[at & (SLOTS - 1)] = 1.0;
-    powers[at.wrapping_sub(1) & (SLOTS - 1)] = inverse;
-    for k in 2..=n {
-        let (a, b) = (k / 2, k - k / 2);
-        powers[at.wrapping_sub(k) & (SLOTS - 1)] =
-            powers[at.wrapping_sub(a) & (SLOTS - 1)] * powers[at.wrapping_sub(b) & (SLOTS - 1)];
-    }
-}
-
 /// One term n x^i y^j with the slots of its powers.
 #[derive(Clone, Copy)]
 pub(super) struct Term {
@@ -110,39 +85,129 @@ pub(super) struct Term {
     at_y: u8,
 }
 
-/// Terms from rows of the release; the power zero of x stands in slot `zero_x`, that of y in
-/// slot `zero_y`.
-pub(super) const fn terms<const N: usize>(rows: &[Row; N], zero_x: i8, zero_y: i8) -> [Term; N] {
-    let mut out = [Term { n: 0.0, i: 0.0, j: 0.0, at_x: 0, at_y: 0 }; N];
-    let mut k = 0;
-    while k < N {
-        let (i, j, n) = rows[k];
-        assert!(i + zero_x >= 0 && j + zero_y >= 0, "a power lies below the table");
-        assert!((i + zero_x) < SLOTS as i8 && (j + zero_y) < SLOTS as i8, "a power lies above the table");
-        out[k] = Term { n, i: i as f64, j: j as f64, at_x: (i + zero_x) as u8, at_y: (j + zero_y) as u8 };
-        k += 1;
-    }
-    out
+/// A sum Σ n x^i y^j over rows of the release.
+#[derive(Clone, Copy)]
+pub(super) struct Terms<const N: usize> {
+    terms: [Term; N],
+    x: Chain,
+    y: Chain,
 }
 
-/// The powers of one variable from x^-`below` to x^`above`; x^0 stands in slot `below`.
-#[inline(always)]
-pub(super) fn powers(x: f64, below: usize, above: usize) -> Powers {
-    let mut out = [0.0; SLOTS];
-    fill(&mut out, below, x, above);
-    if below > 0 {
-        fill_down(&mut out, below, x, below);
+impl<const N: usize> Terms<N> {
+    /// The power zero of x stands in slot `zero_x`, that of y in slot `zero_y`.
+    pub(super) const fn of(rows: &[Row; N], zero_x: i8, zero_y: i8) -> Terms<N> {
+        let mut terms = [Term { n: 0.0, i: 0.0, j: 0.0, at_x: 0, at_y: 0 }; N];
+        let (mut needed_x, mut needed_y) = ([false; SLOTS], [false; SLOTS]);
+        let mut k = 0;
+        while k < N {
+            let (i, j, n) = rows[k];
+            assert!(i + zero_x >= 0 && j + zero_y >= 0, "a power lies below the table");
+            assert!((i + zero_x) < SLOTS as i8 && (j + zero_y) < SLOTS as i8, "a power lies above the table");
+            let (at_x, at_y) = ((i + zero_x) as u8, (j + zero_y) as u8);
+            needed_x[at_x as usize] = true;
+            needed_y[at_y as usize] = true;
+            terms[k] = Term { n, i: i as f64, j: j as f64, at_x, at_y };
+            k += 1;
+        }
+        Terms { terms, x: Chain::of(needed_x, zero_x as usize), y: Chain::of(needed_y, zero_y as usize) }
     }
-    out
+
+    /// The sum.
+    #[inline(always)]
+    pub(super) fn sum(&self, x: f64, y: f64) -> f64 {
+        let (x, y) = (self.x.powers(x), self.y.powers(y));
+        self.terms.iter().map(|t| t.of(&x, &y)).sum()
+    }
+
+    /// The sum with its derivatives.
+    #[inline(always)]
+    fn sums(&self, x: f64, y: f64) -> Sums {
+        let (x, y) = (self.x.powers(x), self.y.powers(y));
+        let mut out = Sums::default();
+        for t in &self.terms {
+            let f = t.of(&x, &y);
+            let fx = t.i * f;
+            let fy = t.j * f;
+            out.f += f;
+            out.x += fx;
+            out.xx += (t.i - 1.0) * fx;
+            out.y += fy;
+            out.yy += (t.j - 1.0) * fy;
+            out.xy += t.i * fy;
+        }
+        out
+    }
 }
 
-/// Σ n x^i y^j.
-#[inline(always)]
-pub(super) fn sum(terms: &[Term], x: &Powers, y: &Powers) -> f64 {
-    terms
-        .iter()
-        .map(|t| t.n * x[usize::from(t.at_x) & (SLOTS - 1)] * y[usize::from(t.at_y) & (SLOTS - 1)])
-        .sum()
+impl Term {
+    #[inline(always)]
+    fn of(&self, x: &Powers, y: &Powers) -> f64 {
+        self.n * x[usize::from(self.at_x) & (SLOTS - 1)] * y[usize::from(self.at_y) & (SLOTS - 1)]
+    }
+}
+
+/// How the powers of one variable that some terms need are made: each is the product of two of half
+/// its exponent, so that the chain of dependent products stays short.
+#[derive(Clone, Copy)]
+pub(super) struct Chain {
+    /// The slot of the power zero.
+    zero: usize,
+    /// Whether powers below zero are needed.
+    falls: bool,
+    /// Slots of a product and of its two factors, in order.
+    steps: [[u8; 3]; SLOTS],
+    count: usize,
+}
+
+impl Chain {
+    /// The power zero stands in slot `zero`.
+    const fn of(mut needed: [bool; SLOTS], zero: usize) -> Chain {
+        let mut out = Chain { zero, falls: false, steps: [[0; 3]; SLOTS], count: 0 };
+        let mut n = SLOTS - 1;
+        while n >= 2 {
+            let (half, rest) = (n / 2, n - n / 2);
+            if zero + n < SLOTS && needed[zero + n] {
+                needed[zero + half] = true;
+                needed[zero + rest] = true;
+            }
+            if n <= zero && needed[zero - n] {
+                needed[zero - half] = true;
+                needed[zero - rest] = true;
+            }
+            n -= 1;
+        }
+        out.falls = zero >= 1 && needed[zero - 1];
+        n = 2;
+        while n < SLOTS {
+            let (half, rest) = (n / 2, n - n / 2);
+            if zero + n < SLOTS && needed[zero + n] {
+                out.steps[out.count] = [(zero + n) as u8, (zero + half) as u8, (zero + rest) as u8];
+                out.count += 1;
+            }
+            if n <= zero && needed[zero - n] {
+                out.steps[out.count] = [(zero - n) as u8, (zero - half) as u8, (zero - rest) as u8];
+                out.count += 1;
+            }
+            n += 1;
+        }
+        out
+    }
+
+    /// The powers of `x`, each in its slot.
+    #[inline(always)]
+    pub(super) fn powers(&self, x: f64) -> Powers {
+        let mut out = [0.0; SLOTS];
+        out[self.zero & (SLOTS - 1)] = 1.0;
+        out[(self.zero + 1) & (SLOTS - 1)] = x;
+        if self.falls {
+            out[self.zero.wrapping_sub(1) & (SLOTS - 1)] = 1.0 / x;
+        }
+        for &[product, a, b] in &self.steps[..self.count] {
+            out[usize::from(product) & (SLOTS - 1)] =
+                out[usize::from(a) & (SLOTS - 1)] * out[usize::from(b) & (SLOTS - 1)];
+        }
+        out
+    }
 }
 
 /// A sum F = Σ n x^i y^j and its derivatives, each multiplied by the powers of x and y that it
@@ -157,44 +222,14 @@ struct Sums {
     xy: f64,
 }
 
-#[inline(always)]
-fn sums<const N: usize>(terms: &[Term; N], x: &Powers, y: &Powers) -> Sums {
-    let mut out = Sums::default();
-    for t in terms {
-        let f = t.n * x[usize::from(t.at_x) & (SLOTS - 1)] * y[usize::from(t.at_y) & (SLOTS - 1)];
-        let fx = t.i * f;
-        let fy = t.j * f;
-        out.f += f;
-        out.x += fx;
-        out.xx += (t.i - 1.0) * fx;
-        out.y += fy;
-        out.yy += (t.j - 1.0) * fy;
-        out.xy += t.i * fy;
-    }
-    out
-}
-
-/// The ideal-gas part Σ n τ^j with τ and τ² times its first and second derivative.
-#[inline(always)]
-fn ideal<const N: usize>(terms: &[Term; N], tau: &Powers) -> (f64, f64, f64) {
-    let mut out = (0.0, 0.0, 0.0);
-    for t in terms {
-        let f = t.n * tau[usize::from(t.at_y) & (SLOTS - 1)];
-        out.0 += f;
-        out.1 += t.j * f;
-        out.2 += t.j * (t.j - 1.0) * f;
-    }
-    out
-}
-
 /// Region 1, eq. (7).
 fn region_1(p: f64, t: f64) -> Point {
-    const TERMS: [Term; 34] = terms(&REGION_1, 0, 41);
+    const TERMS: Terms<34> = Terms::of(&REGION_1, 0, 41);
     const REDUCING_PRESSURE: f64 = 16.53e6;
     let tau = 1386.0 / t;
     let x = 7.1 - p / REDUCING_PRESSURE;
     let y = tau - 1.222;
-    let g = sums(&TERMS, &powers(x, 0, 32), &powers(y, 41, 17));
+    let g = TERMS.sums(x, y);
     let g_pi = -g.x / x;
     let g_pi_pi = g.xx / (x * x);
     let g_tau = g.y / y;
@@ -214,41 +249,42 @@ fn region_1(p: f64, t: f64) -> Point {
 
 /// Region 2, eqs. (15) to (17).
 fn region_2(p: f64, t: f64) -> Point {
-    const IDEAL: [Term; 9] = terms(&REGION_2_IDEAL, 0, 5);
-    const TERMS: [Term; 43] = terms(&REGION_2_RESIDUAL, 0, 0);
+    const IDEAL: Terms<9> = Terms::of(&REGION_2_IDEAL, 0, 5);
+    const TERMS: Terms<43> = Terms::of(&REGION_2_RESIDUAL, 0, 0);
     let pi = p * 1e-6;
     let tau = 540.0 / t;
     let y = tau - 0.5;
-    let (o, o_tau, o_tau_tau) = ideal(&IDEAL, &powers(tau, 5, 3));
-    let r = sums(&TERMS, &powers(pi, 0, 24), &powers(y, 0, 58));
+    // The ideal-gas part has τ alone.
+    let o = IDEAL.sums(1.0, tau);
+    let r = TERMS.sums(pi, y);
     // τ/y carries the residual's derivatives over from y = τ − 0.5 to τ.
     let ratio = tau / y;
-    let tau_g_tau = o_tau + r.y * ratio;
+    let tau_g_tau = o.y + r.y * ratio;
     from_reduced(
         p,
         t,
-        o + pi.ln() + r.f,
+        o.f + pi.ln() + r.f,
         tau_g_tau,
-        o_tau_tau + r.yy * ratio * ratio,
+        o.yy + r.yy * ratio * ratio,
         Pressured { first: r.x, second: r.xx, mixed: r.xy * ratio },
     )
 }
 
 /// Region 5, eqs. (32) to (34).
 fn region_5(p: f64, t: f64) -> Point {
-    const IDEAL: [Term; 6] = terms(&REGION_5_IDEAL, 0, 3);
-    const TERMS: [Term; 6] = terms(&REGION_5_RESIDUAL, 0, 3);
+    const IDEAL: Terms<6> = Terms::of(&REGION_5_IDEAL, 0, 3);
+    const TERMS: Terms<6> = Terms::of(&REGION_5_RESIDUAL, 0, 3);
     let pi = p * 1e-6;
     let tau = 1000.0 / t;
-    let y = powers(tau, 3, 9);
-    let (o, o_tau, o_tau_tau) = ideal(&IDEAL, &y);
-    let r = sums(&TERMS, &powers(pi, 0, 3), &y);
+    // The ideal-gas part has τ alone.
+    let o = IDEAL.sums(1.0, tau);
+    let r = TERMS.sums(pi, tau);
     from_reduced(
         p,
         t,
-        o + pi.ln() + r.f,
-        o_tau + r.y,
-        o_tau_tau + r.yy,
+        o.f + pi.ln() + r.f,
+        o.y + r.y,
+        o.yy + r.yy,
         Pressured { first: r.x, second: r.xx, mixed: r.xy },
     )
 }
@@ -291,13 +327,13 @@ pub(super) struct Dense {
     pub p_t: f64,
 }
 
-const TERMS_3: [Term; 39] = terms(&REGION_3, 0, 0);
+const TERMS_3: Terms<39> = Terms::of(&REGION_3, 0, 0);
 
 /// Region 3, eq. (28), at `rho` (kg/m³) and `t` (K).
 pub(super) fn region_3(rho: f64, t: f64) -> Dense {
     let delta = rho / CRITICAL_DENSITY;
     let tau = CRITICAL_TEMPERATURE / t;
-    let f = sums(&TERMS_3, &powers(delta, 0, 11), &powers(tau, 0, 26));
+    let f = TERMS_3.sums(delta, tau);
     let first = REGION_3_LOG + f.x;
     let second = f.xx - REGION_3_LOG;
     Dense {
@@ -368,9 +404,9 @@ fn saturated_difference(coefficients: &[f64; 5], t: f64) -> f64 {
 /// answer: that happens within 1e-4 K of the critical point alone, where the saturation equation and
 /// eq. (28) differ by more (0.01 Pa) than the isotherm's loop is high.
 pub(super) fn density(p: f64, t: f64, side: Side) -> f64 {
-    let y = powers(CRITICAL_TEMPERATURE / t, 0, 26);
+    let y = TERMS_3.y.powers(CRITICAL_TEMPERATURE / t);
     let mut polynomial = [0.0; 16];
-    for term in &TERMS_3 {
+    for term in &TERMS_3.terms {
         polynomial[usize::from(term.at_x) & 15] += term.n * term.i * y[usize::from(term.at_y) & (SLOTS - 1)];
     }
     let rt = R * t;
@@ -452,10 +488,11 @@ mod tests {
 
     #[test]
     fn powers_are_those_of_the_library() {
-        let table = powers(1.7, 41, 17);
-        for k in -41..=17i32 {
+        const TERMS: Terms<34> = Terms::of(&REGION_1, 0, 41);
+        let table = TERMS.y.powers(1.7);
+        for (_, k, _) in REGION_1 {
             let found = table[(41 + k) as usize];
-            assert!((found / 1.7f64.powi(k) - 1.0).abs() < 1e-14, "{k}");
+            assert!((found / 1.7f64.powi(i32::from(k)) - 1.0).abs() < 1e-14, "{k}");
         }
     }
 

@@ -244,12 +244,10 @@ impl<'t> Reader<'t> {
             ));
             return None;
         }
-        let mut parts: Vec<(Species, f64)> = Vec::new();
+        let mut parts: Vec<(&Species, f64)> = Vec::new();
         let (mut good, mut stated) = (true, false);
         for (name, n) in list.members() {
-            let species =
-                own.iter().find(|s| s.name() == name).cloned().or_else(|| find_species(name).cloned());
-            let Some(species) = species else {
+            let Some(species) = own.iter().find(|s| s.name() == name).or_else(|| find_species(name)) else {
                 let known = crate::fluid::ideal_gas::all_species().iter().map(Species::name);
                 let fault = n.fault(Code::UnknownSpecies, format!("there is no species \"{name}\""));
                 self.fault(fault.suggest(&nearest(name, known), ""));
@@ -290,8 +288,7 @@ impl<'t> Reader<'t> {
                 figure: Some((sum, 1.0, "1")),
             });
         }
-        let refs: Vec<(&Species, f64)> = parts.iter().map(|(s, x)| (s, *x)).collect();
-        let gas = if by_mass { IdealGas::from_mass(&refs) } else { IdealGas::new(&refs) };
+        let gas = if by_mass { IdealGas::from_mass(&parts) } else { IdealGas::new(&parts) };
         let gas = self.mixture(list, gas)?;
         self.moisten(node, gas)
     }
