@@ -3,6 +3,9 @@
 //! `cargo bench --bench check`, or a part of it with `-- evaluate`, `report`, `growth` or `memory`.
 #![allow(clippy::expect_used, reason = "a measurement of broken input is worth nothing")]
 
+mod data;
+
+use data::{PLANT, without_exchangers};
 use sigmadot::pipeline::{Bound, Cancel, Room, check_bytes, evaluate_and_decide};
 use sigmadot::process::{ReadLimits, read};
 use sigmadot::quantity::UnitSystem;
@@ -14,8 +17,6 @@ use std::time::Instant;
 #[cfg(feature = "server")]
 #[global_allocator]
 static ALLOCATOR: mimalloc::MiMalloc = mimalloc::MiMalloc;
-
-const PLANT: &str = include_str!("data/gas-turbine.json");
 
 /// Best and median of repeated batches, µs a call.
 fn measure(batches: usize, calls: usize, mut f: impl FnMut()) -> (f64, f64) {
@@ -30,24 +31,6 @@ fn measure(batches: usize, calls: usize, mut f: impl FnMut()) -> (f64, f64) {
         .collect();
     times.sort_by(f64::total_cmp);
     (times[0], times[times.len() / 2])
-}
-
-/// The plant without its two exchangers: what enters and leaves them crosses the boundary.
-fn without_exchangers() -> String {
-    let mut plant: serde_json::Value = serde_json::from_str(PLANT).expect("bench data");
-    let components = plant["components"].as_object_mut().expect("components");
-    components.remove("preheater");
-    components.remove("recovery");
-    let flows = plant["flows"].as_object_mut().expect("flows");
-    for flow in flows.values_mut() {
-        for end in ["from", "to"] {
-            if flow[end] == "preheater" || flow[end] == "recovery" {
-                flow.as_object_mut().expect("flow").remove(end);
-            }
-        }
-    }
-    flows.retain(|_, f| f.get("from").is_some() || f.get("to").is_some());
-    plant.to_string()
 }
 
 /// `n` copies of a small chain (compressor, combustor-free heater, turbine) with amounts given.
@@ -96,16 +79,28 @@ fn check(body: &str) -> usize {
     black_box(report.expect("bench plant").to_json().len())
 }
 
+/// The plant with the rule that looks into its exchangers switched off.
+fn without_interiors() -> String {
+    let mut plant: serde_json::Value = serde_json::from_str(PLANT).expect("bench data");
+    plant["policy"] = serde_json::json!({"disable": ["internal-temperature-cross"]});
+    plant.to_string()
+}
+
 fn evaluate() {
-    let (process, inputs) = read(PLANT.as_bytes(), &limits(), &names()).expect("bench plant");
-    let mut room = Room::default();
-    let bound = Bound::compile(process, inputs, &mut room, &Cancel::new());
-    row(
-        "evaluate + decide, 5 components, 13 flows, bound model",
-        measure(200, 200, || {
-            black_box(evaluate_and_decide(&bound, &bound.inputs, &mut room));
-        }),
-    );
+    for (name, body) in [
+        ("evaluate + decide, 5 components, 13 flows, bound model", PLANT.to_owned()),
+        ("the same without the interiors of its two exchangers", without_interiors()),
+    ] {
+        let (process, inputs) = read(body.as_bytes(), &limits(), &names()).expect("bench plant");
+        let mut room = Room::default();
+        let bound = Bound::compile(process, inputs, &mut room, &Cancel::new());
+        row(
+            name,
+            measure(200, 200, || {
+                black_box(evaluate_and_decide(&bound, &bound.inputs, &mut room));
+            }),
+        );
+    }
 }
 
 fn report() {

@@ -4,11 +4,14 @@
 //! and take turns. Prints a table; asserts nothing. Linux only (`/proc`). Run with
 //! `cargo bench --bench service`.
 
+mod data;
+
 use axum::Router;
 use axum::body::Bytes;
 use axum::extract::State;
 use axum::http::StatusCode;
 use axum::routing::post;
+use data::{PLANT, without_exchangers};
 use hyper_util::rt::{TokioExecutor, TokioIo};
 use hyper_util::server::conn::auto;
 use hyper_util::service::TowerToHyperService;
@@ -23,7 +26,6 @@ use std::process::{Child, Command, Stdio};
 #[global_allocator]
 static ALLOCATOR: mimalloc::MiMalloc = mimalloc::MiMalloc;
 
-const PLANT: &str = include_str!("data/gas-turbine.json");
 /// Calls of each server a turn.
 const CALLS: usize = 2000;
 const TURNS: usize = 6;
@@ -124,11 +126,11 @@ impl Server {
         Ok(Server { child, connections })
     }
 
-    /// Posts the plant on one connection.
-    fn ask(&mut self, connection: usize) -> Result<(), Box<dyn Error>> {
+    /// Posts a plant on one connection.
+    fn ask(&mut self, connection: usize, plant: &str) -> Result<(), Box<dyn Error>> {
         let request = format!(
-            "POST /v1/checks HTTP/1.1\r\nhost: localhost\r\ncontent-type: application/json\r\ncontent-length: {}\r\n\r\n{PLANT}",
-            PLANT.len()
+            "POST /v1/checks HTTP/1.1\r\nhost: localhost\r\ncontent-type: application/json\r\ncontent-length: {}\r\n\r\n{plant}",
+            plant.len()
         );
         self.connections[connection].get_mut().write_all(request.as_bytes())?;
         Ok(())
@@ -172,12 +174,12 @@ impl Server {
         Ok(ticks / TICKS)
     }
 
-    /// CPU seconds of some calls, on so many connections at once.
-    fn turn(&mut self, calls: usize, connections: usize) -> Result<f64, Box<dyn Error>> {
+    /// CPU seconds of the calls of one turn, on so many connections at once.
+    fn turn(&mut self, plant: &str, connections: usize) -> Result<f64, Box<dyn Error>> {
         let before = self.cpu()?;
-        for _ in 0..calls / connections {
+        for _ in 0..CALLS / connections {
             for connection in 0..connections {
-                self.ask(connection)?;
+                self.ask(connection, plant)?;
             }
             for connection in 0..connections {
                 self.answer(connection)?;
@@ -202,29 +204,35 @@ fn main() -> Result<(), Box<dyn Error>> {
     {
         return serve_bare(size.parse()?);
     }
-    let mut service = Command::new(env!("CARGO_BIN_EXE_sigmadot"));
-    service.args(["serve", "--address", "127.0.0.1:0"]);
-    let mut checks = Server::start(service)?;
-    checks.ask(0)?;
-    let size = checks.answer(0)?;
-    let mut plain = Command::new(std::env::current_exe()?);
-    plain.args(["bare", &size.to_string()]);
-    let mut bare = Server::start(plain)?;
-    println!("{} calls each, request {} bytes, answer {size} bytes", TURNS * CALLS, PLANT.len());
-    for connections in [1, CONNECTIONS] {
-        for server in [&mut checks, &mut bare] {
-            server.turn(CALLS / 4, connections)?;
+    for (name, plant) in
+        [("with two exchangers", PLANT.to_owned()), ("without exchangers", without_exchangers())]
+    {
+        let mut service = Command::new(env!("CARGO_BIN_EXE_sigmadot"));
+        service.args(["serve", "--address", "127.0.0.1:0"]);
+        let mut checks = Server::start(service)?;
+        checks.ask(0, &plant)?;
+        let size = checks.answer(0)?;
+        let mut plain = Command::new(std::env::current_exe()?);
+        plain.args(["bare", &size.to_string()]);
+        let mut bare = Server::start(plain)?;
+        println!("{name}: request {} bytes, answer {size} bytes, {} calls each", plant.len(), TURNS * CALLS);
+        for connections in [1, CONNECTIONS] {
+            for server in [&mut checks, &mut bare] {
+                server.turn(&plant, connections)?;
+            }
+            let (mut ours, mut theirs) = (0.0, 0.0);
+            for _ in 0..TURNS {
+                ours += checks.turn(&plant, connections)?;
+                theirs += bare.turn(&plant, connections)?;
+            }
+            let per_call = |seconds: f64| seconds * 1e6 / (TURNS * CALLS) as f64;
+            println!(
+                "{connections} connection(s): POST /v1/checks {:.1} µs CPU a call, bare typed route {:.1}; ratio {:.2}",
+                per_call(ours),
+                per_call(theirs),
+                ours / theirs
+            );
         }
-        let (mut ours, mut theirs) = (0.0, 0.0);
-        for _ in 0..TURNS {
-            ours += checks.turn(CALLS, connections)?;
-            theirs += bare.turn(CALLS, connections)?;
-        }
-        let per_call = |seconds: f64| seconds * 1e6 / (TURNS * CALLS) as f64;
-        println!("connections in use: {connections}");
-        println!("{:<40} {:>10.1} µs CPU a call", "POST /v1/checks", per_call(ours));
-        println!("{:<40} {:>10.1} µs CPU a call", "bare typed route, stored answer", per_call(theirs));
-        println!("ratio {:.2}", ours / theirs);
     }
     Ok(())
 }

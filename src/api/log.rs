@@ -9,7 +9,9 @@ use std::sync::mpsc::{Receiver, SyncSender, sync_channel};
 use std::thread;
 use std::time::{Duration, SystemTime, UNIX_EPOCH};
 
-use serde_json::{Map, Value};
+use serde::ser::SerializeMap;
+use serde::{Serialize, Serializer};
+use serde_json::Value;
 
 /// Lines that may wait for the writer; beyond it they are dropped and counted.
 const WAITING: usize = 4096;
@@ -22,6 +24,27 @@ const GATHERING: Duration = Duration::from_millis(20);
 pub struct Log {
     lines: Option<SyncSender<Line>>,
     dropped: Arc<AtomicU64>,
+}
+
+/// One line.
+struct Entry<'a> {
+    time: &'a str,
+    level: &'a str,
+    event: &'a str,
+    members: &'a [(&'a str, Value)],
+}
+
+impl Serialize for Entry<'_> {
+    fn serialize<S: Serializer>(&self, serializer: S) -> Result<S::Ok, S::Error> {
+        let mut map = serializer.serialize_map(None)?;
+        for (name, text) in [("time", self.time), ("level", self.level), ("event", self.event)] {
+            map.serialize_entry(name, text)?;
+        }
+        for (name, value) in self.members {
+            map.serialize_entry(name, value)?;
+        }
+        map.end()
+    }
 }
 
 /// What the writer is told.
@@ -52,12 +75,11 @@ impl Log {
     /// Writes one line with the given members after the time and the level.
     pub fn event(&self, level: &str, event: &str, members: &[(&str, Value)]) {
         let Some(lines) = &self.lines else { return };
-        let mut object = Map::new();
-        object.insert("time".into(), Value::from(timestamp(SystemTime::now())));
-        object.insert("level".into(), Value::from(level));
-        object.insert("event".into(), Value::from(event));
-        object.extend(members.iter().map(|(name, value)| ((*name).to_owned(), value.clone())));
-        if lines.try_send(Line::Text(Value::Object(object).to_string())).is_err() {
+        let time = timestamp(SystemTime::now());
+        let entry = Entry { time: &time, level, event, members };
+        // Text keys only: this cannot fail.
+        let text = serde_json::to_string(&entry).unwrap_or_default();
+        if lines.try_send(Line::Text(text)).is_err() {
             self.dropped.fetch_add(1, Ordering::Relaxed);
         }
     }

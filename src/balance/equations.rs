@@ -1,6 +1,7 @@
 //! The equations of a process as rows that should be zero.
 
 use super::region::{self, Region};
+use super::shares;
 use crate::fluid::{Element, Pair, Property, Substance};
 use crate::model::{Blocked, Dual, Model, Rows, View, Workspace, fluids_of, sample_composition};
 use crate::process::kinds::{Kind, Purposeful};
@@ -261,7 +262,7 @@ fn port_heat(view: View<'_>, k: ComponentId, flow: FlowId) -> Result<Dual, Block
         .find(|s| s.inlets.contains(&flow) || s.outlets.contains(&flow));
     match side {
         Some(side) => side_heat(view, side),
-        None => region::flow_energy(view, flow),
+        None => shares::flow_energy(view, flow),
     }
 }
 
@@ -270,7 +271,7 @@ fn side_heat(view: View<'_>, side: &Side) -> Result<Dual, Blocked> {
     let mut out = Dual::default();
     for (flows, sign) in [(&side.inlets, 1.0), (&side.outlets, -1.0)] {
         for &f in flows {
-            out.add_scaled(sign, &region::flow_energy(view, f)?);
+            out.add_scaled(sign, &shares::flow_energy(view, f)?);
         }
     }
     Ok(out)

@@ -1,6 +1,6 @@
 //! One evaluation of a process: solved unknowns and the balances that rules and report share.
 
-use super::{Balance, Bracket, Equations, Exergies, Profile, Region, leniency, region::Shares};
+use super::{Balance, Bracket, Equations, Exergies, Profile, Region, leniency, shares::Shares};
 use crate::model::{Blocked, Dual, Plan, Scope, View};
 use crate::process::ComponentId;
 use std::cell::OnceCell;

@@ -14,6 +14,7 @@ pub mod profile;
 pub mod purpose;
 pub mod region;
 pub mod reservoir;
+pub mod shares;
 
 pub use equations::{Equations, Row, by_pressure, isentropic_enthalpy, transfers};
 pub use evaluation::{Evaluation, RegionBalances};

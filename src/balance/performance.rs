@@ -2,8 +2,8 @@
 //! coefficients of performance, duties and pressure losses.
 
 use super::passage::{enthalpy_rise, is_adiabatic, is_fuel, sections};
-use super::region::flow_energy;
 use super::reservoir::{Cycle, Reservoirs};
+use super::shares::flow_energy;
 use super::{isentropic_enthalpy, transfers};
 use crate::fluid::chemistry::{HeatingValue, mixture_heating_value};
 use crate::fluid::heat_capacity::GAS_CONSTANT;
@@ -213,7 +213,7 @@ fn cycle(view: View<'_>, k: ComponentId, out: &mut Vec<Metric>) {
     if component.kind == Kind::AbsorptionMachine {
         let port = |name: &str| {
             let flow = component.ports.iter().find(|p| p.0 == name)?;
-            super::region::flow_energy(view, flow.1).ok()
+            super::shares::flow_energy(view, flow.1).ok()
         };
         if let (Some(cooled), Some(driving)) = (port("cooled"), port("driving"))
             && let Some(cop) = ratio(&cooled, &driving)

@@ -3,7 +3,7 @@
 use super::exergy::Surroundings;
 use super::performance::{COMBUSTIBLE, Metric, fuel_energy, heating_values, ratio};
 use super::purpose::{Account, Entry};
-use super::region::{Region, flow_energy};
+use super::{Region, shares::flow_energy};
 use crate::fluid::Substance;
 use crate::model::{Blocked, Dual, View};
 use crate::process::{Boundary, Carried, FlowId, Process, Role, WorkForm};

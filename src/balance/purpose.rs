@@ -11,7 +11,7 @@
 
 use super::exergy::{Parts, Surroundings};
 use super::passage::{compressed_side, enthalpy_rise, is_empty, is_fuel, mean_level};
-use super::region::{self, Region};
+use super::{Region, shares::formulation_uncertainty};
 use crate::fluid::Property;
 use crate::model::{Blocked, Dual, View};
 use crate::process::kinds::{Kind, Purposeful};
@@ -193,7 +193,7 @@ impl<'a, 's> Book<'a, 's> {
             parts: self.surroundings.flow_parts(self.view, f)?,
             // A figure of the kind that states its exergy need not state a temperature.
             warm: self.view.property(m.state, Property::Temperature).map_or(true, |t| t.value >= t0),
-            relative: region::formulation_uncertainty(self.view, m.state),
+            relative: formulation_uncertainty(self.view, m.state),
         })
     }
 

@@ -1,12 +1,9 @@
 //! A closed boundary and what crosses it.
 
+use super::shares::{Direct, FormulationTerm, Ledger, formulation_slot, relative_enthalpy, relative_entropy};
 use crate::fluid::{Property, Substance};
-use crate::model::{Blocked, Dual, Slot, View, dual::log_mean};
-use crate::process::{
-    Boundary, Carried, ComponentId, Content, FlowId, FluidId, Holdup, Process, StateId, VarId,
-};
-use smallvec::SmallVec;
-use std::borrow::Cow;
+use crate::model::{Blocked, Dual, View, dual::log_mean};
+use crate::process::{Boundary, Carried, ComponentId, Content, FlowId, Holdup, Process, StateId, VarId};
 
 /// Standard acceleration of free fall, m/s² (ISO 80000-3, conventional value).
 pub const GRAVITY: f64 = 9.80665;
@@ -108,12 +105,6 @@ pub struct Balance {
     /// Sum of magnitudes relative to the reference state: the scale of closure.
     pub throughput: f64,
 }
-
-/// What one relative error of a property formulation adds: its slot and the derivative.
-type FormulationTerm = (Slot, f64);
-
-/// The same for several quantities at once.
-type FormulationTerms<const N: usize> = SmallVec<[(Slot, [f64; N]); 4]>;
 
 impl Balance {
     /// Inflow minus outflow, with the uncertainty of the property formulations.
@@ -264,149 +255,15 @@ pub fn set_mass_values(view: View<'_>, k: ComponentId, side: usize) -> Result<(f
     Ok((sums[0], sums[1]))
 }
 
-/// What a flow carries of energy on the datum of the balances, W or J.
-///
-/// # Errors
-/// `Blocked`.
-pub fn flow_energy(view: View<'_>, f: FlowId) -> Result<Dual, Blocked> {
-    match &view.model.process.flows[f].carried {
-        Carried::Material(m) => {
-            Ok(view.mass(f)?.times(&specific_energy(view, m.state, m.velocity, m.elevation)?))
-        }
-        Carried::Heat(q, _) | Carried::Work(q, _) | Carried::Radiation(q, _) => view.var(*q),
-    }
-}
-
-/// h + w²/2 + g z, J/kg.
-fn specific_energy(
-    view: View<'_>,
-    state: usize,
-    velocity: Option<VarId>,
-    elevation: Option<VarId>,
-) -> Result<Dual, Blocked> {
-    let mut theta = view.enthalpy(state)?;
-    if let Some(w) = velocity {
-        let w = view.var(w)?;
-        theta.add_scaled(1.0, &w.map(0.5 * w.value * w.value, w.value));
-    }
-    if let Some(z) = elevation {
-        theta.add_scaled(GRAVITY, &view.var(z)?);
-    }
-    Ok(theta)
-}
-
-/// What a flow carries of a quantity, and how much that is beside the reference state: the scale
-/// of closure.
-pub type Share = (Dual, f64);
-
-/// What crosses boundaries of a quantity: what each flow carries, and what the property
-/// formulations leave uncertain in each component.
-trait Ledger {
-    fn flow(&self, f: FlowId) -> Result<Cow<'_, Share>, Blocked>;
-    fn formulation(&self, k: ComponentId) -> impl Iterator<Item = FormulationTerm>;
-}
-
-/// How far a figure of a state is from the reference state.
-type Relative = fn(View<'_>, StateId) -> Result<f64, Blocked>;
-
-/// Energy or entropy, found where it is asked for.
-struct Direct<'a> {
-    view: View<'a>,
-    share: fn(View<'_>, FlowId) -> Result<Share, Blocked>,
-    relative: Relative,
-}
-
-impl Ledger for Direct<'_> {
-    fn flow(&self, f: FlowId) -> Result<Cow<'_, Share>, Blocked> {
-        (self.share)(self.view, f).map(Cow::Owned)
-    }
-
-    fn formulation(&self, k: ComponentId) -> impl Iterator<Item = FormulationTerm> {
-        formulation_terms(self.view, k, [self.relative]).into_iter().map(|(slot, [d])| (slot, d))
-    }
-}
-
-/// Energy and entropy of every flow and component, found once: each flow bounds several regions.
-pub struct Shares<'a> {
-    view: View<'a>,
-    flows: Vec<[Result<Share, Blocked>; 2]>,
-    formulations: Vec<FormulationTerms<2>>,
-}
-
-/// One of the quantities of [`Shares`].
-struct Column<'a> {
-    shares: &'a Shares<'a>,
-    column: usize,
-}
-
-impl Ledger for Column<'_> {
-    fn flow(&self, f: FlowId) -> Result<Cow<'_, Share>, Blocked> {
-        self.shares.flows[f][self.column].as_ref().map(Cow::Borrowed).map_err(Clone::clone)
-    }
-
-    fn formulation(&self, k: ComponentId) -> impl Iterator<Item = FormulationTerm> {
-        self.shares.formulations[k].iter().map(|(slot, d)| (*slot, d[self.column]))
-    }
-}
-
-fn energy_share(view: View<'_>, f: FlowId) -> Result<Share, Blocked> {
-    let energy = flow_energy(view, f)?;
-    let size = match view.model.process.flows[f].material() {
-        Some(m) => view.mass_value(m.state, m.amount, m.form)? * relative_enthalpy(view, m.state)?,
-        None => energy.value,
-    };
-    Ok((energy, size.abs()))
-}
-
-/// What material carries; nothing for other flows, whose entropy depends on the region.
-fn entropy_share(view: View<'_>, f: FlowId) -> Result<Share, Blocked> {
-    let Some(m) = view.model.process.flows[f].material() else { return Ok(Share::default()) };
-    let mass = view.mass(f)?;
-    let entropy = mass.times(&view.entropy(m.state)?);
-    Ok((entropy, (mass.value * relative_entropy(view, m.state)?).abs()))
-}
-
-impl<'a> Shares<'a> {
-    /// Finds what every flow carries.
-    pub fn new(view: View<'a>) -> Shares<'a> {
-        let process = &view.model.process;
-        Shares {
-            view,
-            flows: (0..process.flows.len())
-                .map(|f| [energy_share(view, f), entropy_share(view, f)])
-                .collect(),
-            formulations: (0..process.components.len())
-                .map(|k| formulation_terms(view, k, [relative_enthalpy, relative_entropy]))
-                .collect(),
-        }
-    }
-
-    /// See [`energy`].
-    ///
-    /// # Errors
-    /// The first thing that blocks it.
-    pub fn energy(&self, region: &Region) -> Result<Balance, Blocked> {
-        sum_energy(self.view, region, &Column { shares: self, column: 0 })
-    }
-
-    /// See [`entropy`].
-    ///
-    /// # Errors
-    /// The first thing that blocks it.
-    pub fn entropy(&self, region: &Region, bracket: Bracket) -> Result<Balance, Blocked> {
-        sum_entropy(self.view, region, bracket, &Column { shares: self, column: 1 })
-    }
-}
-
 /// Energy over a region, W or J. The boundary work of a batch counts as outflow.
 ///
 /// # Errors
 /// The first thing that blocks it.
 pub fn energy(view: View<'_>, region: &Region) -> Result<Balance, Blocked> {
-    sum_energy(view, region, &Direct { view, share: energy_share, relative: relative_enthalpy })
+    sum_energy(view, region, &Direct::energy(view))
 }
 
-fn sum_energy(view: View<'_>, region: &Region, ledger: &impl Ledger) -> Result<Balance, Blocked> {
+pub(super) fn sum_energy(view: View<'_>, region: &Region, ledger: &impl Ledger) -> Result<Balance, Blocked> {
     let process = &view.model.process;
     grounded(view, region)?;
     let mut out = Balance::over(region);
@@ -473,18 +330,6 @@ pub fn boundary_work(view: View<'_>, k: ComponentId) -> Result<Option<Dual>, Blo
         }
     }
     Ok(Some(view.var(p)?.times(&change)))
-}
-
-/// h − h(298.15 K, 1 bar) of a state, J/kg: independent of the datum of the balances.
-fn relative_enthalpy(view: View<'_>, state: usize) -> Result<f64, Blocked> {
-    let fluid = view.model.process.states[state].fluid;
-    let h = view.property_value(state, Property::Enthalpy)?;
-    Ok(h - view.model.scales[fluid].reference.0)
-}
-
-/// Relative standard uncertainty of the formulation at a state (zero where it cannot be had).
-pub fn formulation_uncertainty(view: View<'_>, state: usize) -> f64 {
-    view.state(state).map_or(0.0, |s| s.uncertainty)
 }
 
 /// Which end of the bracket is taken where a boundary temperature is not given.
@@ -559,10 +404,10 @@ pub const RADIATION_ENTROPY: f64 = 4.0 / 3.0;
 /// # Errors
 /// The first thing that blocks it.
 pub fn entropy(view: View<'_>, region: &Region, bracket: Bracket) -> Result<Balance, Blocked> {
-    sum_entropy(view, region, bracket, &Direct { view, share: entropy_share, relative: relative_entropy })
+    sum_entropy(view, region, bracket, &Direct::entropy(view))
 }
 
-fn sum_entropy(
+pub(super) fn sum_entropy(
     view: View<'_>,
     region: &Region,
     bracket: Bracket,
@@ -603,64 +448,6 @@ fn sum_entropy(
     Ok(out.close(size.throughput(), formulation.chain(fuels)))
 }
 
-/// The slot of the relative error that all states of a fluid in a component share.
-fn formulation_slot(view: View<'_>, k: ComponentId, fluid: FluidId) -> Option<Slot> {
-    view.model.formulation.get(&(k, fluid)).map(|&source| view.model.source_slot(source))
-}
-
-/// What the property formulations leave uncertain at the flows of a component. The terms of a union
-/// are those of its members, so that balances stay additive in every respect.
-///
-/// One relative error is common to all states of a fluid in a component, the largest of theirs, so
-/// that it cancels for equal states.
-fn formulation_terms<const N: usize>(
-    view: View<'_>,
-    k: ComponentId,
-    relative: [Relative; N],
-) -> FormulationTerms<N> {
-    let process = &view.model.process;
-    let component = &process.components[k];
-    let mut out = FormulationTerms::new();
-    let mut largest: SmallVec<[f64; 4]> = SmallVec::new();
-    let mut add = |state: usize, mass: Result<f64, Blocked>, sign: f64| {
-        let Ok(mass) = mass else { return };
-        let mut figures = [0.0; N];
-        for (figure, relative) in figures.iter_mut().zip(relative) {
-            let Ok(found) = relative(view, state) else { return };
-            *figure = found;
-        }
-        let Some(slot) = formulation_slot(view, k, process.states[state].fluid) else { return };
-        let u = formulation_uncertainty(view, state);
-        let at = out.iter().position(|(other, _)| *other == slot).unwrap_or_else(|| {
-            out.push((slot, [0.0; N]));
-            largest.push(u);
-            out.len() - 1
-        });
-        for (sum, figure) in out[at].1.iter_mut().zip(figures) {
-            *sum += sign * mass * figure;
-        }
-        largest[at] = largest[at].max(u);
-    };
-    for (flows, sign) in [(&component.inlets, 1.0), (&component.outlets, -1.0)] {
-        for &f in flows {
-            if let Some(m) = process.flows[f].material() {
-                add(m.state, view.mass_value(m.state, m.amount, m.form), sign);
-            }
-        }
-    }
-    if let Some(holdup) = &component.holdup {
-        for (contents, sign) in [(&holdup.initial, 1.0), (&holdup.r#final, -1.0)] {
-            for c in contents {
-                add(c.state, view.mass_value(c.state, c.amount, c.form), sign);
-            }
-        }
-    }
-    for ((_, derivatives), u) in out.iter_mut().zip(&largest) {
-        derivatives.iter_mut().for_each(|d| *d *= u);
-    }
-    out
-}
-
 /// What the correlations of chemical exergy leave uncertain in the entropy of fuels.
 fn fuel_terms(view: View<'_>, k: ComponentId) -> impl Iterator<Item = FormulationTerm> + '_ {
     let process = &view.model.process;
@@ -675,12 +462,6 @@ fn fuel_terms(view: View<'_>, k: ComponentId) -> impl Iterator<Item = Formulatio
             Some((slot, sign * mass.value * fuel.entropy_uncertainty()))
         },
     )
-}
-
-fn relative_entropy(view: View<'_>, state: usize) -> Result<f64, Blocked> {
-    let fluid = view.model.process.states[state].fluid;
-    let s = view.property_value(state, Property::Entropy)?;
-    Ok(s - view.model.scales[fluid].reference.1)
 }
 
 /// Whether a region has a heat flow whose boundary temperature is not given.

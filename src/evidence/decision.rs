@@ -122,7 +122,10 @@ fn first_look(value: f64, u: f64, margin: &Margin) -> Decision {
         }
     };
     let z = if z.is_finite() { z.clamp(-1e6, 1e6) } else { 0.0 };
+    let probability_negative = normal_cdf(-value / scale);
     let p = match margin.test {
+        // The distribution is symmetric; what is lost of this probability, near one, decides nothing.
+        Test::NonNegative if value > 0.0 => 1.0 - probability_negative,
         Test::NonNegative => normal_cdf(z),
         Test::Zero { .. } => 2.0 * normal_cdf(-z.abs()),
     };
@@ -133,7 +136,7 @@ fn first_look(value: f64, u: f64, margin: &Margin) -> Decision {
         u,
         z,
         p_adjusted: p.min(1.0),
-        probability_negative: normal_cdf(-value / scale),
+        probability_negative,
         detectable: 0.0,
     }
 }

@@ -82,11 +82,19 @@ impl Rule for HumidityRatioAboveSaturation {
 fn water(view: View<'_>, s: StateId) -> Option<(Dual, Dual, Dimension)> {
     let process = &view.model.process;
     let spec = &process.states[s];
-    let (share, slope, c) = match &process.fluids[spec.fluid].substance {
+    let substance = &process.fluids[spec.fluid].substance;
+    match substance {
         Substance::HumidAir => {
             let (CompositionForm::Direct, c) = spec.c? else { return None };
             return Some((view.var(c).ok()?, physics::saturation_ratio(view, s)?, Dimension::HumidityRatio));
         }
+        Substance::Gas(_) | Substance::CombustionGas(_) => {}
+        _ => return None,
+    }
+    // Most gases are too hot for water to condense.
+    let t = view.property(s, Property::Temperature).ok()?;
+    let (saturation, by_t) = Steam.saturation_pressure(t.value).ok()?;
+    let (share, slope, c) = match substance {
         Substance::Gas(gas) => (gas.mole_fraction("H2O"), 0.0, Dual::default()),
         Substance::CombustionGas(gas) => {
             let c = view.composition(s).ok()?;
@@ -99,9 +107,7 @@ fn water(view: View<'_>, s: StateId) -> Option<(Dual, Dual, Dimension)> {
     if share <= 0.0 || !matches!(view.state(s).ok()?.state.phase, Phase::Vapour) {
         return None;
     }
-    let t = view.property(s, Property::Temperature).ok()?;
     let p = view.property(s, Property::Pressure).ok()?;
-    let (saturation, by_t) = Steam.saturation_pressure(t.value).ok()?;
     let held = physics::combine(share * p.value, &[(&p, share), (&c, slope * p.value)]);
     Some((held, t.map(saturation, by_t), Dimension::Pressure))
 }

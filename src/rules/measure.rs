@@ -10,8 +10,8 @@ use crate::process::{
 use crate::quantity::Dimension;
 
 pub(super) use crate::balance::passage::{is_adiabatic, is_reversed};
-pub(super) use crate::balance::region::formulation_uncertainty as formulation;
 pub(super) use crate::balance::reservoir::net_work_out;
+pub(super) use crate::balance::shares::formulation_uncertainty as formulation;
 
 /// A margin that must not be negative, outside every family.
 pub(super) fn lower_bound(me: usize, scope: Scope, form: Dual, throughput: f64) -> Margin {
