@@ -5,9 +5,9 @@ use std::io::{self, Write};
 use std::iter;
 use std::sync::Arc;
 use std::sync::atomic::{AtomicU64, Ordering};
-use std::sync::mpsc::{Receiver, SyncSender, sync_channel};
+use std::sync::mpsc::{Receiver, SyncSender, TrySendError, sync_channel};
 use std::thread;
-use std::time::{Duration, SystemTime, UNIX_EPOCH};
+use std::time::{Duration, Instant, SystemTime, UNIX_EPOCH};
 
 use serde::ser::SerializeMap;
 use serde::{Serialize, Serializer};
@@ -88,10 +88,15 @@ impl Log {
     pub fn close(&self) {
         let Some(lines) = &self.lines else { return };
         let (done, is_done) = sync_channel(1);
-        if lines.try_send(Line::Flush(done)).is_ok() {
-            // A writer that is stuck must not keep the process from ending.
-            let _ = is_done.recv_timeout(CLOSING);
+        // A writer that is stuck must not keep the process from ending.
+        let end = Instant::now() + CLOSING;
+        while let Err(TrySendError::Full(_)) = lines.try_send(Line::Flush(done.clone())) {
+            if Instant::now() > end {
+                return;
+            }
+            thread::sleep(GATHERING);
         }
+        let _ = is_done.recv_timeout(end.saturating_duration_since(Instant::now()));
     }
 }
 

@@ -102,15 +102,13 @@ impl Ledger for Direct<'_> {
 
     fn formulation(&self, k: ComponentId) -> impl Iterator<Item = FormulationTerm> {
         let view = self.view;
-        let error = |state, mass| {
-            Some(StateError::of(view, state, mass, [(self.specific.relative)(view, state).ok()?]))
-        };
+        let error = |state, mass| StateError::of(view, state, mass, [&(self.specific.relative)(view, state)]);
         let terms = formulation_terms(
             view,
             k,
             |f| {
                 let m = view.model.process.flows[f].material()?;
-                error(m.state, view.mass_value(m.state, m.amount, m.form).ok()?)
+                Some(error(m.state, view.mass_value(m.state, m.amount, m.form).ok()?))
             },
             error,
         );
@@ -139,48 +137,52 @@ fn other_energy(view: View<'_>, f: FlowId) -> Result<Share, Blocked> {
 /// Energy and entropy of every flow and component, found once: each flow bounds several regions.
 pub struct Shares<'a> {
     view: View<'a>,
-    flows: Vec<Carries>,
+    flows: Vec<FlowShares>,
     formulations: Vec<FormulationTerms<2>>,
 }
 
 /// What one flow carries.
-struct Carries {
+struct FlowShares {
     /// Energy and entropy.
     shares: [Result<Share, Blocked>; 2],
     /// What is uncertain in them.
     error: Option<StateError<2>>,
 }
 
-impl Carries {
-    fn of(view: View<'_>, f: FlowId) -> Carries {
+impl FlowShares {
+    fn of(view: View<'_>, f: FlowId) -> FlowShares {
         let Some(m) = view.model.process.flows[f].material() else {
-            return Carries { shares: [other_energy(view, f), Ok(Share::default())], error: None };
+            return FlowShares { shares: [other_energy(view, f), Ok(Share::default())], error: None };
         };
         let mass = view.mass(f);
         let relative = [relative_enthalpy(view, m.state), relative_entropy(view, m.state)];
-        let error = match (&mass, &relative) {
-            (Ok(mass), [Ok(h), Ok(s)]) => Some(StateError::of(view, m.state, mass.value, [*h, *s])),
-            _ => None,
-        };
         let [h, s] = &relative;
+        let error = mass.as_ref().ok().map(|mass| StateError::of(view, m.state, mass.value, [h, s]));
         let shares = [share(&mass, (ENERGY.figure)(view, m), h), share(&mass, (ENTROPY.figure)(view, m), s)];
-        Carries { shares, error }
+        FlowShares { shares, error }
     }
 }
 
-/// One of the quantities of [`Shares`].
+/// The quantities of [`Shares`], in the order of their arrays.
+#[derive(Clone, Copy)]
+enum Quantity {
+    Energy,
+    Entropy,
+}
+
+/// One of them.
 struct Column<'a> {
     shares: &'a Shares<'a>,
-    column: usize,
+    quantity: Quantity,
 }
 
 impl Ledger for Column<'_> {
     fn flow(&self, f: FlowId) -> Result<Cow<'_, Share>, Blocked> {
-        self.shares.flows[f].shares[self.column].as_ref().map(Cow::Borrowed).map_err(Clone::clone)
+        self.shares.flows[f].shares[self.quantity as usize].as_ref().map(Cow::Borrowed).map_err(Clone::clone)
     }
 
     fn formulation(&self, k: ComponentId) -> impl Iterator<Item = FormulationTerm> {
-        self.shares.formulations[k].iter().map(|(slot, d)| (*slot, d[self.column]))
+        self.shares.formulations[k].iter().map(|(slot, d)| (*slot, d[self.quantity as usize]))
     }
 }
 
@@ -188,13 +190,13 @@ impl<'a> Shares<'a> {
     /// Finds what every flow carries.
     pub fn new(view: View<'a>) -> Shares<'a> {
         let process = &view.model.process;
-        let flows: Vec<Carries> = (0..process.flows.len()).map(|f| Carries::of(view, f)).collect();
-        let held = |state, mass| {
-            let relative = [relative_enthalpy(view, state).ok()?, relative_entropy(view, state).ok()?];
-            Some(StateError::of(view, state, mass, relative))
+        let flows: Vec<FlowShares> = (0..process.flows.len()).map(|f| FlowShares::of(view, f)).collect();
+        let of_content = |state, mass| {
+            let (h, s) = (relative_enthalpy(view, state), relative_entropy(view, state));
+            StateError::of(view, state, mass, [&h, &s])
         };
         let formulations = (0..process.components.len())
-            .map(|k| formulation_terms(view, k, |f| flows[f].error, held))
+            .map(|k| formulation_terms(view, k, |f| flows[f].error, of_content))
             .collect();
         Shares { view, flows, formulations }
     }
@@ -204,7 +206,7 @@ impl<'a> Shares<'a> {
     /// # Errors
     /// The first thing that blocks it.
     pub fn energy(&self, region: &Region) -> Result<Balance, Blocked> {
-        sum_energy(self.view, region, &Column { shares: self, column: 0 })
+        sum_energy(self.view, region, &Column { shares: self, quantity: Quantity::Energy })
     }
 
     /// See [`super::region::entropy`].
@@ -212,7 +214,7 @@ impl<'a> Shares<'a> {
     /// # Errors
     /// The first thing that blocks it.
     pub fn entropy(&self, region: &Region, bracket: Bracket) -> Result<Balance, Blocked> {
-        sum_entropy(self.view, region, bracket, &Column { shares: self, column: 1 })
+        sum_entropy(self.view, region, bracket, &Column { shares: self, quantity: Quantity::Entropy })
     }
 }
 
@@ -225,18 +227,20 @@ pub(super) fn formulation_slot(view: View<'_>, k: ComponentId, fluid: FluidId) -
 #[derive(Clone, Copy)]
 struct StateError<const N: usize> {
     fluid: FluidId,
-    /// Amount times what the error is relative to, by quantity.
-    figures: [f64; N],
-    /// Its standard uncertainty.
-    u: f64,
+    /// By quantity: amount times what the error is relative to, and its standard uncertainty. Both are
+    /// zero for a quantity that is not known there: an enthalpy may be given, or solved for, where the
+    /// entropy cannot be had.
+    parts: [(f64, f64); N],
 }
 
 impl<const N: usize> StateError<N> {
-    fn of(view: View<'_>, state: StateId, mass: f64, relative: [f64; N]) -> StateError<N> {
+    fn of(view: View<'_>, state: StateId, mass: f64, relative: [&Result<f64, Blocked>; N]) -> StateError<N> {
         StateError {
             fluid: view.model.process.states[state].fluid,
-            figures: relative.map(|figure| mass * figure),
-            u: formulation_uncertainty(view, state),
+            parts: relative.map(|figure| match figure {
+                Ok(figure) => (mass * figure, formulation_uncertainty(view, state)),
+                Err(_) => (0.0, 0.0),
+            }),
         }
     }
 }
@@ -250,17 +254,18 @@ fn formulation_terms<const N: usize>(
     view: View<'_>,
     k: ComponentId,
     of_flow: impl Fn(FlowId) -> Option<StateError<N>>,
-    of_content: impl Fn(StateId, f64) -> Option<StateError<N>>,
+    of_content: impl Fn(StateId, f64) -> StateError<N>,
 ) -> FormulationTerms<N> {
     let component = &view.model.process.components[k];
     let mut sums: SmallVec<[StateError<N>; 4]> = SmallVec::new();
     let mut add = |sign: f64, error: StateError<N>| match sums.iter_mut().find(|sum| sum.fluid == error.fluid)
     {
         Some(sum) => {
-            sum.figures.iter_mut().zip(error.figures).for_each(|(sum, figure)| *sum += sign * figure);
-            sum.u = sum.u.max(error.u);
+            for (sum, (figure, u)) in sum.parts.iter_mut().zip(error.parts) {
+                *sum = (sum.0 + sign * figure, sum.1.max(u));
+            }
         }
-        None => sums.push(StateError { figures: error.figures.map(|figure| sign * figure), ..error }),
+        None => sums.push(StateError { parts: error.parts.map(|(figure, u)| (sign * figure, u)), ..error }),
     };
     for (flows, sign) in [(&component.inlets, 1.0), (&component.outlets, -1.0)] {
         flows.iter().filter_map(|&f| of_flow(f)).for_each(|error| add(sign, error));
@@ -268,15 +273,15 @@ fn formulation_terms<const N: usize>(
     if let Some(holdup) = &component.holdup {
         for (contents, sign) in [(&holdup.initial, 1.0), (&holdup.r#final, -1.0)] {
             for c in contents {
-                let mass = view.mass_value(c.state, c.amount, c.form).ok();
-                mass.and_then(|mass| of_content(c.state, mass))
-                    .into_iter()
-                    .for_each(|error| add(sign, error));
+                if let Ok(mass) = view.mass_value(c.state, c.amount, c.form) {
+                    add(sign, of_content(c.state, mass));
+                }
             }
         }
     }
-    let term =
-        |sum: StateError<N>| Some((formulation_slot(view, k, sum.fluid)?, sum.figures.map(|f| f * sum.u)));
+    let term = |sum: StateError<N>| {
+        Some((formulation_slot(view, k, sum.fluid)?, sum.parts.map(|(figure, u)| figure * u)))
+    };
     sums.into_iter().filter_map(term).collect()
 }
 

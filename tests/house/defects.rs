@@ -10,7 +10,7 @@ use std::fs;
 use std::path::Path;
 
 /// Descriptions by name: the examples, and the worked cases.
-fn descriptions() -> Vec<(String, String)> {
+pub(super) fn descriptions() -> Vec<(String, String)> {
     let root = Path::new(env!("CARGO_MANIFEST_DIR"));
     let mut out = Vec::new();
     for folder in ["openapi/examples", "tests/cases"] {

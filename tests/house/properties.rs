@@ -1,9 +1,13 @@
 //! What must hold for every process, whatever it is.
 
 use serde_json::{Map, Value, json};
-use sigmadot::pipeline::{Cancel, check_bytes};
-use sigmadot::process::ReadLimits;
+use sigmadot::balance::{Balance, Bracket, region};
+use sigmadot::model::Blocked;
+use sigmadot::pipeline::{Bound, Cancel, Room, check_bytes};
+use sigmadot::process::{ReadLimits, read};
 use sigmadot::quantity::UnitSystem;
+use sigmadot::rules::names;
+use std::collections::BTreeMap;
 
 const GAS_TURBINE: &str = include_str!("../../benches/data/gas-turbine.json");
 
@@ -226,4 +230,74 @@ fn a_defect_that_only_a_secondary_test_sees_is_counted() {
     assert_eq!((&report["verdict"], &report["complete"]), (&json!("violated"), &json!(false)));
     assert!(report["counts"]["violated"].as_u64().unwrap() > 0);
     assert_eq!(report["components"]["engine"]["verdict"], "violated");
+}
+
+/// A pressure that changes bends a temperature which is the same at both ends: the smallest difference
+/// lies between them.
+#[test]
+fn a_pressure_change_bends_a_temperature_between_equal_ends() {
+    let report = check(&json!({
+        "components": {"x": {"kind": "heat_exchanger", "arrangement": "counterflow"}},
+        "flows": {
+            "a": {"kind": "material", "to": "x", "fluid": "CO2", "pressure": "20.00 bar",
+                  "temperature": "60.00 degC", "mass_flow": "1.000 kg/s"},
+            "b": {"kind": "material", "from": "x", "fluid": "CO2", "pressure": "60.00 bar",
+                  "temperature": "60.00 degC"},
+            "q": {"kind": "heat", "from": "x", "temperature": "59.00 degC"}
+        }
+    }));
+    let profile = &report["components"]["x"]["profile"];
+    assert!(profile["pinch"]["difference"]["value"].as_f64().unwrap() < -0.3, "{profile}");
+    assert!(profile["points"].as_array().unwrap().len() > 10, "{profile}");
+}
+
+/// The tables from which many balances are summed hold what each balance finds by itself, in value and
+/// in uncertainty; a flow of which only the enthalpy or only the entropy can be had is among the cases.
+#[test]
+fn balances_from_tables_are_those_found_alone() {
+    let valve = |outlet: &str| {
+        format!(
+            r#"{{"components": {{"v": {{"kind": "valve"}}}}, "flows": {{
+            "a": {{"kind": "material", "to": "v", "fluid": "water", "pressure": "40.00 bar",
+                  "temperature": "400.00 degC", "mass_flow": "2.000 kg/s"}},
+            "b": {{"kind": "material", "from": "v", "fluid": "water", "mass_flow": "2.000 kg/s", {outlet}}}}}}}"#
+        )
+    };
+    let mut all: Vec<(String, String)> = super::defects::descriptions();
+    for outlet in [
+        r#""enthalpy": "3207.0 kJ/kg""#,
+        r#""enthalpy": "3210 kJ/kg", "pressure": "2000 bar""#,
+        r#""entropy": "6.762 kJ/(kg K)", "pressure": "2000 bar""#,
+    ] {
+        all.push((outlet.to_owned(), valve(outlet)));
+    }
+    let same = |name: &str, a: &Result<Balance, Blocked>, b: &Result<Balance, Blocked>| {
+        let (a, b) = match (a, b) {
+            (Ok(a), Ok(b)) => (a, b),
+            (Err(a), Err(b)) => return assert_eq!(a, b, "{name}"),
+            _ => panic!("{name}: {a:?} and {b:?}"),
+        };
+        assert_eq!((a.inflow, a.outflow, a.throughput), (b.inflow, b.outflow, b.throughput), "{name}");
+        let gradient = |balance: &Balance| {
+            let mut by_slot = BTreeMap::new();
+            for &(slot, d) in &balance.residual().terms {
+                *by_slot.entry(slot).or_insert(0.0) += d;
+            }
+            by_slot
+        };
+        assert_eq!(gradient(a), gradient(b), "{name}");
+    };
+    for (name, text) in &all {
+        let Ok((process, inputs)) = read(text.as_bytes(), &ReadLimits::default(), &names()) else {
+            panic!("{name}");
+        };
+        let mut room = Room::default();
+        let bound = Bound::compile(process, inputs, &mut room, &Cancel::new());
+        let evaluation = bound.evaluate(&bound.inputs, &mut room);
+        for (region, balances) in bound.equations.components.iter().zip(&evaluation.components) {
+            same(name, &balances.energy, &region::energy(evaluation.view, region));
+            let entropy = region::entropy(evaluation.view, region, Bracket::Lenient);
+            same(name, &balances.entropy, &entropy);
+        }
+    }
 }

@@ -62,15 +62,15 @@ impl Pair<'_> {
         })
     }
 
-    /// The temperatures half way between two nodes or places between them. Either temperature runs one
-    /// way there: one that is equal on both sides is the same all along.
+    /// The temperatures half way between two nodes or places between them. One that runs one way and is
+    /// equal on both sides is the same all along.
     ///
     /// # Errors
     /// A state outside the formulation's range.
     pub fn middle(&self, left: &Place, right: &Place) -> Result<Place, Blocked> {
         let x = left.x + 0.5 * (right.x - left.x);
         let between = |a: f64, b: f64, stream: &Passage, y: f64| {
-            if a == b { Ok(a) } else { stream.at(self.view, y) }
+            if a == b && stream.runs_one_way(self.view) { Ok(a) } else { stream.at(self.view, y) }
         };
         Ok(Place {
             x,
@@ -112,13 +112,14 @@ impl Pair<'_> {
     fn places(&self) -> Result<Vec<Place>, Blocked> {
         let nodes = self.nodes()?;
         let lowest = nodes.iter().map(Place::gap).fold(f64::INFINITY, f64::min);
+        let one_way = self.hot.runs_one_way(self.view) && self.cold.runs_one_way(self.view);
         let mut out = Vec::with_capacity(3 * nodes.len());
         for (left, right) in nodes.iter().zip(nodes.iter().skip(1)) {
             out.push(*left);
             let width = right.x - left.x;
-            // Between two nodes either temperature runs one way, so that this bounds the difference.
+            // Where both temperatures run one way between two nodes, this bounds the difference.
             let least = left.hot.min(right.hot) - left.cold.max(right.cold);
-            if width <= 1e-9 || least >= lowest.max(0.0) {
+            if width <= 1e-9 || one_way && least >= lowest.max(0.0) {
                 continue;
             }
             let middle = self.middle(left, right)?;

@@ -1,6 +1,6 @@
 //! One stream on its way through an exchanger: temperature and entropy over its own share of duty.
 
-use crate::fluid::{Engine, Pair, Phase, Property, State, state::PROPERTIES};
+use crate::fluid::{Engine, Pair, Phase, Property, State, Substance, state::PROPERTIES};
 use crate::model::{Blocked, Dual, View};
 use crate::process::{FlowId, FluidId};
 
@@ -189,8 +189,9 @@ impl Passage {
     /// course of enthalpy and pressure.
     fn kink(&self, view: View<'_>, quality: f64) -> Option<Kink> {
         let Way::Material { fluid, inlet, outlet, qualities, .. } = &self.way else { return None };
-        // A stream that begins or ends just saturated has its kink there, not on the way.
-        if qualities.contains(&Some(quality)) {
+        // A stream that begins or ends just saturated has its kink there, not on the way, unless the
+        // saturation line itself moves.
+        if qualities.contains(&Some(quality)) && self.is_isobaric() {
             return None;
         }
         let engine = &*view.model.process.fluids[*fluid].engine;
@@ -232,6 +233,23 @@ impl Passage {
             Way::Material { outlet, .. } if y >= 1.0 => Ok(outlet.t.value),
             Way::Material { .. } => Ok(self.state(view, y)?.temperature),
         }
+    }
+
+    fn is_isobaric(&self) -> bool {
+        match &self.way {
+            Way::Material { inlet, outlet, .. } => inlet.p.value == outlet.p.value,
+            Way::Body { .. } => true,
+        }
+    }
+
+    /// Whether the temperature surely rises all along between two nodes, or falls: at constant pressure,
+    /// and where it depends on the enthalpy alone. A pressure drop can bend any other.
+    pub fn runs_one_way(&self, view: View<'_>) -> bool {
+        let ideal = || {
+            let substance = self.fluid().map(|fluid| &view.model.process.fluids[fluid].substance);
+            matches!(substance, Some(Substance::Gas(_) | Substance::CombustionGas(_)))
+        };
+        self.is_isobaric() || ideal()
     }
 
     fn sign(&self) -> f64 {

@@ -149,7 +149,7 @@ impl Term {
 /// How the powers of one variable that some terms need are made: each is the product of two of half
 /// its exponent, so that the chain of dependent products stays short.
 #[derive(Clone, Copy)]
-pub(super) struct Chain {
+struct Chain {
     /// The slot of the power zero.
     zero: usize,
     /// Whether powers below zero are needed.
@@ -195,7 +195,7 @@ impl Chain {
 
     /// The powers of `x`, each in its slot.
     #[inline(always)]
-    pub(super) fn powers(&self, x: f64) -> Powers {
+    fn powers(&self, x: f64) -> Powers {
         let mut out = [0.0; SLOTS];
         out[self.zero & (SLOTS - 1)] = 1.0;
         out[(self.zero + 1) & (SLOTS - 1)] = x;
